@@ -1,0 +1,196 @@
+"""What a reduction says of one run set, as plain frozen records in SI units.
+
+They are built when a run set is looked at; the numbers themselves are kept in columns.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+__all__ = [
+    "BallResult",
+    "BudgetLine",
+    "Correction",
+    "DropResult",
+    "Finding",
+    "Measured",
+    "Quantity",
+    "RunSetResult",
+]
+
+SEVERITIES = ("error", "warning", "note")
+
+
+@dataclass(frozen=True, slots=True)
+class Quantity:
+    """A value in its SI unit with its standard uncertainty (0 where exact)."""
+
+    value: float
+    unit: str
+    u: float = 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class Measured:
+    """A measured value with its coverage interval.
+
+    ``method`` is ``linear`` (GUM) or ``monte-carlo`` (JCGM 101); with the latter
+    ``coverage_factor`` and ``effective_dof`` are ``None``. ``effective_dof`` may be infinite.
+    """
+
+    value: float
+    unit: str
+    u: float
+    effective_dof: float | None
+    coverage_probability: float
+    coverage_factor: float | None
+    expanded: float
+    low: float
+    high: float
+    method: str = "linear"
+
+    @property
+    def relative_expanded(self) -> float:
+        """Expanded uncertainty over the value."""
+        return self.expanded / self.value
+
+
+@dataclass(frozen=True, slots=True)
+class Correction:
+    """One correction: the factor by which it divides Stokes' viscosity, and where it is from."""
+
+    name: str
+    factor: float
+    method: str
+    source: str
+
+
+@dataclass(frozen=True, slots=True)
+class BudgetLine:
+    """One input's part in the uncertainty of a run set's viscosity.
+
+    ``contribution`` is sensitivity times standard uncertainty, in Pa.s, unsigned; the squares of
+    all contributions add up to the squared uncertainty of the result, and ``share`` is each
+    one's part of it. ``scope`` is ``shared``, ``ball`` or ``drop``.
+    """
+
+    input: str
+    value: float
+    unit: str
+    u: float
+    distribution: str
+    dof: float
+    sensitivity: float
+    contribution: float
+    share: float
+    scope: str
+
+
+@dataclass(frozen=True, slots=True)
+class BallResult:
+    """The mean of one ball's drops in a run set."""
+
+    ball: str
+    n_drops: int
+    viscosity: Quantity
+    reynolds: float
+    diameter_ratio: float
+    shear_rate: float
+    shear_stress: float
+
+
+@dataclass(frozen=True, slots=True)
+class DropResult:
+    """One drop: as recorded, and what it gave.
+
+    ``viscosity`` is at the drop's own temperature and ``viscosity_at_set`` brought to the set's;
+    both ``None`` where the drop was not used or has no solution. ``residual`` is the drop's
+    viscosity (brought to the set's temperature) over the set's value, less 1. ``wall``,
+    ``inertia`` and ``end`` are factors of the drag.
+    """
+
+    file: str
+    line: int
+    drop: int
+    ball: str
+    time: float
+    temperature: float
+    viscosity: float | None
+    viscosity_at_set: float | None
+    stokes_viscosity: float | None
+    reynolds: float | None
+    fall_speed: float | None
+    wall: float | None
+    inertia: float | None
+    end: float | None
+    residual: float | None
+    used: bool
+    status: str
+    note: str
+    findings: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Finding:
+    """What a careful colleague would have noticed, and what to do about it.
+
+    ``effect`` and ``detectable`` are relative changes of the viscosity (0.01 is one percent);
+    ``drops`` are drop numbers of the set. ``severity`` is ``error``, ``warning`` or ``note``.
+    """
+
+    code: str
+    severity: str
+    message: str
+    remedy: str
+    drops: tuple[int, ...] = ()
+    statistic: float | None = None
+    p_value: float | None = None
+    effect: float | None = None
+    detectable: float | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class RunSetResult:
+    """Everything a reduction says of one run set; temperatures in kelvin, all else SI.
+
+    ``viscosity`` is ``None`` where none can be had; ``viscosity_at_reference`` is ``None``
+    without a temperature slope or a reference temperature. ``reynolds``, ``diameter_ratio``,
+    ``shear_rate`` and ``shear_stress`` are the largest of the set.
+    """
+
+    name: str
+    status: str
+    summary: str
+    n_drops: int
+    n_balls: int
+    n_read: int
+    tube: str
+    liquid: str
+    temperature: Quantity | None
+    reference_temperature: float | None
+    viscosity: Measured | None
+    viscosity_at_reference: Measured | None
+    kinematic_viscosity: Measured | None
+    stokes_viscosity: Quantity | None
+    liquid_density: float | None
+    reynolds: float | None
+    diameter_ratio: float | None
+    shear_rate: float | None
+    shear_stress: float | None
+    corrections: tuple[Correction, ...]
+    budget: tuple[BudgetLine, ...]
+    balls: tuple[BallResult, ...]
+    drops: tuple[DropResult, ...]
+    findings: tuple[Finding, ...]
+
+    @property
+    def interval(self) -> tuple[float, float]:
+        """Coverage interval of the viscosity, in Pa.s; NaN where there is no viscosity."""
+        if self.viscosity is None:
+            return (math.nan, math.nan)
+        return (self.viscosity.low, self.viscosity.high)
+
+    def count(self, severity: str) -> int:
+        """How many findings have the severity."""
+        return sum(finding.severity == severity for finding in self.findings)

@@ -1,0 +1,83 @@
+"""Timed drops as a table in SI units, each row with the file, line and column it came from."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
+
+from plumbfall.errors import Problem
+
+if TYPE_CHECKING:
+    import numpy as np
+    import pandas as pd
+    from numpy.typing import NDArray
+
+__all__ = ["COLUMNS", "Repair", "Timings", "TimingFile"]
+
+COLUMNS = (
+    "file",
+    "line",
+    "column",
+    "set",
+    "drop",
+    "ball",
+    "tube",
+    "liquid",
+    "timer",
+    "thermometer",
+    "operator",
+    "started",
+    "status",
+    "note",
+    "time_s",
+    "from_mark",
+    "to_mark",
+    "temperature_K",
+)
+"""Columns of :attr:`Timings.table`, in order.
+
+``file set ball tube liquid timer thermometer operator started status note`` are strings held as
+pandas categoricals (empty where not given); ``line column drop from_mark to_mark`` are integers;
+``time_s`` and ``temperature_K`` are floats, NaN where missing. ``from_mark`` counts from 1;
+``to_mark`` 0 stands for the tube's last mark. ``status`` is ``used``, ``void`` or ``excluded``;
+an excluded row's ``note`` opens with the rule that excluded it, such as ``no-time``.
+"""
+
+
+@dataclass(frozen=True, slots=True)
+class TimingFile:
+    """A file that was read, and the dialect it was found to be written in."""
+
+    path: str
+    sha256: str
+    encoding: str
+    delimiter: str
+    decimal: str
+
+
+@dataclass(frozen=True, slots=True)
+class Repair:
+    """Something that was put right in reading, never silently."""
+
+    file: str
+    line: int | None
+    column: int | None
+    what: str
+
+
+@dataclass(frozen=True, slots=True)
+class Timings:
+    """Every drop that was read: used, void and excluded alike.
+
+    ``marks_s`` holds clock readings at the tube's marks, shape (rows, marks), seconds since the
+    first mark's clock zero, NaN where not read; ``None`` where only total times were given.
+    """
+
+    table: pd.DataFrame
+    marks_s: NDArray[np.float64] | None = None
+    files: tuple[TimingFile, ...] = ()
+    repairs: tuple[Repair, ...] = ()
+    problems: tuple[Problem, ...] = field(default=())
+
+    def __len__(self) -> int:
+        return len(self.table)
