@@ -10,12 +10,16 @@ import importlib
 from typing import Any
 
 _NAMES_OF = {
+    "drag": ("BoundDrag", "DragLaw"),
+    "ends": ("end_factor_classical", "plane_factor"),
+    "factors": ("inertia_factor", "tube_drag_factor", "wall_factor"),
     "gravity": (
         "STANDARD_GRAVITY",
         "normal_gravity",
         "normal_gravity_by_elevation",
         "normal_gravity_by_latitude",
     ),
+    "laws": ("Law", "law", "laws_of"),
     "stokes": (
         "drag_coefficient",
         "reynolds_number",

@@ -1,0 +1,182 @@
+"""The drag law that the inverse solves with: bound to the balls once, then quick in ln Re."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from typing import Any
+
+import numpy as np
+
+from plumbfall.physics.laws import DEFAULTS, REYNOLDS, Law, check_range, law
+from plumbfall.physics.numeric import Numeric
+
+__all__ = ["BoundDrag", "DragLaw"]
+
+
+@dataclass(frozen=True, slots=True)
+class DragLaw:
+    """A choice of laws for walls and inertia and of the rule that joins them.
+
+    Raises
+    ------
+    InputError
+        If a law is not known.
+
+    Examples
+    --------
+    >>> drag = DragLaw()
+    >>> drag.max_reynolds, drag.max_ratio
+    (10.0, 0.8)
+    >>> log_factor, slope = drag.at(0.1).evaluate(np.log(1.0))
+    >>> f"{np.exp(log_factor):.3f} {slope:.3f}"
+    '1.298 0.042'
+    """
+
+    together: str = DEFAULTS["together"]
+    walls: str = DEFAULTS["walls"]
+    inertia: str = DEFAULTS["inertia"]
+    together_law: Law = field(init=False, repr=False)
+    wall_law: Law = field(init=False, repr=False)
+    inertia_law: Law = field(init=False, repr=False)
+
+    def __post_init__(self) -> None:
+        object.__setattr__(self, "together_law", law("together", self.together))
+        object.__setattr__(self, "wall_law", law("walls", self.walls))
+        object.__setattr__(self, "inertia_law", law("inertia", self.inertia))
+
+    @property
+    def reynolds_law(self) -> Law:
+        """The law that sets the largest Reynolds number."""
+        return min(self.together_law, self.inertia_law, key=lambda one: one.high)
+
+    @property
+    def max_reynolds(self) -> float:
+        """Largest Reynolds number."""
+        return self.reynolds_law.high
+
+    @property
+    def ratio_law(self) -> Law:
+        """The law that sets the largest diameter ratio."""
+        walls, rule = self.wall_law, self.together_law
+        return walls if walls.high <= rule.ratio_high else rule
+
+    @property
+    def max_ratio(self) -> float:
+        """Largest ball diameter over tube bore."""
+        return min(self.wall_law.high, self.together_law.ratio_high)
+
+    @property
+    def description(self) -> str:
+        """The choice in one line, for a report."""
+        return f"{self.together} rule, walls {self.walls}, inertia {self.inertia}"
+
+    @property
+    def source(self) -> str:
+        """Where the rule and the two laws are from, for a report."""
+        laws = (self.together_law, self.wall_law, self.inertia_law)
+        return "; ".join(dict.fromkeys(one.citation for one in laws))
+
+    def at(self, diameter_ratio: Numeric) -> BoundDrag:
+        """Bind the law to balls in tubes, shape (..., drops), computing the walls once.
+
+        Raises
+        ------
+        PhysicsRangeError
+            If a ratio is outside the range of the walls or of the rule.
+        """
+        self.wall_law.check(diameter_ratio)
+        self.together_law.check_ratio(diameter_ratio)
+        wall, wall_slope = _kernel(self.wall_law)(diameter_ratio)
+        return BoundDrag(law=self, ratio=diameter_ratio, wall=wall, wall_slope=wall_slope)
+
+
+@dataclass(frozen=True, slots=True)
+class BoundDrag:
+    """Drag factor K of given balls as a function of ln Re, with its derivatives.
+
+    ``wall`` is K0 and ``wall_slope`` its local power d ln K0 / d ln(ratio). Nothing here checks
+    the Reynolds number, so that an iteration may pass the limit; :meth:`check` does.
+    """
+
+    law: DragLaw
+    ratio: Numeric
+    wall: Numeric
+    wall_slope: Numeric
+
+    @property
+    def max_reynolds(self) -> float:
+        """Largest Reynolds number."""
+        return self.law.max_reynolds
+
+    @property
+    def max_ratio(self) -> float:
+        """Largest ball diameter over tube bore."""
+        return self.law.max_ratio
+
+    @property
+    def description(self) -> str:
+        """The choice of laws in one line."""
+        return self.law.description
+
+    @property
+    def source(self) -> str:
+        """Where the laws are from."""
+        return self.law.source
+
+    def evaluate(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
+        """Return ln K and its slope d ln K / d ln Re."""
+        excess, inertia_slope, _, by_inertia = self._parts(log_reynolds)
+        factor = 1.0 + excess
+        slope = by_inertia * inertia_slope / factor
+        return np.log(factor), slope
+
+    def slopes(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
+        """Return the local powers d ln K / d ln(ratio) and d ln K / d ln Re."""
+        excess, inertia_slope, by_wall, by_inertia = self._parts(log_reynolds)
+        factor = 1.0 + excess
+        return (
+            by_wall * (self.wall * self.wall_slope) / factor,
+            by_inertia * inertia_slope / factor,
+        )
+
+    def factor(self, reynolds: Numeric) -> Numeric:
+        """Return K at a Reynolds number, 0 included."""
+        with np.errstate(divide="ignore"):
+            log_reynolds = np.log(reynolds)
+        excess, *_ = self._parts(log_reynolds)
+        return 1.0 + excess
+
+    def check(self, reynolds: Numeric) -> None:
+        """Raise :class:`PhysicsRangeError` unless every Reynolds number is within range."""
+        limiting = self.law.reynolds_law
+        check_range(reynolds, low=limiting.low, high=limiting.high, variable=REYNOLDS, law=limiting)
+
+    def relative_bound(self, log_reynolds: Numeric) -> Numeric:
+        """Return the half-width of the law's own error relative to K, taken as rectangular.
+
+        The rule's own bound with exact walls and the compact inertia, plus how far the chosen
+        laws take K from that.
+        """
+        best = DragLaw(together=self.law.together)
+        bound = self.law.together_law.bound
+        assert bound is not None
+        walls = best.wall_law.function(diameter_ratio=self.ratio)
+        excess, _ = _kernel(best.inertia_law)(log_reynolds)
+        half_width: Numeric = bound(walls - 1.0, excess)
+        if (self.law.walls, self.law.inertia) == (best.walls, best.inertia):
+            return half_width
+        reference, *_ = _kernel(best.together_law)(walls - 1.0, excess)
+        chosen, *_ = self._parts(log_reynolds)
+        apart: Numeric = np.abs((1.0 + chosen) / (1.0 + reference) - 1.0)
+        return half_width + apart
+
+    def _parts(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric, Numeric, Numeric]:
+        """K - 1, the slope of the inertia's excess, and dK/dK0 and dK/dphi."""
+        excess, slope = _kernel(self.law.inertia_law)(log_reynolds)
+        total, by_wall, by_inertia = _kernel(self.law.together_law)(self.wall - 1.0, excess)
+        return total, slope, by_wall, by_inertia
+
+
+def _kernel(chosen: Law) -> Any:
+    assert chosen.kernel is not None
+    return chosen.kernel

@@ -1,0 +1,209 @@
+"""Analytic derivatives of the laws, in the variables in which the force balance is solved.
+
+Walls: K0 and its local power ``d ln K0 / d ln(ratio)``. Inertia: the excess ``phi - 1`` and its
+derivative by ``ln Re``, from ``ln Re`` (minus infinity at rest). Together: ``K - 1`` with its
+derivatives by K0 and phi, and the half-width of what the rule may be wrong by, relative to K.
+"""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+from numpy.polynomial import Polynomial
+
+from plumbfall.physics import inertia, wall
+from plumbfall.physics.exact import creeping_wall_factor
+from plumbfall.physics.numeric import Numeric
+
+__all__ = [
+    "additive_bound",
+    "additive_excess",
+    "inertia_excess_abraham",
+    "inertia_excess_brown_lawler",
+    "inertia_excess_clift_grace_weber",
+    "inertia_excess_compact",
+    "inertia_excess_oseen",
+    "inertia_excess_schiller_naumann",
+    "inertia_excess_stokes",
+    "product_bound",
+    "product_excess",
+    "screened_bound",
+    "screened_excess",
+    "wall_pair_bohlin",
+    "wall_pair_exact",
+    "wall_pair_faxen",
+    "wall_pair_faxen_cubic",
+    "wall_pair_faxen_linear",
+    "wall_pair_francis",
+    "wall_pair_haberman_sayre",
+    "wall_pair_ladenburg",
+]
+
+SCREENED_ERROR = 0.017
+"""Largest error of the screened rule against Navier-Stokes to Reynolds number 10."""
+
+Pair = tuple[Numeric, Numeric]
+Triple = tuple[Numeric, Numeric, Numeric]
+
+_TINY = np.finfo(np.float64).tiny
+_LN10 = math.log(10.0)
+
+
+def wall_pair_exact(ratio: Numeric) -> Pair:
+    """Exact wall factor and its local power, interpolated together."""
+    return creeping_wall_factor(ratio)
+
+
+def wall_pair_ladenburg(ratio: Numeric) -> Pair:
+    """Ladenburg's wall factor and its local power."""
+    return wall.wall_factor_ladenburg(diameter_ratio=ratio), _power(wall.LADENBURG, ratio)
+
+
+def wall_pair_faxen_linear(ratio: Numeric) -> Pair:
+    """Faxén's wall factor cut after the first power, and its local power."""
+    return wall.wall_factor_faxen_linear(diameter_ratio=ratio), -_power(wall.FAXEN_LINEAR, ratio)
+
+
+def wall_pair_faxen_cubic(ratio: Numeric) -> Pair:
+    """Faxén's wall factor cut after the third power, and its local power."""
+    return wall.wall_factor_faxen_cubic(diameter_ratio=ratio), -_power(wall.FAXEN_CUBIC, ratio)
+
+
+def wall_pair_faxen(ratio: Numeric) -> Pair:
+    """Faxén's wall factor and its local power."""
+    return wall.wall_factor_faxen(diameter_ratio=ratio), -_power(wall.FAXEN, ratio)
+
+
+def wall_pair_bohlin(ratio: Numeric) -> Pair:
+    """Bohlin's wall factor and its local power."""
+    return wall.wall_factor_bohlin(diameter_ratio=ratio), -_power(wall.BOHLIN, ratio)
+
+
+def wall_pair_francis(ratio: Numeric) -> Pair:
+    """Francis' wall factor and its local power."""
+    power = 4.0 * ratio * (1.0 / (1.0 - ratio) - wall.FRANCIS / (1.0 - wall.FRANCIS * ratio))
+    return wall.wall_factor_francis(diameter_ratio=ratio), power
+
+
+def wall_pair_haberman_sayre(ratio: Numeric) -> Pair:
+    """Haberman and Sayre's wall factor and its local power."""
+    over, under = wall.HABERMAN_SAYRE
+    power = _power(over, ratio) - _power(under, ratio)
+    return wall.wall_factor_haberman_sayre(diameter_ratio=ratio), power
+
+
+def _power(polynomial: Polynomial, ratio: Numeric) -> Numeric:
+    """Local power of a polynomial: d ln P / d ln(ratio)."""
+    power: Numeric = ratio * polynomial.deriv()(ratio) / polynomial(ratio)
+    return power
+
+
+def inertia_excess_stokes(log_reynolds: Numeric) -> Pair:
+    """No excess, no slope."""
+    nothing = np.zeros_like(log_reynolds, dtype=np.float64)[()]
+    return nothing, nothing
+
+
+def inertia_excess_oseen(log_reynolds: Numeric) -> Pair:
+    """Excess of Oseen's law, and its slope, which is the same."""
+    excess = inertia.OSEEN * np.exp(log_reynolds)
+    return excess, excess
+
+
+def inertia_excess_compact(log_reynolds: Numeric) -> Pair:
+    """Excess of the compact fit, and its slope."""
+    scale, power, root = inertia.COMPACT
+    bend = scale * np.exp(power * log_reynolds)
+    whole = 1.0 + bend
+    excess = np.exp(log_reynolds - root * np.log(whole))
+    excess = inertia.OSEEN * excess
+    return excess, excess * (1.0 - (root * power) * (bend / whole))
+
+
+def inertia_excess_schiller_naumann(log_reynolds: Numeric) -> Pair:
+    """Excess of Schiller and Naumann's law, and its slope."""
+    scale, power = inertia.SCHILLER_NAUMANN
+    excess = scale * np.exp(power * log_reynolds)
+    return excess, power * excess
+
+
+def inertia_excess_clift_grace_weber(log_reynolds: Numeric) -> Pair:
+    """Excess of Clift, Grace and Weber's law, and its slope within each piece."""
+    x = np.asarray(log_reynolds, dtype=np.float64)
+    reynolds = np.exp(x)
+    y = np.maximum(x, math.log(inertia.CLIFT_BOUNDS[0]))
+    w = y / _LN10
+    creeping = inertia.OSEEN * reynolds
+    low = 0.1315 * np.exp(y * (0.82 - 0.05 * w))
+    moderate = 0.1935 * np.exp(0.6305 * y)
+    excesses, slopes = [creeping, low, moderate], [creeping, low * (0.82 - 0.1 * w)]
+    slopes.append(0.6305 * moderate)
+    for log_drag in inertia.CLIFT_LOG_DRAG:
+        factor = np.exp(y + _LN10 * log_drag(w)) / 24.0
+        excesses.append(factor - 1.0)
+        slopes.append(factor * (1.0 + log_drag.deriv()(w)))
+    pieces = [reynolds <= bound for bound in inertia.CLIFT_BOUNDS]
+    return (
+        np.select(pieces, excesses[:-1], excesses[-1])[()],
+        np.select(pieces, slopes[:-1], slopes[-1])[()],
+    )
+
+
+def inertia_excess_brown_lawler(log_reynolds: Numeric) -> Pair:
+    """Excess of Brown and Lawler's law, and its slope."""
+    scale, power, plateau, turn = inertia.BROWN_LAWLER
+    reynolds = np.exp(log_reynolds)
+    low = scale * np.exp(power * log_reynolds)
+    part = reynolds / (reynolds + turn)
+    high = plateau / 24.0 * reynolds * part
+    return low + high, power * low + high * (2.0 - part)
+
+
+def inertia_excess_abraham(log_reynolds: Numeric) -> Pair:
+    """Excess of Abraham's law, and its slope."""
+    layer = np.exp(0.5 * log_reynolds) / inertia.ABRAHAM
+    return layer * (2.0 + layer), layer * (1.0 + layer)
+
+
+def screened_excess(wall_excess: Numeric, inertia_excess: Numeric) -> Triple:
+    """K - 1 of the screened rule with its derivatives by K0 and phi; both 0 where all is 0."""
+    excess = np.sqrt(wall_excess**2 + inertia_excess**2)
+    inverse = 1.0 / np.maximum(excess, _TINY)
+    return excess, wall_excess * inverse, inertia_excess * inverse
+
+
+def additive_excess(wall_excess: Numeric, inertia_excess: Numeric) -> Triple:
+    """K - 1 of the additive rule with its derivatives by K0 and phi."""
+    return wall_excess + inertia_excess, 1.0, 1.0
+
+
+def product_excess(wall_excess: Numeric, inertia_excess: Numeric) -> Triple:
+    """K - 1 of the product rule with its derivatives by K0 and phi."""
+    wall_factor, inertia_factor = 1.0 + wall_excess, 1.0 + inertia_excess
+    return wall_excess + inertia_excess * wall_factor, inertia_factor, wall_factor
+
+
+def screened_bound(wall_excess: Numeric, inertia_excess: Numeric) -> Numeric:
+    """Half-width of the screened rule: its largest error, or the inertia's part where smaller.
+
+    With K0 exact the rule is exact at rest, and in every case computed its error is smaller than
+    the inertia's own part of the drag.
+    """
+    root = np.sqrt(wall_excess**2 + inertia_excess**2)
+    rise = inertia_excess**2 / np.maximum(root + wall_excess, _TINY)
+    bound: Numeric = np.minimum(SCREENED_ERROR, rise / (1.0 + wall_excess))
+    return bound
+
+
+def additive_bound(wall_excess: Numeric, inertia_excess: Numeric) -> Numeric:
+    """Half-width of the additive rule: the smaller excess, as the larger factor acts at least."""
+    smaller = np.minimum(wall_excess, inertia_excess)
+    bound: Numeric = smaller / (1.0 + np.maximum(wall_excess, inertia_excess))
+    return bound
+
+
+def product_bound(wall_excess: Numeric, inertia_excess: Numeric) -> Numeric:
+    """Half-width of the product rule: the smaller excess, as the larger factor acts at least."""
+    bound: Numeric = np.minimum(wall_excess, inertia_excess)
+    return bound
