@@ -6,11 +6,14 @@ from dataclasses import dataclass, field
 from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
 
 from plumbfall.physics.laws import DEFAULTS, REYNOLDS, Law, check_range, law
 from plumbfall.physics.numeric import Numeric
 
 __all__ = ["BoundDrag", "DragLaw"]
+
+Array = NDArray[np.float64]
 
 
 @dataclass(frozen=True, slots=True)
@@ -87,7 +90,13 @@ class DragLaw:
         self.wall_law.check(diameter_ratio)
         self.together_law.check_ratio(diameter_ratio)
         wall, wall_slope = _kernel(self.wall_law)(diameter_ratio)
-        return BoundDrag(law=self, ratio=diameter_ratio, wall=wall, wall_slope=wall_slope)
+        return BoundDrag(
+            law=self,
+            ratio=diameter_ratio,
+            wall=wall,
+            wall_slope=wall_slope,
+            wall_excess=wall - 1.0,
+        )
 
 
 @dataclass(frozen=True, slots=True)
@@ -102,6 +111,7 @@ class BoundDrag:
     ratio: Numeric
     wall: Numeric
     wall_slope: Numeric
+    wall_excess: Numeric
 
     @property
     def max_reynolds(self) -> float:
@@ -125,26 +135,35 @@ class BoundDrag:
 
     def evaluate(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
         """Return ln K and its slope d ln K / d ln Re."""
-        excess, inertia_slope, _, by_inertia = self._parts(log_reynolds)
-        factor = 1.0 + excess
-        slope = by_inertia * inertia_slope / factor
-        return np.log(factor), slope
+        excess, by_log = self._inertia(log_reynolds)
+        total, slope = _kernel(self.law.together_law)(self.wall_excess, excess)
+        slope *= by_log
+        total += 1.0
+        slope /= total
+        return (
+            self._shaped(np.log(total, out=total), log_reynolds),
+            self._shaped(slope, log_reynolds),
+        )
 
     def slopes(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
         """Return the local powers d ln K / d ln(ratio) and d ln K / d ln Re."""
-        excess, inertia_slope, by_wall, by_inertia = self._parts(log_reynolds)
-        factor = 1.0 + excess
+        rule = _kernel(self.law.together_law)
+        excess, by_log = self._inertia(log_reynolds)
+        total, by_inertia = rule(self.wall_excess, excess)
+        _, by_wall = rule(excess, self.wall_excess + np.zeros_like(total))
+        factor = 1.0 + total
         return (
-            by_wall * (self.wall * self.wall_slope) / factor,
-            by_inertia * inertia_slope / factor,
+            self._shaped(by_wall * (self.wall * self.wall_slope) / factor, log_reynolds),
+            self._shaped(by_inertia * by_log / factor, log_reynolds),
         )
 
     def factor(self, reynolds: Numeric) -> Numeric:
         """Return K at a Reynolds number, 0 included."""
         with np.errstate(divide="ignore"):
             log_reynolds = np.log(reynolds)
-        excess, *_ = self._parts(log_reynolds)
-        return 1.0 + excess
+        excess, _ = self._inertia(log_reynolds)
+        total, _ = _kernel(self.law.together_law)(self.wall_excess, excess)
+        return self._shaped(1.0 + total, reynolds)
 
     def check(self, reynolds: Numeric) -> None:
         """Raise :class:`PhysicsRangeError` unless every Reynolds number is within range."""
@@ -159,24 +178,30 @@ class BoundDrag:
         """
         best = DragLaw(together=self.law.together)
         bound = self.law.together_law.bound
-        assert bound is not None
-        walls = best.wall_law.function(diameter_ratio=self.ratio)
-        excess, _ = _kernel(best.inertia_law)(log_reynolds)
-        half_width: Numeric = bound(walls - 1.0, excess)
-        if (self.law.walls, self.law.inertia) == (best.walls, best.inertia):
-            return half_width
-        reference, *_ = _kernel(best.together_law)(walls - 1.0, excess)
-        chosen, *_ = self._parts(log_reynolds)
-        apart: Numeric = np.abs((1.0 + chosen) / (1.0 + reference) - 1.0)
-        return half_width + apart
+        assert bound is not None  # every rule of the registry has one
+        wall_excess = best.wall_law.function(diameter_ratio=self.ratio) - 1.0
+        excess, _ = _kernel(best.inertia_law)(np.atleast_1d(log_reynolds))
+        half_width: Numeric = bound(wall_excess, excess)
+        if (self.law.walls, self.law.inertia) != (best.walls, best.inertia):
+            reference, _ = _kernel(best.together_law)(wall_excess, excess)
+            chosen, _ = self.evaluate(log_reynolds)
+            half_width = half_width + np.abs(np.expm1(chosen - np.log1p(reference)))
+        return self._shaped(np.asarray(half_width), log_reynolds)
 
-    def _parts(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric, Numeric, Numeric]:
-        """K - 1, the slope of the inertia's excess, and dK/dK0 and dK/dphi."""
-        excess, slope = _kernel(self.law.inertia_law)(log_reynolds)
-        total, by_wall, by_inertia = _kernel(self.law.together_law)(self.wall - 1.0, excess)
-        return total, slope, by_wall, by_inertia
+    def _inertia(self, log_reynolds: Numeric) -> tuple[Array, Array]:
+        """Excess of the inertia and its slope, as arrays of one dimension at least."""
+        excess, slope = _kernel(self.law.inertia_law)(np.atleast_1d(log_reynolds))
+        shape = np.broadcast_shapes(excess.shape, np.shape(self.wall_excess))
+        if excess.shape != shape:
+            return np.broadcast_to(excess, shape).copy(), np.broadcast_to(slope, shape).copy()
+        return excess, slope
+
+    def _shaped(self, values: Array, log_reynolds: Numeric) -> Numeric:
+        """Values as a float where ball and Reynolds number are single."""
+        single = np.ndim(log_reynolds) == 0 and np.ndim(self.wall_excess) == 0
+        return values[0] if single else values
 
 
 def _kernel(chosen: Law) -> Any:
-    assert chosen.kernel is not None
+    assert chosen.kernel is not None  # the laws of walls, inertia and together all have one
     return chosen.kernel

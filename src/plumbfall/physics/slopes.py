@@ -1,8 +1,10 @@
 """Analytic derivatives of the laws, in the variables in which the force balance is solved.
 
 Walls: K0 and its local power ``d ln K0 / d ln(ratio)``. Inertia: the excess ``phi - 1`` and its
-derivative by ``ln Re``, from ``ln Re`` (minus infinity at rest). Together: ``K - 1`` with its
-derivatives by K0 and phi, and the half-width of what the rule may be wrong by, relative to K.
+derivative by ``ln Re``, from an array of ``ln Re`` (minus infinity at rest). Together: ``K - 1``
+from the excess of one and the other, of which the latter is an array, with the derivative by the
+latter (every rule treats both alike); and the half-width of what the rule may be wrong by,
+relative to K. Every array returned is new, and the caller's to overwrite.
 """
 
 from __future__ import annotations
@@ -11,6 +13,7 @@ import math
 
 import numpy as np
 from numpy.polynomial import Polynomial
+from numpy.typing import NDArray
 
 from plumbfall.physics import inertia, wall
 from plumbfall.physics.exact import creeping_wall_factor
@@ -43,8 +46,9 @@ __all__ = [
 SCREENED_ERROR = 0.017
 """Largest error of the screened rule against Navier-Stokes to Reynolds number 10."""
 
+Array = NDArray[np.float64]
 Pair = tuple[Numeric, Numeric]
-Triple = tuple[Numeric, Numeric, Numeric]
+ArrayPair = tuple[Array, Array]
 
 _TINY = np.finfo(np.float64).tiny
 _LN10 = math.log(10.0)
@@ -99,40 +103,47 @@ def _power(polynomial: Polynomial, ratio: Numeric) -> Numeric:
     return power
 
 
-def inertia_excess_stokes(log_reynolds: Numeric) -> Pair:
+def inertia_excess_stokes(log_reynolds: Array) -> ArrayPair:
     """No excess, no slope."""
-    nothing = np.zeros_like(log_reynolds, dtype=np.float64)[()]
-    return nothing, nothing
+    return np.zeros_like(log_reynolds), np.zeros_like(log_reynolds)
 
 
-def inertia_excess_oseen(log_reynolds: Numeric) -> Pair:
+def inertia_excess_oseen(log_reynolds: Array) -> ArrayPair:
     """Excess of Oseen's law, and its slope, which is the same."""
     excess = inertia.OSEEN * np.exp(log_reynolds)
-    return excess, excess
+    return excess, excess.copy()
 
 
-def inertia_excess_compact(log_reynolds: Numeric) -> Pair:
-    """Excess of the compact fit, and its slope."""
+def inertia_excess_compact(log_reynolds: Array) -> ArrayPair:
+    """Excess of the compact fit, and its slope; in place, as new arrays cost more than the sums."""
     scale, power, root = inertia.COMPACT
-    bend = scale * np.exp(power * log_reynolds)
-    whole = 1.0 + bend
-    excess = np.exp(log_reynolds - root * np.log(whole))
-    excess = inertia.OSEEN * excess
-    return excess, excess * (1.0 - (root * power) * (bend / whole))
+    slope = power * log_reynolds
+    np.exp(slope, out=slope)
+    slope *= scale
+    whole = 1.0 + slope
+    slope /= whole
+    slope *= -root * power
+    slope += 1.0
+    excess = np.log(whole, out=whole)
+    excess *= -root
+    excess += log_reynolds
+    np.exp(excess, out=excess)
+    excess *= inertia.OSEEN
+    slope *= excess
+    return excess, slope
 
 
-def inertia_excess_schiller_naumann(log_reynolds: Numeric) -> Pair:
+def inertia_excess_schiller_naumann(log_reynolds: Array) -> ArrayPair:
     """Excess of Schiller and Naumann's law, and its slope."""
     scale, power = inertia.SCHILLER_NAUMANN
     excess = scale * np.exp(power * log_reynolds)
     return excess, power * excess
 
 
-def inertia_excess_clift_grace_weber(log_reynolds: Numeric) -> Pair:
+def inertia_excess_clift_grace_weber(log_reynolds: Array) -> ArrayPair:
     """Excess of Clift, Grace and Weber's law, and its slope within each piece."""
-    x = np.asarray(log_reynolds, dtype=np.float64)
-    reynolds = np.exp(x)
-    y = np.maximum(x, math.log(inertia.CLIFT_BOUNDS[0]))
+    reynolds = np.exp(log_reynolds)
+    y = np.maximum(log_reynolds, math.log(inertia.CLIFT_BOUNDS[0]))
     w = y / _LN10
     creeping = inertia.OSEEN * reynolds
     low = 0.1315 * np.exp(y * (0.82 - 0.05 * w))
@@ -145,12 +156,12 @@ def inertia_excess_clift_grace_weber(log_reynolds: Numeric) -> Pair:
         slopes.append(factor * (1.0 + log_drag.deriv()(w)))
     pieces = [reynolds <= bound for bound in inertia.CLIFT_BOUNDS]
     return (
-        np.select(pieces, excesses[:-1], excesses[-1])[()],
-        np.select(pieces, slopes[:-1], slopes[-1])[()],
+        np.select(pieces, excesses[:-1], excesses[-1]),
+        np.select(pieces, slopes[:-1], slopes[-1]),
     )
 
 
-def inertia_excess_brown_lawler(log_reynolds: Numeric) -> Pair:
+def inertia_excess_brown_lawler(log_reynolds: Array) -> ArrayPair:
     """Excess of Brown and Lawler's law, and its slope."""
     scale, power, plateau, turn = inertia.BROWN_LAWLER
     reynolds = np.exp(log_reynolds)
@@ -160,28 +171,33 @@ def inertia_excess_brown_lawler(log_reynolds: Numeric) -> Pair:
     return low + high, power * low + high * (2.0 - part)
 
 
-def inertia_excess_abraham(log_reynolds: Numeric) -> Pair:
+def inertia_excess_abraham(log_reynolds: Array) -> ArrayPair:
     """Excess of Abraham's law, and its slope."""
     layer = np.exp(0.5 * log_reynolds) / inertia.ABRAHAM
     return layer * (2.0 + layer), layer * (1.0 + layer)
 
 
-def screened_excess(wall_excess: Numeric, inertia_excess: Numeric) -> Triple:
-    """K - 1 of the screened rule with its derivatives by K0 and phi; both 0 where all is 0."""
-    excess = np.sqrt(wall_excess**2 + inertia_excess**2)
-    inverse = 1.0 / np.maximum(excess, _TINY)
-    return excess, wall_excess * inverse, inertia_excess * inverse
+def screened_excess(one: Numeric, other: Array) -> ArrayPair:
+    """K - 1 of the screened rule, and its derivative by the other excess; 0 where all is 0."""
+    excess = other * other
+    excess += one * one
+    np.sqrt(excess, out=excess)
+    slope = np.maximum(excess, _TINY)
+    np.divide(other, slope, out=slope)
+    return excess, slope
 
 
-def additive_excess(wall_excess: Numeric, inertia_excess: Numeric) -> Triple:
-    """K - 1 of the additive rule with its derivatives by K0 and phi."""
-    return wall_excess + inertia_excess, 1.0, 1.0
+def additive_excess(one: Numeric, other: Array) -> ArrayPair:
+    """K - 1 of the additive rule, and its derivative by the other excess."""
+    excess = one + other
+    return excess, np.ones_like(excess)
 
 
-def product_excess(wall_excess: Numeric, inertia_excess: Numeric) -> Triple:
-    """K - 1 of the product rule with its derivatives by K0 and phi."""
-    wall_factor, inertia_factor = 1.0 + wall_excess, 1.0 + inertia_excess
-    return wall_excess + inertia_excess * wall_factor, inertia_factor, wall_factor
+def product_excess(one: Numeric, other: Array) -> ArrayPair:
+    """K - 1 of the product rule, and its derivative by the other excess."""
+    excess = one + other
+    excess += one * other
+    return excess, 1.0 + (one + np.zeros_like(excess))
 
 
 def screened_bound(wall_excess: Numeric, inertia_excess: Numeric) -> Numeric:
