@@ -1,0 +1,82 @@
+"""Look-ups of the exact creeping-flow results: wall factor, off-axis coefficient, end excess.
+
+The numbers are computed by ``plumbfall.flow`` and ship as tables. Each look-up returns the value
+and its derivatives, taken from one smooth function, so that they agree with each other.
+Outside its limits a look-up returns NaN: whoever calls it checks the range and says so.
+"""
+
+from __future__ import annotations
+
+from functools import cache
+
+import numpy as np
+from numpy.polynomial import chebyshev
+from numpy.typing import NDArray
+
+from plumbfall.physics.numeric import Numeric
+from plumbfall.physics.piecewise import Piecewise
+from plumbfall.physics.tables import shipped_table
+
+__all__ = ["WALL_FACTOR_RATIO_LIMITS", "creeping_wall_factor"]
+
+Array = NDArray[np.float64]
+
+WALL_FACTOR_RATIO_LIMITS = (0.0, 0.95)
+"""Diameter ratios between which the wall factor is known."""
+
+_LUBRICATION_POWER = 2.5  # the drag in a closing gap grows as the gap to this power
+
+
+@cache
+def _wall_exponent() -> Piecewise:
+    """(ln K0 + 2.5 ln(1 - ratio)) / ratio: smooth from 0, Faxén's slope less 2.5, to the limit."""
+    table = shipped_table("wall_factor").arrays
+    ratio, factor = table["diameter_ratio"], table["wall_factor"]
+    low, high = WALL_FACTOR_RATIO_LIMITS
+    exponent = (np.log(factor) + _LUBRICATION_POWER * np.log1p(-ratio)) / ratio
+    series = chebyshev.Chebyshev.fit(ratio, exponent, ratio.size - 1, domain=[low, high])
+    return Piecewise(series, low=low, high=high, pieces=256, degree=4)
+
+
+def creeping_wall_factor(diameter_ratio: Numeric) -> tuple[Numeric, Numeric]:
+    r"""Drag on a ball on the axis of a long tube over its Stokes drag, at Reynolds number 0.
+
+    .. math:: \ln K_0 = \lambda\, g(\lambda) - \tfrac52 \ln(1 - \lambda)
+
+    Parameters
+    ----------
+    diameter_ratio : float or array, shape (..., drops) [1]
+        Ball diameter over tube bore, symbol lambda.
+
+    Returns
+    -------
+    tuple of two floats or arrays [1]
+        Factor K0, and its logarithmic sensitivity dlnK0/dln(lambda); NaN beyond the limits.
+
+    Valid range
+    -----------
+    Diameter ratio 0 to 0.95; Reynolds number 0; ball on the axis, far from the ends of the tube.
+
+    Notes
+    -----
+    Interpolates the table of ``plumbfall.flow.creeping_tube`` to a relative error below 1e-9.
+
+    References
+    ----------
+    [Faxen1922], [HabermanSayre1958], [Bohlin1960]
+
+    Examples
+    --------
+    >>> factor, sensitivity = creeping_wall_factor(0.1)
+    >>> f"{factor:.7f} {sensitivity:.3f}"
+    '1.2632139 0.258'
+    """
+    low, high = WALL_FACTOR_RATIO_LIMITS
+    ratio = np.asarray(diameter_ratio, dtype=float)
+    ratio = np.where((ratio >= low) & (ratio <= high), ratio, np.nan)
+    exponent, slope = _wall_exponent()(ratio)
+    factor = np.exp(ratio * exponent - _LUBRICATION_POWER * np.log1p(-ratio))
+    sensitivity = ratio * (exponent + ratio * slope + _LUBRICATION_POWER / (1.0 - ratio))
+    if ratio.ndim == 0:
+        return float(factor), float(sensitivity)
+    return factor, sensitivity
