@@ -1,0 +1,182 @@
+"""The report as a document: the names of the schema ``plumbfall/report/1``, SI units, no NaN."""
+
+from __future__ import annotations
+
+import json
+import math
+from typing import TYPE_CHECKING, Any
+
+from plumbfall._version import __version__
+from plumbfall.results import BallResult, BudgetLine, DropResult, Finding, Measured, Quantity
+from plumbfall.results import RunSetResult as Result
+
+if TYPE_CHECKING:
+    from plumbfall.report.report import Report
+
+__all__ = ["SCHEMA", "json_text", "report_document"]
+
+SCHEMA = "plumbfall/report/1"
+
+
+def report_document(report: Report) -> dict[str, Any]:
+    """Return the whole report as plain lists, dicts, strings and finite numbers.
+
+    What has no value is ``None``; so is an infinite number of degrees of freedom.
+    """
+    return {
+        "schema": SCHEMA,
+        "software": {"version": __version__},
+        "inputs": [{"path": path, "sha256": sha256} for path, sha256 in report.inputs],
+        "seed": int(report.seed),
+        "rows": {name: int(report.rows[name]) for name in ("read", "used", "void", "excluded")},
+        "run_sets": [_run_set(view.result) for view in report],
+        "correlation": {
+            "sets": list(report.names),
+            "matrix": [[_number(cell) for cell in row] for row in report.correlation().tolist()],
+        },
+        "findings": [_finding(finding) for finding in report.findings],
+    }
+
+
+def json_text(document: dict[str, Any]) -> str:
+    """Return a document as indented JSON in ASCII, which every console and reader takes."""
+    return json.dumps(document, indent=2, allow_nan=False) + "\n"
+
+
+def _run_set(result: Result) -> dict[str, Any]:
+    viscosity = _measured(result.viscosity)
+    linear = viscosity if viscosity and viscosity["method"] == "linear" else None
+    return {
+        "name": result.name,
+        "status": result.status,
+        "summary": result.summary,
+        "n_drops": int(result.n_drops),
+        "n_balls": int(result.n_balls),
+        "n_read": int(result.n_read),
+        "tube": result.tube,
+        "liquid": result.liquid,
+        "temperature": _quantity(result.temperature),
+        "reference_temperature_K": _number(result.reference_temperature),
+        "viscosity": viscosity,
+        "viscosity_at_reference": _measured(result.viscosity_at_reference),
+        "kinematic_viscosity": _measured(result.kinematic_viscosity),
+        "stokes_viscosity": _quantity(result.stokes_viscosity),
+        "conformity": None,
+        "liquid_density_kg_m3": _number(result.liquid_density),
+        "reynolds": _number(result.reynolds),
+        "diameter_ratio": _number(result.diameter_ratio),
+        "shear_rate_1_s": _number(result.shear_rate),
+        "shear_stress_Pa": _number(result.shear_stress),
+        "corrections": [
+            {
+                "name": correction.name,
+                "factor": _number(correction.factor),
+                "method": correction.method,
+                "source": correction.source,
+            }
+            for correction in result.corrections
+        ],
+        "budget": [_budget_line(line) for line in result.budget],
+        "linear": linear,
+        "monte_carlo": None,
+        "balls": [_ball(ball) for ball in result.balls],
+        "drops": [_drop(drop) for drop in result.drops],
+        "findings": [_finding(finding) for finding in result.findings],
+    }
+
+
+def _measured(measured: Measured | None) -> dict[str, Any] | None:
+    if measured is None:
+        return None
+    return {
+        "value": _number(measured.value),
+        "unit": measured.unit,
+        "standard_uncertainty": _number(measured.u),
+        "effective_dof": _number(measured.effective_dof),
+        "coverage_probability": _number(measured.coverage_probability),
+        "coverage_factor": _number(measured.coverage_factor),
+        "expanded_uncertainty": _number(measured.expanded),
+        "low": _number(measured.low),
+        "high": _number(measured.high),
+        "method": measured.method,
+    }
+
+
+def _quantity(quantity: Quantity | None) -> dict[str, Any] | None:
+    if quantity is None:
+        return None
+    return {
+        "value": _number(quantity.value),
+        "unit": quantity.unit,
+        "standard_uncertainty": _number(quantity.u),
+    }
+
+
+def _budget_line(line: BudgetLine) -> dict[str, Any]:
+    return {
+        "input": line.input,
+        "value": _number(line.value),
+        "unit": line.unit,
+        "standard_uncertainty": _number(line.u),
+        "distribution": line.distribution,
+        "dof": _number(line.dof),
+        "sensitivity": _number(line.sensitivity),
+        "contribution": _number(line.contribution),
+        "share": _number(line.share),
+        "scope": line.scope,
+    }
+
+
+def _ball(ball: BallResult) -> dict[str, Any]:
+    return {
+        "ball": ball.ball,
+        "n_drops": int(ball.n_drops),
+        "viscosity": _quantity(ball.viscosity),
+        "reynolds": _number(ball.reynolds),
+        "diameter_ratio": _number(ball.diameter_ratio),
+        "shear_rate_1_s": _number(ball.shear_rate),
+        "shear_stress_Pa": _number(ball.shear_stress),
+    }
+
+
+def _drop(drop: DropResult) -> dict[str, Any]:
+    return {
+        "file": drop.file,
+        "line": int(drop.line),
+        "drop": int(drop.drop),
+        "ball": drop.ball,
+        "time_s": _number(drop.time),
+        "temperature_K": _number(drop.temperature),
+        "viscosity_Pa_s": _number(drop.viscosity),
+        "viscosity_at_set_Pa_s": _number(drop.viscosity_at_set),
+        "stokes_viscosity_Pa_s": _number(drop.stokes_viscosity),
+        "reynolds": _number(drop.reynolds),
+        "fall_speed_m_s": _number(drop.fall_speed),
+        "wall": _number(drop.wall),
+        "inertia": _number(drop.inertia),
+        "end": _number(drop.end),
+        "residual": _number(drop.residual),
+        "used": bool(drop.used),
+        "status": drop.status,
+        "note": drop.note,
+        "findings": list(drop.findings),
+    }
+
+
+def _finding(finding: Finding) -> dict[str, Any]:
+    return {
+        "code": finding.code,
+        "severity": finding.severity,
+        "drops": [int(drop) for drop in finding.drops],
+        "message": finding.message,
+        "statistic": _number(finding.statistic),
+        "p_value": _number(finding.p_value),
+        "effect": _number(finding.effect),
+        "detectable": _number(finding.detectable),
+        "remedy": finding.remedy,
+    }
+
+
+def _number(value: float | None) -> float | None:
+    """Return a finite float (of numpy or Python) as a Python float, anything else as ``None``."""
+    return float(value) if value is not None and math.isfinite(value) else None

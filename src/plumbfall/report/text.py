@@ -1,0 +1,174 @@
+"""The report as plain text for a terminal or a pipe: 80 columns, nothing but characters."""
+
+from __future__ import annotations
+
+import os
+import textwrap
+from collections.abc import Iterable, Iterator, Sequence
+from typing import TYPE_CHECKING, TextIO
+
+from plumbfall._version import __version__
+from plumbfall.report.scales import Scale
+from plumbfall.report.set_tables import finding_evidence
+from plumbfall.report.summary import counted, visible
+from plumbfall.report.views import facts, set_scale
+from plumbfall.report.words import Explainer
+from plumbfall.results import Finding, RunSetResult
+
+if TYPE_CHECKING:
+    from plumbfall.report.report import Report
+
+__all__ = ["plain_text", "printable", "show"]
+
+WIDTH = 80
+MANY_SETS = 12
+TOP_INPUTS = 5
+
+_PLAIN_FORMS = {
+    "±": "+/-", "–": "-", "·": ".", "°": "deg", "µ": "u", "²": "2", "³": "3", "×": "x",
+    "…": "...", "≤": "<=", "≥": ">=", "’": "'", "“": '"', "”": '"', "é": "e", "ü": "u",
+}  # fmt: skip
+_STYLES = {"valid": "bold cyan", "valid-with-warnings": "bold yellow", "invalid": "bold red"}
+
+
+def plain_text(report: Report) -> str:
+    """Return the report as text of at most 80 columns, long names apart.
+
+    With more than twelve run sets only those that are not plainly valid are told in full.
+    """
+    return "\n".join(_lines(report)) + "\n"
+
+
+def show(report: Report, stream: TextIO) -> None:
+    """Write the report to a stream: verdicts in colour on a terminal, plain when piped.
+
+    ``NO_COLOR`` in the environment, or a terminal that calls itself dumb, keeps it plain.
+    Characters that the stream's encoding lacks are spelled in ASCII.
+    """
+    lines = [printable(line, stream.encoding) for line in _lines(report)]
+    plain = not stream.isatty() or os.environ.get("NO_COLOR") or os.environ.get("TERM") == "dumb"
+    if plain:
+        stream.write("\n".join(lines) + "\n")
+        return
+    from rich.console import Console
+    from rich.text import Text
+
+    console = Console(file=stream, highlight=False, emoji=False, markup=False, soft_wrap=True)
+    for line in lines:
+        word = line.split("  ", 1)[0]
+        text = Text(line)
+        if word in _STYLES:
+            text.stylize(_STYLES[word], 0, len(word))
+        console.print(text)
+
+
+def printable(text: str, encoding: str | None) -> str:
+    """Return a text with what an encoding cannot hold spelled in ASCII.
+
+    Examples
+    --------
+    >>> printable("851.3 ± 4.2", "ascii")
+    '851.3 +/- 4.2'
+    """
+    try:
+        text.encode(encoding or "ascii")
+    except UnicodeEncodeError:
+        for character, spelled in _PLAIN_FORMS.items():
+            text = text.replace(character, spelled)
+        return text.encode(encoding or "ascii", "backslashreplace").decode(encoding or "ascii")
+    except LookupError:
+        return printable(text, "ascii")
+    return text
+
+
+def _lines(report: Report) -> Iterator[str]:
+    explain = Explainer()
+    few = len(report) <= MANY_SETS
+    for view in report:
+        yield view.summary
+        if few or view.status != "valid":
+            yield from _of_set(view.result, report.bench.viscosity_unit, explain)
+            yield ""
+    if not few:
+        yield ""
+        yield from _wrapped("", "Sets that are valid are told in full by --out DIR.")
+    yield from _of_findings(report.findings)
+    rows = report.rows
+    yield from _wrapped(
+        "",
+        f"{counted(rows['read'], 'row')} read = {rows['used']} used + {rows['void']} void + "
+        f"{rows['excluded']} excluded by rule",
+    )
+    for repair in report.timings.repairs:
+        place = f"{repair.file}:{repair.line}" if repair.line else repair.file
+        yield from _wrapped("repaired  ", f"{visible(place)}: {visible(repair.what)}")
+    yield f"plumbfall {__version__}, seed {report.seed}"
+
+
+def _of_set(result: RunSetResult, unit: str | None, explain: Explainer) -> Iterator[str]:
+    scale = set_scale(result, unit)
+    for fact in facts(result, scale):
+        text = f"{fact.text} {fact.unit}" if fact.unit not in fact.text else fact.text
+        why = explain(fact.term)
+        yield from _wrapped(f"  {fact.label:<36}", visible(f"{text}  ({why})" if why else text))
+    for drop in result.drops:
+        if not drop.used:
+            reason = f"{drop.status}: {drop.note}" if drop.note else drop.status
+            where = f"{drop.file}:{drop.line}"
+            yield from _wrapped("  not used  ", visible(f"drop {drop.drop}, {where}, {reason}"))
+    yield from _of_corrections(result, explain)
+    yield from _of_budget(result, scale, explain)
+    yield from _of_findings(result.findings)
+
+
+def _of_corrections(result: RunSetResult, explain: Explainer) -> Iterator[str]:
+    if not result.corrections:
+        return
+    why = explain("drag factor")
+    yield from _wrapped("  ", "Corrections, each a factor that divides Stokes' viscosity" + (
+        f" (together the drag factor: {why})" if why else ""
+    ))  # fmt: skip
+    for correction in result.corrections:
+        factor = Scale("").fixed(correction.factor, 5)
+        told = f"{factor}  {correction.method} [{correction.source}]"
+        yield from _wrapped(f"    {correction.name:<12}", visible(told))
+
+
+def _of_budget(result: RunSetResult, scale: Scale, explain: Explainer) -> Iterator[str]:
+    if not result.budget:
+        return
+    lines = sorted(result.budget, key=lambda line: -line.share)
+    why = explain("share")
+    heading = "Largest parts of the uncertainty" + (f" (share: {why})" if why else "")
+    yield from _wrapped("  ", heading)
+    for line in lines[:TOP_INPUTS]:
+        share = Scale("%", 100.0).fixed(line.share, 1)
+        part = f"{scale.alone(line.contribution, 2)} {scale.unit}"
+        told = f"{share:>5} %  {part}  {line.scope}"
+        yield from _wrapped(f"    {visible(line.input):<30}", told)
+    if rest := lines[TOP_INPUTS:]:
+        share = Scale("%", 100.0).fixed(sum(line.share for line in rest), 1)
+        yield from _wrapped(f"    {counted(len(rest), 'smaller input'):<30}", f"{share:>5} %")
+
+
+def _of_findings(findings: Sequence[Finding]) -> Iterator[str]:
+    order = {"error": 0, "warning": 1, "note": 2}
+    for finding in sorted(findings, key=lambda finding: order.get(finding.severity, 3)):
+        evidence = finding_evidence(finding)
+        told = f"{finding.message} ({evidence})" if evidence else finding.message
+        yield from _wrapped(f"  {finding.severity} {visible(finding.code)}: ", visible(told), 4)
+        if finding.remedy:
+            yield from _wrapped("    remedy: ", visible(finding.remedy), 6)
+
+
+def _wrapped(start: str, text: str, indent: int | None = None) -> Iterable[str]:
+    lead = " " * (min(len(start), 40) if indent is None else indent)
+    return textwrap.wrap(
+        text,
+        WIDTH,
+        initial_indent=start,
+        subsequent_indent=lead,
+        break_on_hyphens=False,
+        replace_whitespace=False,
+        drop_whitespace=True,
+    ) or [start.rstrip()]

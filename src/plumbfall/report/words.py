@@ -1,0 +1,80 @@
+"""The words of the report: verdicts, explanations, statements and cautions."""
+
+from __future__ import annotations
+
+__all__ = ["CAUTIONS", "NOT_SUPPLIED", "STATEMENTS", "TERMS", "VERDICTS", "Explainer"]
+
+NOT_SUPPLIED = "not supplied"
+
+VERDICTS = {
+    "valid": "Valid",
+    "valid-with-warnings": "Valid, with warnings",
+    "invalid": "Invalid",
+}
+"""What is said of each status; it judges the data, never the product."""
+
+TERMS = {
+    "run set": "drops of one liquid at one temperature in one tube, reduced together",
+    "coverage interval": "holds the true value with the stated probability, if the numbers "
+    "supplied are right",
+    "expanded uncertainty": "half the width of the coverage interval",
+    "coverage factor": "the expanded uncertainty is this many standard uncertainties",
+    "standard uncertainty": "the uncertainty stated as a standard deviation",
+    "degrees of freedom": "how much evidence is behind the uncertainty; with few of them the "
+    "interval widens",
+    "kinematic viscosity": "viscosity over density",
+    "Stokes' law": "the drag on a slow ball in a liquid without walls",
+    "drag factor": "drag on the ball in this tube over its drag by Stokes' law",
+    "Reynolds number": "inertia against viscosity: liquid density x speed x ball diameter / "
+    "viscosity",
+    "diameter ratio": "ball diameter over tube bore",
+    "shear rate": "3 x speed / ball diameter, the most that the liquid is sheared at the ball",
+    "residual": "the drop's viscosity at the set's temperature over the set's value, less 1",
+    "sensitivity": "how far the viscosity moves for one unit of the input",
+    "share": "the input's part of the squared standard uncertainty",
+    "scope": "shared: one error for all drops, which repetition does not average down; ball: one "
+    "for each ball; drop: one for each drop",
+    "apparent viscosity": "it changes with the shear rate, so it holds at the stated one only",
+    "p-value": "how often sound data would show at least as much",
+    "linear": "propagation of uncertainty by the GUM, JCGM 100",
+    "monte-carlo": "propagation of distributions by JCGM 101",
+}
+"""Explanations of words that an outsider does not know; printed once, where first used."""
+
+STATEMENTS = (
+    "The results relate only to the sample tested, as received and under the conditions stated.",
+    "The verdict judges the timings and the bench sheet, never the product.",
+    "This report is not to be reproduced except in full. It claims no accreditation.",
+    "A correct result on a reference liquid does not rule out errors that happen to cancel each "
+    "other.",
+    "Results are computed from the numbers you supply. They are not a substitute for calibration "
+    "by an accredited laboratory, and must not be the only basis for safety-critical or legal "
+    "decisions.",
+)
+
+CAUTIONS = (
+    "Hot baths burn and catch fire: stay well below the flash point, use a drip tray, and never "
+    "bring water near oil above 100 °C.",
+    "Glass breaks: inspect tubes for cracks, wear cut-resistant gloves, never force a stopper, "
+    "set the tube in a second container, and do not invert it hot. Fetch steel balls with a "
+    "magnet or drain the tube.",
+    "Spilled oil and silicone are slippery. Solvents need ventilation, no source of ignition, "
+    "suitable gloves, their safety data sheet and a waste route; prefer cleaners without chromium.",
+    "Toxic, flammable, radioactive or biological samples need a risk assessment first. Avoid "
+    "mercury and lead.",
+    "Local codes, the site's rules and licensed practice come before anything written here.",
+)
+
+
+class Explainer:
+    """Gives the explanation of a term the first time it is asked for, and then no more."""
+
+    def __init__(self) -> None:
+        self._done: set[str] = set()
+
+    def __call__(self, term: str) -> str:
+        """Return the explanation where ``term`` is first printed, else an empty string."""
+        if term in self._done or term not in TERMS:
+            return ""
+        self._done.add(term)
+        return TERMS[term]
