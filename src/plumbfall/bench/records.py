@@ -37,6 +37,10 @@ __all__ = [
 ]
 
 
+def _none() -> Mapping[str, Any]:
+    return MappingProxyType({})
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Identity:
     """What an auditor asks of a piece of equipment; blank where not supplied."""
@@ -249,8 +253,8 @@ class Constant:
 class TimingHints:
     """How to read the timing file where its own headings do not say."""
 
-    columns: Mapping[str, str] = MappingProxyType({})
-    units: Mapping[str, str] = MappingProxyType({})
+    columns: Mapping[str, str] = field(default_factory=_none)
+    units: Mapping[str, str] = field(default_factory=_none)
     delimiter: str | None = None
     decimal: str | None = None
     encoding: str | None = None
@@ -279,28 +283,28 @@ class Bench:
     reference_temperature: float | None = None
     coverage: float = 0.95
     viscosity_unit: str | None = None
-    laboratory: Mapping[str, str] = MappingProxyType({})
-    report: Mapping[str, str] = MappingProxyType({})
-    sample: Mapping[str, str] = MappingProxyType({})
+    laboratory: Mapping[str, str] = field(default_factory=_none)
+    report: Mapping[str, str] = field(default_factory=_none)
+    sample: Mapping[str, str] = field(default_factory=_none)
     site: Site = field(default_factory=Site)
-    timers: Mapping[str, Timer] = MappingProxyType({})
-    thermometers: Mapping[str, Thermometer] = MappingProxyType({})
-    gauges: Mapping[str, Gauge] = MappingProxyType({})
-    balances: Mapping[str, Balance] = MappingProxyType({})
-    tubes: Mapping[str, Tube] = MappingProxyType({})
-    materials: Mapping[str, Material] = MappingProxyType({})
-    balls: Mapping[str, Ball] = MappingProxyType({})
-    liquids: Mapping[str, Liquid] = MappingProxyType({})
-    sets: Mapping[str, RunSetEntry] = MappingProxyType({})
+    timers: Mapping[str, Timer] = field(default_factory=_none)
+    thermometers: Mapping[str, Thermometer] = field(default_factory=_none)
+    gauges: Mapping[str, Gauge] = field(default_factory=_none)
+    balances: Mapping[str, Balance] = field(default_factory=_none)
+    tubes: Mapping[str, Tube] = field(default_factory=_none)
+    materials: Mapping[str, Material] = field(default_factory=_none)
+    balls: Mapping[str, Ball] = field(default_factory=_none)
+    liquids: Mapping[str, Liquid] = field(default_factory=_none)
+    sets: Mapping[str, RunSetEntry] = field(default_factory=_none)
     scatter: Scatter | None = None
-    references: Mapping[str, Reference] = MappingProxyType({})
-    constants: Mapping[str, Constant] = MappingProxyType({})
+    references: Mapping[str, Reference] = field(default_factory=_none)
+    constants: Mapping[str, Constant] = field(default_factory=_none)
     timings: TimingHints = field(default_factory=TimingHints)
     methods: Methods = field(default_factory=Methods)
-    limits: Mapping[str, float | bool] = MappingProxyType({})
+    limits: Mapping[str, float | bool] = field(default_factory=_none)
     path: str = ""
     sha256: str = ""
-    source: Mapping[str, Any] = MappingProxyType({})
+    source: Mapping[str, Any] = field(default_factory=_none)
     """The sheet as written (parsed TOML or the dict given), for ``inspect`` and the report."""
 
     def quantities(self) -> dict[str, Estimate]:

@@ -1,0 +1,119 @@
+"""Drops of several files as one table."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+import numpy as np
+import pandas as pd
+from numpy.typing import NDArray
+
+from plumbfall.timings.columns import Integers
+from plumbfall.timings.drops import TEXTS, FileDrops
+from plumbfall.timings.labels import STATUSES, Labels
+from plumbfall.timings.notices import Notices, quoted
+from plumbfall.timings.numbering import numbered_in_order
+from plumbfall.timings.records import COLUMNS
+
+__all__ = ["join_drops"]
+
+
+def join_drops(
+    drops: Sequence[FileDrops], notices: Notices
+) -> tuple[pd.DataFrame, NDArray[np.float64] | None]:
+    """Return the table of all drops and their clock readings (``None`` where none has any)."""
+    _mind_equal_sets(drops, notices)
+    labels = {name: _stacked([one.labels[name] for one in drops]) for name in TEXTS}
+    labels["file"] = _stacked([Labels.constant(one.path, len(one)) for one in drops])
+    status = _joined([one.status for one in drops])
+    columns: dict[str, object] = {name: label.categorical() for name, label in labels.items()}
+    columns["status"] = pd.Categorical.from_codes(status, categories=list(STATUSES))
+    columns["line"] = _joined([one.line for one in drops])
+    columns["column"] = _joined([one.column for one in drops])
+    columns["from_mark"] = _joined([one.from_mark for one in drops])
+    columns["to_mark"] = _joined([one.to_mark for one in drops])
+    columns["time_s"] = _floats([one.time for one in drops])
+    columns["temperature_K"] = _floats([one.temperature for one in drops])
+    columns["drop"] = _numbered(drops, labels["set"], notices)
+    table = pd.DataFrame({name: columns[name] for name in COLUMNS})
+    return table, _marks(drops)
+
+
+def _joined(parts: Sequence[Integers]) -> Integers:
+    return np.concatenate(parts) if len(parts) else np.zeros(0, dtype=np.int64)
+
+
+def _floats(parts: Sequence[NDArray[np.float64]]) -> NDArray[np.float64]:
+    return np.concatenate(parts) if len(parts) else np.zeros(0)
+
+
+def _stacked(parts: Sequence[Labels]) -> Labels:
+    codes: list[Integers] = []
+    names: list[str] = []
+    for part in parts:
+        codes.append(part.codes + len(names))
+        names.extend(part.names)
+    return Labels.coded(_joined(codes), names)
+
+
+def _mind_equal_sets(drops: Sequence[FileDrops], notices: Notices) -> None:
+    """Say which sets are joined across files; refuse those that only share a file's stem."""
+    owners: dict[str, list[FileDrops]] = {}
+    for one in drops:
+        labels = one.labels["set"]
+        for code in np.unique(labels.codes):
+            owners.setdefault(labels.names[code], []).append(one)
+    for name, files in owners.items():
+        if len(files) < 2:
+            continue
+        unnamed = [one for one in files if not one.named_sets]
+        paths = ", ".join(dict.fromkeys(one.path for one in files))
+        if unnamed:
+            where = "both" if len(files) == 2 else "all"
+            message = (
+                f"{where} {paths} would be run set {quoted(name)}, the name of the file"
+                if len(unnamed) == len(files)
+                else f"{paths}: run set {quoted(name)} is named in a column of one file, and is the"
+                " name of another"
+            )
+            notices.error(
+                message, 'add a column "set" that names the run sets, or rename the file'
+            )
+        else:
+            notices.repair(f"rows of run set {quoted(name)} are joined from {paths}")
+
+
+def _numbered(drops: Sequence[FileDrops], sets: Labels, notices: Notices) -> Integers:
+    """Number drops within their sets where files do not, or where joined files collide."""
+    numbers = _joined([one.drop for one in drops])
+    if not numbers.size:
+        return numbers
+    in_order = numbered_in_order(sets.codes)
+    given = numbers > 0
+    numbers = np.where(given, numbers, in_order)
+    if len(drops) < 2 or not given.any():
+        return numbers
+    file = np.repeat(np.arange(len(drops)), [len(one) for one in drops])
+    frame = pd.DataFrame({"set": sets.codes, "drop": numbers, "file": file})
+    across = frame.drop_duplicates().duplicated(["set", "drop"])
+    for code in frame["set"][across[across].index].unique():
+        rows = sets.codes == code
+        numbers[rows] = in_order[rows]
+        notices.repair(
+            f"files of run set {quoted(sets.names[code])} use the same drop numbers; its drops are"
+            f" numbered 1 to {int(rows.sum())} in the order they were read"
+        )
+    return numbers
+
+
+def _marks(drops: Sequence[FileDrops]) -> NDArray[np.float64] | None:
+    widths = [one.marks.shape[1] for one in drops if one.marks is not None]
+    if not widths:
+        return None
+    result = np.full((sum(map(len, drops)), max(widths)), np.nan)
+    start = 0
+    for one in drops:
+        if one.marks is not None:
+            result[start : start + len(one), : one.marks.shape[1]] = one.marks
+        start += len(one)
+    return result

@@ -1,0 +1,80 @@
+"""What a reader has to say of one file: problems and repairs, each with its place."""
+
+from __future__ import annotations
+
+from plumbfall.errors import Problem
+from plumbfall.timings.records import Repair
+
+__all__ = ["Notices", "quoted"]
+
+_MOST = 500
+"""Problems (and repairs) listed of one file; the rest are counted, so that output is bounded."""
+
+
+def quoted(text: str, most: int = 60) -> str:
+    """Return a cell's text in quotes on one line, cut where it is very long."""
+    shown = "".join(c if c.isprintable() else "\\x%02x" % ord(c) for c in text[: most + 1])
+    return f"'{shown if len(text) <= most else shown[:most] + '…'}'"
+
+
+class Notices:
+    """Collects problems and repairs of one file, in the order they are found."""
+
+    def __init__(self, path: str) -> None:
+        self.path = path
+        self._problems: list[Problem] = []
+        self._repairs: list[Repair] = []
+        self._errors = 0
+        self._more_problems = 0
+        self._more_repairs = 0
+
+    @property
+    def failed(self) -> bool:
+        """Whether an error was noted."""
+        return self._errors > 0
+
+    def error(
+        self,
+        message: str,
+        remedy: str,
+        line: int | None = None,
+        column: int | None = None,
+        *,
+        key: str = "",
+        severity: str = "error",
+    ) -> None:
+        """Note one thing wrong; ``severity`` may be lowered to ``warning``."""
+        self._errors += severity == "error"
+        if len(self._problems) >= _MOST:
+            self._more_problems += 1
+            return
+        self._problems.append(
+            Problem(message, remedy, self.path, line, column, key, severity=severity)
+        )
+
+    def repair(self, what: str, line: int | None = None, column: int | None = None) -> None:
+        """Note one thing that was put right."""
+        if len(self._repairs) >= _MOST:
+            self._more_repairs += 1
+            return
+        self._repairs.append(Repair(self.path, line, column, what))
+
+    @property
+    def problems(self) -> tuple[Problem, ...]:
+        """All problems by line, and a last one that counts what is not listed."""
+        listed = sorted(self._problems, key=lambda problem: problem.line or 0)
+        if self._more_problems:
+            severity = "error" if self._errors else "warning"
+            text = f"and {self._more_problems} more problems of this file"
+            remedy = "correct those listed first"
+            listed.append(Problem(text, remedy, self.path, severity=severity))
+        return tuple(listed)
+
+    @property
+    def repairs(self) -> tuple[Repair, ...]:
+        """All repairs by line, and a last one that counts what is not listed."""
+        listed = sorted(self._repairs, key=lambda repair: repair.line or 0)
+        if self._more_repairs:
+            text = f"and {self._more_repairs} more repairs of this file"
+            listed.append(Repair(self.path, None, None, text))
+        return tuple(listed)

@@ -1,0 +1,109 @@
+"""A sheet of an XLSX workbook as a grid of cells."""
+
+from __future__ import annotations
+
+import datetime as dt
+import io
+import zipfile
+from collections.abc import Sequence
+
+import numpy as np
+
+from plumbfall.errors import nearest_name
+from plumbfall.timings.cells import Grid
+from plumbfall.timings.columns import FloatColumn, TextColumn
+from plumbfall.timings.files import RawFile
+from plumbfall.timings.notices import Notices, quoted
+
+__all__ = ["LARGEST_WORKBOOK", "spreadsheet_grid"]
+
+LARGEST_WORKBOOK = 200_000_000
+"""Bytes of the largest workbook that is read, once unpacked."""
+
+_AS_CSV = "save the sheet as CSV and name that file"
+
+
+def spreadsheet_grid(
+    raw: RawFile, sheet: str | None, header_row: int | None, notices: Notices
+) -> Grid | None:
+    """Read the first or the named sheet; ``None``, and an error noted, where that fails."""
+    rows = _rows(raw, sheet, notices)
+    if rows is None:
+        return None
+    filled = [n for n, row in enumerate(rows, 1) if any(text.strip() for text in row)]
+    if not filled:
+        notices.error("the sheet is empty", "it needs headings and one row for each drop")
+        return None
+    heading = header_row if header_row is not None else filled[0]
+    if heading not in filled:
+        notices.error(
+            f"there are no headings in row {heading}",
+            "correct header_row under [timings] in the bench sheet",
+            key="timings.header_row",
+        )
+        return None
+    if heading != filled[0]:
+        notices.repair(f"rows above the headings in row {heading} are not read", filled[0])
+    below = [n for n in filled if n > heading]
+    width = max(len(rows[n - 1]) for n in filled)
+    headings = tuple(text.strip() for text in rows[heading - 1])
+    cells = [[*rows[n - 1], *[""] * (width - len(rows[n - 1]))] for n in below]
+    headings += ("",) * (width - len(headings))
+    columns = tuple(TextColumn([row[place] for row in cells]) for place in range(width))
+    return Grid(headings, heading, np.array(below, dtype=np.int64), columns)
+
+
+def _rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[str]] | None:
+    from python_calamine import CalamineError, CalamineWorkbook
+
+    try:
+        with zipfile.ZipFile(io.BytesIO(raw.data)) as archive:
+            size = sum(entry.file_size for entry in archive.infolist())
+            if "xl/workbook.xml" not in archive.namelist():
+                notices.error("the file is a zip archive, not a workbook", _AS_CSV)
+                return None
+        if size > LARGEST_WORKBOOK:
+            notices.error(
+                f"the workbook has {size:,} bytes once unpacked; at most {LARGEST_WORKBOOK:,} are"
+                " read",
+                _AS_CSV,
+            )
+            return None
+        workbook = CalamineWorkbook.from_filelike(io.BytesIO(raw.data))
+        names = list(workbook.sheet_names)
+        if sheet is not None and sheet not in names:
+            near = nearest_name(sheet, names)
+            notices.error(
+                f"there is no sheet {quoted(sheet)}",
+                (f"did you mean {quoted(near)}? " if near else "")
+                + f"the workbook has {', '.join(map(quoted, names[:8]))}",
+                key="timings.sheet",
+            )
+            return None
+        if sheet is None and len(names) > 1:
+            notices.repair(f"the first of {len(names)} sheets, {quoted(names[0])}, is read")
+        chosen = workbook.get_sheet_by_name(sheet if sheet is not None else names[0])
+        values = chosen.to_python(skip_empty_area=False)
+    except (zipfile.BadZipFile, CalamineError, OSError, ValueError, IndexError) as fault:
+        notices.error(f"the workbook cannot be read: {fault}", _AS_CSV)
+        return None
+    return [[_text(value) for value in row] for row in _sequence(values)]
+
+
+def _sequence(values: Sequence[Sequence[object]]) -> Sequence[Sequence[object]]:
+    return values
+
+
+def _text(value: object) -> str:
+    """Return a cell's value as one would type it.
+
+    A time of day or a duration is marked as stored by the spreadsheet: whether 1:03 was meant as
+    minutes and seconds or as hours and minutes can no longer be told.
+    """
+    if isinstance(value, float):
+        return FloatColumn(np.array([value])).text(0)
+    if isinstance(value, dt.datetime):
+        return value.isoformat()
+    if isinstance(value, dt.time):
+        return value.isoformat()
+    return str(value)

@@ -1,0 +1,172 @@
+"""Times of all rows at once: cells to seconds, and marks or intervals to fall times."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+
+from plumbfall.timings.columns import Column, Integers, rows_of
+from plumbfall.timings.decimals import Decimal
+from plumbfall.timings.units import Unit
+from plumbfall.timings.values import Fault, is_missing, read_clock, read_number
+
+__all__ = ["FallTimes", "Parsed", "from_intervals", "from_marks", "parse_column"]
+
+Floats = NDArray[np.float64]
+Flags = NDArray[np.bool_]
+
+
+@dataclass(frozen=True, slots=True)
+class Parsed:
+    """One column in SI: NaN where ``missing`` or ``bad``; ``faults`` say why, with their rows.
+
+    ``plain_row`` is the first row with a plain number that no unit covers, or -1.
+    """
+
+    values: Floats
+    missing: Flags
+    bad: Flags
+    faults: list[tuple[int, Fault]]
+    plain_row: int = -1
+
+
+@dataclass(slots=True)
+class FallTimes:
+    """Fall times of all drops of a file, shape (drops,), with the marks they run between.
+
+    ``why`` tells of rows whose time is ``missing`` for a reason beyond an empty cell;
+    ``omitted`` has the (row, column number) of every point that was left out.
+    """
+
+    time: Floats
+    missing: Flags
+    bad: Flags
+    from_mark: Integers
+    to_mark: Integers
+    marks: Floats | None = None
+    why: dict[int, str] = field(default_factory=dict)
+    omitted: list[tuple[int, int]] = field(default_factory=list)
+
+
+def parse_column(
+    column: Column, unit: Unit | None, decimal: Decimal, what: str, *, clock: bool
+) -> Parsed:
+    """Read a column of times (``clock``) or temperatures as SI.
+
+    Clean numbers are read at once; every other distinct text is looked at by itself.
+    """
+    numbers = column.numbers(decimal.mark)
+    scaled = unit is not None and not unit.clock
+    values = unit.to_si(numbers.values) if unit is not None and scaled else numbers.values
+    missing = np.zeros(len(column), dtype=bool)
+    bad = np.zeros(len(column), dtype=bool)
+    faults: list[tuple[int, Fault]] = []
+    plain_row = -1 if scaled or not numbers.clean.any() else int(numbers.clean.argmax())
+    rest = np.flatnonzero(~numbers.clean)
+    if rest.size:
+        values = values.copy()
+        codes, texts = column.distinct(rest)
+        found = np.full(len(texts), np.nan)
+        absent = np.zeros(len(texts), dtype=bool)
+        plain = np.zeros(len(texts), dtype=bool)
+        wrong: dict[int, Fault] = {}
+        for code, text in enumerate(texts):
+            if is_missing(text):
+                absent[code] = True
+                continue
+            reading: float | Fault | None = read_clock(text) if clock else None
+            if reading is None:
+                reading = decimal.fault(text) or read_number(text, decimal.mark, what)
+                plain[code] = not isinstance(reading, Fault)
+            if isinstance(reading, Fault):
+                wrong[code] = reading
+            else:
+                found[code] = reading
+        if unit is not None and scaled:
+            found = np.where(plain, unit.to_si(found), found)
+        elif plain.any():
+            row = int(rest[plain[codes].argmax()])
+            plain_row = row if plain_row < 0 else min(row, plain_row)
+        values[rest] = found[codes]
+        missing[rest] = absent[codes]
+        faults = [(int(rest[place]), fault) for place, fault in rows_of(codes, wrong)]
+        bad[[row for row, _ in faults]] = True
+    return Parsed(values, missing, bad, faults, plain_row)
+
+
+def _ends(present: Flags) -> tuple[Integers, Integers, Integers]:
+    """Return count, first and last index of the points present, each of shape (rows,)."""
+    count = present.sum(axis=1)
+    first = present.argmax(axis=1)
+    last = present.shape[1] - 1 - present[:, ::-1].argmax(axis=1)
+    return count, first, last
+
+
+def from_marks(
+    columns: Sequence[Parsed],
+    first_mark: int,
+    refuse: Callable[[int, int, str, str], None],
+) -> FallTimes:
+    """Turn clock readings at successive marks into fall times.
+
+    ``refuse`` takes row, column number, message and remedy of readings that cannot be.
+    """
+    clock = np.column_stack([column.values for column in columns])
+    bad = np.any([column.bad for column in columns], axis=0)
+    lead = first_mark - 1
+    if lead:
+        clock = np.column_stack((np.zeros((len(clock), lead)), clock))
+    present = ~np.isnan(clock)
+    before = np.fmax.accumulate(np.where(present, clock, -np.inf), axis=1)[:, :-1]
+    negative = present & (clock < 0)
+    disordered = np.zeros_like(present)
+    disordered[:, 1:] = present[:, 1:] & (clock[:, 1:] <= before) & ~negative[:, 1:]
+    for row, mark in np.argwhere(negative):
+        refuse(int(row), int(mark) - lead, "is a negative clock reading", "correct it or void it")
+    for row, mark in np.argwhere(disordered):
+        refuse(
+            int(row),
+            int(mark) - lead,
+            f"at mark {mark + 1} is not after the mark before it ({before[row, mark - 1]:g} s)"
+            if not lead or mark > 1
+            else f"at mark {mark + 1} is not after mark 1, where the clock starts at 0",
+            "marks are passed in order, and the clock runs on; correct the reading or void the row",
+        )
+    bad |= negative.any(axis=1) | disordered.any(axis=1)
+    count, first, last = _ends(present)
+    rows = np.arange(len(clock))
+    missing = (count < 2) & ~bad
+    time = np.where(missing | bad, np.nan, clock[rows, last] - clock[rows, first])
+    result = FallTimes(time, missing, bad, first + 1, last + 1, clock)
+    for row in np.flatnonzero(missing & (count == 1)):
+        if not lead:
+            result.why[int(row)] = f"only mark {first[row] + 1} was read"
+    omitted = ~present & ~(missing | bad)[:, None]
+    result.omitted = [(int(row), int(mark) - lead) for row, mark in np.argwhere(omitted)]
+    return result
+
+
+def from_intervals(columns: Sequence[Parsed]) -> FallTimes:
+    """Turn times between successive marks into fall times and clock readings."""
+    steps = np.column_stack([column.values for column in columns])
+    bad = np.any([column.bad for column in columns], axis=0)
+    present = ~np.isnan(steps)
+    count, first, last = _ends(present)
+    broken = (count > 0) & (count != last - first + 1) & ~bad
+    missing = ((count == 0) & ~bad) | broken
+    clock = np.full((len(steps), steps.shape[1] + 1), np.nan)
+    clock[:, 1:] = np.where(present, np.where(present, steps, 0.0).cumsum(axis=1), np.nan)
+    rows = np.arange(len(steps))
+    clock[rows, first] = 0.0
+    clock[missing | bad] = np.nan
+    time = clock[rows, last + 1]
+    result = FallTimes(time, missing, bad, first + 1, last + 2, clock)
+    for row in np.flatnonzero(broken):
+        gap = int(np.flatnonzero(~present[row, first[row] :])[0]) + int(first[row])
+        result.why[int(row)] = f"interval {gap + 1} is empty between others"
+    omitted = ~present & ~(missing | bad)[:, None]
+    result.omitted = [(int(row), int(column)) for row, column in np.argwhere(omitted)]
+    return result
