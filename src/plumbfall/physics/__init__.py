@@ -20,6 +20,20 @@ _NAMES_OF = {
         "normal_gravity_by_latitude",
     ),
     "laws": ("Law", "law", "laws_of"),
+    "liquids": (
+        "glycerol_water_density",
+        "glycerol_water_viscosity",
+        "sucrose_water_viscosity",
+        "water_density",
+        "water_viscosity",
+        "water_viscosity_at_atmosphere",
+    ),
+    "run_in": (
+        "creeping_start_speed_ratio",
+        "relaxation_time",
+        "run_in_distance",
+        "run_in_guard_distance",
+    ),
     "stokes": (
         "drag_coefficient",
         "reynolds_number",

@@ -8,7 +8,7 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.physics.laws import DEFAULTS, REYNOLDS, Law, check_range, law
+from plumbfall.physics.laws import DEFAULTS, Law, law
 from plumbfall.physics.numeric import Numeric
 
 __all__ = ["BoundDrag", "DragLaw"]
@@ -167,8 +167,7 @@ class BoundDrag:
 
     def check(self, reynolds: Numeric) -> None:
         """Raise :class:`PhysicsRangeError` unless every Reynolds number is within range."""
-        limiting = self.law.reynolds_law
-        check_range(reynolds, low=limiting.low, high=limiting.high, variable=REYNOLDS, law=limiting)
+        self.law.reynolds_law.check(reynolds)
 
     def relative_bound(self, log_reynolds: Numeric) -> Numeric:
         """Return the half-width of the law's own error relative to K, taken as rectangular.

@@ -7,13 +7,17 @@ import math
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.errors import InputError, PhysicsRangeError, nearest_name
+from plumbfall.errors import InputError, nearest_name
 from plumbfall.physics.numeric import Numeric
+from plumbfall.physics.ranges import check_range
 
 __all__ = ["end_factor_classical", "end_factor_none", "plane_factor"]
 
 SMALLEST_GAP = 1e-6
 """Least gap under the ball, over its radius, for which the series is summed."""
+
+LARGEST_GAP = 1e9
+"""Largest distance of the centre, over the ball's radius, for which the series is summed."""
 
 _SURFACES = ("solid", "free")
 _DECAY = 45.0  # terms below exp(-45) of the first cannot change the sum
@@ -46,13 +50,14 @@ def plane_factor(*, gap_ratio: Numeric, surface: str = "solid") -> Numeric:
     Raises
     ------
     PhysicsRangeError
-        If the ball touches the plane, reaches through it, or is nearer than 1e-6 of its radius.
+        If the ball touches the plane, reaches through it, or is nearer than 1e-6 of its radius;
+        or beyond 1e9 radii.
     InputError
         If the surface is neither of the two.
 
     Valid range
     -----------
-    Gap ratio above 1.000001; Reynolds number 0; no tube.
+    Gap ratio 1.000001 to 1e9; Reynolds number 0; no tube.
 
     Notes
     -----
@@ -76,13 +81,13 @@ def plane_factor(*, gap_ratio: Numeric, surface: str = "solid") -> Numeric:
             remedy=f"{f'did you mean {near!r}? ' if near else ''}known: {', '.join(_SURFACES)}",
         )
     ratios = np.asarray(gap_ratio, dtype=np.float64)
-    unfit = ~(ratios >= 1.0 + SMALLEST_GAP)
-    if unfit.any():
-        raise PhysicsRangeError(
-            f"gap ratio {float(ratios[unfit].flat[0]):.9g} is not above {1.0 + SMALLEST_GAP:.6f}, "
-            "the limit of the plane's series (Brenner 1961): the ball's centre must be more than "
-            "a radius from the plane"
-        )
+    check_range(
+        ratios,
+        low=1.0 + SMALLEST_GAP,
+        high=LARGEST_GAP,
+        variable="gap ratio (centre distance over ball radius)",
+        where="the plane's series (Brenner 1961): the ball must be clear of the plane",
+    )
     # acosh(1 + gap) without cancellation, as log1p
     gap = ratios - 1.0
     alpha = np.log1p(gap + np.sqrt(gap * (gap + 2.0))).ravel()
@@ -108,7 +113,6 @@ def _plane_terms(
     k = 2.0 * n + 1.0
     weight = n * (n + 1.0) / ((2.0 * n - 1.0) * (2.0 * n + 3.0))
     decay = np.exp(-k * alpha)
-    # 1 - exp(-k alpha) and its square are 2 sinh(k alpha / 2) exp(-k alpha / 2), squared below
     grown = -np.expm1(-k * alpha)
     waist = k * np.sinh(alpha)
     if surface == "solid":
@@ -122,15 +126,15 @@ def _plane_terms(
     return terms
 
 
-def end_factor_none(*, height_ratio: Numeric) -> Numeric:
+def end_factor_none(*, distance_ratio: Numeric) -> Numeric:
     r"""End factor of marks that are clear of both ends.
 
     .. math:: E = 1
 
     Parameters
     ----------
-    height_ratio : float or array, shape (..., drops) [1]
-        Height of the liquid over the radius of the ball.
+    distance_ratio : float or array, shape (..., drops) [1]
+        Distance of the nearest mark from an end over the radius of the bore.
 
     Returns
     -------
@@ -152,10 +156,10 @@ def end_factor_none(*, height_ratio: Numeric) -> Numeric:
 
     Examples
     --------
-    >>> f"{end_factor_none(height_ratio=100.0):.1f}"
+    >>> f"{end_factor_none(distance_ratio=1.5):.1f}"
     '1.0'
     """
-    factor: Numeric = np.ones_like(height_ratio, dtype=np.float64)[()]
+    factor: Numeric = np.ones_like(distance_ratio, dtype=np.float64)[()]
     return factor
 
 

@@ -2,9 +2,12 @@
 
 from __future__ import annotations
 
+import math
+
 import numpy as np
 
 from plumbfall.physics.numeric import Numeric
+from plumbfall.physics.ranges import check_range
 
 __all__ = [
     "STANDARD_GRAVITY",
@@ -45,6 +48,11 @@ def normal_gravity(*, latitude: Numeric, elevation: Numeric = 0.0) -> Numeric:
     float or array [m/s2]
         Acceleration of free fall.
 
+    Raises
+    ------
+    PhysicsRangeError
+        If a latitude or an elevation is outside the range.
+
     Valid range
     -----------
     Latitude -pi/2 to pi/2 rad; elevation -500 to 10 000 m.
@@ -64,7 +72,7 @@ def normal_gravity(*, latitude: Numeric, elevation: Numeric = 0.0) -> Numeric:
     >>> f"{normal_gravity(latitude=math.radians(45.0)):.5f}"
     '9.80620'
     """
-    sine_squared = np.sin(latitude) ** 2
+    sine_squared = _sine_squared(latitude, elevation)
     at_sea_level = (
         _EQUATOR
         * (1.0 + _SOMIGLIANA * sine_squared)
@@ -91,6 +99,11 @@ def normal_gravity_by_latitude(*, latitude: Numeric, elevation: Numeric = 0.0) -
     float or array [m/s2/rad]
         Derivative of :func:`normal_gravity`.
 
+    Raises
+    ------
+    PhysicsRangeError
+        If a latitude or an elevation is outside the range.
+
     Valid range
     -----------
     As for :func:`normal_gravity`.
@@ -109,7 +122,7 @@ def normal_gravity_by_latitude(*, latitude: Numeric, elevation: Numeric = 0.0) -
     >>> f"{normal_gravity_by_latitude(latitude=math.radians(45.0)) * math.radians(1.0):.1e}"
     '9.1e-04'
     """
-    sine_squared = np.sin(latitude) ** 2
+    sine_squared = _sine_squared(latitude, elevation)
     log_slope = (
         _SOMIGLIANA / (1.0 + _SOMIGLIANA * sine_squared)
         + 0.5 * _ECCENTRICITY_SQUARED / (1.0 - _ECCENTRICITY_SQUARED * sine_squared)
@@ -140,6 +153,11 @@ def normal_gravity_by_elevation(*, latitude: Numeric, elevation: Numeric = 0.0) 
     float or array [1/s2]
         Derivative of :func:`normal_gravity`.
 
+    Raises
+    ------
+    PhysicsRangeError
+        If a latitude or an elevation is outside the range.
+
     Valid range
     -----------
     As for :func:`normal_gravity`.
@@ -159,13 +177,23 @@ def normal_gravity_by_elevation(*, latitude: Numeric, elevation: Numeric = 0.0) 
     >>> f"{normal_gravity_by_elevation(latitude=math.radians(45.0)):.3e}"
     '-3.086e-06'
     """
-    sine_squared = np.sin(latitude) ** 2
+    sine_squared = _sine_squared(latitude, elevation)
     gravity_at_zero = normal_gravity(latitude=latitude)
     shape = 1.0 + _FLATTENING + _ROTATION - 2.0 * _FLATTENING * sine_squared
     slope: Numeric = gravity_at_zero * (
         -2.0 * shape / _SEMI_MAJOR_AXIS + 6.0 * elevation / _SEMI_MAJOR_AXIS**2
     )
     return slope
+
+
+def _sine_squared(latitude: Numeric, elevation: Numeric) -> Numeric:
+    """Squared sine of a latitude, once latitude and elevation are seen to be possible."""
+    law = "normal gravity (WGS 84)"
+    quarter = 0.5 * math.pi
+    check_range(latitude, low=-quarter, high=quarter, variable="latitude in rad", where=law)
+    check_range(elevation, low=-500.0, high=1e4, variable="elevation in m", where=law)
+    squared: Numeric = np.sin(latitude) ** 2
+    return squared
 
 
 def _free_air(sine_squared: Numeric, elevation: Numeric) -> Numeric:

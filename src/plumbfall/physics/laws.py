@@ -12,11 +12,10 @@ from dataclasses import dataclass
 from types import MappingProxyType
 from typing import Any
 
-import numpy as np
-
-from plumbfall.errors import InputError, PhysicsRangeError, nearest_name
+from plumbfall.errors import InputError, nearest_name
 from plumbfall.physics import ends, inertia, slopes, together, wall
 from plumbfall.physics.numeric import Numeric
+from plumbfall.physics.ranges import check_range
 
 __all__ = ["DEFAULTS", "KINDS", "Law", "law", "laws_of"]
 
@@ -58,25 +57,16 @@ class Law:
 
     def check(self, value: Numeric) -> None:
         """Raise :class:`PhysicsRangeError` unless every value is within the law's range."""
-        check_range(value, low=self.low, high=self.high, variable=self.variable, law=self)
+        check_range(value, low=self.low, high=self.high, variable=self.variable, where=self.where)
 
     def check_ratio(self, diameter_ratio: Numeric) -> None:
         """Raise :class:`PhysicsRangeError` beyond the diameter ratio of a combining rule."""
-        check_range(diameter_ratio, low=0.0, high=self.ratio_high, variable=RATIO, law=self)
+        check_range(diameter_ratio, low=0.0, high=self.ratio_high, variable=RATIO, where=self.where)
 
-
-def check_range(value: Numeric, *, low: float, high: float, variable: str, law: Law) -> None:
-    """Raise :class:`PhysicsRangeError`, naming number, limit and law, outside a range."""
-    values = np.asarray(value, dtype=np.float64)
-    outside = ~((values >= low) & (values <= high))
-    if not outside.any():
-        return
-    worst = float(values[outside].flat[0])
-    where = f"law '{law.name}' ({law.kind}, {law.citation})"
-    if math.isnan(worst):
-        raise PhysicsRangeError(f"{variable} is not a number; {where} cannot be used")
-    limit, word = (low, "below") if worst < low else (high, "beyond")
-    raise PhysicsRangeError(f"{variable} {worst:.6g} is {word} {limit:g}, the limit of {where}")
+    @property
+    def where(self) -> str:
+        """The law as an error names it."""
+        return f"law '{self.name}' ({self.kind}; {self.citation})"
 
 
 def law(kind: str, name: str) -> Law:
@@ -176,10 +166,10 @@ def _together(name: str, high: float, error: str, source_key: str, citation: str
 
 _ABRAHAM = "Abraham 1970, Phys. Fluids 13, 2194"
 _COMMON = "common practice, no source"
-_FAXEN = "Faxén 1922, Ann. Phys. 373, 89"
+_FAXEN = "Faxén 1922/23, Ark. Mat. Astron. Fys. 17, no. 27"
 _ALL = (
     _wall("exact", 0.95, "1e-6 to ratio 0.8", "Plumbfall", _OWN),
-    _wall("ladenburg", 0.2, "12 % at 0.2", "Ladenburg1907", "Ladenburg 1907, Ann. Phys. 327, 287"),
+    _wall("ladenburg", 0.2, "12 % at 0.2", "Ladenburg1907", "Ladenburg 1907, Ann. Phys. 328, 447"),
     _wall("faxen", 0.5, "6.4 % at 0.5, 1.4 % at 0.4", "Faxen1922", _FAXEN),
     _wall("faxen-cubic", 0.4, "4.7 % at 0.4, 0.8 % at 0.3", "Faxen1922", _FAXEN),
     _wall("faxen-linear", 0.2, "2.8 % at 0.2, 0.3 % at 0.1", "Faxen1922", _FAXEN),
@@ -202,7 +192,13 @@ _ALL = (
     _inertia(
         "stokes", 1.0, "12 % at 1", "Stokes1851", "Stokes 1851, Trans. Camb. Philos. Soc. 9, 8"
     ),
-    _inertia("oseen", 2.0, "11 % at 2, 1.6 % at 0.5", "Oseen1910", "Oseen 1910, Ark. Mat. 6, 29"),
+    _inertia(
+        "oseen",
+        2.0,
+        "11 % at 2, 1.6 % at 0.5",
+        "Oseen1910",
+        "Oseen 1910, Ark. Mat. Astron. Fys. 6, no. 29",
+    ),
     _inertia(
         "schiller-naumann",
         800.0,
@@ -260,7 +256,7 @@ _ALL = (
         high=math.inf,
         error="1.65 % too high at ratio 0.05, height of 10 bore radii; 3.3 % at 0.1",
         source_key="Ladenburg1907",
-        citation="Ladenburg 1907, Ann. Phys. 327, 287",
+        citation="Ladenburg 1907, Ann. Phys. 328, 447",
     ),
 )
 _LAWS: Mapping[str, Mapping[str, Law]] = MappingProxyType(

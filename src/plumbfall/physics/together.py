@@ -114,7 +114,7 @@ def tube_drag_product(*, wall_factor: Numeric, inertia_factor: Numeric) -> Numer
 
     References
     ----------
-    [Clift1978]
+    [CommonPractice]
 
     Examples
     --------
