@@ -5,8 +5,8 @@ from scipy.special import iv, kv
 
 from plumbfall.flow.creeping_tube import wall_factor, wall_factor_of_order
 
-# Computed by two other methods than ours: collocation in a finite cylinder (11 digits printed)
-# and, at 0.5, finite elements.
+# Computed by other programs than this package: multipoles, collocation in a finite cylinder and
+# finite elements, of which the first two agree to 1e-9 and all three to 5e-6 at ratio 0.5.
 INDEPENDENT = {
     0.01: 1.0214946420,
     0.05: 1.1172705435,

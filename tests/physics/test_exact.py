@@ -2,7 +2,13 @@ import numpy as np
 import pytest
 
 from plumbfall.flow.creeping_tube import wall_factor
-from plumbfall.physics.exact import WALL_FACTOR_RATIO_LIMITS, creeping_wall_factor
+from plumbfall.flow.off_axis import settled_off_axis_coefficient
+from plumbfall.physics.exact import (
+    OFF_AXIS_OFFSET_LIMITS,
+    WALL_FACTOR_RATIO_LIMITS,
+    creeping_wall_factor,
+    off_axis_coefficient,
+)
 
 
 @pytest.mark.parametrize("ratio", [0.003, 0.0377, 0.111, 0.27, 0.493, 0.666, 0.77, 0.91, 0.9495])
@@ -17,7 +23,7 @@ def test_wall_factor_between_the_nodes_is_the_solvers(ratio):
      (0.9, 469.22439)],
 )  # fmt: skip
 def test_wall_factor_agrees_with_independent_computations(ratio, factor):
-    # collocation in a finite cylinder, another method than our table's; 9 and 8 digits
+    # computed by other programs than this package, 9 and 8 digits
     assert creeping_wall_factor(ratio)[0] == pytest.approx(factor, rel=3e-9)
 
 
@@ -61,3 +67,30 @@ def test_wall_factor_keeps_shape_and_type():
     factor, sensitivity = creeping_wall_factor(np.full((3, 2), 0.1))
     assert factor.shape == sensitivity.shape == (3, 2)
     assert creeping_wall_factor(np.array([]))[0].shape == (0,)
+
+
+@pytest.mark.parametrize("offset", [0.0, 0.033, 0.15, 0.41, 0.555, 0.73, 0.87, 0.9])
+def test_off_axis_coefficient_between_the_nodes_is_the_solvers(offset):
+    coefficient, _ = off_axis_coefficient(offset)
+    solved, _ = settled_off_axis_coefficient(offset_ratio=offset)
+    assert coefficient == pytest.approx(solved, rel=1e-9)
+
+
+def test_off_axis_coefficient_is_faxens_on_the_axis_and_level_there():
+    coefficient, slope = off_axis_coefficient(0.0)
+    assert coefficient == pytest.approx(2.10444, abs=5e-6)  # Faxén 1922
+    assert slope == 0.0
+
+
+def test_off_axis_slope_is_the_slope_of_the_value():
+    offset = np.linspace(0.001, 0.899, 300)
+    step = 1e-5
+    difference = off_axis_coefficient(offset + step)[0] - off_axis_coefficient(offset - step)[0]
+    np.testing.assert_allclose(off_axis_coefficient(offset)[1], difference / (2 * step), atol=1e-7)
+
+
+def test_off_axis_coefficient_beyond_its_limits_is_nan():
+    low, high = OFF_AXIS_OFFSET_LIMITS
+    coefficient, slope = off_axis_coefficient(np.array([low, high, high + 1e-9, -1e-9, np.nan]))
+    np.testing.assert_array_equal(np.isnan(coefficient), [False, False, True, True, True])
+    np.testing.assert_array_equal(np.isnan(slope), np.isnan(coefficient))

@@ -35,7 +35,8 @@ FORMAT = "plumbfall/table/1"
 # one line a table; imported only when its turn comes, as some need more than numpy and scipy
 TABLE_MODULES = (
     "plumbfall.flow.creeping_tube",
-)  # fmt: skip
+    "plumbfall.flow.off_axis",
+)
 
 
 @dataclass(frozen=True)
