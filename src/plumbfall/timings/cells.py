@@ -88,17 +88,16 @@ def _sliced(
         kept = np.repeat(~dropped, ends - begins + 1)
         buffer = np.concatenate((buffer[:size][kept], np.zeros(PADDING, dtype=np.uint8)))
         size = buffer.size - PADDING
-    cuts = np.flatnonzero((buffer[:size] == ord(delimiter)) | (buffer[:size] == 10))
+    cut = (buffer == ord(delimiter)) | (buffer == 10)
+    cut[size:] = False
+    cuts = np.flatnonzero(cut)
     if cuts.size != lines.size * width:
         return None
     cuts = cuts.reshape(-1, width)
+    before = np.concatenate(([-1], cuts[:-1, -1]))  # where the line before each row ends
     if not (buffer[cuts[:, -1]] == 10).all():
         return None
-    starts = np.empty_like(cuts)
-    starts[:, 1:] = cuts[:, :-1] + 1
-    starts[:1, 0] = 0
-    starts[1:, 0] = cuts[:-1, -1] + 1
-    if width > 1 and (cuts[:, -1] - starts[:, 0] == width - 1).any():
+    if width > 1 and (cuts[:, -1] - before == width).any():
         return None  # rows of empty cells are told apart, and listed, by the other path
     _note_comments(
         (
@@ -109,7 +108,12 @@ def _sliced(
         width,
         notices,
     )
-    columns = tuple(SliceColumn(buffer, starts[:, n], cuts[:, n]) for n in range(width))
+    space = buffer == 32
+    padded = bool(space[:1].any() or (space[1:] & cut[:-1]).any() or (space[:-1] & cut[1:]).any())
+    columns = tuple(
+        SliceColumn(buffer, cuts[:, n - 1] if n else before, cuts[:, n], padded=padded)
+        for n in range(width)
+    )
     return Grid(headings, heading_line, lines, columns, delimiter)
 
 

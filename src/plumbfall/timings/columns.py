@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
+from functools import cached_property
 from typing import Any, Protocol, TypeVar
 
 import numpy as np
@@ -19,7 +20,7 @@ _PLAIN = {
     ".": re.compile(r"-?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)"),
     ",": re.compile(r"-?(?:[0-9]+(?:,[0-9]*)?|,[0-9]+)"),
 }
-_POWERS = 10.0 ** np.arange(16)
+_POWERS = 10.0 ** np.arange(20)
 _WORD_MASKS = np.array([(1 << 8 * size) - 1 for size in range(9)], dtype=np.uint64)
 _DIGITS = 15  # a whole number below 10**15 and a power of ten to 10**22 are exact as floats
 PADDING = 32
@@ -146,34 +147,47 @@ class SliceColumn:
     ----------
     buffer : array of bytes, shape (n,)
         UTF-8 text that ends in :data:`PADDING` zeros.
-    starts, ends : arrays, shape (rows,)
-        Where each cell begins, and one past where it ends.
+    before, ends : arrays, shape (rows,)
+        Where the byte before each cell is, and one past where the cell ends.
+    padded : bool
+        Whether cells may have spaces round them.
     """
 
-    def __init__(self, buffer: NDArray[np.uint8], starts: Integers, ends: Integers) -> None:
+    def __init__(
+        self, buffer: NDArray[np.uint8], before: Integers, ends: Integers, *, padded: bool
+    ) -> None:
         self._buffer = buffer
-        # a few rounds take off the spaces of padded columns; text() strips whatever is left
-        for _ in range(8):
-            padded = (buffer[starts] == 32) & (starts < ends)
-            if not padded.any():
-                break
-            starts = starts + padded
-        for _ in range(8):
-            padded = (buffer[ends - 1] == 32) & (starts < ends)
-            if not padded.any():
-                break
-            ends = ends - padded
-        self._starts = starts
-        self._lengths = ends - starts
+        self._before = before
+        self._ends = ends
+        self._padded = padded
+        self._numbers: dict[str, Numbers] = {}
 
     def __len__(self) -> int:
-        return self._starts.size
+        return self._before.size
+
+    @cached_property
+    def _slices(self) -> tuple[Integers, Integers]:
+        """Where cells start, and how long they are, without the spaces round them."""
+        starts, ends = self._before + 1, self._ends
+        for _ in range(8 if self._padded else 0):
+            space = (self._buffer[starts] == 32) & (starts < ends)
+            starts = starts + space
+            ends = ends - ((self._buffer[ends - 1] == 32) & (starts < ends))
+        return starts, ends - starts
 
     def text(self, row: int) -> str:
         """Return one cell's text, without the spaces round it."""
-        start = int(self._starts[row])
-        cell = self._buffer[start : start + int(self._lengths[row])]
+        cell = self._buffer[self._before[row] + 1 : self._ends[row]]
         return cell.tobytes().decode("utf-8").strip()
+
+    def _words(self, starts: Integers, lengths: Integers, offset: int) -> NDArray[np.uint64]:
+        """Return eight bytes of every cell as one number, zero beyond the cell's end."""
+        anywhere = np.ndarray(
+            (self._buffer.size - 7,), dtype="<u8", buffer=self._buffer.data, strides=(1,)
+        )
+        words = anywhere[starts + offset if offset else starts]
+        words &= _WORD_MASKS[np.clip(lengths - offset, 0, 8)]
+        return words
 
     def distinct(self, rows: Integers | None = None) -> tuple[Integers, list[str]]:
         """Return codes, shape (rows,), and the distinct texts that they number.
@@ -181,31 +195,32 @@ class SliceColumn:
         Eight bytes of every cell are numbered at a time, and pairs of numbers again, so that
         no string is made but for the distinct ones.
         """
-        starts = self._starts if rows is None else self._starts[rows]
-        lengths = self._lengths if rows is None else self._lengths[rows]
+        starts, lengths = self._slices
+        if rows is not None:
+            starts, lengths = starts[rows], lengths[rows]
         if not starts.size:
             return np.empty(0, dtype=np.int64), []
-        words = np.ndarray(
-            (self._buffer.size - 7,), dtype="<u8", buffer=self._buffer.data, strides=(1,)
-        )
-        codes = np.zeros(starts.size, dtype=np.int64)
+        longest = int(lengths.max())
+        if not longest:
+            return np.zeros(starts.size, dtype=np.int64), [""]
+        codes, found = pd.factorize(self._words(starts, lengths, 0))
+        codes = codes.astype(np.int64, copy=False)
         live = np.arange(starts.size)
-        for offset in range(0, int(lengths.max()), 8):
+        for offset in range(8, longest, 8):
             live = live[lengths[live] > offset]
-            sizes = np.minimum(lengths[live] - offset, 8)
-            numbers, found = pd.factorize(words[starts[live] + offset] & _WORD_MASKS[sizes])
+            numbers, found = pd.factorize(self._words(starts[live], lengths[live], offset))
             pairs, _ = pd.factorize(codes[live] * len(found) + numbers)
             codes[live] = pairs + int(codes.max()) + 1
-        codes = pd.factorize(codes)[0].astype(np.int64, copy=False)
+        if longest > 8:
+            codes = pd.factorize(codes)[0].astype(np.int64, copy=False)
         first = np.empty(int(codes.max()) + 1, dtype=np.int64)
-        first[codes[::-1]] = np.arange(starts.size)[::-1]
+        first[codes[::-1]] = np.arange(starts.size - 1, -1, -1)
         where = first if rows is None else rows[first]
         names = [self.text(int(row)) for row in where]
         if len(set(names)) == len(names):
             return codes, names
         merged, _ = pd.factorize(np.array(names, dtype=object))
-        kept = list(dict.fromkeys(names))
-        return merged[codes].astype(np.int64, copy=False), kept
+        return merged[codes].astype(np.int64, copy=False), list(dict.fromkeys(names))
 
     def numbers(self, decimal: str = ".") -> Numbers:
         """Read every plain number of up to 15 digits, digit by digit over all rows at once.
@@ -213,30 +228,38 @@ class SliceColumn:
         The digits make a whole number and the decimal mark a power of ten; both are exact, so
         their quotient is the float nearest to the text, as ``float`` gives it.
         """
-        mark = ord(decimal)
-        negative = self._buffer[self._starts] == ord("-")
-        negative &= self._lengths > 0
-        starts = self._starts + negative
-        lengths = self._lengths - negative
-        whole = np.zeros(starts.size, dtype=np.int64)
-        digits = np.zeros(starts.size, dtype=np.int8)
-        decimals = np.zeros(starts.size, dtype=np.int8)
-        marks = np.zeros(starts.size, dtype=np.int8)
-        clean = (lengths > 0) & (lengths <= _DIGITS + 1)
+        if decimal not in self._numbers:
+            self._numbers[decimal] = self._read_numbers(ord(decimal))
+        return self._numbers[decimal]
+
+    def _read_numbers(self, mark: int) -> Numbers:
+        starts, lengths = self._slices
         longest = min(int(lengths.max(initial=0)), _DIGITS + 1)
-        for place in range(longest):
-            inside = lengths > place
-            byte = self._buffer[np.where(inside, starts + place, 0)]
-            digit = byte - np.uint8(48)  # wraps round for bytes below "0"
-            is_digit = (digit < 10) & inside
-            is_mark = (byte == mark) & inside
-            clean &= is_digit | is_mark | ~inside
-            whole = np.where(is_digit, whole * 10 + digit, whole)
-            digits += is_digit
-            decimals += is_digit & (marks > 0)
-            marks += is_mark
-        clean &= (marks <= 1) & (digits > 0) & (digits <= _DIGITS)
-        values = whole / _POWERS[np.where(clean, decimals, 0)]
-        np.negative(values, out=values, where=negative)
-        values[~clean] = np.nan
-        return Numbers(values, clean, bool((clean & (marks > 0)).any()))
+        negative = (self._buffer[starts] == ord("-")) & (lengths > 0)
+        if negative.any():
+            starts, lengths = starts + negative, lengths - negative
+        size = starts.size
+        # whole numbers below 10**15 are exact as floats, and floats multiply faster
+        whole = np.zeros(size)
+        digits = np.zeros(size, dtype=np.int8)
+        decimals = np.zeros(size, dtype=np.int8)
+        marked = np.zeros(size, dtype=bool)
+        strange = np.zeros(size, dtype=bool)
+        for offset in range(0, longest, 8):
+            words = self._words(starts, lengths, offset)
+            for place in range(min(8, longest - offset)):
+                byte = (words >> np.uint64(8 * place)).astype(np.uint8)
+                digit = byte - np.uint8(48)  # wraps round for bytes below "0"
+                is_digit = digit < 10
+                is_mark = byte == mark
+                strange |= (is_mark & marked) | ~(is_digit | is_mark | (byte == 0))
+                np.multiply(whole, 10.0, out=whole, where=is_digit)
+                np.add(whole, digit, out=whole, where=is_digit)
+                digits += is_digit
+                decimals += is_digit & marked
+                marked |= is_mark
+        clean = (digits > 0) & (digits <= _DIGITS) & ~strange & (lengths <= longest)
+        whole /= _POWERS[decimals]
+        np.negative(whole, out=whole, where=negative)
+        whole[~clean] = np.nan
+        return Numbers(whole, clean, bool((clean & marked).any()))

@@ -35,19 +35,25 @@ def join_drops(
     columns["time_s"] = _floats([one.time for one in drops])
     columns["temperature_K"] = _floats([one.temperature for one in drops])
     columns["drop"] = _numbered(drops, labels["set"], notices)
-    table = pd.DataFrame({name: columns[name] for name in COLUMNS})
+    table = pd.DataFrame({name: columns[name] for name in COLUMNS}, copy=False)
     return table, _marks(drops)
 
 
 def _joined(parts: Sequence[Integers]) -> Integers:
+    if len(parts) == 1:
+        return parts[0]
     return np.concatenate(parts) if len(parts) else np.zeros(0, dtype=np.int64)
 
 
 def _floats(parts: Sequence[NDArray[np.float64]]) -> NDArray[np.float64]:
+    if len(parts) == 1:
+        return parts[0]
     return np.concatenate(parts) if len(parts) else np.zeros(0)
 
 
 def _stacked(parts: Sequence[Labels]) -> Labels:
+    if len(parts) == 1:
+        return parts[0]
     codes: list[Integers] = []
     names: list[str] = []
     for part in parts:
@@ -61,7 +67,7 @@ def _mind_equal_sets(drops: Sequence[FileDrops], notices: Notices) -> None:
     owners: dict[str, list[FileDrops]] = {}
     for one in drops:
         labels = one.labels["set"]
-        for code in np.unique(labels.codes):
+        for code in np.flatnonzero(np.bincount(labels.codes)):
             owners.setdefault(labels.names[code], []).append(one)
     for name, files in owners.items():
         if len(files) < 2:
@@ -88,8 +94,10 @@ def _numbered(drops: Sequence[FileDrops], sets: Labels, notices: Notices) -> Int
     numbers = _joined([one.drop for one in drops])
     if not numbers.size:
         return numbers
-    in_order = numbered_in_order(sets.codes)
     given = numbers > 0
+    if len(drops) < 2 and given.all():
+        return numbers
+    in_order = numbered_in_order(sets.codes)
     numbers = np.where(given, numbers, in_order)
     if len(drops) < 2 or not given.any():
         return numbers

@@ -66,7 +66,9 @@ class Labels:
 
     def categorical(self) -> pd.Categorical:
         """Return the labels as pandas holds them."""
-        return pd.Categorical.from_codes(self.codes, categories=list(self.names))
+        codes = self.codes.astype(np.min_scalar_type(-len(self.names) - 1), copy=False)
+        dtype = pd.CategoricalDtype(list(self.names))
+        return pd.Categorical.from_codes(codes, dtype=dtype, validate=False)
 
 
 def read_labels(
