@@ -8,7 +8,7 @@ from typing import Annotated, Any
 from pydantic import BaseModel, ConfigDict, Field
 
 from plumbfall.bench import fields
-from plumbfall.bench.fields import Range
+from plumbfall.bench.quantity_fields import Range, unadorned
 from plumbfall.estimate import Estimate
 
 __all__ = [
@@ -47,12 +47,12 @@ def stated_temperature(
     why: str = "its error belongs in the uncertainty of what holds at it",
 ) -> fields.Reads:
     """Read a temperature that something is stated for, without uncertainty of its own."""
-    return fields.plain("temperature", TEMPERATURE, why=why)
+    return unadorned("temperature", TEMPERATURE, why=why)
 
 
 def deviation(dimension: str, limits: Range) -> fields.Reads:
     """Read a standard deviation, which has no uncertainty of its own."""
-    return fields.plain(dimension, limits, why="it is a standard deviation itself")
+    return unadorned(dimension, limits, why="it is a standard deviation itself")
 
 
 class Keys(BaseModel):

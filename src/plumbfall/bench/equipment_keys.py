@@ -14,7 +14,7 @@ from plumbfall.bench.common_keys import (
     doc,
     stated_temperature,
 )
-from plumbfall.bench.fields import Range, above_zero, choice, quantity
+from plumbfall.bench.quantity_fields import Range, above_zero, quantity
 from plumbfall.estimate import Estimate
 
 __all__ = [
@@ -33,7 +33,7 @@ class TimerKeys(Equipment):
 
     kind: Annotated[
         str | None,
-        choice(names.TIMER_KINDS),
+        fields.choice(names.TIMER_KINDS),
         doc("usual values, with their source, stand in for keys not given"),
     ] = None
     per_drop: Annotated[
@@ -78,7 +78,9 @@ class BalanceKeys(Equipment):
 class TubeKeys(Equipment):
     """A fall tube."""
 
-    kind: Annotated[str, choice(names.TUBE_KINDS), doc("vertical or calibrated")] = "vertical"
+    kind: Annotated[str, fields.choice(names.TUBE_KINDS), doc("vertical or calibrated")] = (
+        "vertical"
+    )
     bore: Annotated[
         Maybe, above_zero("length", Range(0.1, 10_000, "mm")), doc("inner diameter")
     ] = None
@@ -90,16 +92,18 @@ class TubeKeys(Equipment):
         Maybe, above_zero("length"), doc("between the two marks, instead of marks")
     ] = None
     surface_above: Annotated[
-        Maybe, above_zero("length"), doc("liquid surface above the first mark")
+        Maybe, above_zero("length", roughly=True), doc("liquid surface above the first mark")
     ] = None
-    bottom_below: Annotated[Maybe, above_zero("length"), doc("bottom below the last mark")] = None
+    bottom_below: Annotated[
+        Maybe, above_zero("length", roughly=True), doc("bottom below the last mark")
+    ] = None
     release_above: Annotated[
         Maybe,
         quantity("length", Range(0, 100, "m")),
         doc("ball let go from rest this far above the first mark"),
     ] = None
     release_offset: Annotated[Maybe, quantity("length"), doc("of the ball from the axis")] = None
-    surface: Annotated[str, choice(names.SURFACES), doc("free surface or lid")] = "free"
+    surface: Annotated[str, fields.choice(names.SURFACES), doc("free surface or lid")] = "free"
     tilt: Annotated[
         Maybe, quantity("angle", Range(-89.9, 89.9, "deg")), doc("from the vertical")
     ] = None
@@ -132,7 +136,7 @@ class BallKeys(Equipment):
         Estimate, above_zero("length", Range(0.01, 1000, "mm")), doc("of the ball, or a lot's mean")
     ]
     density: Annotated[Maybe, above_zero("density", DENSITY), doc("of this ball")] = None
-    material: Annotated[str | None, fields.text, doc("entry of [material.NAME]")] = None
+    material: Annotated[str | None, fields.name, doc("entry of [material.NAME]")] = None
     mass: Annotated[Maybe, above_zero("mass"), doc("reading in air")] = None
     weighed_together: Annotated[
         int,
@@ -145,8 +149,8 @@ class BallKeys(Equipment):
         deviation("length", Range(0, 1, "mm")),
         doc("standard deviation of the diameter from ball to ball, of a lot"),
     ] = None
-    gauge: Annotated[str | None, fields.text, doc("entry of [gauge.NAME]")] = None
-    balance: Annotated[str | None, fields.text, doc("entry of [balance.NAME]")] = None
+    gauge: Annotated[str | None, fields.name, doc("entry of [gauge.NAME]")] = None
+    balance: Annotated[str | None, fields.name, doc("entry of [balance.NAME]")] = None
     expansion: Annotated[
         Maybe, quantity("temperature coefficient", SOLID_EXPANSION), doc("linear expansion")
     ] = None

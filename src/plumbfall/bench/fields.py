@@ -1,4 +1,4 @@
-"""What may stand at a key of the bench sheet: one reader for each kind of value.
+"""What may stand at a key of the bench sheet that holds no quantity: text, names, dates, numbers.
 
 Each is an annotation for the schema. It reads what was written, or raises an ``InputError`` that
 says what to type; pydantic gathers these, so that all errors of a sheet come at once.
@@ -12,32 +12,25 @@ import math
 import numbers
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
-from typing import Any, NamedTuple
+from typing import Any
 
 from pydantic import GetJsonSchemaHandler
 from pydantic_core import CoreSchema, core_schema
 
-from plumbfall.bench.notation import read_quantity
 from plumbfall.errors import InputError, nearest_name
-from plumbfall.estimate import Estimate
-from plumbfall.quantities import DIMENSIONS, exact_unit, from_si
 
 __all__ = [
-    "Range",
     "Reads",
-    "above_zero",
     "choice",
     "codec",
     "day",
     "flag",
     "moment",
+    "name",
     "names",
     "number",
-    "plain",
-    "quantity",
     "table_of_text",
     "text",
-    "unit_of",
     "whole_number",
 ]
 
@@ -60,101 +53,9 @@ class Reads:
         return dict(self.shape)
 
 
-class Range(NamedTuple):
-    """Limits that no honest value passes, in the unit they are printed in."""
-
-    low: float
-    high: float
-    unit: str
-
-    def check(self, found: Estimate, dimension: str) -> None:
-        """Refuse a value outside the limits, both of which are allowed."""
-        value = from_si(found.value, self.unit, dimension)
-        if self.low <= value <= self.high:
-            return
-        quoted = f"'{found.text}'" if not found.text.startswith("{") else found.text
-        unit = "" if self.unit == "1" else f" {self.unit}"
-        raise InputError(
-            f"{quoted} is {value:.6g}{unit}, outside {self.low:g} to {self.high:g}{unit}",
-            remedy="check the value, its sign and its unit",
-        )
-
-
-def quantity(dimension: str, limits: Range | None = None) -> Reads:
-    """Read a quantity with or without uncertainty, within ``limits``."""
-
-    def read(written: object) -> Estimate:
-        found = read_quantity(written, dimension)
-        if limits is not None:
-            limits.check(found, dimension)
-        return found
-
-    return Reads(read, _quantity_shape(dimension))
-
-
-def above_zero(dimension: str, limits: Range | None = None) -> Reads:
-    """Read a quantity that is more than zero and more than its uncertainty."""
-    within = quantity(dimension, limits)
-
-    def read(written: object) -> Estimate:
-        found = read_quantity(written, dimension)
-        if found.value <= 0.0:
-            raise InputError(f"'{found.text}' is not above zero", remedy="check sign and value")
-        if found.u >= found.value:
-            raise InputError(
-                f"'{found.text}' has a standard uncertainty as large as itself",
-                remedy="digits in brackets count in the last digits: 2.0000(5) is 2.0000 with "
-                "0.0005",
-            )
-        if limits is not None:
-            limits.check(found, dimension)
-        return found
-
-    return Reads(read, within.shape)
-
-
-def plain(dimension: str, limits: Range | None = None, *, why: str) -> Reads:
-    """Read a quantity that is given without uncertainty; ``why`` says why none belongs here."""
-
-    def read(written: object) -> Estimate:
-        found = read_quantity(written, dimension)
-        if found.u > 0.0 or found.distribution == "t":
-            raise InputError(
-                f"'{found.text}' has an uncertainty, which is not taken here",
-                remedy=f"give the value alone: {why}",
-            )
-        if limits is not None:
-            limits.check(found, dimension)
-        return found
-
-    return Reads(read, _quantity_shape(dimension))
-
-
-def _quantity_shape(dimension: str) -> dict[str, Any]:
-    table: dict[str, Any] = {
-        "type": "object",
-        "properties": {
-            "value": {"type": "number"},
-            "unit": {"type": "string"},
-            "u": {"type": "number", "minimum": 0},
-            "dof": {"type": "number", "exclusiveMinimum": 0},
-            "U": {"type": "number", "minimum": 0},
-            "k": {"type": "number", "exclusiveMinimum": 0},
-            "within": {"type": "number", "minimum": 0},
-            "shape": {"enum": ["rectangular", "triangular", "arcsine"]},
-            "readings": {"type": "array", "items": {"type": "number"}, "minItems": 2},
-        },
-        "required": ["unit"],
-        "additionalProperties": False,
-    }
-    known = DIMENSIONS[dimension]
-    text_form = {"type": "string", "examples": [known.example]}
-    return {"title": known.called, "anyOf": [text_form, table]}
-
-
-def _read_text(written: object) -> str:
+def _read_name(written: object) -> str:
     if isinstance(written, str):
-        return written.strip()
+        return written
     if isinstance(written, int) and not isinstance(written, bool):
         return str(written)
     if isinstance(written, dt.datetime | dt.date):
@@ -162,7 +63,10 @@ def _read_text(written: object) -> str:
     raise InputError(f"{_said(written)} is not text", remedy="write it in quotes")
 
 
-text = Reads(_read_text, {"type": "string"})
+name = Reads(_read_name, {"type": ["string", "integer"]})
+"""The name of an entry, as it is written in the entry's head; a whole number is a name too."""
+
+text = Reads(lambda written: _read_name(written).strip(), {"type": ["string", "integer"]})
 """Text; a whole number or a date stands for its own digits."""
 
 
@@ -275,18 +179,6 @@ def _read_moment(written: object) -> dt.datetime:
 
 moment = Reads(_read_moment, {"type": "string", "format": "date-time"})
 """A date and time of day."""
-
-
-def unit_of(dimension: str) -> Reads:
-    """Read the name of a unit of one dimension."""
-
-    def read(written: object) -> str:
-        if not isinstance(written, str):
-            raise InputError(f"{_said(written)} is not text", remedy="write the unit in quotes")
-        exact_unit(written, dimension)
-        return written.strip()
-
-    return Reads(read, {"type": "string", "examples": list(DIMENSIONS[dimension].units)})
 
 
 def _read_codec(written: object) -> str:

@@ -9,7 +9,7 @@ from pydantic import model_validator
 
 from plumbfall.bench import fields
 from plumbfall.bench.common_keys import Keys, Maybe, doc, stated_temperature
-from plumbfall.bench.fields import Range, quantity
+from plumbfall.bench.quantity_fields import Range, quantity, unit_of
 from plumbfall.errors import InputError
 
 __all__ = ["BenchKeys", "LaboratoryKeys", "ReportKeys", "SampleKeys", "SiteKeys"]
@@ -30,7 +30,7 @@ class BenchKeys(Keys):
         doc("coverage probability of the bounds"),
     ] = 0.95
     viscosity_unit: Annotated[
-        str | None, fields.unit_of("viscosity"), doc("unit of text and HTML; default by size")
+        str | None, unit_of("viscosity"), doc("unit of text and HTML; default by size")
     ] = None
 
 

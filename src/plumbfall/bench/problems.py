@@ -13,13 +13,15 @@ from pydantic import BaseModel, ValidationError
 from plumbfall.bench.keys import key_path
 from plumbfall.errors import InputError, Problem, nearest_name
 
-__all__ = ["problems_of"]
+__all__ = ["entries_of", "problems_of"]
 
-_EXAMPLE = {"tube": "A", "ball": "A", "set": "batch 1", "liquid": "oil"}
+Place = tuple[str | int, ...]
+
+_EXAMPLE = {"set": "batch 1", "liquid": "oil", "material": "steel"}
 
 
 def problems_of(error: ValidationError, sheet: type[BaseModel]) -> list[Problem]:
-    """Return every problem of a sheet, in the order of the sheet's tables.
+    """Return every problem of a sheet.
 
     Parameters
     ----------
@@ -28,62 +30,70 @@ def problems_of(error: ValidationError, sheet: type[BaseModel]) -> list[Problem]
     sheet
         The schema, for the names of known keys.
     """
-    found: dict[str, Problem] = {}
-    for item in error.errors(include_url=False, include_input=True):
+    found: dict[tuple[str, str], Problem] = {}
+    for item in error.errors(include_url=False):
         for problem in _problems(item, sheet):
-            found.setdefault(f"{problem.key}: {problem.message}", problem)
+            found.setdefault((problem.key, problem.message), problem)
     return list(found.values())
 
 
+def entries_of(error: ValidationError, sheet: type[BaseModel]) -> set[Place]:
+    """Return where something is wrong: entries as ``("tube", "A")``, tables as ``("site",)``."""
+    places = (tuple(item["loc"]) for item in error.errors(include_url=False))
+    return {place[:1] if _model_at(place[:1], sheet) else place[:2] for place in places}
+
+
 def _problems(item: Mapping[str, Any], sheet: type[BaseModel]) -> list[Problem]:
-    parts = tuple(item["loc"])
+    parts: Place = tuple(item["loc"])
     raised = item.get("ctx", {}).get("error")
     if isinstance(raised, InputError):
-        return [
-            replace(problem, key=key_path(*parts, *([problem.key] if problem.key else [])))
-            for problem in raised.problems
-        ]
-    kind = item["type"]
+        return [replace(problem, key=key_path(*parts)) for problem in raised.problems]
+    key, kind = key_path(*parts), item["type"]
     if kind == "extra_forbidden":
         return [_unknown_key(parts, sheet)]
     if kind == "missing":
-        return [Problem("is missing", f"add {parts[-1]}", key=key_path(*parts))]
-    if kind in ("model_type", "dict_type", "model_attributes_type"):
-        return [_no_table(parts, item["input"])]
+        return [Problem("is missing", f"add {parts[-1]}", key=key)]
+    if kind in ("model_type", "dict_type"):
+        return [_no_table(parts, item["input"], sheet)]
     if kind in ("tuple_type", "list_type"):
-        name = parts[-1]
-        return [Problem("is not a list", f"write {name} = [..., ...]", key=key_path(*parts))]
-    return [Problem(str(item["msg"]), "correct it", key=key_path(*parts))]
+        return [Problem("is not a list", f"write {parts[-1]} = [..., ...]", key=key)]
+    return [Problem(str(item["msg"]), "correct it", key=key)]
 
 
-def _unknown_key(parts: tuple[str | int, ...], sheet: type[BaseModel]) -> Problem:
+def _unknown_key(parts: Place, sheet: type[BaseModel]) -> Problem:
     *table, wrong = parts
     model = _model_at(tuple(table), sheet)
     known = list(model.model_fields) if model else []
-    near = nearest_name(str(wrong), known)
-    what = "table" if not table else "key"
+    near = nearest_name(str(wrong), known) or _begins_alike(str(wrong), known)
+    what = "key" if table else "table"
     remedy = f"did you mean '{near}'?" if near else f"known are {', '.join(known)}"
     return Problem(f"unknown {what} '{wrong}'", remedy, key=key_path(*parts))
 
 
-def _no_table(parts: tuple[str | int, ...], written: object) -> Problem:
-    key = key_path(*parts)
-    kind = str(parts[0])
-    name = _EXAMPLE.get(kind, "A")
-    header = key_path(kind, name)
-    if len(parts) == 2 and kind not in ("liquid.specification",):
+def _begins_alike(wrong: str, known: list[str]) -> str | None:
+    """Return the known name that a short form stands for, such as ``temp``."""
+    alike = [name for name in known if len(wrong) > 2 and name.startswith(wrong.casefold())]
+    return alike[0] if len(alike) == 1 else None
+
+
+def _no_table(parts: Place, written: object, sheet: type[BaseModel]) -> Problem:
+    key, kind = key_path(*parts), str(parts[0])
+    named = _model_at((kind,), sheet) is None
+    header = key_path(kind, _EXAMPLE.get(kind, "A")) if named else kind
+    if len(parts) == 2 and named:
+        said = f"'{written}'" if isinstance(written, str) else "this"
         return Problem(
-            f"{_said(written)} stands where the name of an entry is wanted",
+            f"{said} stands where the name of an entry is wanted",
             f"every {kind} has a name: head its table [{header}] instead of [{kind}]",
             key=key,
         )
     if len(parts) == 1:
-        return Problem("is not a table", f"write [{kind}] and its keys below it", key=key)
+        return Problem("is not a table", f"write [{header}] and its keys below it", key=key)
     return Problem("is not a table", "write { KEY = ..., KEY = ... }", key=key)
 
 
-def _model_at(parts: tuple[str | int, ...], model: type[BaseModel]) -> type[BaseModel] | None:
-    """Return the schema of the table at nested keys."""
+def _model_at(parts: Place, model: type[BaseModel]) -> type[BaseModel] | None:
+    """Return the schema of the table at nested keys, or ``None`` where entries have names."""
     place: object = model
     for part in parts:
         if isinstance(place, type) and issubclass(place, BaseModel):
@@ -92,7 +102,8 @@ def _model_at(parts: tuple[str | int, ...], model: type[BaseModel]) -> type[Base
                 return None
             place = _without_none(field.annotation)
         else:
-            place = _without_none(typing.get_args(place)[0 if isinstance(part, int) else 1])
+            inner = typing.get_args(place)
+            place = _without_none(inner[0] if isinstance(part, int) else inner[-1])
     return place if isinstance(place, type) and issubclass(place, BaseModel) else None
 
 
@@ -100,7 +111,3 @@ def _without_none(annotation: object) -> object:
     if isinstance(annotation, types.UnionType):
         return next(kind for kind in typing.get_args(annotation) if kind is not type(None))
     return annotation
-
-
-def _said(written: object) -> str:
-    return f"'{written}'" if isinstance(written, str) else str(written).lower()

@@ -20,7 +20,7 @@ from plumbfall.bench.common_keys import (
     doc,
     stated_temperature,
 )
-from plumbfall.bench.fields import Range, above_zero, choice, plain, quantity
+from plumbfall.bench.quantity_fields import Range, above_zero, quantity, unadorned
 from plumbfall.errors import InputError, nearest_name
 from plumbfall.estimate import Estimate
 from plumbfall.quantities import is_unit
@@ -42,8 +42,10 @@ __all__ = [
 class SpecificationKeys(Keys):
     """Limits that a viscosity is judged by."""
 
-    low: Annotated[Maybe, plain("viscosity", why="a limit is exact"), doc("lower limit")] = None
-    high: Annotated[Maybe, plain("viscosity", why="a limit is exact"), doc("upper limit")] = None
+    low: Annotated[Maybe, unadorned("viscosity", why="a limit is exact"), doc("lower limit")] = None
+    high: Annotated[Maybe, unadorned("viscosity", why="a limit is exact"), doc("upper limit")] = (
+        None
+    )
     temperature: Annotated[Estimate, stated_temperature("a limit is exact"), doc("of the limits")]
 
 
@@ -70,11 +72,11 @@ class LiquidKeys(Equipment):
 class SetKeys(Keys):
     """What the timing file does not say of a run set."""
 
-    tube: Annotated[str | None, fields.text, doc("entry of [tube.NAME]")] = None
-    liquid: Annotated[str | None, fields.text, doc("entry of [liquid.NAME]")] = None
-    ball: Annotated[str | None, fields.text, doc("entry of [ball.NAME]")] = None
-    timer: Annotated[str | None, fields.text, doc("entry of [timer.NAME]")] = None
-    thermometer: Annotated[str | None, fields.text, doc("entry of [thermometer.NAME]")] = None
+    tube: Annotated[str | None, fields.name, doc("entry of [tube.NAME]")] = None
+    liquid: Annotated[str | None, fields.name, doc("entry of [liquid.NAME]")] = None
+    ball: Annotated[str | None, fields.name, doc("entry of [ball.NAME]")] = None
+    timer: Annotated[str | None, fields.name, doc("entry of [timer.NAME]")] = None
+    thermometer: Annotated[str | None, fields.name, doc("entry of [thermometer.NAME]")] = None
     temperature: Annotated[Maybe, quantity("temperature", TEMPERATURE), doc("of the liquid")] = None
     filled: Annotated[dt.datetime | None, fields.moment, doc("when the tube was filled")] = None
 
@@ -104,7 +106,7 @@ class ReferencePointKeys(Keys):
 class ReferenceKeys(Equipment):
     """A certified liquid."""
 
-    liquid: Annotated[str | None, fields.text, doc("entry of [liquid.NAME]")] = None
+    liquid: Annotated[str | None, fields.name, doc("entry of [liquid.NAME]")] = None
     viscosity: Annotated[tuple[ReferencePointKeys, ...], doc("points of the certificate")] = ()
     correlation: Annotated[
         float,
@@ -112,7 +114,9 @@ class ReferenceKeys(Equipment):
         doc("between points of the certificate"),
     ] = 1.0
     law: Annotated[
-        str | None, choice(names.REFERENCE_LAWS), doc("a known liquid instead of a certificate")
+        str | None,
+        fields.choice(names.REFERENCE_LAWS),
+        doc("a known liquid instead of a certificate"),
     ] = None
     expires: Annotated[dt.date | None, fields.day, doc("end of the certificate's validity")] = None
 
@@ -120,8 +124,8 @@ class ReferenceKeys(Equipment):
 class ConstantKeys(Equipment):
     """A tube constant: from a file that calibrate wrote, or by hand."""
 
-    tube: Annotated[str | None, fields.text, doc("entry of [tube.NAME]")] = None
-    ball: Annotated[str | None, fields.text, doc("entry of [ball.NAME]")] = None
+    tube: Annotated[str | None, fields.name, doc("entry of [tube.NAME]")] = None
+    ball: Annotated[str | None, fields.name, doc("entry of [ball.NAME]")] = None
     value: Annotated[Maybe, above_zero("tube constant"), doc("the constant, by hand")] = None
     file: Annotated[str | None, fields.text, doc("file beside the bench sheet")] = None
 
@@ -158,9 +162,9 @@ class TimingsKeys(Keys):
         dict[str, str], fields.table_of_text(_known_unit), doc("unit of a column"), EMPTY
     ]
     delimiter: Annotated[
-        str | None, choice((",", ";", "\t", "tab", "|", " ")), doc("between cells")
+        str | None, fields.choice((",", ";", "\t", "tab", "|", " ")), doc("between cells")
     ] = None
-    decimal: Annotated[str | None, choice((".", ",")), doc("decimal sign")] = None
+    decimal: Annotated[str | None, fields.choice((".", ",")), doc("decimal sign")] = None
     encoding: Annotated[str | None, fields.codec, doc("character encoding")] = None
     header_row: Annotated[
         int | None,
@@ -173,13 +177,17 @@ class TimingsKeys(Keys):
 class MethodKeys(Keys):
     """Choices among the laws; otherwise the defaults, which the report names."""
 
-    drag: Annotated[str | None, choice(names.DRAG), doc("how wall and inertia act together")] = None
-    walls: Annotated[str | None, choice(names.WALLS), doc("wall factor")] = None
-    inertia: Annotated[str | None, choice(names.INERTIA), doc("inertia factor")] = None
-    ends: Annotated[str | None, choice(names.ENDS), doc("ends of the tube")] = None
-    run_in: Annotated[str | None, choice(names.RUN_IN), doc("run-in before the marks")] = None
+    drag: Annotated[
+        str | None, fields.choice(names.DRAG), doc("how wall and inertia act together")
+    ] = None
+    walls: Annotated[str | None, fields.choice(names.WALLS), doc("wall factor")] = None
+    inertia: Annotated[str | None, fields.choice(names.INERTIA), doc("inertia factor")] = None
+    ends: Annotated[str | None, fields.choice(names.ENDS), doc("ends of the tube")] = None
+    run_in: Annotated[str | None, fields.choice(names.RUN_IN), doc("run-in before the marks")] = (
+        None
+    )
     slope: Annotated[
-        str | None, choice(names.SLOPES), doc("fit the temperature slope from the run sets")
+        str | None, fields.choice(names.SLOPES), doc("fit the temperature slope from the run sets")
     ] = None
     model_uncertainty: Annotated[
         Maybe,

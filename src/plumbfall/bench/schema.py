@@ -13,8 +13,10 @@ from pydantic import Field
 
 from plumbfall.bench import equipment_keys, paper_keys, run_keys
 from plumbfall.bench.common_keys import EMPTY, Keys, doc
+from plumbfall.bench.quantity_fields import QUANTITY_SHAPE
+from plumbfall.quantities import DIMENSIONS
 
-__all__ = ["SCHEMA_FILE", "Sheet", "json_schema"]
+__all__ = ["SCHEMA_FILE", "Sheet", "json_schema", "schema_text", "write_schema"]
 
 SCHEMA_FILE = Path(__file__).with_name("bench.schema.json")
 
@@ -54,12 +56,34 @@ class Sheet(Keys):
 
 def json_schema() -> dict[str, Any]:
     """Return the JSON Schema (2020-12) of a bench sheet."""
-    schema = Sheet.model_json_schema()
+    schema = _for_editors(Sheet.model_json_schema())
+    schema["$defs"]["quantity"] = QUANTITY_SHAPE
     head = {
         "$schema": "https://json-schema.org/draft/2020-12/schema",
         "title": "plumbfall bench sheet",
     }
     return {**head, **{key: value for key, value in schema.items() if key != "title"}}
+
+
+def _for_editors(node: Any) -> Any:
+    """Return a schema without what TOML has no use for: null, and titles made from keys."""
+    if isinstance(node, list):
+        return [_for_editors(item) for item in node if item != {"type": "null"}]
+    if not isinstance(node, dict):
+        return node
+    kept = {
+        key: _for_editors(value)
+        for key, value in node.items()
+        if not (key == "title" and isinstance(value, str))
+        and not (key == "default" and value in (None, "", [], {}))
+    }
+    if "x-quantity" in kept:
+        called = DIMENSIONS[kept.pop("x-quantity")].called
+        kept["description"] = f"{kept.get('description', called)} ({called})"
+        kept["$ref"] = "#/$defs/quantity"
+    if len(kept.get("anyOf", ())) == 1:
+        kept |= kept.pop("anyOf")[0]
+    return kept
 
 
 def write_schema(file: Path = SCHEMA_FILE) -> None:
