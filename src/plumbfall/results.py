@@ -9,6 +9,7 @@ import math
 from dataclasses import dataclass
 
 __all__ = [
+    "SEVERITIES",
     "BallResult",
     "BudgetLine",
     "Correction",

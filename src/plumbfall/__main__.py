@@ -1,0 +1,9 @@
+"""``python -m plumbfall``: the command line."""
+
+from __future__ import annotations
+
+import sys
+
+from plumbfall.cli import main
+
+sys.exit(main())

@@ -1,0 +1,1 @@
+"""What a careful colleague would have noticed: one detector or small family of them a file."""

@@ -1,0 +1,100 @@
+"""What detectors look at: a reduction's columns, and the findings they make of them."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from numpy.typing import NDArray
+
+from plumbfall.bench.records import Ball, Bench, Liquid, Tube
+from plumbfall.findings.limits import Limits
+from plumbfall.measurement.drops import DropColumns, Weights
+from plumbfall.measurement.inputs import Inputs
+from plumbfall.run_sets.repeatability import Repeatability
+from plumbfall.measurement.selection import Selection
+from plumbfall.physics.drag import DragLaw
+from plumbfall.results import Finding
+from plumbfall.timings.records import Timings
+
+__all__ = ["Detector", "Found", "RunData"]
+
+Found = tuple[int, Finding]
+"""A run set's place in ``RunData.names``, and what was found in it."""
+
+
+@dataclass(frozen=True)
+class RunData:
+    """Everything known once the drops are reduced and the uncertainties propagated.
+
+    ``relative_u`` is each run set's relative standard uncertainty, shape (run sets,).
+    """
+
+    bench: Bench
+    timings: Timings
+    selection: Selection
+    inputs: Inputs
+    columns: DropColumns
+    weights: Weights
+    scatter: Repeatability
+    law: DragLaw
+    relative_u: NDArray[np.float64]
+    limits: Limits
+    unstated: tuple[str, ...] = ()
+
+    @property
+    def names(self) -> tuple[str, ...]:
+        """Run-set names."""
+        return self.selection.names
+
+    @property
+    def row_set(self) -> NDArray[np.intp]:
+        """The run set of every row of the timing table, used or not, shape (rows,)."""
+        return self.selection.row_set
+
+    @cached_property
+    def drop_numbers(self) -> NDArray[np.intp]:
+        """The drop number of each used drop, as recorded, shape (drops,)."""
+        return self.timings.table["drop"].to_numpy(dtype=np.intp)[self.selection.row]
+
+    @cached_property
+    def tubes(self) -> tuple[Tube, ...]:
+        """Tubes in the order their codes count."""
+        return tuple(self.bench.tubes.values())
+
+    @cached_property
+    def balls(self) -> tuple[Ball, ...]:
+        """Balls in the order their codes count."""
+        return tuple(self.bench.balls.values())
+
+    @cached_property
+    def liquids(self) -> tuple[Liquid, ...]:
+        """Liquids in the order their codes count."""
+        return tuple(self.bench.liquids.values())
+
+    @cached_property
+    def by_set(self) -> tuple[NDArray[np.intp], ...]:
+        """Places of the used drops of each run set, in their order."""
+        order = np.argsort(self.selection.run_set, kind="stable")
+        counts = np.bincount(self.selection.run_set, minlength=len(self.names))
+        return tuple(np.split(order, np.cumsum(counts)[:-1]))
+
+    def flagged(self, flag: NDArray[np.bool_]) -> Iterator[tuple[int, NDArray[np.intp]]]:
+        """Run sets with flagged drops, and the places of these drops."""
+        at = np.flatnonzero(flag)
+        for run_set in np.unique(self.selection.run_set[at]):
+            yield int(run_set), at[self.selection.run_set[at] == run_set]
+
+    def numbers(self, drops: NDArray[np.intp]) -> tuple[int, ...]:
+        """Drop numbers at the places given."""
+        return tuple(int(number) for number in self.drop_numbers[drops])
+
+    def pairs(self, kind: str) -> NDArray[np.intp]:
+        """Distinct (run set, code of a kind) pairs in use, shape (pairs, 2)."""
+        codes = getattr(self.selection.cells, kind)
+        return np.unique(np.stack([self.selection.cells.run_set, codes], axis=1), axis=0)
+
+
+Detector = Callable[[RunData], Iterator[Found]]

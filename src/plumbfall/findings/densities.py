@@ -1,0 +1,75 @@
+"""Densities that no ball or liquid has, and the slip that most often makes them."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from plumbfall.findings.data import Found, RunData
+from plumbfall.measurement.inputs import cold_ball_density
+from plumbfall.results import Finding
+
+__all__ = ["density_implausible", "radius_as_diameter"]
+
+
+def density_implausible(data: RunData) -> Iterator[Found]:
+    """A ball or a liquid of a density outside what labs use."""
+    limits, cells = data.limits, data.selection.cells
+    ball = cold_ball_density(data.inputs)
+    slip = _radius_slip(data, ball)
+    liquid = data.inputs.roles["liquid_density"].value
+    for kind, density, low, high, ok in (
+        ("ball", ball, limits.ball_density_low, limits.ball_density_high, slip),
+        ("liquid", liquid, limits.liquid_density_low, limits.liquid_density_high, False),
+    ):
+        wrong = ((density < low) | (density > high)) & ~np.asarray(ok)
+        for run_set, code in _distinct(cells.run_set, getattr(cells, kind), wrong):
+            name = getattr(data, f"{kind}s")[code].name
+            at = float(density[wrong & (getattr(cells, kind) == code)][0])
+            yield (
+                run_set,
+                Finding(
+                    code="density-implausible",
+                    severity="error",
+                    statistic=at,
+                    message=f"{kind} {name} has a density of {at / 1000:.3g} g/cm3, outside "
+                    f"{low / 1000:g} to {high / 1000:g} g/cm3",
+                    remedy="check the unit of its density"
+                    + (", or of its mass and diameter" if kind == "ball" else ""),
+                ),
+            )
+
+
+def radius_as_diameter(data: RunData) -> Iterator[Found]:
+    """A mass that fits eight times the volume: the radius stands where the diameter should."""
+    cells = data.selection.cells
+    density = cold_ball_density(data.inputs)
+    slip = _radius_slip(data, density)
+    for run_set, code in _distinct(cells.run_set, cells.ball, slip):
+        at = float(density[slip & (cells.ball == code)][0])
+        yield (
+            run_set,
+            Finding(
+                code="radius-as-diameter-suspected",
+                severity="error",
+                statistic=at,
+                message=f"ball {data.balls[code].name}: mass and diameter give a density of "
+                f"{at / 1000:.1f} g/cm3; with twice the diameter it would be {at / 8000:.2f} g/cm3",
+                remedy="the diameter looks like a radius: write the diameter",
+            ),
+        )
+
+
+def _radius_slip(data: RunData, density: np.ndarray) -> np.ndarray:
+    low, high = data.limits.ball_density_low, data.limits.ball_density_high
+    inside = (density / 8 >= low) & (density / 8 <= high)
+    slip: np.ndarray = data.inputs.weighed & (density > high) & inside
+    return slip
+
+
+def _distinct(
+    run_set: np.ndarray, code: np.ndarray, where: np.ndarray
+) -> Iterator[tuple[int, int]]:
+    pairs = np.unique(np.stack([run_set[where], code[where]], axis=1), axis=0)
+    return ((int(a), int(b)) for a, b in pairs)

@@ -1,0 +1,104 @@
+"""The tube: ends, run-in, and what the bench sheet does not say of them."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from plumbfall.bench.records import Tube
+from plumbfall.findings.data import Found, RunData
+from plumbfall.physics.run_in import run_in_guard_distance
+from plumbfall.results import Finding
+
+__all__ = ["end_near", "geometry_unknown", "run_in_short"]
+
+GEOMETRY = {
+    "surface_above": "the end effect of the surface",
+    "bottom_below": "the end effect of the bottom",
+    "release_above": "the run-in",
+}
+
+
+def geometry_unknown(data: RunData) -> Iterator[Found]:
+    """Distances without which ends and run-in cannot be judged."""
+    for run_set, tube in _tubes(data):
+        missing = [name for name in GEOMETRY if getattr(tube, name) is None]
+        if missing:
+            unjudged = ", ".join(GEOMETRY[name] for name in missing)
+            yield (
+                run_set,
+                Finding(
+                    code="geometry-unknown",
+                    severity="note",
+                    message=f"tube {tube.name} does not give {', '.join(missing)}: "
+                    f"{unjudged} cannot be judged and is taken as nil",
+                    remedy=f"measure it and add it to [tube.{tube.name}]",
+                ),
+            )
+
+
+def end_near(data: RunData) -> Iterator[Found]:
+    """A mark within one bore radius of an end of the liquid, where the end is felt."""
+    for run_set, tube in _tubes(data):
+        assert tube.bore is not None  # a vertical tube has one
+        radius = tube.bore.value / 2
+        for name, distance, end in (
+            ("first", tube.surface_above, "surface"),
+            ("last", tube.bottom_below, "bottom"),
+        ):
+            if distance is None or distance.value >= data.limits.end_clearance * radius:
+                continue
+            yield (
+                run_set,
+                Finding(
+                    code="end-near",
+                    severity="warning",
+                    statistic=distance.value / radius,
+                    message=f"the {name} mark of tube {tube.name} is only "
+                    f"{distance.value / radius:.2f} bore radii from the {end}; the drag there is "
+                    "higher than the drag law's, and the viscosity comes out too high",
+                    remedy=f"keep the {name} mark at least one bore radius "
+                    f"({1000 * radius:.0f} mm) from the {end}, better one and a half",
+                ),
+            )
+
+
+def run_in_short(data: RunData) -> Iterator[Found]:
+    """The ball reaches the first mark before it has reached its terminal speed."""
+    selection, columns = data.selection, data.columns
+    tube = selection.cells.tube[selection.cell]
+    released = np.array(
+        [np.nan if t.release_above is None else t.release_above.value for t in data.tubes]
+    )[tube]
+    bore = np.array([np.nan if t.bore is None else t.bore.value for t in data.tubes])[tube]
+    density = data.inputs.roles["liquid_density"].value[selection.cell]
+    needed = run_in_guard_distance(
+        fall_speed=columns.fall_speed,
+        ball_diameter=columns.diameter,
+        tube_bore=bore,
+        liquid_density=density,
+        viscosity=columns.viscosity,
+    )
+    with np.errstate(invalid="ignore"):
+        short = released < needed
+    for run_set, drops in data.flagged(short):
+        worst = drops[np.argmax(needed[drops])]
+        yield (
+            run_set,
+            Finding(
+                code="run-in-short",
+                severity="warning",
+                drops=data.numbers(drops),
+                statistic=float(released[worst]),
+                message=f"the ball is let go {1000 * released[worst]:.0f} mm above the first mark; "
+                f"to be within 0.2 % of its speed it needs {1000 * needed[worst]:.0f} mm; "
+                "the viscosity comes out too high",
+                remedy="let the ball go higher above the first mark, or use a smaller ball",
+            ),
+        )
+
+
+def _tubes(data: RunData) -> Iterator[tuple[int, Tube]]:
+    for run_set, code in data.pairs("tube"):
+        yield int(run_set), data.tubes[code]

@@ -1,0 +1,85 @@
+"""The limits that findings use, in one table; each may be overridden in ``[limits]``."""
+
+from __future__ import annotations
+
+import dataclasses
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+from plumbfall.errors import InputError, Problem, nearest_name
+
+__all__ = ["Limits", "limits_from"]
+
+
+@dataclass(frozen=True, slots=True)
+class Limits:
+    """Limits of the findings; relative ones are ratios, temperatures in kelvin.
+
+    exclude_outliers
+        Leave out drops beyond Grubbs' 1 % limit, under the rule ``grubbs-1-percent``.
+    outlier_level, straggler_level
+        Two-sided significance of an outlier and of a straggler (ISO 5725-2, 7.3.4).
+    too_few_drops
+        Fewer drops than this are noted (common practice, no source).
+    many_excluded
+        Largest part of the rows that may be void or excluded (common practice, no source).
+    temperature_agreement
+        Largest range of temperature in a set that needs no slope.
+    temperature_spread
+        Largest range of temperature in a set before it is warned of (common practice, no source).
+    model_bound
+        Largest half-width of the drag law itself before the Reynolds number is warned of.
+    end_clearance
+        Least distance of a mark from an end of the liquid, in bore radii (Tanner 1963).
+    ball_density_low, ball_density_high
+        Plausible ball densities in kg/m3: polymers to tungsten carbide.
+    liquid_density_low, liquid_density_high
+        Plausible densities of liquids that balls are dropped in, kg/m3.
+    density_temperature
+        Largest distance of the liquid's temperature from that of its density, where its
+        expansion is not given.
+    density_effect
+        Least effect on the viscosity, as a ratio, before that is warned of.
+    """
+
+    exclude_outliers: bool = False
+    outlier_level: float = 0.01
+    straggler_level: float = 0.05
+    too_few_drops: float = 5
+    many_excluded: float = 0.20
+    temperature_agreement: float = 0.1
+    temperature_spread: float = 1.0
+    model_bound: float = 0.01
+    end_clearance: float = 1.0
+    ball_density_low: float = 900.0
+    ball_density_high: float = 20000.0
+    liquid_density_low: float = 600.0
+    liquid_density_high: float = 3500.0
+    density_temperature: float = 0.5
+    density_effect: float = 5e-4
+
+
+def limits_from(overrides: Mapping[str, float | bool], path: str = "") -> Limits:
+    """Return the limits with the bench sheet's overrides.
+
+    Raises
+    ------
+    InputError
+        For a limit that no finding uses; it names the nearest one.
+    """
+    known = [f.name for f in dataclasses.fields(Limits)]
+    problems = []
+    for name in overrides:
+        if name not in known:
+            near = nearest_name(name, known)
+            problems.append(
+                Problem(
+                    f"no finding uses a limit '{name}'",
+                    f"did you mean '{near}'?" if near else f"known: {', '.join(known)}",
+                    path=path,
+                    key=f"limits.{name}",
+                )
+            )
+    if problems:
+        raise InputError(problems)
+    return dataclasses.replace(Limits(), **overrides)  # type: ignore[arg-type]  # numbers, one bool

@@ -1,0 +1,63 @@
+"""Every detector, in the order in which its findings are listed."""
+
+from __future__ import annotations
+
+from plumbfall.findings.counts import (
+    many_excluded,
+    nothing_left,
+    reused_balls,
+    too_few_drops,
+    void_without_reason,
+)
+from plumbfall.findings.data import Detector, RunData
+from plumbfall.findings.densities import density_implausible, radius_as_diameter
+from plumbfall.findings.gaps import default_gravity, missing_uncertainty
+from plumbfall.findings.geometry import end_near, geometry_unknown, run_in_short
+from plumbfall.findings.outliers import outlier
+from plumbfall.findings.solvability import (
+    ball_not_denser,
+    diameter_ratio_high,
+    no_solution,
+    reynolds_high,
+    reynolds_uncertain,
+)
+from plumbfall.findings.temperatures import density_temperature, slope_unknown, temperature_spread
+from plumbfall.results import SEVERITIES, Finding
+
+__all__ = ["DETECTORS", "find"]
+
+DETECTORS: tuple[Detector, ...] = (
+    nothing_left,
+    ball_not_denser,
+    no_solution,
+    reynolds_high,
+    diameter_ratio_high,
+    radius_as_diameter,
+    density_implausible,
+    outlier,
+    reynolds_uncertain,
+    run_in_short,
+    end_near,
+    temperature_spread,
+    density_temperature,
+    slope_unknown,
+    many_excluded,
+    void_without_reason,
+    too_few_drops,
+    reused_balls,
+    geometry_unknown,
+    missing_uncertainty,
+    default_gravity,
+)
+
+
+def find(data: RunData) -> tuple[tuple[Finding, ...], ...]:
+    """Run every detector; findings by run set, the gravest first."""
+    found: list[list[Finding]] = [[] for _ in data.names]
+    for detector in DETECTORS:
+        for run_set, finding in detector(data):
+            found[run_set].append(finding)
+    return tuple(
+        tuple(sorted(findings, key=lambda finding: SEVERITIES.index(finding.severity)))
+        for findings in found
+    )

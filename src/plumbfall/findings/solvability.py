@@ -1,0 +1,115 @@
+"""Whether the drops have a viscosity at all, and whether the drag law may be trusted there."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from plumbfall.findings.data import Found, RunData
+from plumbfall.results import Finding
+
+__all__ = [
+    "ball_not_denser",
+    "diameter_ratio_high",
+    "no_solution",
+    "reynolds_high",
+    "reynolds_uncertain",
+]
+
+
+def ball_not_denser(data: RunData) -> Iterator[Found]:
+    """A ball that is not denser than the liquid does not fall."""
+    for run_set, drops in data.flagged(data.columns.floating):
+        names = _ball_names(data, drops)
+        yield (
+            run_set,
+            Finding(
+                code="ball-not-denser",
+                severity="error",
+                drops=data.numbers(drops),
+                message=f"ball {names} is not denser than the liquid, so it cannot have fallen",
+                remedy="check the ball's density or mass, and the liquid's density and unit",
+            ),
+        )
+
+
+def no_solution(data: RunData) -> Iterator[Found]:
+    """No viscosity, however small, lets a ball of this weight fall so fast."""
+    for run_set, drops in data.flagged(data.columns.no_root):
+        yield (
+            run_set,
+            Finding(
+                code="no-solution",
+                severity="error",
+                drops=data.numbers(drops),
+                message="no liquid, however thin, lets a ball of this weight fall so fast: "
+                "the drag it would need lies below that of any sphere",
+                remedy="check the times and their unit, the marks, and the timer's bias",
+            ),
+        )
+
+
+def reynolds_high(data: RunData) -> Iterator[Found]:
+    """The Reynolds number is beyond the drag law's limit: refused, not extrapolated."""
+    for run_set, drops in data.flagged(data.columns.too_fast):
+        ratio = float(np.max(data.columns.diameter_ratio[drops]))
+        yield (
+            run_set,
+            Finding(
+                code="reynolds-high",
+                severity="error",
+                drops=data.numbers(drops),
+                statistic=data.law.max_reynolds,
+                message=f"the Reynolds number is above {data.law.max_reynolds:g}, the limit of the "
+                f"drag law '{data.law.reynolds_law.name}' (diameter ratio {ratio:.3f}); "
+                "no viscosity is given, as the law is not known there",
+                remedy="use a smaller or lighter ball, so that it falls more slowly",
+            ),
+        )
+
+
+def diameter_ratio_high(data: RunData) -> Iterator[Found]:
+    """The ball fills more of the bore than the drag law covers."""
+    for run_set, drops in data.flagged(data.columns.too_wide & ~data.columns.floating):
+        ratio = float(np.max(data.columns.diameter_ratio[drops]))
+        yield (
+            run_set,
+            Finding(
+                code="diameter-ratio-high",
+                severity="error",
+                drops=data.numbers(drops),
+                statistic=ratio,
+                message=f"the diameter ratio {ratio:.3f} is above {data.law.max_ratio:g}, the "
+                f"limit of the drag law '{data.law.ratio_law.name}'",
+                remedy="use a smaller ball or a wider tube, or calibrate the tube with this ball",
+            ),
+        )
+
+
+def reynolds_uncertain(data: RunData) -> Iterator[Found]:
+    """The law holds, but inertia makes it less certain than the rest."""
+    flag = data.columns.model_bound > data.limits.model_bound
+    for run_set, drops in data.flagged(flag):
+        worst = drops[np.argmax(data.columns.reynolds[drops])]
+        reynolds = float(data.columns.reynolds[worst])
+        bound = float(data.columns.model_bound[worst])
+        yield (
+            run_set,
+            Finding(
+                code="reynolds-high",
+                severity="warning",
+                drops=data.numbers(drops),
+                statistic=reynolds,
+                effect=bound,
+                message=f"at Reynolds number {reynolds:.2g} the drag law '{data.law.together}' "
+                f"(known to {data.law.max_reynolds:g}) is uncertain by up to {100 * bound:.1f} %; "
+                "the bounds include it",
+                remedy="use a smaller or lighter ball for narrower bounds",
+            ),
+        )
+
+
+def _ball_names(data: RunData, drops: np.ndarray) -> str:
+    codes = np.unique(data.selection.cells.ball[data.selection.cell[drops]])
+    return ", ".join(data.balls[code].name for code in codes)

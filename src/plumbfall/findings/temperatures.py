@@ -1,0 +1,114 @@
+"""Temperature: how far the drops' differ, and whether what depends on it is known."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+
+from plumbfall.findings.data import Found, RunData
+from plumbfall.measurement.inputs import cold_ball_density
+from plumbfall.results import Finding
+
+__all__ = ["density_temperature", "slope_unknown", "temperature_spread"]
+
+USUAL_EXPANSION = 7e-4
+"""Volumetric expansion of common liquids, 1/K, to judge what an unknown one may cost.
+
+Mineral oils 6e-4 to 8e-4, silicone fluids 9e-4, glycerol 5e-4: from memory.
+"""
+
+
+def _ranges(data: RunData) -> np.ndarray:
+    """Range of the drops' temperatures by run set, NaN where unknown."""
+    n = len(data.names)
+    low, high = np.full(n, np.inf), np.full(n, -np.inf)
+    np.minimum.at(low, data.selection.run_set, data.columns.temperature)
+    np.maximum.at(high, data.selection.run_set, data.columns.temperature)
+    return np.where(np.isfinite(high), high - low, np.nan)
+
+
+def slope_unknown(data: RunData) -> Iterator[Found]:
+    """Without d ln(viscosity)/dT neither bounds nor reduction can take temperature in."""
+    known = np.zeros(len(data.names), bool)
+    known[data.selection.cells.run_set[data.inputs.slope_known]] = True
+    ranges = _ranges(data)
+    asked = data.bench.reference_temperature is not None
+    liquid_of = np.zeros(len(data.names), dtype=np.intp)
+    liquid_of[data.selection.cells.run_set] = data.selection.cells.liquid
+    for run_set in np.flatnonzero(~known & (data.weights.n_drops > 0)):
+        liquid = data.liquids[liquid_of[run_set]].name
+        span = ranges[run_set]
+        small = bool(span <= data.limits.temperature_agreement)
+        if np.isnan(span):
+            message = "no temperature was recorded, so the viscosity holds at an unknown one"
+            remedy = "add a temperature column to the timing file, or temperature to the run set"
+        else:
+            message = f"liquid {liquid} has no viscosity_slope: the bounds leave out temperature"
+            if not small:
+                message += f", and drops {span:.2f} K apart are averaged as they are"
+            if asked:
+                message += ", and nothing is reduced to the reference temperature"
+            remedy = f'add viscosity_slope = "… %/K" to [liquid.{liquid}]'
+        yield (
+            int(run_set),
+            Finding(
+                code="slope-unknown",
+                severity="note" if small and not asked else "warning",
+                statistic=None if np.isnan(span) else float(span),
+                message=message,
+                remedy=remedy,
+            ),
+        )
+
+
+def temperature_spread(data: RunData) -> Iterator[Found]:
+    """Drops of one set at widely differing temperatures."""
+    ranges = _ranges(data)
+    slope = np.zeros(len(data.names))
+    slope[data.selection.cells.run_set] = data.inputs.roles["slope"].value
+    for run_set in np.flatnonzero(ranges > data.limits.temperature_spread):
+        span = float(ranges[run_set])
+        effect = abs(float(slope[run_set])) * span
+        cost = f", {100 * effect:.1f} % of viscosity by the slope given" if effect else ""
+        yield (
+            int(run_set),
+            Finding(
+                code="temperature-spread",
+                severity="warning",
+                statistic=span,
+                effect=effect or None,
+                message=f"the drops' temperatures differ by {span:.2f} K{cost}",
+                remedy="let the bath settle, or split the drops into run sets of one temperature",
+            ),
+        )
+
+
+def density_temperature(data: RunData) -> Iterator[Found]:
+    """The liquid's density was taken at another temperature, and its expansion is not known."""
+    cells = data.selection.cells
+    unknown = np.array([liquid.expansion is None for liquid in data.liquids], bool)[cells.liquid]
+    offset = data.columns.set_temperature[cells.run_set] - data.inputs.liquid_density_at
+    ratio = data.inputs.roles["liquid_density"].value / cold_ball_density(data.inputs)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        effect = USUAL_EXPANSION * np.abs(offset) * ratio / (1 - ratio)
+        far = unknown & (np.abs(offset) > data.limits.density_temperature)
+        costly = np.flatnonzero(far & (effect > data.limits.density_effect))
+    for run_set in np.unique(cells.run_set[costly]):
+        cell = costly[cells.run_set[costly] == run_set]
+        worst = cell[np.argmax(effect[cell])]
+        liquid = data.liquids[cells.liquid[worst]].name
+        yield (
+            int(run_set),
+            Finding(
+                code="density-temperature",
+                severity="warning",
+                statistic=float(offset[worst]),
+                effect=float(effect[worst]),
+                message=f"the density of {liquid} holds {abs(offset[worst]):.1f} K away from the "
+                "drops' temperature and its expansion is not given; with a usual one that is "
+                f"about {100 * effect[worst]:.2f} % of viscosity",
+                remedy=f'add expansion = "… /K" to [liquid.{liquid}], or the density at '
+                "the drops' temperature",
+            ),
+        )

@@ -1,0 +1,187 @@
+"""Every drop's viscosity and the sums its sensitivities add to, block by block.
+
+Blocks keep the working arrays in the processor's cache and memory flat in the number of drops.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from plumbfall.measurement.balance import Codes, Numbers, balance, corrected_temperature, spread
+from plumbfall.measurement.inputs import Inputs
+from plumbfall.measurement.inverse import invert
+from plumbfall.measurement.selection import Selection
+from plumbfall.measurement.sensitivities import DropSlopes, Sums, add_block, empty_sums
+from plumbfall.physics.drag import DragLaw
+
+__all__ = ["DropColumns", "Weights", "compute_drops", "value_weights"]
+
+BLOCK = 16_384
+
+
+@dataclass(frozen=True, slots=True)
+class Weights:
+    """How drops make a run set's mean: means of values, a value being a ball's mean.
+
+    ``value`` is each drop's value, shape (drops,); ``value_set`` the run set of each value;
+    ``weight`` each drop's weight in its set's mean. ``n_values`` counts them by run set. Where
+    every drop is its own ball (a lot), a value is a drop.
+    """
+
+    value: Codes
+    value_set: Codes
+    value_drops: NDArray[np.intp]
+    n_values: NDArray[np.intp]
+    n_drops: NDArray[np.intp]
+    weight: Numbers
+
+
+@dataclass(frozen=True, slots=True)
+class DropColumns:
+    """What was computed of each used drop, SI, shape (drops,); NaN where there is no solution.
+
+    ``at_set`` is the viscosity brought to the run set's temperature, ``stokes`` the same by
+    Stokes' law alone. ``set_temperature`` has shape (run sets,), NaN where unknown.
+    """
+
+    temperature: Numbers
+    viscosity: Numbers
+    at_set: Numbers
+    stokes: Numbers
+    reynolds: Numbers
+    fall_speed: Numbers
+    diameter: Numbers
+    diameter_ratio: Numbers
+    wall: Numbers
+    drag_factor: Numbers
+    shear_stress: Numbers
+    model_bound: Numbers
+    floating: NDArray[np.bool_]
+    too_fast: NDArray[np.bool_]
+    too_wide: NDArray[np.bool_]
+    no_root: NDArray[np.bool_]
+    set_temperature: Numbers
+
+
+def value_weights(selection: Selection, inputs: Inputs) -> Weights:
+    """Group drops into values: a ball's drops of one run set, or single drops of a lot."""
+    cells, n_sets = selection.cells, len(selection.names)
+    pair = cells.run_set * (cells.ball.max(initial=0) + 1) + cells.ball
+    _, first, value_of_cell = np.unique(pair, return_index=True, return_inverse=True)
+    value, value_set = value_of_cell[selection.cell], cells.run_set[first]
+    fresh = inputs.lot[selection.cell]
+    if fresh.any():
+        own = np.where(fresh, len(first) + np.arange(len(value)), value)
+        _, first, value = np.unique(own, return_index=True, return_inverse=True)
+        value_set = selection.run_set[first]
+    value_drops = np.bincount(value, minlength=len(first))
+    n_values = np.bincount(value_set, minlength=n_sets)
+    weight = 1.0 / (value_drops * n_values[value_set])
+    return Weights(
+        value=value,
+        value_set=value_set,
+        value_drops=value_drops,
+        n_values=n_values,
+        n_drops=np.bincount(selection.run_set, minlength=n_sets),
+        weight=weight[value],
+    )
+
+
+def compute_drops(
+    selection: Selection, inputs: Inputs, weights: Weights, law: DragLaw
+) -> tuple[DropColumns, Sums]:
+    """Invert the force balance of every drop and sum its sensitivities.
+
+    Parameters
+    ----------
+    selection : Selection
+        The used drops.
+    inputs : Inputs
+        Raw inputs by cell.
+    weights : Weights
+        Each drop's weight in its run set's mean.
+    law : DragLaw
+        The drag law to invert.
+
+    Returns
+    -------
+    DropColumns
+        Viscosities and flow numbers of the drops.
+    Sums
+        Weighted sensitivities by cell.
+    """
+    n, n_sets = len(selection.cell), len(selection.names)
+    temperature = corrected_temperature(inputs, selection.cell, selection.temperature)
+    with np.errstate(invalid="ignore", divide="ignore"):
+        by_set = np.bincount(
+            selection.run_set, weights=weights.weight * temperature, minlength=n_sets
+        )
+    set_temperature = np.where(weights.n_drops > 0, by_set, np.nan)
+    offset = set_temperature[selection.run_set] - temperature
+    np.nan_to_num(offset, copy=False, nan=0.0)
+
+    names = ("viscosity", "at_set", "stokes", "reynolds", "fall_speed", "diameter",
+             "diameter_ratio", "wall", "drag_factor", "shear_stress", "model_bound")  # fmt: skip
+    out = {name: np.empty(n) for name in names}
+    flags = {name: np.empty(n, bool) for name in ("floating", "too_fast", "too_wide", "no_root")}
+    sums = empty_sums(len(selection.cells))
+    for start in range(0, n, BLOCK):
+        block = slice(start, min(start + BLOCK, n))
+        _compute_block(
+            block, selection, inputs, law, temperature, offset, weights.weight, out, flags, sums
+        )
+    columns = DropColumns(
+        temperature=temperature, set_temperature=set_temperature, **out, **flags
+    )
+    return columns, sums
+
+
+def _compute_block(
+    block: slice,
+    selection: Selection,
+    inputs: Inputs,
+    law: DragLaw,
+    temperature: Numbers,
+    offset: Numbers,
+    weight: Numbers,
+    out: dict[str, Numbers],
+    flags: dict[str, NDArray[np.bool_]],
+    sums: Sums,
+) -> None:
+    cell, clock = selection.cell[block], selection.time[block]
+    with np.errstate(invalid="ignore", divide="ignore"):
+        forces = balance(inputs, cell, clock, temperature[block])
+        # A ratio beyond the law's is flagged by the inverse; here it must only not stop the rest.
+        drag = law.at(np.minimum(forces.diameter_ratio, law.max_ratio))
+        found = invert(forces, drag)
+        ratio_slope, reynolds_slope = drag.slopes(found.log_reynolds)
+        to_set = np.exp(spread(inputs.roles["slope"].value, cell) * offset[block])
+        bound = drag.relative_bound(found.log_reynolds)
+        stokes = forces.weight / (3 * np.pi * forces.diameter * forces.speed)
+        out["viscosity"][block] = found.viscosity
+        out["at_set"][block] = found.viscosity * to_set
+        out["stokes"][block] = stokes * to_set
+        out["reynolds"][block] = found.reynolds
+        out["fall_speed"][block] = forces.speed
+        out["diameter"][block] = forces.diameter
+        out["diameter_ratio"][block] = forces.diameter_ratio
+        out["wall"][block] = drag.wall
+        out["drag_factor"][block] = stokes / found.viscosity
+        out["shear_stress"][block] = forces.weight / (np.pi * forces.diameter**2)
+        out["model_bound"][block] = bound
+        for name in flags:
+            flags[name][block] = getattr(found, name)
+        add_block(
+            sums,
+            inputs,
+            cell,
+            clock,
+            forces,
+            DropSlopes(ratio_slope, reynolds_slope, bound),
+            weight[block] * out["at_set"][block],
+            offset[block],
+            ~np.isnan(selection.temperature[block]),
+        )

@@ -1,0 +1,105 @@
+"""The inverse of the force balance: the viscosity from speed, weight and geometry.
+
+The unknown is x = ln Re. With the demand q = W / (3 pi rho_f v^2 d^2) the balance reads
+ln K(lambda, x) - x = ln q, strictly decreasing in x below the drag crisis, so that Newton's
+method from the creeping solution (a lower bound, as K >= K0) climbs to the one low-Re root.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from plumbfall.measurement.balance import Balance, Numbers
+from plumbfall.physics.drag import BoundDrag
+
+__all__ = ["MINIMUM_DRAG_COEFFICIENT", "Inverse", "invert"]
+
+MINIMUM_DRAG_COEFFICIENT = 0.38
+"""No unbounded sphere has less drag below the drag crisis.
+
+Brown and Lawler 2003 give a minimum of 0.3895 at Reynolds number 3981, Clift, Grace and Weber
+1978 0.387 at 5370; walls only add to it.
+"""
+
+TOLERANCE = 1e-13
+MOST_STEPS = 60
+
+
+@dataclass(frozen=True, slots=True)
+class Inverse:
+    """What the balance gives, each of shape (drops,); NaN viscosity where there is none.
+
+    ``floating``, ``too_fast``, ``too_wide`` and ``no_root`` say why: the ball is not denser than
+    the liquid; its Reynolds number is beyond the law's; its diameter ratio is; no viscosity at
+    all makes it fall so fast (or the corrected time is not positive).
+    """
+
+    viscosity: Numbers
+    reynolds: Numbers
+    log_reynolds: Numbers
+    floating: NDArray[np.bool_]
+    too_fast: NDArray[np.bool_]
+    too_wide: NDArray[np.bool_]
+    no_root: NDArray[np.bool_]
+
+
+def invert(forces: Balance, drag: BoundDrag) -> Inverse:
+    """Solve the force balance for the viscosity of every drop.
+
+    Parameters
+    ----------
+    forces : Balance
+        Weight, speed and geometry, arrays of shape (drops,).
+    drag : BoundDrag
+        A drag law at the drops' diameter ratios.
+
+    Returns
+    -------
+    Inverse
+        Viscosity [Pa.s] and Reynolds number; NaN, with the reason, where there is none.
+
+    Notes
+    -----
+    The Reynolds number is rho_f v d / eta. The residual of the balance is below 1e-12.
+    """
+    shape = np.broadcast_shapes(forces.weight.shape, forces.speed.shape, forces.diameter.shape)
+    floating = np.broadcast_to(forces.weight <= 0, shape)
+    late = np.broadcast_to(~(forces.speed > 0) | np.isinf(forces.speed), shape)
+    too_wide = np.broadcast_to(~(forces.diameter_ratio <= drag.max_ratio), shape)
+    inertial = forces.liquid_density * (forces.speed * forces.diameter) ** 2
+    with np.errstate(invalid="ignore", divide="ignore"):
+        log_demand = np.log(forces.weight / (3 * np.pi * inertial))
+        top = np.log(drag.max_reynolds)
+        at_top = drag.evaluate(np.full(shape, top))[0] - top
+        beyond = log_demand < at_top
+        x = _newton(drag, log_demand, top, shape)
+    x = np.where(floating | late | too_wide | beyond, np.nan, x)
+    reynolds = np.exp(x)
+    coefficient = 24 * np.exp(log_demand)
+    no_root = late | (beyond & (coefficient < MINIMUM_DRAG_COEFFICIENT))
+    return Inverse(
+        viscosity=forces.liquid_density * forces.speed * forces.diameter / reynolds,
+        reynolds=reynolds,
+        log_reynolds=x,
+        floating=floating,
+        too_fast=beyond & ~no_root & ~floating & ~too_wide,
+        too_wide=too_wide,
+        no_root=no_root & ~floating,
+    )
+
+
+def _newton(
+    drag: BoundDrag, log_demand: Numbers, top: float, shape: tuple[int, ...]
+) -> Numbers:
+    x = np.minimum(np.broadcast_to(np.log(drag.wall) - log_demand, shape), top)
+    for _ in range(MOST_STEPS):
+        log_factor, slope = drag.evaluate(x)
+        moved = np.minimum(x + (log_factor - x - log_demand) / (1 - slope), top)
+        change = np.abs(moved - x)
+        x = moved
+        if not np.nanmax(change, initial=0.0) > TOLERANCE:
+            break
+    return x

@@ -1,0 +1,58 @@
+"""The drag law that the bench sheet chooses, and what is known of its error."""
+
+from __future__ import annotations
+
+import math
+
+from plumbfall.bench.records import Bench
+from plumbfall.errors import InputError
+from plumbfall.estimate import Estimate
+from plumbfall.measurement.inputs import MODEL_INPUT
+from plumbfall.physics.drag import DragLaw
+from plumbfall.physics.laws import laws_of
+
+__all__ = ["drag_law", "model_estimate"]
+
+PARTS = ("together", "walls", "inertia")
+
+
+def drag_law(bench: Bench) -> DragLaw:
+    """Return the drag law of ``[methods]``.
+
+    ``drag`` is one or several names of laws, such as ``"product faxen schiller-naumann"``: each
+    word takes its part (the rule, the walls, the inertia), and what is not named is the default.
+
+    Raises
+    ------
+    InputError
+        For a word that names no law, and for two words of one part.
+    """
+    chosen: dict[str, str] = {}
+    for word in (bench.methods.drag or "").split():
+        part = next((part for part in PARTS if word in laws_of(part)), None)
+        if part is None:
+            known = "; ".join(f"{part}: {', '.join(laws_of(part))}" for part in PARTS)
+            raise InputError(
+                f"'{word}' is no drag law", path=bench.path, key="methods.drag", remedy=known
+            )
+        if part in chosen:
+            raise InputError(
+                f"'{chosen[part]}' and '{word}' are both laws for {part}",
+                path=bench.path,
+                key="methods.drag",
+                remedy="name one of them",
+            )
+        chosen[part] = word
+    return DragLaw(**chosen)
+
+
+def model_estimate(bench: Bench) -> Estimate:
+    """Return the drag law's factor 1 with its uncertainty.
+
+    Declared, it is a relative standard uncertainty for every drop; otherwise it is rectangular
+    within the law's own bound at each drop, so that here the half-width is 1 of that bound.
+    """
+    declared = bench.methods.model_uncertainty
+    if declared is not None:
+        return Estimate(1.0, declared.value, "normal", math.inf, MODEL_INPUT, "1", declared.text)
+    return Estimate(1.0, 1 / math.sqrt(3), "rectangular", math.inf, MODEL_INPUT, "1")

@@ -1,0 +1,232 @@
+"""Which ball, tube, liquid, timer and thermometer each drop was made with.
+
+Rows of a timing table name equipment, leave it to the run set's entry in the bench sheet, or
+leave it open where the bench has only one of a kind. Here all become integer codes, and equal
+combinations become one *cell*: every drop of a cell reads the same entries of the bench sheet.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+import pandas as pd
+from numpy.typing import NDArray
+
+from plumbfall.bench.records import Bench
+from plumbfall.errors import InputError, Problem, nearest_name
+from plumbfall.timings.records import Timings
+
+__all__ = ["KINDS", "Cells", "Selection", "select"]
+
+Codes = NDArray[np.intp]
+
+KINDS = {
+    "ball": "balls",
+    "tube": "tubes",
+    "liquid": "liquids",
+    "timer": "timers",
+    "thermometer": "thermometers",
+}
+"""Equipment a drop may name, and where the bench keeps it."""
+
+REQUIRED = ("ball", "tube", "liquid")
+
+
+@dataclass(frozen=True, slots=True)
+class Cells:
+    """Distinct combinations of run set, equipment and marks; codes of shape (cells,).
+
+    A code counts into the bench's mapping of its kind, -1 where there is none (a timer or a
+    thermometer may be missing).
+    """
+
+    run_set: Codes
+    ball: Codes
+    tube: Codes
+    liquid: Codes
+    timer: Codes
+    thermometer: Codes
+    from_mark: Codes
+    to_mark: Codes
+
+    def __len__(self) -> int:
+        return len(self.run_set)
+
+
+@dataclass(frozen=True, slots=True)
+class Selection:
+    """The used drops of a timing table, in columns of shape (drops,).
+
+    ``row`` is each drop's position in the timing table, ``cell`` its cell; ``temperature`` is
+    the reading in kelvin, NaN where only the run set's entry has one. ``row_set`` is the run set
+    of every row of the table, used or not.
+    """
+
+    names: tuple[str, ...]
+    row_set: Codes
+    row: Codes
+    run_set: Codes
+    cell: Codes
+    cells: Cells
+    time: NDArray[np.float64]
+    temperature: NDArray[np.float64]
+
+
+def select(timings: Timings, bench: Bench) -> Selection:
+    """Resolve the equipment of every used drop.
+
+    Parameters
+    ----------
+    timings : Timings
+        What was read; only rows of status ``used`` are taken, in their order.
+    bench : Bench
+        The bench sheet that names the equipment.
+
+    Returns
+    -------
+    Selection
+        Codes into the bench, and the run sets in order of first appearance (of any row).
+
+    Raises
+    ------
+    InputError
+        Where a drop's ball, tube or liquid cannot be known, or is not on the bench.
+    """
+    table = timings.table
+    set_codes, names = _run_sets(table["set"])
+    used = (table["status"] == "used").to_numpy()
+    row = np.flatnonzero(used)
+    run_set = set_codes[row]
+
+    problems: list[Problem] = []
+    codes = {
+        kind: _equipment(kind, table, row, run_set, names, bench, problems) for kind in KINDS
+    }
+    if problems:
+        raise InputError(problems)
+
+    n_marks = np.array([len(tube.marks) for tube in bench.tubes.values()], dtype=np.intp)
+    from_mark = table["from_mark"].to_numpy(dtype=np.intp)[row] - 1
+    to_mark = table["to_mark"].to_numpy(dtype=np.intp)[row] - 1
+    last = n_marks[codes["tube"]] - 1
+    to_mark = np.where(to_mark < 0, last, to_mark)
+    _check_marks(table, row, from_mark, to_mark, last)
+
+    cell, cells = _cells(run_set, codes, from_mark, to_mark)
+    return Selection(
+        names=names,
+        row_set=set_codes,
+        row=row,
+        run_set=run_set,
+        cell=cell,
+        cells=cells,
+        time=table["time_s"].to_numpy(dtype=float)[row],
+        temperature=table["temperature_K"].to_numpy(dtype=float)[row],
+    )
+
+
+def _run_sets(column: pd.Series) -> tuple[Codes, tuple[str, ...]]:
+    """Codes of the run sets in order of first appearance."""
+    categorical = column.astype("category").cat
+    present, first = np.unique(categorical.codes.to_numpy(), return_index=True)
+    order = present[np.argsort(first)]
+    rank = np.empty(order.max(initial=-1) + 1, dtype=np.intp)
+    rank[order] = np.arange(len(order))
+    return rank[categorical.codes.to_numpy()], tuple(str(categorical.categories[i]) for i in order)
+
+
+def _equipment(
+    kind: str,
+    table: pd.DataFrame,
+    row: Codes,
+    run_set: Codes,
+    names: Sequence[str],
+    bench: Bench,
+    problems: list[Problem],
+) -> Codes:
+    known = list(getattr(bench, KINDS[kind]))
+    place = {name: code for code, name in enumerate(known)}
+    only = 0 if len(known) == 1 else -1
+    fallback = np.full(len(names), only, dtype=np.intp)
+    for code, name in enumerate(names):
+        entry = bench.sets.get(name)
+        chosen = getattr(entry, kind, None) if entry is not None else None
+        if chosen is not None:
+            fallback[code] = place[chosen]  # the bench sheet's own references are checked there
+
+    column = table[kind].astype("category").cat
+    labels = [str(label) for label in column.categories]
+    code_of_label = np.array([place.get(label, -2) if label else -1 for label in labels] + [-1])
+    own = code_of_label[column.codes.to_numpy()[row]]
+    codes: Codes = np.where(own == -1, fallback[run_set], own).astype(np.intp)
+
+    for place_of in np.flatnonzero(code_of_label[:-1] == -2):
+        rows = row[column.codes.to_numpy()[row] == place_of]
+        if len(rows):
+            problems.append(_unknown(kind, labels[place_of], known, table, int(rows[0])))
+    if kind in REQUIRED:
+        for code in np.unique(run_set[codes == -1]):
+            problems.append(_open(kind, names[code], known, bench))
+    return codes
+
+
+def _unknown(kind: str, label: str, known: list[str], table: pd.DataFrame, row: int) -> Problem:
+    near = nearest_name(label, known)
+    return Problem(
+        f"{kind} '{label}' is not on the bench sheet",
+        f"did you mean '{near}'?" if near else f"the bench has: {', '.join(known) or 'none'}",
+        path=str(table["file"].iloc[row]),
+        line=int(table["line"].iloc[row]),
+    )
+
+
+def _open(kind: str, run_set: str, known: list[str], bench: Bench) -> Problem:
+    if not known:
+        return Problem(
+            f"no {kind} is described",
+            f"add a [{kind}.NAME] section to the bench sheet",
+            path=bench.path,
+        )
+    return Problem(
+        f"run set '{run_set}' does not say which {kind} was used",
+        f"add a '{kind}' column to the timing file, or {kind} = \"{known[0]}\" to "
+        f'[set."{run_set}"] of the bench sheet (known: {", ".join(known)})',
+        path=bench.path,
+    )
+
+
+def _check_marks(
+    table: pd.DataFrame, row: Codes, from_mark: Codes, to_mark: Codes, last: Codes
+) -> None:
+    beyond = np.flatnonzero((to_mark > last) & (last >= 0))
+    if len(beyond):
+        at = int(beyond[0])
+        raise InputError(
+            f"the drop was timed at mark {to_mark[at] + 1}, but its tube has {last[at] + 1} marks",
+            path=str(table["file"].iloc[int(row[at])]),
+            line=int(table["line"].iloc[int(row[at])]),
+            remedy="add the mark to the tube's marks in the bench sheet, or correct the heading",
+        )
+
+
+def _cells(
+    run_set: Codes, codes: dict[str, Codes], from_mark: Codes, to_mark: Codes
+) -> tuple[Codes, Cells]:
+    columns = [run_set, *(codes[kind] for kind in KINDS), from_mark, to_mark]
+    combined = np.zeros(len(run_set), dtype=np.int64)
+    spans = []
+    for column in columns:
+        low = int(column.min(initial=0))
+        span = int(column.max(initial=0)) - low + 1
+        spans.append((low, span))
+        combined *= span
+        combined += column - low
+    cell, distinct = pd.factorize(combined)
+    parts: list[Codes] = []
+    rest = np.asarray(distinct, dtype=np.int64)
+    for low, span in reversed(spans):
+        parts.append((rest % span + low).astype(np.intp))
+        rest = rest // span
+    return np.asarray(cell, dtype=np.intp), Cells(*reversed(parts))

@@ -1,0 +1,248 @@
+"""The reduction: timed drops and a bench sheet to run-set results. It joins; it has no formula."""
+
+from __future__ import annotations
+
+import dataclasses
+from collections.abc import Mapping
+from dataclasses import dataclass
+from functools import cached_property
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from plumbfall.bench.records import Bench
+from plumbfall.bench.measured import unstated_uncertainties
+from plumbfall.errors import InputError
+from plumbfall.findings.data import RunData
+from plumbfall.findings.limits import Limits, limits_from
+from plumbfall.findings.outliers import suspects
+from plumbfall.findings.registry import find
+from plumbfall.measurement.drops import compute_drops, value_weights
+from plumbfall.measurement.inputs import gather
+from plumbfall.measurement.law import drag_law, model_estimate
+from plumbfall.measurement.selection import select
+from plumbfall.results import Finding, RunSetResult
+from plumbfall.run_sets.jacobian import build_jacobian, own_variances
+from plumbfall.run_sets.outputs import compute_outputs, conditions
+from plumbfall.run_sets.repeatability import repeatability
+from plumbfall.run_sets.result import SetColumns, build_result
+from plumbfall.run_sets.table import summary_table
+from plumbfall.timings.records import Timings
+
+if TYPE_CHECKING:
+    import pandas as pd
+    from numpy.typing import NDArray
+
+__all__ = ["Reduction", "reduce_drops"]
+
+OUTLIER_RULE = "grubbs-1-percent"
+
+
+@dataclass(frozen=True)
+class Reduction:
+    """Every run set's results in columns; a run set's record is built when it is asked for.
+
+    ``found`` holds the findings by run set, ``inputs`` the files with their hashes.
+    """
+
+    sets: SetColumns
+    found: tuple[tuple[Finding, ...], ...]
+    coverage: float
+    seed: int
+    inputs: tuple[tuple[str, str], ...]
+    findings: tuple[Finding, ...] = ()
+
+    @property
+    def bench(self) -> Bench:
+        """The bench sheet."""
+        return self.sets.bench
+
+    @property
+    def timings(self) -> Timings:
+        """The drops as read, those excluded by a rule marked so."""
+        return self.sets.timings
+
+    @property
+    def names(self) -> tuple[str, ...]:
+        """Names of the run sets, in order of first appearance."""
+        return self.sets.selection.names
+
+    @cached_property
+    def rows(self) -> Mapping[str, int]:
+        """Rows read, and how many of them were used, void and excluded."""
+        status = self.timings.table["status"].astype(str)
+        counts = {name: int((status == name).sum()) for name in ("used", "void", "excluded")}
+        return {"read": len(status), **counts}
+
+    def run_set(self, name: str) -> RunSetResult:
+        """Return one run set's record, built once."""
+        if name not in self._built:
+            place = self._place[name]
+            self._built[name] = build_result(
+                self.sets,
+                place,
+                self._used_by_set[place],
+                self._rows_by_set[place],
+                self.found[place],
+            )
+        return self._built[name]
+
+    def summary_table(self) -> pd.DataFrame:
+        """Return one row a run set, numeric, units in the column names (INTERFACE section 6)."""
+        return summary_table(self.sets, self.found)
+
+    def covariance(self, quantity: str = "viscosity") -> NDArray[np.float64]:
+        """Covariance of the run sets' values of a quantity; NaN where a set has none."""
+        covariance = self.sets.outputs.covariance(quantity)
+        missing = ~np.isfinite(self.sets.outputs.of(quantity).value)
+        covariance[missing] = np.nan
+        covariance[:, missing] = np.nan
+        return covariance
+
+    def correlation(self) -> NDArray[np.float64]:
+        """Correlation of the run sets' viscosities; NaN where a set has none."""
+        covariance = self.covariance()
+        u = np.sqrt(np.diag(covariance))
+        with np.errstate(invalid="ignore", divide="ignore"):
+            correlation: NDArray[np.float64] = covariance / np.outer(u, u)
+        np.fill_diagonal(correlation, np.where(np.isnan(u), np.nan, 1.0))
+        return correlation
+
+    @cached_property
+    def _place(self) -> dict[str, int]:
+        return {name: place for place, name in enumerate(self.names)}
+
+    @cached_property
+    def _built(self) -> dict[str, RunSetResult]:
+        return {}
+
+    @cached_property
+    def _used_by_set(self) -> list[NDArray[np.intp]]:
+        return _grouped(self.sets.selection.run_set, len(self.names))
+
+    @cached_property
+    def _rows_by_set(self) -> list[NDArray[np.intp]]:
+        names = self.timings.table["set"].astype(str).map(self._place)
+        return _grouped(names.to_numpy(dtype=np.intp), len(self.names))
+
+
+def reduce_drops(
+    timings: Timings,
+    bench: Bench,
+    *,
+    coverage: float | None = None,
+    seed: int = 0,
+    inputs: tuple[tuple[str, str], ...] = (),
+) -> Reduction:
+    """Reduce timed drops to viscosities with bounds.
+
+    Parameters
+    ----------
+    timings : Timings
+        The drops as read.
+    bench : Bench
+        The bench sheet.
+    coverage : float, optional
+        Coverage probability of the intervals; that of the bench sheet where not given.
+    seed : int
+        Recorded in the report; linear propagation draws nothing.
+    inputs : tuple of (path, sha256)
+        The input files, recorded in the report.
+
+    Returns
+    -------
+    Reduction
+        Results of every run set.
+
+    Raises
+    ------
+    InputError
+        Where the bench sheet does not describe what the drops need.
+    """
+    if not len(timings):
+        raise InputError("there is no drop to reduce", remedy="give a timing file with drops")
+    probability = bench.coverage if coverage is None else coverage
+    if not 0 < probability < 1:
+        raise InputError(
+            f"a coverage probability of {probability:g} is not between 0 and 1",
+            key="coverage",
+            remedy="write 0.95 for 95 %",
+        )
+    limits = limits_from(bench.limits, bench.path)
+    reduced = _reduce_once(timings, bench, probability)
+    while limits.exclude_outliers:
+        found = suspects(_data(reduced, limits))
+        beyond = found.p_value < limits.outlier_level
+        if not beyond.any():
+            break
+        rows = reduced.selection.row[found.drop[beyond]]
+        reduced = _reduce_once(_exclude(reduced.timings, rows), bench, probability)
+    return Reduction(
+        sets=reduced,
+        found=find(_data(reduced, limits)),
+        coverage=probability,
+        seed=seed,
+        inputs=inputs,
+    )
+
+
+def _reduce_once(timings: Timings, bench: Bench, coverage: float) -> SetColumns:
+    law = drag_law(bench)
+    selection = select(timings, bench)
+    inputs = gather(selection.cells, bench, selection.names, model_estimate(bench))
+    weights = value_weights(selection, inputs)
+    columns, sums = compute_drops(selection, inputs, weights, law)
+    own = own_variances(selection, inputs, sums)
+    scatter = repeatability(selection, columns, weights, np.sqrt(own.resolution), bench.scatter)
+    jacobian = build_jacobian(selection, inputs, sums, own, scatter)
+    liquid = conditions(selection, inputs, columns)
+    outputs = compute_outputs(
+        jacobian,
+        scatter.mean,
+        liquid,
+        inputs,
+        columns.set_temperature,
+        bench.reference_temperature,
+        coverage,
+    )
+    return SetColumns(
+        bench, timings, selection, inputs, columns, sums, weights, scatter, jacobian, liquid,
+        outputs, law,
+    )  # fmt: skip
+
+
+def _data(sets: SetColumns, limits: Limits) -> RunData:
+    viscosity = sets.outputs.of("viscosity")
+    with np.errstate(invalid="ignore", divide="ignore"):
+        relative_u = viscosity.u / viscosity.value
+    return RunData(
+        bench=sets.bench,
+        timings=sets.timings,
+        selection=sets.selection,
+        inputs=sets.inputs,
+        columns=sets.columns,
+        weights=sets.weights,
+        scatter=sets.scatter,
+        law=sets.law,
+        relative_u=relative_u,
+        limits=limits,
+        unstated=unstated_uncertainties(sets.bench),
+    )
+
+
+def _exclude(timings: Timings, rows: NDArray[np.intp]) -> Timings:
+    """Mark rows as excluded by the outlier rule, keeping whatever their note said."""
+    table = timings.table.copy()
+    status, note = table["status"].astype(str).to_numpy(), table["note"].astype(str).to_numpy()
+    status, note = status.astype(object), note.astype(object)
+    status[rows] = "excluded"
+    note[rows] = [f"{OUTLIER_RULE}: {text}" if text else OUTLIER_RULE for text in note[rows]]
+    table["status"], table["note"] = status, note
+    return dataclasses.replace(
+        timings, table=table.astype({"status": "category", "note": "category"})
+    )
+
+
+def _grouped(codes: NDArray[np.intp], n_groups: int) -> list[NDArray[np.intp]]:
+    order = np.argsort(codes, kind="stable")
+    return np.split(order, np.cumsum(np.bincount(codes, minlength=n_groups))[:-1])

@@ -1,0 +1,153 @@
+"""The run sets' Jacobian: rows are outputs, columns the inputs of the bench sheet.
+
+After the bench's own entries come columns that belong to one run set each: what its scatter,
+its clock readings or its fresh balls add. The same list of columns serves every output.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy import sparse
+
+from plumbfall.bench.records import Bench
+from plumbfall.estimate import Estimate
+from plumbfall.measurement.balance import Numbers
+from plumbfall.measurement.inputs import Inputs
+from plumbfall.run_sets.repeatability import DECLARED, KNOWN, OF_VALUES, Repeatability
+from plumbfall.measurement.selection import Selection
+from plumbfall.measurement.sensitivities import Sums
+
+__all__ = ["Jacobian", "OwnColumns", "build_jacobian", "own_variances"]
+
+OWN_KINDS = ("scatter", "per_drop", "resolution", "per_reading", "spread")
+"""Errors of one run set alone, in the order of their columns."""
+
+
+@dataclass(frozen=True, slots=True)
+class OwnColumns:
+    """Variances of each run set's mean from errors that every drop has to itself, (run sets,)."""
+
+    per_drop: Numbers
+    resolution: Numbers
+    per_reading: Numbers
+    spread: Numbers
+
+
+@dataclass(frozen=True, slots=True)
+class Jacobian:
+    """Sensitivities of the run sets' viscosities, shape (run sets, columns).
+
+    The first columns are ``Inputs.estimates`` in order, then the second-order ones (their input
+    in ``squared``), then one column a run set for each of ``OWN_KINDS``.
+    """
+
+    matrix: sparse.csr_array
+    u: Numbers
+    dof: Numbers
+    squared: NDArray[np.intp]
+    n_inputs: int
+    n_sets: int
+
+    def input_of(self, column: int) -> int:
+        """Which estimate a column belongs to; -1 for a run set's own columns."""
+        if column < self.n_inputs:
+            return column
+        place = column - self.n_inputs
+        return int(self.squared[place]) if place < len(self.squared) else -1
+
+    def own_kind(self, column: int) -> str:
+        """What a run set's own column stands for."""
+        place = column - self.n_inputs - len(self.squared)
+        return OWN_KINDS[place // self.n_sets]
+
+
+def own_variances(selection: Selection, inputs: Inputs, sums: Sums) -> OwnColumns:
+    """Variances that the instruments' declared repeatabilities give each run set's mean.
+
+    A clock reading's resolution d is rectangular, u = d/sqrt(12), and an interval has two.
+    """
+    cell_set, n_sets = selection.cells.run_set, len(selection.names)
+
+    def by_set(per_cell: Numbers) -> Numbers:
+        return np.bincount(cell_set, weights=per_cell, minlength=n_sets)
+
+    return OwnColumns(
+        per_drop=by_set(sums.timing * inputs.per_drop**2),
+        resolution=by_set(sums.timing * inputs.resolution**2 / 6),
+        per_reading=by_set(sums.reading * inputs.per_reading**2),
+        spread=by_set(sums.lot * inputs.spread**2),
+    )
+
+
+def build_jacobian(
+    selection: Selection,
+    inputs: Inputs,
+    sums: Sums,
+    own: OwnColumns,
+    scatter: Repeatability,
+) -> Jacobian:
+    """Stack the sums over cells into one sparse Jacobian.
+
+    What a run set's observed scatter contains is left out of its row: every drop's own errors,
+    and, where balls were compared, what is individual to a ball.
+    """
+    cell_set, n_sets = selection.cells.run_set, len(selection.names)
+    n_inputs = len(inputs.estimates)
+    rows, columns, values = [], [], []
+    contained = scatter.basis == OF_VALUES
+    for role, sum_ in sums.first.items():
+        entry = inputs.roles[role].entry
+        here = entry >= 0
+        here[here] = ~(contained[cell_set[here]] & inputs.individual[entry[here]])
+        rows.append(cell_set[here])
+        columns.append(entry[here])
+        values.append(sum_[here])
+
+    u, dof = [inputs.u], [inputs.dof]
+    squared: list[int] = []
+    for role, sum_ in sums.second.items():
+        entry = inputs.roles[role].entry
+        for code in np.unique(entry[entry >= 0]):
+            here = entry == code
+            rows.append(cell_set[here])
+            columns.append(np.full(here.sum(), n_inputs + len(squared), dtype=np.intp))
+            # variance f''^2 u^4 / 2 of a squared normal input: JCGM 100:2008, note to 5.1.2
+            values.append(sum_[here] / np.sqrt(2))
+            squared.append(int(code))
+    u.append(inputs.u[squared] ** 2)
+    dof.append(inputs.dof[squared])
+
+    offset = n_inputs + len(squared)
+    declared = scatter.basis == DECLARED
+    spread_counts = declared | (scatter.basis == KNOWN)
+    for kind in OWN_KINDS:
+        if kind == "scatter":
+            own_u, own_dof = scatter.u, scatter.dof
+        else:
+            counts = spread_counts if kind == "spread" else declared
+            own_u = np.where(counts, np.sqrt(getattr(own, kind)), 0.0)
+            own_dof = np.full(n_sets, np.inf)
+        rows.append(np.arange(n_sets))
+        columns.append(offset + np.arange(n_sets))
+        values.append(np.ones(n_sets))
+        u.append(own_u)
+        dof.append(own_dof)
+        offset += n_sets
+
+    matrix = sparse.csr_array(
+        (np.concatenate(values), (np.concatenate(rows), np.concatenate(columns))),
+        shape=(n_sets, offset),
+    )
+    matrix.sum_duplicates()
+    return Jacobian(
+        matrix=matrix,
+        u=np.concatenate(u),
+        dof=np.concatenate(dof),
+        squared=np.array(squared, dtype=np.intp),
+        n_inputs=n_inputs,
+        n_sets=n_sets,
+    )

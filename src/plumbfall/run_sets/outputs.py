@@ -1,0 +1,189 @@
+"""Run sets' results in columns: viscosity, viscosity at a reference temperature, kinematic.
+
+All three are rows of one stacked Jacobian, so that their joint covariance comes with them.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy import sparse
+
+from plumbfall.measurement.balance import Numbers
+from plumbfall.measurement.drops import DropColumns
+from plumbfall.measurement.inputs import Inputs
+from plumbfall.measurement.selection import Selection
+from plumbfall.physics.thermal import liquid_density
+from plumbfall.run_sets.jacobian import Jacobian
+from plumbfall.uncertainty.coverage import coverage_factor
+from plumbfall.uncertainty.linear import Propagation, propagate
+
+__all__ = ["QUANTITIES", "Output", "Outputs", "SetConditions", "compute_outputs", "conditions"]
+
+QUANTITIES = ("viscosity", "viscosity_at_reference", "kinematic_viscosity")
+"""Outputs of a run set, in the order of their rows."""
+
+
+@dataclass(frozen=True, slots=True)
+class SetConditions:
+    """What each run set's liquid is like at the set's temperature, arrays of shape (run sets,).
+
+    ``cell`` is one of the set's cells (-1 where no drop was used); ``slope_known`` whether
+    d ln(viscosity)/dT is given; ``density`` in kg/m3.
+    """
+
+    cell: NDArray[np.intp]
+    slope: Numbers
+    slope_known: NDArray[np.bool_]
+    density: Numbers
+    expansion: Numbers
+    offset: Numbers
+
+
+@dataclass(frozen=True, slots=True)
+class Output:
+    """One quantity of every run set with its coverage interval, arrays of shape (run sets,)."""
+
+    value: Numbers
+    u: Numbers
+    dof: Numbers
+    factor: Numbers
+    expanded: Numbers
+
+    @property
+    def low(self) -> Numbers:
+        """Lower bound."""
+        return self.value - self.expanded
+
+    @property
+    def high(self) -> Numbers:
+        """Upper bound."""
+        return self.value + self.expanded
+
+
+@dataclass(frozen=True)
+class Outputs:
+    """All quantities of all run sets, and the propagation they share."""
+
+    values: Numbers
+    propagation: Propagation
+    coverage: float
+    n_sets: int
+
+    def of(self, quantity: str) -> Output:
+        """Return one quantity in columns."""
+        return self._columns[quantity]
+
+    def rows(self, quantity: str) -> slice:
+        """Rows of the stacked Jacobian that belong to a quantity."""
+        place = QUANTITIES.index(quantity)
+        return slice(place * self.n_sets, (place + 1) * self.n_sets)
+
+    def covariance(self, quantity: str) -> Numbers:
+        """Covariance of the run sets' values of one quantity, shape (run sets, run sets)."""
+        return self.propagation.covariance(self.rows(quantity))
+
+    @cached_property
+    def _columns(self) -> dict[str, Output]:
+        u, dof = self.propagation.u, self.propagation.effective_dof
+        factor = coverage_factor(dof=dof, probability=self.coverage)
+        return {
+            name: Output(
+                value=self.values[rows],
+                u=u[rows],
+                dof=dof[rows],
+                factor=factor[rows],
+                expanded=(factor * u)[rows],
+            )
+            for name in QUANTITIES
+            for rows in (self.rows(name),)
+        }
+
+
+def conditions(selection: Selection, inputs: Inputs, columns: DropColumns) -> SetConditions:
+    """Look up each run set's liquid; a run set has one liquid."""
+    cell = np.full(len(selection.names), -1, dtype=np.intp)
+    cell[selection.cells.run_set] = np.arange(len(selection.cells))
+    density, expansion = inputs.roles["liquid_density"], inputs.roles["liquid_expansion"]
+    offset = np.nan_to_num(columns.set_temperature - inputs.liquid_density_at[cell], nan=0.0)
+    return SetConditions(
+        cell=cell,
+        slope=inputs.roles["slope"].value[cell],
+        slope_known=inputs.slope_known[cell] & (cell >= 0),
+        density=np.asarray(
+            liquid_density(
+                density=density.value[cell],
+                expansion=expansion.value[cell],
+                temperature=offset,
+                reference_temperature=0.0,
+            )
+        ),
+        expansion=expansion.value[cell],
+        offset=offset,
+    )
+
+
+def compute_outputs(
+    jacobian: Jacobian,
+    viscosity: Numbers,
+    liquid: SetConditions,
+    inputs: Inputs,
+    set_temperature: Numbers,
+    reference_temperature: float | None,
+    coverage: float,
+) -> Outputs:
+    """Stack the outputs of every run set and propagate the inputs' uncertainties to them.
+
+    Parameters
+    ----------
+    jacobian : Jacobian
+        Sensitivities of the viscosities.
+    viscosity : array, shape (run sets,) [Pa.s]
+        Each set's value at its own temperature.
+    liquid : SetConditions
+        Density and temperature slope by run set.
+    inputs : Inputs
+        Raw inputs, to know which entry is which.
+    set_temperature : array, shape (run sets,) [K]
+        Mean temperature of each set's values.
+    reference_temperature : float, optional [K]
+        Where the second output holds; NaN results without it.
+    coverage : float
+        Coverage probability of the intervals.
+
+    Returns
+    -------
+    Outputs
+        Values with uncertainties; NaN where there is none.
+    """
+    n = jacobian.n_sets
+    reference = np.nan if reference_temperature is None else reference_temperature
+    distance = np.where(liquid.slope_known, reference - set_temperature, np.nan)
+    to_reference = np.exp(liquid.slope * distance)
+    values = np.concatenate([viscosity, viscosity * to_reference, viscosity / liquid.density])
+
+    def entries(role: str, amounts: Numbers) -> sparse.csr_array:
+        entry = inputs.roles[role].entry[liquid.cell]
+        here = (liquid.cell >= 0) & (entry >= 0)
+        return sparse.csr_array(
+            (amounts[here], (np.flatnonzero(here), entry[here])), shape=jacobian.matrix.shape
+        )
+
+    # A row that does not exist must be NaN in its result, but 0 in the sparse sums.
+    scale = np.nan_to_num(to_reference, nan=0.0)
+    at_reference = sparse.diags_array(scale) @ (
+        jacobian.matrix + entries("slope", viscosity * np.nan_to_num(distance, nan=0.0))
+    )
+    by_expansion = viscosity * liquid.offset / (1 + liquid.expansion * liquid.offset)
+    density_now = inputs.roles["liquid_density"].value[liquid.cell]
+    kinematic = sparse.diags_array(1 / liquid.density) @ (
+        jacobian.matrix
+        - entries("liquid_density", viscosity / density_now)
+        + entries("liquid_expansion", by_expansion)
+    )
+    stacked = sparse.vstack([jacobian.matrix, at_reference, kinematic], format="csr")
+    propagation = propagate(sensitivities=stacked, u=jacobian.u, dof=jacobian.dof)
+    return Outputs(values=values, propagation=propagation, coverage=coverage, n_sets=n)

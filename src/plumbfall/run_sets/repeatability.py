@@ -1,0 +1,112 @@
+"""What the drops' own scatter adds to each run set's uncertainty, and what it replaces.
+
+The rule: where a set has at least two values (ball means, or drops of a lot) their observed
+scatter stands for everything each value has to itself: timing, reading, and what is individual
+to a ball. Where there is one ball, the scatter of its drops stands for what each drop has to
+itself. A set too short to show its own uses the bench's known repeatability if there is one; a
+single drop without it uses what the bench sheet declares of its instruments. Never two of these.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from plumbfall.bench.records import Scatter
+from plumbfall.measurement.balance import Numbers
+from plumbfall.measurement.drops import DropColumns, Weights
+from plumbfall.measurement.selection import Selection
+from plumbfall.uncertainty.type_a import group_scatter
+
+__all__ = ["DECLARED", "FEWEST", "KNOWN", "OF_DROPS", "OF_VALUES", "Repeatability", "repeatability"]
+
+DECLARED, KNOWN, OF_DROPS, OF_VALUES = range(4)
+"""Where a set's scatter is taken from."""
+
+FEWEST = 4
+"""Fewer values than this are too few to show their own scatter (common practice, no source)."""
+
+
+@dataclass(frozen=True, slots=True)
+class Repeatability:
+    """Scatter of each run set, arrays of shape (run sets,).
+
+    ``mean`` is the set's viscosity in Pa.s; ``u`` and ``dof`` those of the mean due to scatter
+    (0 where the declared terms stand); ``basis`` one of the four sources; ``floored`` where the
+    clock's resolution is larger than what was observed. ``value_mean`` has shape (values,).
+    """
+
+    mean: Numbers
+    u: Numbers
+    dof: Numbers
+    basis: NDArray[np.intp]
+    floored: NDArray[np.bool_]
+    value_mean: Numbers
+    drop_sd: Numbers
+
+
+def repeatability(
+    selection: Selection,
+    columns: DropColumns,
+    weights: Weights,
+    resolution_u: Numbers,
+    known: Scatter | None,
+) -> Repeatability:
+    """Evaluate every run set's scatter.
+
+    Parameters
+    ----------
+    selection : Selection
+        The used drops.
+    columns : DropColumns
+        Their viscosities at the run set's temperature.
+    weights : Weights
+        How drops make values, and values a mean.
+    resolution_u : array, shape (run sets,) [Pa.s]
+        What the clock's resolution alone adds to each mean.
+    known : Scatter, optional
+        The bench's known repeatability.
+
+    Returns
+    -------
+    Repeatability
+        By the rule at the head of this module.
+
+    References
+    ----------
+    JCGM 100:2008, 4.2; ball means where balls repeat: JCGM 100:2008, H.5 (analysis of variance).
+    """
+    n_sets = len(selection.names)
+    at_set = columns.at_set
+    value_mean = (
+        np.bincount(weights.value, weights=at_set, minlength=len(weights.value_set))
+        / weights.value_drops
+    )
+    values = group_scatter(value_mean, weights.value_set, n_sets)
+    drops = group_scatter(at_set, selection.run_set, n_sets)
+
+    several = weights.n_values >= 2
+    count = np.where(several, weights.n_values, weights.n_drops)
+    basis = np.where(several, OF_VALUES, np.where(weights.n_drops >= 2, OF_DROPS, DECLARED))
+    if known is not None:
+        basis = np.where(count < FEWEST, KNOWN, basis)
+    observed = np.where(several, values.sd, drops.sd) / np.sqrt(np.maximum(count, 1))
+    u = np.where(basis == DECLARED, 0.0, observed)
+    dof = np.where(basis == DECLARED, np.inf, np.maximum(count - 1, 1).astype(float))
+    if known is not None:
+        squares = np.bincount(selection.run_set, weights=weights.weight**2, minlength=n_sets)
+        by_bench = known.relative.value * values.mean * np.sqrt(squares)
+        u = np.where(basis == KNOWN, by_bench, u)
+        dof = np.where(basis == KNOWN, known.dof, dof)
+    floored = (basis >= OF_DROPS) & (u < resolution_u)
+    return Repeatability(
+        mean=values.mean,
+        u=np.where(floored, resolution_u, u),
+        dof=np.where(floored, np.inf, dof),
+        basis=basis,
+        floored=floored,
+        value_mean=value_mean,
+        drop_sd=drops.sd,
+    )

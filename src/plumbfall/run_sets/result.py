@@ -1,0 +1,300 @@
+"""One run set's columns as a record of results, built when somebody looks at it."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from plumbfall.bench.records import Bench
+from plumbfall.measurement.drops import DropColumns, Weights
+from plumbfall.measurement.inputs import Inputs
+from plumbfall.measurement.selection import Selection
+from plumbfall.measurement.sensitivities import Sums
+from plumbfall.physics.drag import DragLaw
+from plumbfall.physics.stokes import shear_rate
+from plumbfall.results import (
+    BallResult,
+    BudgetLine,
+    Correction,
+    DropResult,
+    Finding,
+    Measured,
+    Quantity,
+    RunSetResult,
+)
+from plumbfall.run_sets.budget import budget_lines
+from plumbfall.run_sets.jacobian import Jacobian
+from plumbfall.run_sets.outputs import Output, Outputs, SetConditions
+from plumbfall.run_sets.repeatability import Repeatability
+from plumbfall.timings.records import Timings
+
+__all__ = ["SetColumns", "build_result", "status_of"]
+
+UNITS = {
+    "viscosity": "Pa.s",
+    "viscosity_at_reference": "Pa.s",
+    "kinematic_viscosity": "m2/s",
+}
+
+
+@dataclass(frozen=True)
+class SetColumns:
+    """Everything that was computed of all run sets, in columns."""
+
+    bench: Bench
+    timings: Timings
+    selection: Selection
+    inputs: Inputs
+    columns: DropColumns
+    sums: Sums
+    weights: Weights
+    scatter: Repeatability
+    jacobian: Jacobian
+    liquid: SetConditions
+    outputs: Outputs
+    law: DragLaw
+
+
+def status_of(findings: tuple[Finding, ...]) -> str:
+    """Return the status of the data: the gravest of its findings."""
+    severities = {finding.severity for finding in findings}
+    if "error" in severities:
+        return "invalid"
+    return "valid-with-warnings" if "warning" in severities else "valid"
+
+
+def build_result(
+    all_sets: SetColumns,
+    run_set: int,
+    used: NDArray[np.intp],
+    rows: NDArray[np.intp],
+    findings: tuple[Finding, ...],
+) -> RunSetResult:
+    """Build the record of one run set.
+
+    Parameters
+    ----------
+    all_sets : SetColumns
+        The columns of every run set.
+    run_set : int
+        Which one.
+    used : array of int
+        Places of its used drops.
+    rows : array of int
+        Rows of the timing table that belong to it, used or not.
+    findings : tuple of Finding
+        What was found in it.
+
+    Returns
+    -------
+    RunSetResult
+        With an empty summary; whoever shows it writes that.
+    """
+    drops = all_sets.columns
+    temperature = float(drops.set_temperature[run_set])
+    cells = np.unique(all_sets.selection.cell[used])
+    invalid = status_of(findings) == "invalid"
+    return RunSetResult(
+        name=all_sets.selection.names[run_set],
+        status=status_of(findings),
+        summary="",
+        n_drops=len(used),
+        n_balls=_count_balls(all_sets, cells, used),
+        n_read=len(rows),
+        tube=_names(all_sets.bench.tubes, all_sets.selection.cells.tube[cells]),
+        liquid=_names(all_sets.bench.liquids, all_sets.selection.cells.liquid[cells]),
+        temperature=None
+        if math.isnan(temperature)
+        else Quantity(temperature, "K", _temperature_u(all_sets, cells)),
+        reference_temperature=all_sets.bench.reference_temperature,
+        viscosity=_measured(all_sets.outputs, "viscosity", run_set),
+        viscosity_at_reference=_measured(all_sets.outputs, "viscosity_at_reference", run_set),
+        kinematic_viscosity=_measured(all_sets.outputs, "kinematic_viscosity", run_set),
+        stokes_viscosity=_stokes(all_sets, used),
+        liquid_density=float(all_sets.liquid.density[run_set]) if len(used) else None,
+        reynolds=_largest(drops.reynolds[used]),
+        diameter_ratio=_largest(drops.diameter_ratio[used]),
+        shear_rate=_largest(
+            np.asarray(
+                shear_rate(fall_speed=drops.fall_speed[used], ball_diameter=drops.diameter[used])
+            )
+        ),
+        shear_stress=_largest(drops.shear_stress[used]),
+        corrections=() if invalid else _corrections(all_sets, used),
+        budget=budget_lines(
+            all_sets.jacobian, all_sets.inputs, all_sets.sums, all_sets.selection,
+            all_sets.scatter, all_sets.bench, run_set,
+        ),  # fmt: skip
+        balls=_balls(all_sets, used),
+        drops=_drops(all_sets, run_set, used, rows, findings),
+        findings=findings,
+    )
+
+
+def _measured(outputs: Outputs, quantity: str, run_set: int) -> Measured | None:
+    column: Output = outputs.of(quantity)
+    if not math.isfinite(column.value[run_set]):
+        return None
+    return Measured(
+        value=float(column.value[run_set]),
+        unit=UNITS[quantity],
+        u=float(column.u[run_set]),
+        effective_dof=float(column.dof[run_set]),
+        coverage_probability=outputs.coverage,
+        coverage_factor=float(column.factor[run_set]),
+        expanded=float(column.expanded[run_set]),
+        low=float(column.low[run_set]),
+        high=float(column.high[run_set]),
+    )
+
+
+def _largest(values: NDArray[np.float64]) -> float | None:
+    largest = float(np.nanmax(values)) if len(values) and not np.isnan(values).all() else math.nan
+    return None if math.isnan(largest) else largest
+
+
+def _names(known: object, codes: NDArray[np.intp]) -> str:
+    names = list(known)  # type: ignore[call-overload]  # a mapping of any kind
+    return ", ".join(names[code] for code in np.unique(codes))
+
+
+def _count_balls(
+    all_sets: SetColumns, cells: NDArray[np.intp], used: NDArray[np.intp]
+) -> int:
+    """Balls that were dropped; a lot's drops are a ball each."""
+    fresh = all_sets.inputs.lot[all_sets.selection.cell[used]]
+    reused = cells[~all_sets.inputs.lot[cells]]
+    return int(fresh.sum()) + len(np.unique(all_sets.selection.cells.ball[reused]))
+
+
+def _temperature_u(all_sets: SetColumns, cells: NDArray[np.intp]) -> float:
+    """What all readings share: the thermometer's correction, and a reading for the whole set."""
+    entries = {
+        int(all_sets.inputs.roles[role].entry[cell])
+        for role in ("thermometer", "temperature")
+        for cell in cells
+    }
+    return math.hypot(*(all_sets.inputs.estimates[entry].u for entry in entries if entry >= 0))
+
+
+def _stokes(all_sets: SetColumns, used: NDArray[np.intp]) -> Quantity | None:
+    value = float(np.sum(all_sets.weights.weight[used] * all_sets.columns.stokes[used]))
+    return Quantity(value, "Pa.s") if len(used) and math.isfinite(value) and value > 0 else None
+
+
+def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correction, ...]:
+    if not len(used):
+        return ()
+    law, drops = all_sets.law, all_sets.columns
+    wall = float(drops.wall[used].mean())
+    total = float(drops.drag_factor[used].mean())
+    return (
+        Correction("wall", wall, law.wall_law.name, law.wall_law.citation),
+        Correction(
+            "inertia",
+            total / wall,
+            f"{law.inertia_law.name}, joined by the {law.together_law.name} rule",
+            "; ".join(dict.fromkeys((law.inertia_law.citation, law.together_law.citation))),
+        ),
+        Correction(
+            "ends",
+            1.0,
+            "none: an end is not felt beyond one bore radius",
+            "Tanner 1963, J. Fluid Mech. 17, 161",
+        ),
+        Correction(
+            "run-in",
+            1.0,
+            "none: the ball is at its terminal speed at the first mark",
+            "guard distance, see the documentation",
+        ),
+    )
+
+
+def _balls(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[BallResult, ...]:
+    drops, selection = all_sets.columns, all_sets.selection
+    ball = selection.cells.ball[selection.cell[used]]
+    names = list(all_sets.bench.balls)
+    found = []
+    for code in dict.fromkeys(ball.tolist()):
+        here = used[ball == code]
+        value = drops.at_set[here]
+        rate = shear_rate(fall_speed=drops.fall_speed[here], ball_diameter=drops.diameter[here])
+        scatter = float(value.std(ddof=1) / math.sqrt(len(value))) if len(value) > 1 else math.nan
+        found.append(
+            BallResult(
+                ball=names[code],
+                n_drops=len(here),
+                viscosity=Quantity(float(value.mean()), "Pa.s", scatter),
+                reynolds=float(drops.reynolds[here].max()),
+                diameter_ratio=float(drops.diameter_ratio[here].max()),
+                shear_rate=float(np.max(rate)),
+                shear_stress=float(drops.shear_stress[here].max()),
+            )
+        )
+    return tuple(found)
+
+
+def _drops(
+    all_sets: SetColumns,
+    run_set: int,
+    used: NDArray[np.intp],
+    rows: NDArray[np.intp],
+    findings: tuple[Finding, ...],
+) -> tuple[DropResult, ...]:
+    columns = all_sets.columns
+    place = dict(zip(all_sets.selection.row[used].tolist(), used.tolist(), strict=True))
+    mean = float(all_sets.scatter.mean[run_set])
+    codes: dict[int, list[str]] = {}
+    for finding in findings:
+        for number in finding.drops:
+            codes.setdefault(number, []).append(finding.code)
+    shown = ["file", "line", "drop", "ball", "time_s", "temperature_K", "status", "note"]
+    ball_names = list(all_sets.bench.balls)
+
+    def number(values: NDArray[np.float64], at: int | None) -> float | None:
+        if at is None or not math.isfinite(values[at]):
+            return None
+        return float(values[at])
+
+    drops = []
+    for row, record in zip(
+        rows.tolist(), all_sets.timings.table[shown].iloc[rows].itertuples(index=False), strict=True
+    ):
+        at = place.get(row)
+        at_set = number(columns.at_set, at)
+        wall = number(columns.wall, at)
+        total = number(columns.drag_factor, at)
+        ball = str(record.ball)
+        if at is not None:
+            ball = ball_names[all_sets.selection.cells.ball[all_sets.selection.cell[at]]]
+        drops.append(
+            DropResult(
+                file=str(record.file),
+                line=int(record.line),
+                drop=int(record.drop),
+                ball=ball,
+                time=float(record.time_s),
+                temperature=float(record.temperature_K)
+                if at is None
+                else float(columns.temperature[at]),
+                viscosity=number(columns.viscosity, at),
+                viscosity_at_set=at_set,
+                stokes_viscosity=number(columns.stokes, at),
+                reynolds=number(columns.reynolds, at),
+                fall_speed=number(columns.fall_speed, at),
+                wall=wall,
+                inertia=total / wall if total is not None and wall is not None else None,
+                end=None if at is None else 1.0,
+                residual=at_set / mean - 1 if at_set is not None and mean else None,
+                used=at is not None,
+                status=str(record.status),
+                note=str(record.note),
+                findings=tuple(codes.get(int(record.drop), ())),
+            )
+        )
+    return tuple(drops)
+

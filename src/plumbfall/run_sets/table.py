@@ -1,0 +1,57 @@
+"""The run-set table: one row a run set, numeric, in units that never vary."""
+
+from __future__ import annotations
+
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from plumbfall.results import Finding
+from plumbfall.run_sets.result import SetColumns, status_of
+
+if TYPE_CHECKING:
+    import pandas as pd
+
+__all__ = ["summary_table"]
+
+CELSIUS_ZERO = 273.15
+
+
+def summary_table(sets: SetColumns, found: tuple[tuple[Finding, ...], ...]) -> pd.DataFrame:
+    """Return the columns of ``run_sets.csv`` for all run sets, without building their records."""
+    import pandas as pd
+
+    viscosity = sets.outputs.of("viscosity")
+    n_sets = len(sets.selection.names)
+    reference = sets.bench.reference_temperature
+    at_reference = sets.outputs.of("viscosity_at_reference").value
+    balls = np.where(sets.inputs.lot, 0, 1)
+    pairs = np.unique(
+        np.stack([sets.selection.cells.run_set, sets.selection.cells.ball], axis=1)[balls == 1],
+        axis=0,
+    )
+    fresh = np.bincount(
+        sets.selection.run_set[sets.inputs.lot[sets.selection.cell]], minlength=n_sets
+    )
+    n_balls = np.bincount(pairs[:, 0], minlength=n_sets) + fresh
+    return pd.DataFrame(
+        {
+            "set": list(sets.selection.names),
+            "status": [status_of(findings) for findings in found],
+            "viscosity_mPa_s": viscosity.value * 1e3,
+            "standard_uncertainty_mPa_s": viscosity.u * 1e3,
+            "expanded_uncertainty_mPa_s": viscosity.expanded * 1e3,
+            "coverage_factor": viscosity.factor,
+            "coverage_probability": sets.outputs.coverage,
+            "low_mPa_s": viscosity.low * 1e3,
+            "high_mPa_s": viscosity.high * 1e3,
+            "temperature_degC": sets.columns.set_temperature - CELSIUS_ZERO,
+            "viscosity_at_reference_mPa_s": at_reference * 1e3,
+            "reference_temperature_degC": np.nan if reference is None else reference - CELSIUS_ZERO,
+            "n_drops": sets.weights.n_drops,
+            "n_balls": n_balls,
+            "findings": [
+                " ".join(dict.fromkeys(finding.code for finding in findings)) for findings in found
+            ],
+        }
+    )

@@ -1,0 +1,1 @@
+"""Propagation of uncertainty through any function of named inputs; it knows nothing of balls."""

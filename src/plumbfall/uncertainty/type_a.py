@@ -1,0 +1,90 @@
+"""Type A evaluation: what repeated values say of their own scatter (JCGM 100:2008, 4.2)."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+__all__ = ["GroupScatter", "Means", "group_scatter", "means_of_series"]
+
+
+@dataclass(frozen=True, slots=True)
+class GroupScatter:
+    """Mean and standard deviation of grouped values, each of shape (groups,).
+
+    ``sd`` is NaN for groups of fewer than two values.
+    """
+
+    n: NDArray[np.intp]
+    mean: NDArray[np.float64]
+    sd: NDArray[np.float64]
+
+
+def group_scatter(
+    values: NDArray[np.float64], group: NDArray[np.intp], n_groups: int
+) -> GroupScatter:
+    """Experimental standard deviation of every group at once.
+
+    Parameters
+    ----------
+    values : array, shape (values,)
+        Any unit.
+    group : array of int, shape (values,)
+        The group of each value.
+    n_groups : int
+        How many groups there are; some may be empty.
+
+    Returns
+    -------
+    GroupScatter
+        In two passes, so that a large offset costs no digits.
+
+    References
+    ----------
+    JCGM 100:2008, 4.2.2, formula (4).
+    """
+    n = np.bincount(group, minlength=n_groups)
+    with np.errstate(invalid="ignore", divide="ignore"):
+        mean = np.bincount(group, weights=values, minlength=n_groups) / n
+        mean += np.bincount(group, weights=values - mean[group], minlength=n_groups) / n
+        squares = np.bincount(group, weights=(values - mean[group]) ** 2, minlength=n_groups)
+        sd = np.where(n > 1, np.sqrt(squares / (n - 1)), np.nan)
+    return GroupScatter(n=n, mean=mean, sd=sd)
+
+
+@dataclass(frozen=True, slots=True)
+class Means:
+    """Means of quantities observed together, with the covariance of the means."""
+
+    mean: NDArray[np.float64]
+    u: NDArray[np.float64]
+    correlation: NDArray[np.float64]
+    dof: int
+
+
+def means_of_series(observations: ArrayLike) -> Means:
+    """Means, standard uncertainties and correlation of simultaneous observations.
+
+    Parameters
+    ----------
+    observations : array, shape (quantities, repeats)
+        Column j holds what was read at the same time.
+
+    Returns
+    -------
+    Means
+        u = s/sqrt(n); the correlation coefficients are those of the means; dof = n - 1.
+
+    References
+    ----------
+    JCGM 100:2008, 4.2.3 and 5.2.3, formula (17).
+    """
+    observed = np.atleast_2d(np.asarray(observations, dtype=float))
+    n = observed.shape[1]
+    covariance = np.atleast_2d(np.cov(observed, ddof=1)) / n
+    u = np.sqrt(np.diag(covariance))
+    return Means(
+        mean=observed.mean(axis=1), u=u, correlation=covariance / np.outer(u, u), dof=n - 1
+    )

@@ -1,0 +1,97 @@
+"""The analytic Jacobian against differences of the whole chain, for every input of the bench."""
+
+from __future__ import annotations
+
+import dataclasses
+
+import numpy as np
+import pandas as pd
+import pytest
+from support.benches import bench_dict
+
+import plumbfall as pf
+from plumbfall.bench.records import Bench
+from plumbfall.estimate import Estimate
+from plumbfall.reduction import reduce_drops
+
+DROPS = pd.DataFrame(
+    {
+        "set": ["A"] * 8 + ["B"] * 4,
+        "ball": ["B1", "B1", "B2", "B2", "B3", "B3", "B4", "B4", "B1", "B3", "B3", "B4"],
+        "time [s]": [15.05, 15.08, 9.80, 9.79, 6.91, 6.92, 4.00, 4.01, 3.01, 1.45, 1.46, 0.95],
+        "temperature [degC]": [25.0, 25.4, 24.9, 25.1, 26.0, 25.2, 25.0, 24.8, 40.0, 40.2, 41, 40],
+    }
+)
+
+
+def perturbed(record: object, name: str, step: float) -> object:
+    """Return records with the value of every estimate of a name moved."""
+    if isinstance(record, Estimate):
+        if record.name != name:
+            return record
+        return dataclasses.replace(record, value=record.value + step)
+    if isinstance(record, tuple):
+        return tuple(perturbed(one, name, step) for one in record)
+    if hasattr(record, "items"):
+        return {key: perturbed(value, name, step) for key, value in record.items()}
+    if dataclasses.is_dataclass(record) and not isinstance(record, type):
+        moved = {
+            field.name: perturbed(getattr(record, field.name), name, step)
+            for field in dataclasses.fields(record)
+            if field.name != "source"
+        }
+        return dataclasses.replace(record, **moved)
+    return record
+
+
+@pytest.mark.parametrize(
+    "site",
+    [
+        {"gravity": "9.8123(1) m/s2"},
+        {"latitude": "52.1(1) deg", "elevation": "400(20) m"},
+    ],
+)
+def test_every_sensitivity_agrees_with_differences(site):
+    bench = pf.read_bench(bench_dict(site=site, bench__reference_temperature="20 degC"))
+    timings = pf.read_timings(DROPS, bench)
+    reduced = reduce_drops(timings, bench)
+    jacobian = reduced.sets.jacobian
+    checked = 0
+    set_temperature = reduced.sets.columns.set_temperature
+    slope = bench.liquids["oil"].viscosity_slope.value
+
+    def viscosities(moved: Bench) -> np.ndarray:
+        again = reduce_drops(timings, moved).sets
+        # The value holds at the temperature first reported, whatever the thermometer's error was.
+        shift = again.columns.set_temperature - set_temperature
+        moved_slope = moved.liquids["oil"].viscosity_slope.value
+        return again.scatter.mean * np.exp(-moved_slope * shift)
+
+    for column, estimate in enumerate(reduced.sets.inputs.estimates):
+        if estimate.name == "methods.model_uncertainty":
+            continue
+        step = max(abs(estimate.value) * 1e-5, estimate.u * 1e-3)
+        up = viscosities(perturbed(bench, estimate.name, step))
+        down = viscosities(perturbed(bench, estimate.name, -step))
+        differences = (up - down) / (2 * step)
+        # Individual ball inputs are left out of the Jacobian's rows: they are in the scatter.
+        individual = reduced.sets.inputs.individual[column]
+        analytic = jacobian.matrix[:, [column]].toarray().ravel()
+        if individual:
+            assert (analytic == 0).all()
+            analytic = own_sums(reduced, column)
+        scale = np.abs(differences) + 1e-9 * reduced.sets.scatter.mean / max(step, 1e-12) * 1e-3
+        np.testing.assert_allclose(analytic / scale, differences / scale, rtol=2e-6, atol=2e-6)
+        checked += 1
+    assert checked >= 20
+    assert slope < 0
+
+
+def own_sums(reduced, column: int) -> np.ndarray:
+    """Sum the sensitivities to an input over each run set, contained in the scatter or not."""
+    sets = reduced.sets
+    total = np.zeros(len(reduced.names))
+    for role, sums in sets.sums.first.items():
+        here = sets.inputs.roles[role].entry == column
+        np.add.at(total, sets.selection.cells.run_set[here], sums[here])
+    return total

@@ -1,0 +1,1 @@
+"""What several tests share: invented benches, tables of drops, a simulated fall."""
