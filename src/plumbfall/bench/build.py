@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from types import MappingProxyType
 from typing import Any
 
-from plumbfall.bench import records, run_keys
+from plumbfall.bench import choice_keys, records, run_keys
 from plumbfall.bench.build_equipment import (
     balance_from,
     ball_from,
@@ -152,7 +152,7 @@ def _constant(name: str, keys: run_keys.ConstantKeys) -> records.Constant:
     )
 
 
-def _timings(keys: run_keys.TimingsKeys) -> records.TimingHints:
+def _timings(keys: choice_keys.TimingsKeys) -> records.TimingHints:
     return records.TimingHints(
         columns=MappingProxyType(dict(keys.columns)),
         units=MappingProxyType(dict(keys.units)),
@@ -164,9 +164,11 @@ def _timings(keys: run_keys.TimingsKeys) -> records.TimingHints:
     )
 
 
-def _methods(keys: run_keys.MethodKeys) -> records.Methods:
+def _methods(keys: choice_keys.MethodKeys) -> records.Methods:
+    """Return the choices; ``drag`` names every law of the drag that the sheet chooses."""
+    words = [word for word in (keys.drag, keys.walls, keys.inertia) if word]
     return records.Methods(
-        drag=keys.drag,
+        drag=" ".join(words) or None,
         ends=keys.ends,
         run_in=keys.run_in,
         walls=keys.walls,

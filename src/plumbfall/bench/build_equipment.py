@@ -39,8 +39,9 @@ def timer_from(name: str, keys: equipment.TimerKeys) -> records.Timer:
             given[key] = read_quantity(written, "ratio" if key == "rate" else "time")
             stand_in.append(key)
         elif key == "per_drop":
-            frame = keys.resolution.value if keys.resolution else FRAME_INTERVAL
-            given[key] = Estimate(video_scatter(frame), unit="s", text="frame interval / √6")
+            # A frame interval that is given as the resolution counts as that, not twice.
+            scatter = 0.0 if keys.resolution else video_scatter(FRAME_INTERVAL)
+            given[key] = Estimate(scatter, unit="s", text=f"{scatter:.4f} s")
             stand_in.append(key)
     parts = ("timer", name)
     return records.Timer(

@@ -12,6 +12,7 @@ __all__ = [
     "SLOPES",
     "SURFACES",
     "TIMER_KINDS",
+    "TOGETHER",
     "TUBE_KINDS",
     "WALLS",
 ]
@@ -32,8 +33,10 @@ INERTIA = (
     "abraham",
 )
 """Laws of the inertia factor in an unbounded liquid; ``stokes`` is none."""
-DRAG = ("table", "screened", "additive", "product")
+TOGETHER = ("table", "screened", "additive", "product")
 """How wall and inertia act together."""
+DRAG = {"together": TOGETHER, "walls": WALLS, "inertia": INERTIA}
+"""The parts of a drag law, and the laws for each."""
 ENDS = ("table", "classical", "none")
 """The tube's ends: the computed excess, the 1907 factor, or nothing."""
 RUN_IN = ("table", "none")

@@ -264,7 +264,10 @@ class TimingHints:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Methods:
-    """Choices among the registered laws; ``None`` means the default, which the report names."""
+    """Choices among the registered laws; ``None`` means the default, which the report names.
+
+    ``drag`` names every law of the drag that was chosen, those of ``walls`` and ``inertia`` too.
+    """
 
     drag: str | None = None
     ends: str | None = None

@@ -11,7 +11,7 @@ from typing import Annotated, Any
 
 from pydantic import Field
 
-from plumbfall.bench import equipment_keys, paper_keys, run_keys
+from plumbfall.bench import choice_keys, equipment_keys, paper_keys, run_keys
 from plumbfall.bench.common_keys import EMPTY, Keys, doc
 from plumbfall.bench.quantity_fields import QUANTITY_SHAPE
 from plumbfall.quantities import DIMENSIONS
@@ -44,13 +44,13 @@ class Sheet(Keys):
     reference: Annotated[dict[str, run_keys.ReferenceKeys], doc("certified liquids"), EMPTY]
     constant: Annotated[dict[str, run_keys.ConstantKeys], doc("tube constants"), EMPTY]
     timings: Annotated[
-        run_keys.TimingsKeys,
+        choice_keys.TimingsKeys,
         doc("reading of timing files"),
-        Field(default_factory=lambda: run_keys.TimingsKeys.model_validate({})),
+        Field(default_factory=lambda: choice_keys.TimingsKeys.model_validate({})),
     ]
-    methods: Annotated[run_keys.MethodKeys, doc("laws chosen")] = run_keys.MethodKeys()
+    methods: Annotated[choice_keys.MethodKeys, doc("laws chosen")] = choice_keys.MethodKeys()
     limits: Annotated[
-        dict[str, float | bool], run_keys.limits, doc("limits that findings use"), EMPTY
+        dict[str, float | bool], choice_keys.limits, doc("limits that findings use"), EMPTY
     ]
 
 

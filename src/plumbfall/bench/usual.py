@@ -72,8 +72,8 @@ USUAL: Mapping[str, UsualTimer] = MappingProxyType(
             rate="0.0 ± 0.1 %, limits",
             resolution="",
             sources={
-                "per_drop": "frame interval over the square root of 6 (triangular error, GUM "
-                "4.3.9), at 30 frames a second unless resolution says otherwise",
+                "per_drop": "30 frames a second, frame interval over the square root of 6 "
+                "(triangular error, GUM 4.3.9); zero where resolution gives the frame interval",
                 "bias": _COMMON,
                 "rate": "29.97 frames a second read as 30 are 0.1 % off; common practice, no "
                 "source",
