@@ -3,6 +3,6 @@
 from __future__ import annotations
 
 from plumbfall.timings.reader import collect, read_timings
-from plumbfall.timings.records import Repair, TimingFile, Timings
+from plumbfall.timings.records import ColumnRead, Repair, TimingFile, Timings
 
-__all__ = ["Repair", "TimingFile", "Timings", "collect", "read_timings"]
+__all__ = ["ColumnRead", "Repair", "TimingFile", "Timings", "collect", "read_timings"]

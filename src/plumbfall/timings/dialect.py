@@ -8,10 +8,10 @@ from collections.abc import Sequence
 from itertools import islice
 
 from plumbfall.errors import nearest_name
-from plumbfall.timings.headings import read_heading
+from plumbfall.timings.headings import has_times, read_heading
 from plumbfall.timings.notices import Notices, quoted
 
-__all__ = ["DELIMITERS", "find_delimiter", "find_headings", "first_lines"]
+__all__ = ["DELIMITERS", "find_delimiter", "find_headings", "first_lines", "note_lower_headings"]
 
 DELIMITERS = {",": "comma", ";": "semicolon", "\t": "tab", "|": "pipe"}
 _NAMES = {name: mark for mark, name in DELIMITERS.items()} | {"\\t": "\t"}
@@ -23,8 +23,14 @@ def first_lines(data: bytes, count: int = 60) -> list[str]:
     return [line.decode("utf-8", "replace") for line in islice(lines, count)]
 
 
-def find_headings(lines: Sequence[str], declared: int | None, notices: Notices) -> int | None:
-    """Return the line, from 1, of the headings: the declared one, or the first with text."""
+def find_headings(
+    lines: Sequence[str], declared: int | None, notices: Notices, *, known: bool = True
+) -> int | None:
+    """Return the line, from 1, of the headings: the declared one, or the first with text.
+
+    Where that line has no column of times and a later one has, it is pointed out and refused;
+    not so where headings are declared in the bench sheet, and thus not ``known`` to us.
+    """
     if declared is not None:
         if 1 <= declared <= len(lines) and lines[declared - 1].strip():
             passed = [n for n, line in enumerate(lines[: declared - 1], 1) if line.strip()]
@@ -39,9 +45,31 @@ def find_headings(lines: Sequence[str], declared: int | None, notices: Notices) 
         return None
     for number, line in enumerate(lines, 1):
         if line.strip() and not line.startswith("#"):
-            return number
+            lower = _lower_headings(lines, number) if known else None
+            if lower is None:
+                return number
+            note_lower_headings(number, lower, notices)
+            return None
     notices.error("the file holds comments only", "it needs headings and one row for each drop")
     return None
+
+
+def _lower_headings(lines: Sequence[str], first: int) -> int | None:
+    if any(has_times(_cells(lines[first - 1], mark)) for mark in DELIMITERS):
+        return None
+    for number, line in enumerate(lines[first:], first + 1):
+        if any(mark in line and has_times(_cells(line, mark)) for mark in DELIMITERS):
+            return number
+    return None
+
+
+def note_lower_headings(first: int, found: int, notices: Notices) -> None:
+    """Point to a line further down that reads like the headings."""
+    notices.error(
+        f"line {found} reads like the headings, but line {first} is the first with text",
+        f"set header_row = {found} under [timings] in the bench sheet, or delete the lines above",
+        found,
+    )
 
 
 def _cells(line: str, delimiter: str) -> list[str]:

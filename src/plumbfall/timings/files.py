@@ -11,7 +11,7 @@ from pathlib import Path
 
 import numpy as np
 
-from plumbfall.timings.cells import LONGEST_LINE
+from plumbfall.timings.grid import LONGEST_LINE
 from plumbfall.timings.notices import Notices, quoted
 
 __all__ = ["LARGEST_FILE", "RawFile", "decode", "expand", "load"]
@@ -61,7 +61,9 @@ def expand(sources: Iterable[str | os.PathLike[str]], notices: Notices) -> list[
         if glob.has_magic(typed) and not os.path.exists(typed):
             found = sorted(glob.glob(typed, recursive=True))
             if not found:
-                notices.error(f"no file matches {quoted(typed)}", "check the folder and the name")
+                notices.error(
+                    "no file matches this pattern", "check the folder and the name", path=typed
+                )
         for path in found:
             same = os.path.realpath(path)
             if same in paths:
@@ -142,9 +144,7 @@ def decode(raw: RawFile, encoding: str | None, notices: Notices) -> tuple[bytes,
         notices.error("the file is empty", "it needs headings and one row for each drop")
         return None
     if not text.endswith(b"\n"):
-        notices.repair(
-            "the last line has no line end; see that it is whole", text.count(b"\n") + 1
-        )
+        notices.repair("the last line has no line end; see that it is whole", text.count(b"\n") + 1)
     return text, found
 
 

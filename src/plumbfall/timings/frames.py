@@ -8,8 +8,8 @@ from collections.abc import Hashable
 import numpy as np
 import pandas as pd
 
-from plumbfall.timings.cells import Grid
 from plumbfall.timings.columns import Column, FloatColumn, TextColumn
+from plumbfall.timings.grid import Grid
 from plumbfall.timings.notices import Notices
 
 __all__ = ["FRAME_NAME", "FRAME_STEM", "frame_grid", "frame_sha256"]
@@ -27,9 +27,7 @@ def frame_grid(frame: pd.DataFrame, notices: Notices) -> Grid:
     columns = tuple(_column(frame.iloc[:, place]) for place in range(frame.shape[1]))
     if not columns or not len(frame):
         notices.error("the table is empty", "it needs one row for each drop")
-    return Grid(
-        headings, None, np.arange(1, len(frame) + 1, dtype=np.int64), columns, decimal="."
-    )
+    return Grid(headings, None, np.arange(1, len(frame) + 1, dtype=np.int64), columns, decimal=".")
 
 
 def frame_sha256(frame: pd.DataFrame) -> str:

@@ -8,7 +8,15 @@ from dataclasses import dataclass
 
 from plumbfall.timings.units import temperature_unit, time_unit
 
-__all__ = ["FIELDS", "SERIES", "Heading", "known_headings", "normalised", "read_heading"]
+__all__ = [
+    "FIELDS",
+    "SERIES",
+    "Heading",
+    "has_times",
+    "known_headings",
+    "normalised",
+    "read_heading",
+]
 
 FIELDS = {
     "set": ("batch", "sample", "run", "run set", "runset", "run set name", "batch no", "series"),
@@ -107,9 +115,8 @@ def _split(text: str) -> Iterable[tuple[str, str]]:
         unit = unit.strip()
         if found and (time_unit(unit) or temperature_unit(unit) or separator == "/"):
             yield name, unit
-    # temperature_deg_C
-    if found := re.fullmatch(r"(.+?)_(deg_[CFcf])", text.strip()):
-        yield found[1], found[2]
+    if degrees := re.fullmatch(r"(.+?)_(deg_[CFcf])", text.strip()):
+        yield degrees[1], degrees[2]
 
 
 def read_heading(text: str, column: int) -> Heading:
@@ -126,3 +133,8 @@ def read_heading(text: str, column: int) -> Heading:
         if meaning and (not unit or meaning[0] in _QUANTITIES or "[" in text or "(" in text):
             return Heading(text.strip(), column, meaning[0], meaning[1], unit)
     return Heading(text.strip(), column)
+
+
+def has_times(texts: Iterable[str]) -> bool:
+    """Say whether cells read like headings, with a column of times among them."""
+    return any(read_heading(text, 1).meaning in SERIES for text in texts)

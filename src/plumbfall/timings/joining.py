@@ -27,7 +27,7 @@ def join_drops(
     labels["file"] = _stacked([Labels.constant(one.path, len(one)) for one in drops])
     status = _joined([one.status for one in drops])
     columns: dict[str, object] = {name: label.categorical() for name, label in labels.items()}
-    columns["status"] = pd.Categorical.from_codes(status, categories=list(STATUSES))
+    columns["status"] = Labels(status, STATUSES).categorical()
     columns["line"] = _joined([one.line for one in drops])
     columns["column"] = _joined([one.column for one in drops])
     columns["from_mark"] = _joined([one.from_mark for one in drops])
@@ -82,15 +82,13 @@ def _mind_equal_sets(drops: Sequence[FileDrops], notices: Notices) -> None:
                 else f"{paths}: run set {quoted(name)} is named in a column of one file, and is the"
                 " name of another"
             )
-            notices.error(
-                message, 'add a column "set" that names the run sets, or rename the file'
-            )
+            notices.error(message, 'add a column "set" that names the run sets, or rename the file')
         else:
             notices.repair(f"rows of run set {quoted(name)} are joined from {paths}")
 
 
 def _numbered(drops: Sequence[FileDrops], sets: Labels, notices: Notices) -> Integers:
-    """Number drops within their sets where files do not, or where joined files collide."""
+    """Return drop numbers: in order where files give none, or where joined files collide."""
     numbers = _joined([one.drop for one in drops])
     if not numbers.size:
         return numbers

@@ -84,9 +84,13 @@ def read_labels(
             name = read_moment(text)
         elif meaning == "note":
             if len(text) > _LONGEST_NOTE:
-                name = Fault(f"the note has {len(text)} characters", f"write {_LONGEST_NOTE} or less")
+                name = Fault(
+                    f"the note has {len(text)} characters", f"write at most {_LONGEST_NOTE}"
+                )
         else:
-            name = "" if is_missing(text) and meaning != "set" else " ".join(text.split())
+            # initials may well be NA, so that an operator is taken as written
+            absent = is_missing(text) and meaning != "operator"
+            name = "" if absent else " ".join(text.split())
             if len(name) > LONGEST_NAME:
                 name = Fault(
                     f"the {meaning} {quoted(text, 20)} has {len(text)} characters",

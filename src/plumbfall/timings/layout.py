@@ -8,8 +8,9 @@ from dataclasses import dataclass, field
 from plumbfall.errors import nearest_name
 from plumbfall.timings.headings import Heading, known_headings, normalised, read_heading
 from plumbfall.timings.notices import Notices, quoted
+from plumbfall.timings.records import ColumnRead
 
-__all__ = ["Layout", "find_layout", "has_times", "read_headings"]
+__all__ = ["Layout", "columns_read", "declared_unit", "find_layout", "read_headings"]
 
 _PLURAL = {"time": "time", "mark": "marks", "interval": "intervals", "repeat": "repeats"}
 
@@ -86,12 +87,6 @@ def _note_meaning(name: str, meaning: str, notices: Notices) -> None:
     )
 
 
-def has_times(texts: Sequence[str]) -> bool:
-    """Say whether a row of cells reads like headings, with a column of times among them."""
-    meanings = [read_heading(text, 1).meaning for text in texts]
-    return any(meaning in _PLURAL for meaning in meanings)
-
-
 def find_layout(
     headings: Sequence[Heading], heading_line: int | None, notices: Notices
 ) -> Layout | None:
@@ -100,46 +95,41 @@ def find_layout(
     ``None``, and an error in the notices, where they describe none or more than one.
     """
     fields, series = _sorted(headings, heading_line, notices)
-    kinds = [kind for kind in ("mark", "interval", "repeat", "time") if series.get(kind)]
+    groups = [(kind, columns) for kind, columns in series.items()]
     if "time" in fields:
-        kinds.append("time")
-    if not kinds:
+        groups.append(("time", [fields["time"]]))
+    if not groups:
         _note_no_times(headings, heading_line, notices)
         return None
-    if len(kinds) > 1:
-        first = {kind: (series.get(kind) or [fields["time"]])[0] for kind in kinds if series}
-        named = " and ".join(quoted(first[kind].text) for kind in first) or "two kinds"
-        if kinds.count("time") == 2:
-            named = f"{quoted(fields['time'].text)} and {quoted(series['time'][0].text)}"
+    if len(groups) > 1:
+        firsts = sorted((columns[0] for _, columns in groups), key=lambda first: first.column)
         notices.error(
-            f"times are given in two layouts at once: {named}",
+            "times are given in two layouts at once: "
+            + " and ".join(quoted(first.text) for first in firsts),
             "leave one of them out, or rename its columns so that they are not read",
             heading_line,
-            max(heading.column for heading in first.values()),
+            firsts[1].column,
         )
         return None
-    kind = kinds[0]
     if "time" in fields:
         return Layout("time", (fields["time"],), fields)
-    columns = sorted(series[kind], key=lambda heading: heading.number)
-    first_number = columns[0].number
-    allowed = (1, 2) if kind == "mark" else (1,)
+    kind, columns = groups[0]
+    columns = sorted(columns, key=lambda heading: heading.number)
     numbers = [heading.number for heading in columns]
-    if first_number not in allowed or numbers != list(
-        range(first_number, first_number + len(numbers))
-    ):
-        absent = next(n for n in range(1, numbers[-1] + 2) if n not in numbers and n + 1 > 1)
-        if kind == "mark" and absent == 1:
-            absent = next(n for n in range(2, numbers[-1] + 2) if n not in numbers)
+    first_number = 2 if kind == "mark" and 1 not in numbers else 1
+    wanted = range(first_number, first_number + len(numbers))
+    if numbers != list(wanted):
+        absent = next(number for number in wanted if number not in numbers)
+        after = next(heading for heading in columns if heading.number > absent)
         notices.error(
-            f"there is no column {quoted(f'{kind} {absent}')}, but one after it",
+            f"there is {quoted(after.text)} but no column {quoted(f'{kind} {absent}')}",
             f"number the columns {kind} 1, {kind} 2, … without a gap",
             heading_line,
-            next((h.column for h in columns if h.number > absent), columns[-1].column),
+            after.column,
         )
         return None
-    near_mark = kind == "mark" and first_number == 2 and _near(headings, "mark 1")
-    if near_mark:
+    near_mark = _near(headings, "mark 1") if first_number == 2 else None
+    if near_mark is not None:
         notices.error(
             f"column {quoted(near_mark.text)} may be meant as mark 1",
             'write its heading as "mark 1 [s]"; without mark 1 the clock starts there at 0',
@@ -147,7 +137,7 @@ def find_layout(
             near_mark.column,
         )
         return None
-    if kind == "mark" and len(columns) + first_number - 1 < 2:
+    if kind == "mark" and numbers[-1] < 2:
         notices.error(
             "a time needs two marks, and there is a column for one only",
             'add the column "mark 2", or head the fall time "time [s]"',
@@ -156,7 +146,32 @@ def find_layout(
         )
         return None
     plural = "repeats" if kind == "time" else _PLURAL[kind]
-    return Layout(plural, tuple(columns), fields, kind, first_number if kind == "mark" else 1)
+    return Layout(plural, tuple(columns), fields, kind, first_number)
+
+
+def columns_read(
+    headings: Sequence[Heading], layout: Layout, units: Mapping[str, str]
+) -> tuple[ColumnRead, ...]:
+    """Return how every column was understood, for a person to check at a glance."""
+    used = {heading.column for heading in (*layout.times, *layout.fields.values())}
+    series = {"marks": "mark", "intervals": "interval", "repeats": "repeat"}.get(layout.kind)
+    found = []
+    for heading in headings:
+        meaning = heading.label if heading.column in used else ""
+        if heading.number and meaning and series:
+            meaning = f"{series} {heading.number}"
+        unit = heading.unit or declared_unit(heading, units) if meaning else ""
+        found.append(ColumnRead(heading.column, heading.text, meaning, unit))
+    return tuple(found)
+
+
+def declared_unit(heading: Heading, units: Mapping[str, str]) -> str:
+    """Return the unit that the user declared for a column, empty where there is none."""
+    if heading.meaning not in ("temperature", *_PLURAL):
+        return ""
+    what = "temperature" if heading.meaning == "temperature" else "time"
+    names = (heading.text, heading.label, heading.meaning, what)
+    return next((units[name] for name in names if name in units), "")
 
 
 def _sorted(

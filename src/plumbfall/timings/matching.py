@@ -36,9 +36,7 @@ def _listed(names: Collection[str]) -> str:
     return shown + (", …" if len(names) > 8 else "")
 
 
-def _match_names(
-    drops: FileDrops, kind: str, known: Collection[str], notices: Notices
-) -> None:
+def _match_names(drops: FileDrops, kind: str, known: Collection[str], notices: Notices) -> None:
     labels = drops.labels[kind]
     if kind not in drops.layout.fields:
         return
@@ -65,8 +63,10 @@ def _match_names(
 
 
 def _key(name: str) -> str:
-    return name if name.replace("_", "").replace("-", "").isalnum() and name.isascii() else (
-        '"' + name.replace("\\", "\\\\").replace('"', '\\"') + '"'
+    return (
+        name
+        if name.replace("_", "").replace("-", "").isalnum() and name.isascii()
+        else ('"' + name.replace("\\", "\\\\").replace('"', '\\"') + '"')
     )
 
 

@@ -13,8 +13,8 @@ _MOST = 500
 
 def quoted(text: str, most: int = 60) -> str:
     """Return a cell's text in quotes on one line, cut where it is very long."""
-    shown = "".join(c if c.isprintable() else "\\x%02x" % ord(c) for c in text[: most + 1])
-    return f"'{shown if len(text) <= most else shown[:most] + '…'}'"
+    shown = "".join(c if c.isprintable() else f"\\x{ord(c):02x}" for c in text[:most])
+    return f"'{shown}{'…' if len(text) > most else ''}'"
 
 
 class Notices:
@@ -42,15 +42,15 @@ class Notices:
         *,
         key: str = "",
         severity: str = "error",
+        path: str | None = None,
     ) -> None:
         """Note one thing wrong; ``severity`` may be lowered to ``warning``."""
         self._errors += severity == "error"
         if len(self._problems) >= _MOST:
             self._more_problems += 1
             return
-        self._problems.append(
-            Problem(message, remedy, self.path, line, column, key, severity=severity)
-        )
+        place = self.path if path is None else path
+        self._problems.append(Problem(message, remedy, place, line, column, key, severity=severity))
 
     def repair(self, what: str, line: int | None = None, column: int | None = None) -> None:
         """Note one thing that was put right."""
@@ -62,7 +62,7 @@ class Notices:
     @property
     def problems(self) -> tuple[Problem, ...]:
         """All problems by line, and a last one that counts what is not listed."""
-        listed = sorted(self._problems, key=lambda problem: problem.line or 0)
+        listed = sorted(self._problems, key=lambda one: (one.line or 0, one.column or 0))
         if self._more_problems:
             severity = "error" if self._errors else "warning"
             text = f"and {self._more_problems} more problems of this file"
@@ -73,7 +73,7 @@ class Notices:
     @property
     def repairs(self) -> tuple[Repair, ...]:
         """All repairs by line, and a last one that counts what is not listed."""
-        listed = sorted(self._repairs, key=lambda repair: repair.line or 0)
+        listed = sorted(self._repairs, key=lambda one: (one.line or 0, one.column or 0))
         if self._more_repairs:
             text = f"and {self._more_repairs} more repairs of this file"
             listed.append(Repair(self.path, None, None, text))

@@ -6,6 +6,7 @@ from collections.abc import Mapping
 
 import numpy as np
 import pandas as pd
+from numpy.typing import NDArray
 
 from plumbfall.timings.columns import Column, Integers
 from plumbfall.timings.labels import Labels
@@ -18,7 +19,7 @@ __all__ = ["numbered_in_order", "read_drop_numbers"]
 def numbered_in_order(sets: Integers) -> Integers:
     """Return 1, 2, 3, … in order within each set, shape (rows,)."""
     counts = pd.Series(sets).groupby(sets, sort=False).cumcount()
-    return counts.to_numpy(dtype=np.int64) + 1
+    return np.asarray(counts, dtype=np.int64) + 1
 
 
 def read_drop_numbers(
@@ -37,8 +38,10 @@ def read_drop_numbers(
     if faulty.size == len(column) and all(map(is_missing, texts)):
         return np.zeros(len(column), dtype=np.int64)
     for row, text in zip(faulty, texts, strict=True):
-        what = "the drop number is missing" if is_missing(text) else (
-            f"{quoted(text)} is not a drop number"
+        what = (
+            "the drop number is missing"
+            if is_missing(text)
+            else (f"{quoted(text)} is not a drop number")
         )
         notices.error(
             what,
@@ -83,6 +86,6 @@ def _unique(
     return drops
 
 
-def _repeats(sets: Integers, drops: Integers) -> Integers:
+def _repeats(sets: Integers, drops: Integers) -> NDArray[np.bool_]:
     key = sets * (int(drops.max(initial=0)) + 1) + drops
-    return pd.Series(key).duplicated().to_numpy()
+    return np.asarray(pd.Series(key).duplicated(), dtype=bool)

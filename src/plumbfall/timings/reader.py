@@ -12,14 +12,20 @@ import pandas as pd
 
 from plumbfall.bench.records import Bench, TimingHints
 from plumbfall.errors import InputError, Problem
-from plumbfall.timings.cells import Grid, read_cells
-from plumbfall.timings.dialect import find_delimiter, find_headings, first_lines
+from plumbfall.timings.cells import read_cells
+from plumbfall.timings.dialect import (
+    find_delimiter,
+    find_headings,
+    first_lines,
+    note_lower_headings,
+)
 from plumbfall.timings.drops import FileDrops, read_drops
 from plumbfall.timings.files import RawFile, decode, expand, load
 from plumbfall.timings.frames import FRAME_NAME, FRAME_STEM, frame_grid, frame_sha256
-from plumbfall.timings.headings import known_headings, read_heading
+from plumbfall.timings.grid import Grid
+from plumbfall.timings.headings import has_times, read_heading
 from plumbfall.timings.joining import join_drops
-from plumbfall.timings.layout import find_layout, has_times, read_headings
+from plumbfall.timings.layout import columns_read, find_layout, read_headings
 from plumbfall.timings.matching import match_bench
 from plumbfall.timings.notices import Notices, quoted
 from plumbfall.timings.records import TimingFile, Timings
@@ -84,63 +90,84 @@ def collect(
     """
     hints = bench.timings if bench is not None else TimingHints()
     hints = replace(
-        hints, encoding=encoding or hints.encoding, sheet=sheet if sheet is not None else hints.sheet
+        hints,
+        encoding=encoding or hints.encoding,
+        sheet=sheet if sheet is not None else hints.sheet,
     )
     general = Notices("")
-    all_notices = [general]
-    files: list[TimingFile] = []
-    drops: list[FileDrops] = []
-    declared_used: set[str] = set()
-    met_headings = False
+    reading = _Reading(bench, hints)
     for item in _sources(source, general):
-        path = FRAME_NAME if isinstance(item, pd.DataFrame) else item
-        notices = Notices(path)
-        all_notices.append(notices)
+        reading.read(item)
+    _note_unused_declarations(reading, general)
+    table, marks = join_drops(reading.drops, general)
+    notices = [general, *reading.notices]
+    problems: list[Problem] = [problem for one in notices for problem in one.problems]
+    if not len(table) and not any(problem.severity == "error" for problem in problems):
+        problems.append(Problem("no timing file was named", "name one or more files"))
+    repairs = [repair for one in notices for repair in one.repairs]
+    return Timings(table, marks, tuple(reading.files), tuple(repairs), tuple(problems))
+
+
+class _Reading:
+    """Reads one file or table after another and keeps what comes of each."""
+
+    def __init__(self, bench: Bench | None, hints: TimingHints) -> None:
+        self.bench = bench
+        self.hints = hints
+        self.files: list[TimingFile] = []
+        self.drops: list[FileDrops] = []
+        self.notices: list[Notices] = []
+        self.declared_used: set[str] = set()
+
+    def read(self, item: str | pd.DataFrame) -> None:
+        """Read one file or table; what is wrong with it goes to its notices."""
+        grid: Grid | None
+        notices = Notices(FRAME_NAME if isinstance(item, pd.DataFrame) else item)
+        self.notices.append(notices)
         if isinstance(item, pd.DataFrame):
-            grid = frame_grid(item, notices)
-            file = TimingFile(path, frame_sha256(item), "", "", ".")
             stem = FRAME_STEM
+            file = TimingFile(FRAME_NAME, frame_sha256(item), "", "", ".")
+            grid = frame_grid(item, notices)
         else:
+            stem = PurePath(item).stem
             raw = load(item, notices)
             if raw is None:
-                continue
-            twin = next((other for other in files if other.sha256 == raw.sha256), None)
-            if twin:
-                notices.error(
-                    f"the file is the same, byte for byte, as {twin.path}",
-                    "leave one of them out; no drop can have been timed twice",
-                )
-            grid, file = _file_grid(raw, hints, notices)
-            stem = PurePath(item).stem
-        files.append(file)
+                return
+            self._mind_twin(raw, notices)
+            grid, file = _file_grid(raw, self.hints, notices)
+        self.files.append(file)
         if grid is None:
-            continue
-        headings = read_headings(grid.headings, hints.columns, notices, declared_used)
-        met_headings = True
+            return
+        headings = read_headings(grid.headings, self.hints.columns, notices, self.declared_used)
         layout = find_layout(headings, grid.heading_line, notices)
         if layout is None:
-            _note_lower_headings(grid, hints, notices)
-            continue
+            _note_lower_headings(grid, self.hints, notices)
+            return
         if not grid.lines.size:
             notices.error(
                 "there are headings but no rows under them",
                 "write one row for each drop",
                 grid.heading_line,
             )
-            continue
-        read, decimal = read_drops(grid, layout, hints, path, stem, notices)
-        files[-1] = replace(file, decimal=decimal.mark)
-        if bench is not None:
-            match_bench(read, bench, notices)
-        drops.append(read)
-    if met_headings:
-        _note_unused_declarations(hints, declared_used, bench, general)
-    table, marks = join_drops(drops, general)
-    problems: list[Problem] = [problem for notices in all_notices for problem in notices.problems]
-    if not len(table) and not any(problem.severity == "error" for problem in problems):
-        problems.append(Problem("no timing file was named", "name one or more files"))
-    repairs = [repair for notices in all_notices for repair in notices.repairs]
-    return Timings(table, marks, tuple(files), tuple(repairs), tuple(problems))
+            return
+        drops, decimal = read_drops(grid, layout, self.hints, notices.path, stem, notices)
+        self.files[-1] = replace(
+            file,
+            decimal=decimal.mark,
+            heading_line=grid.heading_line,
+            columns=columns_read(headings, layout, self.hints.units),
+        )
+        if self.bench is not None:
+            match_bench(drops, self.bench, notices)
+        self.drops.append(drops)
+
+    def _mind_twin(self, raw: RawFile, notices: Notices) -> None:
+        twin = next((other for other in self.files if other.sha256 == raw.sha256), None)
+        if twin:
+            notices.error(
+                f"the file is the same, byte for byte, as {twin.path}",
+                "leave one of them out; a drop counts once",
+            )
 
 
 def _sources(source: Source, notices: Notices) -> list[str | pd.DataFrame]:
@@ -176,7 +203,7 @@ def _file_grid(
     data, encoding = decoded
     file = replace(file, encoding=encoding)
     lines = first_lines(data)
-    heading_line = find_headings(lines, hints.header_row, notices)
+    heading_line = find_headings(lines, hints.header_row, notices, known=not hints.columns)
     if heading_line is None:
         return None, file
     delimiter = find_delimiter(lines[heading_line - 1], hints.delimiter, heading_line, notices)
@@ -186,41 +213,33 @@ def _file_grid(
 
 
 def _note_lower_headings(grid: Grid, hints: TimingHints, notices: Notices) -> None:
-    """Point to a row further down that reads like the headings."""
-    if hints.header_row is not None or not grid.columns:
+    """Point to a row of a sheet that reads like the headings."""
+    if hints.header_row is not None or grid.heading_line is None:
         return
     for row in range(min(grid.lines.size, 50)):
-        texts = [column.text(row) for column in grid.columns]
-        if has_times(texts):
-            line = int(grid.lines[row])
-            notices.error(
-                f"line {line} reads like the headings, but is not the first line",
-                f"set header_row = {line} under [timings] in the bench sheet, or delete the lines"
-                " above it",
-                line,
-            )
+        if has_times(column.text(row) for column in grid.columns):
+            note_lower_headings(grid.heading_line, int(grid.lines[row]), notices)
             return
 
 
-def _note_unused_declarations(
-    hints: TimingHints, used: set[str], bench: Bench | None, notices: Notices
-) -> None:
+def _note_unused_declarations(reading: _Reading, notices: Notices) -> None:
     """Warn of columns that the bench sheet declares and no file has."""
-    for name in hints.columns:
-        if name not in used:
-            notices.path = bench.path if bench is not None else ""
+    path = reading.bench.path if reading.bench is not None else ""
+    for name in reading.hints.columns:
+        if name not in reading.declared_used and reading.drops:
             notices.error(
                 f"no timing file has a column headed {quoted(name)}",
                 "correct the heading, or leave the line out",
                 key=f"timings.columns.{name}",
                 severity="warning",
+                path=path,
             )
-            notices.path = ""
-    for name in hints.units:
-        if not read_heading(name, 1).meaning and name not in hints.columns:
+    for name in reading.hints.units:
+        if not read_heading(name, 1).meaning and name not in reading.hints.columns:
             notices.error(
-                f"{quoted(name)} is not something a column can hold",
-                f"use one of {', '.join(list(known_headings())[:3])}, … as the key",
+                f"{quoted(name)} is not a column whose unit can be declared",
+                "write time or temperature, or the heading itself",
                 key=f"timings.units.{name}",
                 severity="warning",
+                path=path,
             )

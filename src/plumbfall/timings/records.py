@@ -12,7 +12,7 @@ if TYPE_CHECKING:
     import pandas as pd
     from numpy.typing import NDArray
 
-__all__ = ["COLUMNS", "Repair", "Timings", "TimingFile"]
+__all__ = ["COLUMNS", "ColumnRead", "Repair", "TimingFile", "Timings"]
 
 COLUMNS = (
     "file",
@@ -45,14 +45,32 @@ an excluded row's ``note`` opens with the rule that excluded it, such as ``no-ti
 
 
 @dataclass(frozen=True, slots=True)
+class ColumnRead:
+    """A column as it was understood; ``meaning`` is empty where it is not used.
+
+    ``column`` counts from 1; ``unit`` is that of plain numbers, empty where none is needed.
+    """
+
+    column: int
+    heading: str
+    meaning: str
+    unit: str = ""
+
+
+@dataclass(frozen=True, slots=True)
 class TimingFile:
-    """A file that was read, and the dialect it was found to be written in."""
+    """A file that was read, and the dialect it was found to be written in.
+
+    ``heading_line`` and ``columns`` are ``None`` and empty where no headings were found.
+    """
 
     path: str
     sha256: str
     encoding: str
     delimiter: str
     decimal: str
+    heading_line: int | None = None
+    columns: tuple[ColumnRead, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

@@ -5,14 +5,13 @@ from __future__ import annotations
 import datetime as dt
 import io
 import zipfile
-from collections.abc import Sequence
 
 import numpy as np
 
 from plumbfall.errors import nearest_name
-from plumbfall.timings.cells import Grid
 from plumbfall.timings.columns import FloatColumn, TextColumn
 from plumbfall.timings.files import RawFile
+from plumbfall.timings.grid import Grid
 from plumbfall.timings.notices import Notices, quoted
 
 __all__ = ["LARGEST_WORKBOOK", "spreadsheet_grid"]
@@ -50,7 +49,23 @@ def spreadsheet_grid(
     cells = [[*rows[n - 1], *[""] * (width - len(rows[n - 1]))] for n in below]
     headings += ("",) * (width - len(headings))
     columns = tuple(TextColumn([row[place] for row in cells]) for place in range(width))
-    return Grid(headings, heading, np.array(below, dtype=np.int64), columns)
+    stored = {
+        place + 1: np.flatnonzero([isinstance(row[place], _StoredTime) for row in cells])
+        for place in range(width)
+    }
+    return Grid(
+        headings,
+        heading,
+        np.array(below, dtype=np.int64),
+        columns,
+        stored_times={place: found for place, found in stored.items() if found.size},
+    )
+
+
+class _StoredTime(str):
+    """Text of a cell that the spreadsheet stores as a time of day or a duration."""
+
+    __slots__ = ()
 
 
 def _rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[str]] | None:
@@ -87,23 +102,13 @@ def _rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[str]] 
     except (zipfile.BadZipFile, CalamineError, OSError, ValueError, IndexError) as fault:
         notices.error(f"the workbook cannot be read: {fault}", _AS_CSV)
         return None
-    return [[_text(value) for value in row] for row in _sequence(values)]
-
-
-def _sequence(values: Sequence[Sequence[object]]) -> Sequence[Sequence[object]]:
-    return values
+    return [[_text(value) for value in row] for row in values]
 
 
 def _text(value: object) -> str:
-    """Return a cell's value as one would type it.
-
-    A time of day or a duration is marked as stored by the spreadsheet: whether 1:03 was meant as
-    minutes and seconds or as hours and minutes can no longer be told.
-    """
+    """Return a cell's value as one would type it."""
     if isinstance(value, float):
         return FloatColumn(np.array([value])).text(0)
-    if isinstance(value, dt.datetime):
-        return value.isoformat()
-    if isinstance(value, dt.time):
-        return value.isoformat()
-    return str(value)
+    if isinstance(value, (dt.time, dt.timedelta)):
+        return _StoredTime(value)
+    return value.isoformat() if isinstance(value, dt.datetime) else str(value)

@@ -8,8 +8,18 @@ import re
 from dataclasses import dataclass
 
 from plumbfall.timings.notices import quoted
+from plumbfall.timings.units import temperature_unit, time_unit
 
-__all__ = ["MISSING", "Fault", "is_missing", "read_clock", "read_moment", "read_number"]
+__all__ = [
+    "MISSING",
+    "Fault",
+    "is_missing",
+    "is_thousands",
+    "looks_like_number",
+    "read_clock",
+    "read_moment",
+    "read_number",
+]
 
 MISSING = frozenset(
     {"", "-", "--", "–", "—", "/", "?", "n/a", "#n/a", "na", "n.a.", "nan", "<na>", "none", "null"}
@@ -25,7 +35,7 @@ _CLOCK = re.compile(r"(?:([0-9]{1,3}):)?([0-9]{1,4}):([0-9]{2})(?:[.,]([0-9]+))?
 _MONTH = "jan|feb|mar|apr|may|jun|jul|aug|sep|oct|nov|dec|mai|okt|dez"
 _DATE = re.compile(
     r"[0-9]{4}-[0-9]{1,2}-[0-9]{1,2}(?:[T ].*)?"
-    r"|[0-9]{1,2}([./-])[0-9]{1,2}\1[0-9]{2,4}(?: .*)?"
+    r"|[0-9]{1,2}([./-])[0-9]{1,2}\1[0-9]{4}(?: .*)?|[0-9]{1,2}([/-])[0-9]{1,2}\2[0-9]{2}(?: .*)?"
     rf"|[0-9]{{1,4}}[-. /]*(?:{_MONTH})[a-z]*[-. /]*[0-9]{{0,4}}"
     rf"|(?:{_MONTH})[a-z]*[-. /]*[0-9]{{1,4}}",
     re.IGNORECASE,
@@ -112,6 +122,10 @@ def _explain(text: str, decimal: str, what: str) -> Fault:
             f"{shown} is a date where {what} is expected; spreadsheets turn entries into dates",
             "format the column as text and type the value again as it was recorded",
         )
+    if time_unit(text) or temperature_unit(text):
+        return Fault(
+            f"{shown} is a unit where {what} is expected", "write the unit in the heading, as [s]"
+        )
     mended = text.translate(_LETTERS)
     if mended != text and (_NUMBER.fullmatch(mended) or _CLOCK.fullmatch(mended)):
         return Fault(f"{shown} has a letter among its digits", f"type {mended} if that is meant")
@@ -125,7 +139,7 @@ def _explain(text: str, decimal: str, what: str) -> Fault:
     if "," in text and looks_like_number(text):
         return Fault(
             f"{shown} has a comma where a decimal point is expected",
-            f"type {text.replace(',', '.')}, or set decimal = \",\" under [timings] in the bench"
+            f'type {text.replace(",", ".")}, or set decimal = "," under [timings] in the bench'
             " sheet",
         )
     found = _IN_CELL.fullmatch(text)
@@ -146,8 +160,8 @@ def read_moment(text: str) -> str | Fault:
 
     Examples
     --------
-    >>> read_moment("2026-03-02 9:15"), read_moment("9:15:30")
-    (Fault(message="'2026-03-02 9:15' is not a moment", ...), '09:15:30')
+    >>> read_moment("2026-03-02 09:15"), read_moment("9:15:30")
+    ('2026-03-02T09:15', '09:15:30')
     """
     if is_missing(text):
         return ""
