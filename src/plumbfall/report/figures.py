@@ -20,7 +20,16 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
-__all__ = ["COLOURS", "KINDS", "draw", "draw_budget", "draw_drops", "house_style", "new_figure"]
+__all__ = [
+    "COLOURS",
+    "KINDS",
+    "draw",
+    "draw_budget",
+    "draw_drops",
+    "house_style",
+    "new_figure",
+    "page_figure",
+]
 
 COLOURS = {
     "ink": "#24333b",
@@ -32,7 +41,7 @@ COLOURS = {
 }
 """Told apart by colour-blind readers and, with hatches and shapes, in monochrome."""
 
-SCOPES = {"shared": ("petrol", ""), "ball": ("amber", "///"), "drop": ("plum", "...")}
+SCOPES = {"shared": ("petrol", ""), "ball": ("amber", "///"), "drop": ("plum", "xxx")}
 """Colour and hatch of each scope in the budget."""
 
 MANY_POINTS = 2000
@@ -41,7 +50,10 @@ MANY_POINTS = 2000
 MOST_BARS = 10
 MOST_BALLS = 8
 MOST_PANELS = 12
-SIZE = (5.4, 3.3)
+SIZE = (4.9, 3.3)
+
+_POINTS = 72.0  # of an inch
+_PANEL_HEIGHT = 150.0  # points
 
 _SYMBOLS = "osD^vP<>"
 
@@ -92,6 +104,32 @@ def new_figure(panels: int = 1) -> Figure:
     return Figure(figsize=(SIZE[0], SIZE[1] * panels), layout="constrained")
 
 
+def page_figure(kind: str, result: RunSetResult, viscosity_unit: str | None) -> Figure:
+    """Return a figure of one set for a page, its margins taken from the length of its labels.
+
+    Matplotlib's own layout measures every text several times, which a page of a hundred run sets
+    cannot wait for.
+    """
+    from matplotlib.figure import Figure
+
+    figure = Figure(figsize=SIZE)
+    with house_style():
+        ax = figure.add_axes((0.2, 0.3, 0.7, 0.6))
+        KINDS[kind](result, ax, viscosity_unit)
+        labels = [text.get_text() for text in ax.get_yticklabels()]
+        longest = max((len(label) for label in labels), default=0)
+    width = SIZE[0] * _POINTS
+    left = longest * 5.1 + (10.0 if kind == "budget" else 26.0)
+    legend_rows = (len(ax.get_legend_handles_labels()[1]) + 1) // 2
+    bottom = 42.0 + 11.5 * legend_rows
+    height = bottom + _PANEL_HEIGHT + 8.0
+    figure.set_size_inches(SIZE[0], height / _POINTS)
+    ax.set_position(
+        (left / width, bottom / height, 1.0 - (left + 8.0) / width, _PANEL_HEIGHT / height)
+    )
+    return figure
+
+
 @contextmanager
 def house_style() -> Iterator[None]:
     """Draw in the house's style, whatever the reader's own settings are."""
@@ -100,7 +138,7 @@ def house_style() -> Iterator[None]:
     ink, muted = COLOURS["ink"], COLOURS["muted"]
     style: dict[Any, Any] = {
         "font.family": ["DejaVu Sans"],
-        "font.size": 9.0,
+        "font.size": 8.5,
         "text.color": ink,
         "text.parse_math": False,
         "axes.labelcolor": ink,
@@ -293,7 +331,7 @@ def _legend(ax: Axes) -> None:
             handles,
             labels,
             loc="upper left",
-            bbox_to_anchor=(-0.02, -0.16),
+            bbox_to_anchor=(-0.02, -0.19),
             ncols=2,
             handlelength=1.6,
             columnspacing=1.2,

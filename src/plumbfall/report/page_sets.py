@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
-from plumbfall.report.figures import draw_budget, draw_drops, house_style, new_figure
+from plumbfall.report.figures import page_figure
 from plumbfall.report.observed import Observed
 from plumbfall.report.scales import CELSIUS
 from plumbfall.report.set_tables import (
@@ -159,10 +159,7 @@ def _picture(
 ) -> Picture:
     import markupsafe
 
-    figure = new_figure()
-    with house_style():
-        ax = figure.add_subplot()
-    (draw_drops if kind == "drops" else draw_budget)(result, ax, viscosity_unit)
+    figure = page_figure(kind, result, viscosity_unit)
     where = "The numbers are in the table of drops." if kind == "drops" else (
         "The numbers are in the table of the uncertainty budget."
     )  # fmt: skip
@@ -197,7 +194,7 @@ def _conditions(result: RunSetResult, bench: Bench, seen: Observed) -> list[Fact
         Fact("Timer", timers),
         Fact("Thermometer", thermometers),
         Fact("Temperatures as read", f"{low} to {high}", CELSIUS.unit),
-        Fact("Performed", " to ".join(seen.started) or NOT_SUPPLIED),
+        Fact("Performed", " to ".join(seen.started).replace("T", " ") or NOT_SUPPLIED),
         Fact("Operator", ", ".join(seen.operators) or NOT_SUPPLIED),
     ]
     if entry is not None and entry.filled is not None:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 from dataclasses import dataclass
 
 from plumbfall.errors import InputError
@@ -48,7 +49,7 @@ _BY_SIZE: dict[str, tuple[tuple[float, Scale], ...]] = {
     "m2/s": ((0.0, Scale("mm2/s", 1e6)),),
     "rad": ((0.0, Scale("deg", 180.0 / math.pi)),),
     "K": ((200.0, CELSIUS), (0.0, Scale("K"))),
-    "1": ((0.0, Scale("")),),
+    "1": ((1e-3, Scale("")), (0.0, Scale("ppm", 1e6))),
 }
 """By SI unit: the size from which on each unit is used. No correction reaches 200 K, no
 temperature of a liquid in a tube is below it: so a kelvin shows which of the two it is."""
@@ -77,20 +78,35 @@ def scale_for(unit: str, size: float) -> Scale:
     """Return the unit for a quantity of an SI unit, by the larger of its value and uncertainty."""
     if unit == "Pa.s":
         return viscosity_scale(size)
+    size = abs(size) or 0.01  # an exact zero takes the unit that is read most
     for threshold, scale in _BY_SIZE.get(unit, ()):
-        if abs(size) >= threshold:
+        if size >= threshold:
             return scale
     return Scale(unit)
 
 
-_PRETTY = (
-    (".", "·"), ("degC", "°C"), ("deg", "°"), ("um", "µm"), ("m2/s2", "m²/s²"),
-    ("m2", "m²"), ("m3", "m³"), ("s2", "s²"),
-)  # fmt: skip
+_PRETTY = {
+    "mPa.s": "mPa·s",
+    "Pa.s": "Pa·s",
+    "degC": "°C",
+    "deg": "°",
+    "um": "µm",
+    "mm2/s": "mm²/s",
+    "m2/s": "m²/s",
+    "m2/s2": "m²/s²",
+    "m/s2": "m/s²",
+    "kg/m3": "kg/m³",
+}
+_LONGEST_FIRST = "|".join(sorted(map(re.escape, _PRETTY), key=len, reverse=True))
+_UNIT = re.compile(rf"(?<![\w.])(?:{_LONGEST_FIRST})(?![\w.]*\w)")
 
 
-def pretty_unit(unit: str) -> str:
-    """Return a unit as print has it: ``mPa·s``, ``°C``, ``kg/m³``."""
-    for plain, pretty in _PRETTY:
-        unit = unit.replace(plain, pretty)
-    return unit
+def pretty_unit(text: str) -> str:
+    """Return a text with the units in it as print has them: ``mPa·s``, ``°C``, ``kg/m³``.
+
+    Examples
+    --------
+    >>> pretty_unit("851.3 mPa.s at 25.00 degC, degrees of freedom 9")
+    '851.3 mPa·s at 25.00 °C, degrees of freedom 9'
+    """
+    return _UNIT.sub(lambda unit: _PRETTY[unit[0]], text)

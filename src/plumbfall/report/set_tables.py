@@ -8,7 +8,7 @@ from collections.abc import Iterable
 from plumbfall.report.rounding import NO_VALUE
 from plumbfall.report.scales import CELSIUS, Scale, scale_for
 from plumbfall.report.summary import counted
-from plumbfall.report.views import TableView, dof_text, value_place
+from plumbfall.report.views import TableView, dof_text, drop_place
 from plumbfall.results import BudgetLine, DropResult, Finding, RunSetResult
 
 __all__ = [
@@ -18,6 +18,7 @@ __all__ = [
     "correction_view",
     "drop_view",
     "finding_evidence",
+    "why_not_used",
 ]
 
 MOST_DROPS = 1000
@@ -32,7 +33,7 @@ _PERCENT = Scale("%", 100.0)
 
 def drop_view(result: RunSetResult, scale: Scale) -> TableView:
     """Return the drops in order, void and excluded ones with the reason they carry."""
-    place = value_place(result, scale)
+    place = drop_place(result, scale)
     named = {number for finding in result.findings for number in finding.drops}
     drops = list(result.drops)
     note = ""
@@ -50,9 +51,9 @@ def drop_view(result: RunSetResult, scale: Scale) -> TableView:
             "Drop", "Ball", "Line" if not files else "File and line", "Time / s",
             "Temperature / degC", f"Viscosity / {unit}", f"At the set's temperature / {unit}",
             "Residual / %", f"Stokes' law alone / {unit}", "Fall speed / mm/s", "Reynolds number",
-            "Wall", "Inertia", "Ends", "Used", "Notes and findings",
+            "Wall factor", "Inertia factor", "End factor", "Notes and findings",
         ),
-        kinds="ntnnnnnnnnnnnntt" if not files else "nttnnnnnnnnnnntt",
+        kinds="ntnnnnnnnnnnnnt" if not files else "nttnnnnnnnnnnnt",
         rows=tuple(_drop_row(drop, scale, place, with_file=bool(files)) for drop in drops),
         marks=tuple(_mark(drop, named) for drop in drops),
         terms=("residual", "Stokes' law", "Reynolds number", "drag factor"),
@@ -60,13 +61,9 @@ def drop_view(result: RunSetResult, scale: Scale) -> TableView:
     )  # fmt: skip
 
 
-def _drop_row(
-    drop: DropResult, scale: Scale, place: int | None, *, with_file: bool
-) -> tuple[str, ...]:
+def _drop_row(drop: DropResult, scale: Scale, place: int, *, with_file: bool) -> tuple[str, ...]:
     def viscosity(value: float | None) -> str:
-        if value is None or place is None:
-            return scale.alone(value, 5)
-        return scale.bound(value, place)
+        return NO_VALUE if value is None else scale.bound(value, place)
 
     line = f"{os.path.basename(drop.file)}:{drop.line}" if with_file else str(drop.line)
     return (
@@ -84,7 +81,6 @@ def _drop_row(
         _PLAIN.alone(drop.wall, 5),
         _PLAIN.alone(drop.inertia, 5),
         _PLAIN.alone(drop.end, 5),
-        "yes" if drop.used else "no",
         _remarks(drop),
     )
 
@@ -96,9 +92,14 @@ def _as_recorded(time: float) -> str:
 
 def _remarks(drop: DropResult) -> str:
     remarks = [drop.note] if drop.note else []
-    if not drop.used and not drop.note.startswith(drop.status):
-        remarks.insert(0, drop.status)
+    if not drop.used:
+        remarks.insert(0, why_not_used(drop))
     return ": ".join(remarks) + (f" [{', '.join(drop.findings)}]" if drop.findings else "")
+
+
+def why_not_used(drop: DropResult) -> str:
+    """Return ``void``, ``excluded``, or that a drop recorded as used has no viscosity."""
+    return "no viscosity" if drop.status == "used" else drop.status
 
 
 def _mark(drop: DropResult, named: set[int]) -> str:
@@ -169,7 +170,7 @@ def budget_view(result: RunSetResult, scale: Scale) -> TableView:
             "Degrees of freedom", f"Sensitivity / {scale.unit} per unit",
             f"Contribution / {scale.unit}", "Share / %", "Scope",
         ),
-        kinds="tnnttnnnnt",
+        kinds="tnnutnnnnt",
         rows=tuple(rows),
         marks=tuple(marks),
         terms=("sensitivity", "share", "scope", "degrees of freedom"),

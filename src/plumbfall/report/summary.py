@@ -5,7 +5,7 @@ from __future__ import annotations
 from plumbfall.report.scales import CELSIUS, viscosity_scale
 from plumbfall.results import Measured, RunSetResult
 
-__all__ = ["basis", "counted", "is_apparent", "percent", "summary_line", "visible"]
+__all__ = ["basis", "counted", "is_apparent", "percent", "summary_line", "visible", "way"]
 
 
 def summary_line(result: RunSetResult, viscosity_unit: str | None = None) -> str:
@@ -44,10 +44,14 @@ def summary_line(result: RunSetResult, viscosity_unit: str | None = None) -> str
 
 def basis(measured: Measured) -> str:
     """Return how an expanded uncertainty came about: ``k=2.0, 95 %`` or ``Monte Carlo, 95 %``."""
-    coverage = percent(measured.coverage_probability)
+    return f"{way(measured)}, {percent(measured.coverage_probability)}"
+
+
+def way(measured: Measured) -> str:
+    """Return the coverage factor as ``k=2.0``, or ``Monte Carlo`` where there is none."""
     if measured.coverage_factor is None:
-        return f"Monte Carlo, {coverage}"
-    return f"k={measured.coverage_factor:.1f}, {coverage}"
+        return "Monte Carlo"
+    return f"k={measured.coverage_factor:.1f}"
 
 
 def percent(probability: float) -> str:

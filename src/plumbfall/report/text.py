@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, TextIO
 
 from plumbfall._version import __version__
 from plumbfall.report.scales import Scale
-from plumbfall.report.set_tables import finding_evidence
+from plumbfall.report.set_tables import finding_evidence, why_not_used
 from plumbfall.report.summary import counted, visible
 from plumbfall.report.views import facts, set_scale
 from plumbfall.report.words import Explainer
@@ -107,18 +107,18 @@ def _lines(report: Report) -> Iterator[str]:
 
 def _of_set(result: RunSetResult, unit: str | None, explain: Explainer) -> Iterator[str]:
     scale = set_scale(result, unit)
+    yield from _of_findings(result.findings)
     for fact in facts(result, scale):
         text = f"{fact.text} {fact.unit}" if fact.unit not in fact.text else fact.text
         why = explain(fact.term)
         yield from _wrapped(f"  {fact.label:<36}", visible(f"{text}  ({why})" if why else text))
     for drop in result.drops:
         if not drop.used:
-            reason = f"{drop.status}: {drop.note}" if drop.note else drop.status
+            reason = ": ".join(filter(None, (why_not_used(drop), drop.note)))
             where = f"{drop.file}:{drop.line}"
             yield from _wrapped("  not used  ", visible(f"drop {drop.drop}, {where}, {reason}"))
     yield from _of_corrections(result, explain)
     yield from _of_budget(result, scale, explain)
-    yield from _of_findings(result.findings)
 
 
 def _of_corrections(result: RunSetResult, explain: Explainer) -> Iterator[str]:

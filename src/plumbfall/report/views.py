@@ -7,10 +7,10 @@ from dataclasses import dataclass
 
 from plumbfall.report.rounding import NO_VALUE
 from plumbfall.report.scales import CELSIUS, Scale, scale_for, viscosity_scale
-from plumbfall.report.summary import basis, counted, is_apparent, percent
+from plumbfall.report.summary import basis, counted, is_apparent, percent, way
 from plumbfall.results import Measured, Quantity, RunSetResult
 
-__all__ = ["Fact", "Headline", "TableView", "facts", "headline", "set_scale", "value_place"]
+__all__ = ["Fact", "Headline", "TableView", "drop_place", "facts", "headline", "set_scale"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -25,7 +25,7 @@ class Fact:
 
 @dataclass(frozen=True, slots=True)
 class TableView:
-    """A table of strings. ``kinds`` has one letter a column: ``n`` number, ``t`` text.
+    """A table of strings. ``kinds`` has one letter a column: ``n`` number, ``t`` text, ``u`` unit.
 
     ``marks`` names the style of each row: empty, ``unused``, ``flagged`` or ``total``.
     """
@@ -48,7 +48,7 @@ class Headline:
     low: str
     high: str
     coverage: str
-    basis: str
+    way: str
     temperature: str
 
 
@@ -58,11 +58,17 @@ def set_scale(result: RunSetResult, viscosity_unit: str | None) -> Scale:
     return viscosity_scale(0.0 if known is None else known.value, viscosity_unit)
 
 
-def value_place(result: RunSetResult, scale: Scale) -> int | None:
-    """Return the decimal place that single drops are shown to: that of the set's uncertainty."""
-    if result.viscosity is None:
-        return None
-    return scale.pair(result.viscosity.value, result.viscosity.u).place
+def drop_place(result: RunSetResult, scale: Scale) -> int:
+    """Return the decimal place that single drops are shown to, as decimal exponent.
+
+    That of the set's standard uncertainty, or the fifth digit where that is finer: the scatter
+    of drops may be far below what all of them share.
+    """
+    known = result.viscosity or result.stokes_viscosity
+    if known is None or not known.value:
+        return -4
+    fifth = math.floor(math.log10(abs(known.value * scale.factor))) - 4
+    return min(fifth, scale.pair(known.value, known.u).place) if known.u else fifth
 
 
 def headline(measured: Measured | None, scale: Scale, temperature: float | None) -> Headline | None:
@@ -76,7 +82,7 @@ def headline(measured: Measured | None, scale: Scale, temperature: float | None)
         low=scale.bound(measured.low, pair.place),
         high=scale.bound(measured.high, pair.place),
         coverage=percent(measured.coverage_probability),
-        basis=basis(measured),
+        way=way(measured),
         temperature=CELSIUS.fixed(temperature, 2),
     )
 

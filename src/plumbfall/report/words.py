@@ -24,7 +24,8 @@ TERMS = {
     "interval widens",
     "kinematic viscosity": "viscosity over density",
     "Stokes' law": "the drag on a slow ball in a liquid without walls",
-    "drag factor": "drag on the ball in this tube over its drag by Stokes' law",
+    "drag factor": "drag on the ball in this tube over its drag by Stokes' law; walls, inertia "
+    "and ends each have a part in it",
     "Reynolds number": "inertia against viscosity: liquid density x speed x ball diameter / "
     "viscosity",
     "diameter ratio": "ball diameter over tube bore",
