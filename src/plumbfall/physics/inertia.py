@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import numpy as np
 from numpy.polynomial import Polynomial
+from numpy.typing import NDArray
 
 from plumbfall.physics.numeric import Numeric
 
@@ -191,10 +192,10 @@ def inertia_factor_clift_grace_weber(*, reynolds: Numeric) -> Numeric:
 
         \phi = \begin{cases}
         1 + \tfrac{3}{16} Re & Re \le 0.01 \\
-        1 + 0.1315 Re^{0.82 - 0.05 w} & Re \le 20 \\
-        1 + 0.1935 Re^{0.6305} & Re \le 260 \\
-        Re\, C_d / 24, \; \log_{10} C_d = 1.6435 - 1.1242 w + 0.1558 w^2 & Re \le 1500 \\
-        Re\, C_d / 24, \; \log_{10} C_d = -2.4571 + 2.5558 w - 0.9295 w^2 + 0.1049 w^3 & Re > 1500
+        1 + 0.1315 Re^{0.82 - 0.05 w} & Re < 20 \\
+        1 + 0.1935 Re^{0.6305} & Re < 260 \\
+        Re\, C_d / 24, \; \log_{10} C_d = 1.6435 - 1.1242 w + 0.1558 w^2 & Re < 1500 \\
+        Re\, C_d / 24, \; \log_{10} C_d = -2.4571 + 2.5558 w - 0.9295 w^2 + 0.1049 w^3 & Re \ge 1500
         \end{cases} \quad w = \log_{10} Re
 
     Parameters
@@ -234,7 +235,7 @@ def inertia_factor_clift_grace_weber(*, reynolds: Numeric) -> Numeric:
         1.0 + 0.1935 * re**0.6305,
         middle,
     )
-    factor: Numeric = np.select([re <= bound for bound in CLIFT_BOUNDS], pieces, high)[()]
+    factor: Numeric = np.select(clift_pieces(re), pieces, high)[()]
     return factor
 
 
@@ -309,3 +310,13 @@ def inertia_factor_abraham(*, reynolds: Numeric) -> Numeric:
     """
     factor: Numeric = (1.0 + np.sqrt(reynolds) / ABRAHAM) ** 2
     return factor
+
+
+def clift_pieces(reynolds: NDArray[np.float64]) -> list[NDArray[np.bool_]]:
+    """Where the pieces of Clift, Grace and Weber hold: the first that is true, else the last.
+
+    The published pieces share their ends; a shared one goes to the upper piece, as their errors
+    were measured.
+    """
+    first, *others = CLIFT_BOUNDS
+    return [reynolds <= first, *(reynolds < bound for bound in others)]

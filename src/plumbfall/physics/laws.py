@@ -164,8 +164,8 @@ def _together(name: str, high: float, error: str, source_key: str, citation: str
     )
 
 
+_OSEEN = "Oseen 1910, Ark. Mat. Astron. Fys. 6, no. 29"
 _ABRAHAM = "Abraham 1970, Phys. Fluids 13, 2194"
-_COMMON = "common practice, no source"
 _FAXEN = "Faxén 1922/23, Ark. Mat. Astron. Fys. 17, no. 27"
 _ALL = (
     _wall("exact", 0.95, "1e-6 to ratio 0.8", "Plumbfall", _OWN),
@@ -197,7 +197,7 @@ _ALL = (
         2.0,
         "11 % at 2, 1.6 % at 0.5",
         "Oseen1910",
-        "Oseen 1910, Ark. Mat. Astron. Fys. 6, no. 29",
+        _OSEEN,
     ),
     _inertia(
         "schiller-naumann",
@@ -233,7 +233,7 @@ _ALL = (
         "product",
         100.0,
         "the smaller of the two excesses",
-        "Clift1978",
+        "CommonPractice",
         "common practice, no source",
     ),
     Law(

@@ -1,0 +1,190 @@
+from __future__ import annotations
+
+import itertools
+
+import numpy as np
+import pytest
+
+from physics.formula_book import EXACT_WALL_FACTOR, IN_TUBE_POINTS, UNBOUNDED, half_digit
+from plumbfall.errors import InputError, PhysicsRangeError
+from plumbfall.physics import DragLaw
+from plumbfall.physics.laws import laws_of
+from plumbfall.physics.slopes import SCREENED_ERROR
+
+EVERY = list(itertools.product(*(laws_of(kind) for kind in ("together", "walls", "inertia"))))
+STEP = 1e-5
+
+
+def grid(law):
+    ratio = np.linspace(0.01, law.max_ratio, 25)[:, np.newaxis]
+    log_reynolds = np.linspace(-9.0, np.log(law.max_reynolds), 41)
+    return np.minimum(ratio, law.max_ratio), log_reynolds
+
+
+@pytest.mark.parametrize("names", EVERY, ids="-".join)
+def test_value_and_slopes_of_every_combination(names):
+    law = DragLaw(*names)
+    ratio, x = grid(law)
+    drag = law.at(ratio)
+    log_factor, slope = drag.evaluate(x)
+    by_ratio, same_slope = drag.slopes(x)
+    formula = law.together_law.function(
+        wall_factor=law.wall_law.function(diameter_ratio=ratio),
+        inertia_factor=law.inertia_law.function(reynolds=np.exp(x)),
+    )
+    assert log_factor == pytest.approx(np.log(formula), abs=1e-13)
+    assert np.array_equal(slope, same_slope)
+    up, down = (drag.evaluate(x + step)[0] for step in (STEP, -STEP))
+    assert slope == pytest.approx((up - down) / (2 * STEP), abs=1e-7)
+    inner = ratio[:-1]
+    up, down = (law.at(inner * np.exp(step)).evaluate(x)[0] for step in (STEP, -STEP))
+    assert by_ratio[:-1] == pytest.approx((up - down) / (2 * STEP), abs=1e-7)
+
+
+# formula book, section 1: s of the unbounded ball by Schiller and Naumann, w of the exact walls
+@pytest.mark.parametrize(
+    ("reynolds", "printed"), [(0.1, ".021"), (1.0, ".090"), (10.0, ".29"), (100.0, ".54")]
+)
+def test_slope_by_reynolds_number_as_printed(reynolds, printed):
+    drag = DragLaw(together="additive", inertia="schiller-naumann").at(0.0)
+    _, slope = drag.evaluate(np.log(reynolds))
+    assert slope == pytest.approx(float(printed), abs=half_digit(printed))
+
+
+@pytest.mark.parametrize(
+    ("ratio", "printed"),
+    [(0.05, ".117"), (0.1, ".258"), (0.2, ".626"), (0.3, "1.133"), (0.5, "2.79")],
+)
+def test_slope_by_diameter_ratio_as_printed(ratio, printed):
+    by_ratio, _ = DragLaw().at(ratio).slopes(-np.inf)
+    assert by_ratio == pytest.approx(float(printed), abs=half_digit(printed))
+
+
+def test_all_is_finite_where_walls_and_inertia_vanish():
+    drag = DragLaw().at(np.array([0.0, 1e-12, 0.1]))
+    for x in (-np.inf, -700.0, -300.0, 0.0):
+        for values in (*drag.evaluate(x), *drag.slopes(x), drag.relative_bound(x)):
+            assert np.all(np.isfinite(values))
+    log_factor, slope = DragLaw().at(0.0).evaluate(-np.inf)
+    assert (log_factor, slope) == (0.0, 0.0)
+
+
+def test_the_unbounded_ball_has_the_slope_of_its_inertia():
+    x = np.log([0.1, 1.0, 10.0])
+    screened = DragLaw().at(0.0).evaluate(x)
+    additive = DragLaw(together="additive").at(0.0).evaluate(x)
+    assert screened == pytest.approx(np.array(additive), rel=1e-14)
+
+
+@pytest.mark.parametrize("rule", laws_of("together"))
+@pytest.mark.parametrize(("ratio", "reynolds", "factor"), IN_TUBE_POINTS)
+def test_the_bound_covers_navier_stokes(rule, ratio, reynolds, factor):
+    law = DragLaw(together=rule)
+    drag = law.at(ratio)
+    if reynolds > law.max_reynolds:
+        with pytest.raises(PhysicsRangeError):
+            drag.check(reynolds)
+        return
+    with np.errstate(divide="ignore"):
+        bound = drag.relative_bound(np.log(reynolds))
+    own = drag.factor(reynolds)
+    assert abs(own / factor - 1.0) <= bound + 5e-5 / factor + 1e-9
+
+
+@pytest.mark.parametrize("name", laws_of("walls"))
+@pytest.mark.parametrize("ratio", [0.05, 0.1, 0.2])
+def test_the_bound_covers_the_error_of_the_walls(name, ratio):
+    drag = DragLaw(walls=name).at(ratio)
+    bound = drag.relative_bound(-np.inf)
+    error = abs(drag.wall / EXACT_WALL_FACTOR[ratio] - 1.0)
+    assert error <= bound + 1e-8
+    assert bound == pytest.approx(error, abs=1e-8)
+
+
+@pytest.mark.parametrize("name", laws_of("inertia"))
+@pytest.mark.parametrize("reynolds", [0.1, 0.5, 1.0, 5.0, 10.0])
+def test_the_bound_covers_the_error_of_the_inertia(name, reynolds):
+    law = DragLaw(inertia=name)
+    drag = law.at(0.0)
+    if reynolds > law.max_reynolds:
+        with pytest.raises(PhysicsRangeError):
+            drag.check(reynolds)
+        return
+    error = abs(drag.factor(reynolds) / float(UNBOUNDED[reynolds]) - 1.0)
+    assert error <= drag.relative_bound(np.log(reynolds)) + 1e-4
+
+
+def test_the_bound_of_the_screened_rule_vanishes_at_rest():
+    drag = DragLaw().at(np.array([0.05, 0.1, 0.3]))
+    assert np.all(drag.relative_bound(-np.inf) == 0.0)
+    x = np.log(np.geomspace(1e-4, 10.0, 60))[:, np.newaxis]
+    bound = drag.relative_bound(x)
+    rise = np.exp(drag.evaluate(x)[0]) / drag.wall - 1.0
+    assert bound == pytest.approx(np.minimum(SCREENED_ERROR, rise), abs=1e-13)
+    # 1.7 % is the largest error printed to Reynolds number 10; half a digit is its rounding
+    assert bound.max() == SCREENED_ERROR == 0.017 + half_digit("1.7") / 100.0
+
+
+def test_limits_and_the_laws_that_set_them():
+    screened = DragLaw()
+    assert (screened.max_reynolds, screened.reynolds_law.name) == (10.0, "screened")
+    assert (screened.max_ratio, screened.ratio_law.name) == (0.8, "screened")
+    other = DragLaw(together="product", walls="faxen", inertia="oseen")
+    assert (other.max_reynolds, other.reynolds_law.name) == (2.0, "oseen")
+    assert (other.max_ratio, other.ratio_law.name) == (0.5, "faxen")
+    assert DragLaw(together="additive", inertia="brown-lawler").reynolds_law.name == "additive"
+
+
+def test_binding_beyond_the_ratio_is_refused():
+    with pytest.raises(PhysicsRangeError, match=r"diameter ratio 0\.85 is beyond 0\.8"):
+        DragLaw().at(np.array([0.1, 0.85]))
+    with pytest.raises(PhysicsRangeError, match=r"diameter ratio 0\.3 is beyond 0\.2"):
+        DragLaw(walls="ladenburg").at(0.3)
+
+
+def test_a_reynolds_number_beyond_the_law_is_refused():
+    drag = DragLaw().at(0.1)
+    drag.check(10.0)
+    with pytest.raises(PhysicsRangeError, match=r"Reynolds number 10\.5 is beyond 10"):
+        drag.check(np.array([1.0, 10.5]))
+
+
+@pytest.mark.parametrize(
+    ("names", "near"),
+    [
+        ({"together": "screen"}, "screened"),
+        ({"walls": "haberman"}, "haberman-sayre"),
+        ({"inertia": "schiller"}, "schiller-naumann"),
+    ],
+)
+def test_an_unknown_law_names_the_nearest(names, near):
+    with pytest.raises(InputError, match=f"did you mean '{near}'"):
+        DragLaw(**names)
+
+
+def test_description_and_source_name_the_laws():
+    law = DragLaw(together="product", walls="bohlin", inertia="abraham")
+    drag = law.at(0.1)
+    assert drag.description == law.description == "product rule, walls bohlin, inertia abraham"
+    for citation in ("common practice, no source", "Bohlin 1960", "Abraham 1970"):
+        assert citation in drag.source
+
+
+def test_shapes_follow_balls_and_reynolds_numbers():
+    assert np.ndim(DragLaw().at(0.1).evaluate(0.0)[0]) == 0
+    assert DragLaw().at(0.1).evaluate(np.zeros(4))[0].shape == (4,)
+    assert DragLaw().at(np.full(4, 0.1)).slopes(0.0)[0].shape == (4,)
+    assert DragLaw().at(np.full((2, 1), 0.1)).evaluate(np.zeros(3))[1].shape == (2, 3)
+
+
+@pytest.mark.parametrize("names", EVERY, ids="-".join)
+def test_the_argument_is_left_as_it_was(names):
+    law = DragLaw(*names)
+    ratio, x = grid(law)
+    before, drag = x.copy(), law.at(ratio)
+    walls = drag.wall_excess.copy()
+    first = drag.evaluate(x)
+    again = drag.evaluate(x)
+    assert np.array_equal(x, before)
+    assert np.array_equal(drag.wall_excess, walls)
+    assert np.array_equal(first, again)
