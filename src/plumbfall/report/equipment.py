@@ -140,9 +140,9 @@ def _values(entry: object) -> Iterator[str]:
             yield f"{field.name} {', '.join(shown_estimate(item) for item in value)}"
         elif field.name in _WORDS_SHOWN and value:
             yield f"{field.name} {value}"
-    for key in getattr(entry, "usual_values", ()):
-        source = getattr(entry, "usual_source", "")
-        yield f"{key} is a usual value, not measured ({source})" if source else f"{key} is usual"
+    if usual := getattr(entry, "usual_values", ()):
+        source = getattr(entry, "usual_source", "") or "no source given"
+        yield f"usual values, not measured: {', '.join(usual)} ({source})"
 
 
 _WORDS_SHOWN = ("kind", "material", "gauge", "balance", "law", "file", "lot", "surface")

@@ -7,8 +7,15 @@ import math
 from typing import TYPE_CHECKING, Any
 
 from plumbfall._version import __version__
-from plumbfall.results import BallResult, BudgetLine, DropResult, Finding, Measured, Quantity
-from plumbfall.results import RunSetResult as Result
+from plumbfall.results import (
+    BallResult,
+    BudgetLine,
+    DropResult,
+    Finding,
+    Measured,
+    Quantity,
+    RunSetResult,
+)
 
 if TYPE_CHECKING:
     from plumbfall.report.report import Report
@@ -43,7 +50,7 @@ def json_text(document: dict[str, Any]) -> str:
     return json.dumps(document, indent=2, allow_nan=False) + "\n"
 
 
-def _run_set(result: Result) -> dict[str, Any]:
+def _run_set(result: RunSetResult) -> dict[str, Any]:
     viscosity = _measured(result.viscosity)
     linear = viscosity if viscosity and viscosity["method"] == "linear" else None
     return {
@@ -103,7 +110,7 @@ def _measured(measured: Measured | None) -> dict[str, Any] | None:
 
 
 def _quantity(quantity: Quantity | None) -> dict[str, Any] | None:
-    if quantity is None:
+    if quantity is None or not math.isfinite(quantity.value):
         return None
     return {
         "value": _number(quantity.value),

@@ -8,12 +8,13 @@ import warnings
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from functools import cached_property
-from typing import TYPE_CHECKING, Any, Protocol
+from typing import TYPE_CHECKING, Any
 
 from plumbfall.errors import InputError, Problem, nearest_name
+from plumbfall.report.reduced import Reduced
 from plumbfall.report.run_set import RunSetView
 from plumbfall.report.summary import summary_line, visible
-from plumbfall.results import Finding, RunSetResult
+from plumbfall.results import Finding
 
 if TYPE_CHECKING:
     import numpy as np
@@ -27,54 +28,6 @@ if TYPE_CHECKING:
     from plumbfall.timings.records import Timings
 
 __all__ = ["Reduced", "Report", "UnknownRunSetError"]
-
-
-class Reduced(Protocol):
-    """What a report is made from. Run sets are built when asked for; columns come at once."""
-
-    @property
-    def names(self) -> tuple[str, ...]:
-        """Names of the run sets, in order."""
-
-    @property
-    def rows(self) -> Mapping[str, int]:
-        """How many rows were ``read``, ``used``, ``void`` and ``excluded``."""
-
-    @property
-    def inputs(self) -> tuple[tuple[str, str], ...]:
-        """Path as typed and SHA-256 of every input file."""
-
-    @property
-    def coverage(self) -> float:
-        """Coverage probability of the intervals."""
-
-    @property
-    def seed(self) -> int:
-        """Seed of the random numbers."""
-
-    @property
-    def bench(self) -> Bench:
-        """The bench sheet."""
-
-    @property
-    def timings(self) -> Timings:
-        """The drops as read."""
-
-    @property
-    def findings(self) -> tuple[Finding, ...]:
-        """Findings that concern more than one run set."""
-
-    def run_set(self, name: str) -> RunSetResult:
-        """Return one run set; ``name`` is one of :attr:`names`."""
-
-    def summary_table(self) -> pd.DataFrame:
-        """Return the columns of ``run_sets.csv``, one row a run set, in the order of the names."""
-
-    def covariance(self, quantity: str = "viscosity") -> NDArray[np.float64]:
-        """Return covariances of the sets, shape (sets, sets), (Pa.s)2; NaN without a value."""
-
-    def correlation(self) -> NDArray[np.float64]:
-        """Return correlations of the sets' viscosities, shape (sets, sets); NaN likewise."""
 
 
 class UnknownRunSetError(InputError, KeyError):

@@ -38,7 +38,7 @@ def inline_svg(figure: Figure, prefix: str, title: str, description: str) -> str
     """
     import matplotlib as mpl
 
-    from plumbfall.report.figures import house_style
+    from plumbfall.report.house_style import house_style
 
     buffer = io.StringIO()
     settings: dict[Any, Any] = {"svg.fonttype": "none", "svg.hashsalt": "plumbfall"}
