@@ -8,6 +8,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from plumbfall.bench.keys import key_path
+from plumbfall.bench.readings import LARGEST_BITS
 from plumbfall.errors import InputError
 from plumbfall.estimate import Estimate
 
@@ -45,6 +46,10 @@ def _plain(value: Any, parts: tuple[str | int, ...]) -> Any:
         return tree
     if isinstance(value, list | tuple):
         return [_plain(item, (*parts, n)) for n, item in enumerate(value)]
+    if isinstance(value, int) and value.bit_length() > LARGEST_BITS:
+        raise InputError(
+            "is a number beyond 1e300", key=key_path(*parts), remedy="correct the number"
+        )
     if hasattr(value, "tolist") and not hasattr(value, "nominal_value"):
         return _plain(value.tolist(), (*parts, 0))
     return value

@@ -64,15 +64,15 @@ def _unknown_key(parts: Place, sheet: type[BaseModel]) -> Problem:
     *table, wrong = parts
     model = _model_at(tuple(table), sheet)
     known = list(model.model_fields) if model else []
-    near = nearest_name(str(wrong), known) or _begins_alike(str(wrong), known)
+    near = nearest_name(str(wrong), known) or _containing(str(wrong), known)
     what = "key" if table else "table"
     remedy = f"did you mean '{near}'?" if near else f"known are {', '.join(known)}"
     return Problem(f"unknown {what} '{wrong}'", remedy, key=key_path(*parts))
 
 
-def _begins_alike(wrong: str, known: list[str]) -> str | None:
-    """Return the known name that a short form stands for, such as ``temp``."""
-    alike = [name for name in known if len(wrong) > 2 and name.startswith(wrong.casefold())]
+def _containing(wrong: str, known: list[str]) -> str | None:
+    """Return the one known name that a short form stands for, such as ``temp``."""
+    alike = [name for name in known if len(wrong) > 2 and wrong.casefold() in name]
     return alike[0] if len(alike) == 1 else None
 
 

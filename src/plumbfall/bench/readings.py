@@ -15,6 +15,7 @@ from plumbfall.quantities import DIMENSIONS
 
 __all__ = [
     "BOUNDS",
+    "LARGEST_BITS",
     "coverage_factor",
     "estimate_of",
     "exact",
@@ -25,6 +26,9 @@ __all__ = [
 
 BOUNDS = {"rectangular": math.sqrt(3.0), "triangular": math.sqrt(6.0), "arcsine": math.sqrt(2.0)}
 """Half-width over standard uncertainty (GUM 4.3.7, 4.3.9; JCGM 101, 6.4.6.4 for arcsine)."""
+
+LARGEST_BITS = 1000
+"""Length of an integer beyond which no quantity can be meant (1e301)."""
 
 
 def shown(written: object) -> str:
@@ -40,6 +44,8 @@ def shown(written: object) -> str:
         return "[" + ", ".join(shown(item) for item in written) + "]"
     if isinstance(written, float):
         return repr(float(written))
+    if isinstance(written, int) and written.bit_length() > LARGEST_BITS:
+        return "a number beyond 1e300"
     return str(written)
 
 
