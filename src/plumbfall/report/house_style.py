@@ -58,7 +58,7 @@ def house_style() -> Iterator[None]:
 
 def legend_below(ax: Axes) -> None:
     """Put the legend under the axes; names in it are never taken for formulas."""
-    handles, labels = ax.getlegend_below_handles_labels()
+    handles, labels = ax.get_legend_handles_labels()
     if handles:
         legend = ax.legend(
             handles,
