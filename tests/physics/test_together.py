@@ -71,3 +71,38 @@ def test_no_inertia_leaves_the_exact_wall_factor():
     assert np.array_equal(
         tube_drag_factor(diameter_ratio=ratio, reynolds=0.0), wall_factor(diameter_ratio=ratio)
     )
+
+
+# The whole printed table of errors in percent against one Navier-Stokes value a row: product,
+# additive (Fayon and Happel 1960), the larger factor alone, screened, walls alone
+ERROR_ROWS = {
+    (0.05, 0.5): ("5.9", "5.1", "-1.6", ".38", "-1.6"),
+    (0.1, 0.1): ("1.7", "1.4", "-.02", ".02", "-.02"),
+    (0.1, 1.0): ("11.5", "8.7", "-2.0", ".60", "-2.0"),
+    (0.1, 5.0): ("21", "12.8", "-4.2", ".13", "-19"),
+    (0.2, 1.0): ("13", "7.7", "-.5", ".33", "-.5"),
+    (0.2, 10.0): ("45", "19", "-14", "-1.5", "-19"),
+    (0.3, 5.0): ("44", "17", "-3.4", ".07", "-3.4"),
+    (0.5, 10.0): ("76", "11", "-1.9", "-.9", "-1.9"),
+}
+
+
+@pytest.mark.parametrize("point", ERROR_ROWS)
+def test_all_rules_of_a_printed_row_point_to_one_drag_factor(point):
+    ratio, reynolds = point
+    walls, inertia = EXACT_WALL_FACTOR[ratio], float(UNBOUNDED[reynolds])
+    given = {"wall_factor": walls, "inertia_factor": inertia}
+    factors = (
+        tube_drag_product(**given),
+        tube_drag_additive(**given),
+        max(walls, inertia),
+        tube_drag_screened(**given),
+        walls,
+    )
+    rounding = half_digit(UNBOUNDED[reynolds]) / inertia
+    lowest, highest = [], []
+    for factor, printed in zip(factors, ERROR_ROWS[point], strict=True):
+        error, half = float(printed) / 100.0, half_digit(printed) / 100.0
+        lowest.append(factor / (1.0 + error + half) * (1.0 - rounding))
+        highest.append(factor / (1.0 + error - half) * (1.0 + rounding))
+    assert max(lowest) <= min(highest)

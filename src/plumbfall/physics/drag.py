@@ -99,7 +99,7 @@ class DragLaw:
         )
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True, slots=True, eq=False)
 class BoundDrag:
     """Drag factor K of given balls as a function of ln Re, with its derivatives.
 
