@@ -10,10 +10,12 @@ from numpy.typing import NDArray
 
 from plumbfall.timings.columns import Integers, Numbers
 
-__all__ = ["PADDING", "SliceColumn"]
+__all__ = ["PADDING", "STAND_IN", "SliceColumn"]
 
 PADDING = 32
 """Zero bytes that must follow the last cell of a :class:`SliceColumn`'s buffer."""
+STAND_IN = 1
+"""Byte that stands for a delimiter within a quoted cell; it is no text of its own."""
 _DIGITS = 15  # a whole number below 10**15 and a power of ten to 10**22 are exact as floats
 _POWERS = 10.0 ** np.arange(_DIGITS + 5)
 _WORD_MASKS = np.array([(1 << 8 * size) - 1 for size in range(9)], dtype=np.uint64)
@@ -30,15 +32,24 @@ class SliceColumn:
         Where the byte before each cell is, and one past where the cell ends.
     padded : bool
         Whether cells may have spaces round them.
+    delimiter : str
+        What :data:`STAND_IN` stands for.
     """
 
     def __init__(
-        self, buffer: NDArray[np.uint8], before: Integers, ends: Integers, *, padded: bool
+        self,
+        buffer: NDArray[np.uint8],
+        before: Integers,
+        ends: Integers,
+        *,
+        padded: bool,
+        delimiter: str,
     ) -> None:
         self._buffer = buffer
         self._before = before
         self._ends = ends
         self._padded = padded
+        self._delimiter = delimiter
         self._numbers: dict[str, Numbers] = {}
 
     def __len__(self) -> int:
@@ -57,7 +68,7 @@ class SliceColumn:
     def text(self, row: int) -> str:
         """Return one cell's text, without the spaces round it."""
         cell = self._buffer[self._before[row] + 1 : self._ends[row]]
-        return cell.tobytes().decode("utf-8").strip()
+        return cell.tobytes().decode("utf-8").replace(chr(STAND_IN), self._delimiter).strip()
 
     def _words(self, starts: Integers, lengths: Integers, offset: int) -> NDArray[np.uint64]:
         """Return eight bytes of every cell as one number, zero beyond the cell's end."""

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from plumbfall.timings.clean_rows import cut_clean
+from plumbfall.timings.byte_columns import STAND_IN
+from plumbfall.timings.clean_rows import cut_clean, unquoted
 from plumbfall.timings.grid import WIDEST, Grid
 from plumbfall.timings.notices import Notices
 from plumbfall.timings.uneven_rows import cut_any
@@ -32,13 +33,17 @@ def read_cells(data: bytes, delimiter: str, heading_line: int, notices: Notices)
     start = 0
     for _ in range(heading_line - 1):
         start = data.index(b"\n", start) + 1
-    end = data.find(b"\n", start)
-    body = end + 1 if end >= 0 else len(data)
-    if b'"' not in data[start:]:
-        heading = data[start : end if end >= 0 else len(data)].decode("utf-8")
-        headings = [cell.strip() for cell in heading.split(delimiter)]
+    text = data[start:] if start else data
+    if b'"' in text:
+        text = unquoted(text, delimiter)
+    if text and delimiter != " ":
+        heading, _, body = text.partition(b"\n")
+        headings = tuple(
+            cell.replace(chr(STAND_IN), delimiter).strip()
+            for cell in heading.decode("utf-8").split(delimiter)
+        )
         if len(headings) <= WIDEST:
-            grid = cut_clean(data[body:], delimiter, tuple(headings), heading_line, notices)
+            grid = cut_clean(body, delimiter, headings, heading_line, notices)
             if grid is not None:
                 return grid
     return cut_any(data[start:].decode("utf-8"), delimiter, heading_line, notices)

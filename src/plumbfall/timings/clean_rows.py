@@ -4,12 +4,34 @@ from __future__ import annotations
 
 import numpy as np
 
-from plumbfall.timings.byte_columns import PADDING, SliceColumn
+from plumbfall.timings.byte_columns import PADDING, STAND_IN, SliceColumn
 from plumbfall.timings.comments import note_comments
 from plumbfall.timings.grid import Grid
 from plumbfall.timings.notices import Notices
 
-__all__ = ["cut_clean"]
+__all__ = ["cut_clean", "unquoted"]
+
+
+def unquoted(text: bytes, delimiter: str) -> bytes:
+    """Take off quotes that each enclose one whole cell.
+
+    A delimiter within quotes becomes :data:`STAND_IN`. Returns nothing where that is not all
+    there is to it: with line ends or quotes within quotes, or a ``#`` that would then begin a
+    comment.
+    """
+    if text.startswith(b'"#') or b'\n"#' in text or bytes((STAND_IN,)) in text:
+        return b""
+    buffer = np.frombuffer(b"\n" + text + b"\n", dtype=np.uint8)
+    cut = (buffer == 10) | (buffer == ord(delimiter))
+    quote = buffer == 34
+    quotes = np.flatnonzero(quote)
+    opening, closing = quotes[::2], quotes[1::2]
+    if len(opening) != len(closing) or not (cut[opening - 1].all() and cut[closing + 1].all()):
+        return b""
+    hidden = np.bitwise_xor.accumulate(quote.view(np.uint8)).view(bool) & cut
+    if (buffer[hidden] == 10).any():
+        return b""
+    return np.where(hidden, np.uint8(STAND_IN), buffer)[~quote][1:-1].tobytes()
 
 
 def cut_clean(
@@ -70,7 +92,13 @@ def cut_clean(
     space = buffer == 32
     padded = bool(space[:1].any() or (space[1:] & cut[:-1]).any() or (space[:-1] & cut[1:]).any())
     columns = tuple(
-        SliceColumn(buffer, cuts[:, n - 1] if n else before, cuts[:, n], padded=padded)
+        SliceColumn(
+            buffer,
+            cuts[:, n - 1] if n else before,
+            cuts[:, n],
+            padded=padded,
+            delimiter=delimiter,
+        )
         for n in range(width)
     )
     return Grid(headings, heading_line, lines, columns, delimiter)

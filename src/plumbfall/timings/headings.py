@@ -69,6 +69,13 @@ class Heading:
         """The canonical heading without its unit, such as ``mark 2``."""
         return f"{self.meaning} {self.number}" if self.number else self.meaning
 
+    @property
+    def unit_fits(self) -> bool:
+        """Whether the unit is one of what the column holds."""
+        if self.meaning == "temperature":
+            return temperature_unit(self.unit) is not None
+        return self.meaning in SERIES and time_unit(self.unit) is not None
+
 
 def normalised(text: str) -> str:
     """Return a heading in lower case, its separators as single spaces.

@@ -207,8 +207,11 @@ def _note_unused(heading: Heading, line: int | None, notices: Notices) -> None:
     if not heading.text:
         notices.repair(f"column {heading.column} has no heading and is not used", line)
         return
-    near = nearest_name(normalised(heading.text), known_headings())
-    hint = f"; did you mean {quoted(near)}?" if near and len(heading.text) > 2 else ""
+    name, unit = read_heading_unit(heading.text)
+    near = nearest_name(normalised(name), known_headings()) if len(name.strip()) > 2 else None
+    if near and unit and not read_heading(f"{near} [{unit}]", 1).unit_fits:
+        near = None  # a heading in millimetres is not a misspelt name
+    hint = f"; did you mean {quoted(near)}?" if near else ""
     notices.repair(f"column {quoted(heading.text)} is not used{hint}", line, heading.column)
 
 

@@ -4,7 +4,9 @@ from __future__ import annotations
 
 import datetime as dt
 import io
+import re
 import zipfile
+import zlib
 
 import numpy as np
 
@@ -19,6 +21,8 @@ __all__ = ["LARGEST_WORKBOOK", "spreadsheet_grid"]
 LARGEST_WORKBOOK = 200_000_000
 """Bytes of the largest workbook that is read, once unpacked."""
 
+_MOST_CELLS = 20_000_000
+_CELL = re.compile(rb"""<(?:\w+:)?(?:c|row)\s(?:[^>]*?\s)?r=["']([A-Z]{0,3})([0-9]{1,7})["']""")
 _AS_CSV = "save the sheet as CSV and name that file"
 
 
@@ -73,16 +77,9 @@ def _rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[str]] 
 
     try:
         with zipfile.ZipFile(io.BytesIO(raw.data)) as archive:
-            size = sum(entry.file_size for entry in archive.infolist())
-            if "xl/workbook.xml" not in archive.namelist():
-                notices.error("the file is a zip archive, not a workbook", _AS_CSV)
-                return None
-        if size > LARGEST_WORKBOOK:
-            notices.error(
-                f"the workbook has {size:,} bytes once unpacked; at most {LARGEST_WORKBOOK:,} are"
-                " read",
-                _AS_CSV,
-            )
+            trouble = _trouble(archive)
+        if trouble:
+            notices.error(trouble, _AS_CSV)
             return None
         workbook = CalamineWorkbook.from_filelike(io.BytesIO(raw.data))
         names = list(workbook.sheet_names)
@@ -99,10 +96,42 @@ def _rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[str]] 
             notices.repair(f"the first of {len(names)} sheets, {quoted(names[0])}, is read")
         chosen = workbook.get_sheet_by_name(sheet if sheet is not None else names[0])
         values = chosen.to_python(skip_empty_area=False)
-    except (zipfile.BadZipFile, CalamineError, OSError, ValueError, IndexError) as fault:
+    except (
+        zipfile.BadZipFile,
+        zlib.error,
+        CalamineError,
+        OSError,
+        ValueError,
+        RuntimeError,
+    ) as fault:
         notices.error(f"the workbook cannot be read: {fault}", _AS_CSV)
         return None
     return [[_text(value) for value in row] for row in values]
+
+
+def _trouble(archive: zipfile.ZipFile) -> str:
+    """Say why an archive is not to be unpacked, before anything large is made of it."""
+    size = sum(entry.file_size for entry in archive.infolist())
+    if "xl/workbook.xml" not in archive.namelist():
+        return "the file is a zip archive, not a workbook"
+    if size > LARGEST_WORKBOOK:
+        return f"the workbook has {size:,} bytes unpacked; at most {LARGEST_WORKBOOK:,} are read"
+    for name in archive.namelist():
+        content = archive.read(name)  # checks that it is no longer than it says
+        if name.startswith("xl/worksheets/"):
+            cells = [(_column_number(found[1]), int(found[2])) for found in _CELL.finditer(content)]
+            width = max((column for column, _ in cells), default=0)
+            height = max((row for _, row in cells), default=0)
+            if width * height > _MOST_CELLS:
+                return f"a sheet spans {height:,} rows by {width:,} columns, mostly empty"
+    return ""
+
+
+def _column_number(letters: bytes) -> int:
+    number = 0
+    for letter in letters:
+        number = number * 26 + letter - 64
+    return number
 
 
 def _text(value: object) -> str:

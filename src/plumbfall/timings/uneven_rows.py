@@ -11,84 +11,117 @@ from plumbfall.timings.columns import TextColumn
 from plumbfall.timings.comments import note_comments
 from plumbfall.timings.grid import WIDEST, Grid
 from plumbfall.timings.notices import Notices, quoted
+from plumbfall.timings.values import looks_like_number, read_clock
 
 __all__ = ["cut_any"]
 
+_BATCH = 4096
+
 
 class _Lines:
-    """Hands a file's lines to the csv reader, leaves out comments, and counts."""
+    """Hands a file's lines to the csv reader, leaves out comments, and counts.
+
+    ``row_line`` is the line in which the row begins that the reader is in, ``line`` the latest.
+    The reader's user sets ``between_rows`` after each row: only there can a comment stand.
+    """
 
     def __init__(self, text: str, first: int) -> None:
         self._lines = text.split("\n")
         if self._lines and not self._lines[-1]:
             self._lines.pop()
-        self._next = 0
         self._first = first
-        self.row_line = first
+        self.line = self.row_line = first
         self.between_rows = True
         self.comments: list[tuple[int, str]] = []
 
-    @property
-    def line(self) -> int:
-        """The line handed out last."""
-        return self._first + self._next - 1
-
     def __iter__(self) -> Iterator[str]:
-        while self._next < len(self._lines):
-            text = self._lines[self._next]
-            self._next += 1
+        for line, text in enumerate(self._lines, self._first):
+            self.line = line
             if self.between_rows:
                 if text.startswith("#"):
-                    self.comments.append((self.line, text))
+                    self.comments.append((line, text))
                     continue
-                self.row_line = self.line
+                self.row_line = line
                 self.between_rows = False
             yield text + "\n"
 
 
 def cut_any(text: str, delimiter: str, heading_line: int, notices: Notices) -> Grid | None:
-    """Cut any file, row by row, minding quotes, line breaks within them and uneven rows."""
+    """Cut any file, row by row, minding quotes, line breaks within them and uneven rows.
+
+    Parameters
+    ----------
+    text : str
+        The file's text from the line of the headings on.
+    delimiter : str
+        One character.
+    heading_line : int
+        Line of the headings, from 1.
+    notices : Notices
+        Takes what is wrong and what was put right.
+
+    Returns
+    -------
+    Grid or None
+        ``None`` where the cells cannot be told apart; the notices then hold an error.
+    """
     source = _Lines(text, heading_line)
     reader = csv.reader(iter(source), delimiter=delimiter, strict=True, skipinitialspace=True)
+    headings: list[str] = []
+    columns: list[list[str]] = []
     rows: list[list[str]] = []
     lines: list[int] = []
-    width = 0
-    while True:
-        source.between_rows = True
-        try:
-            cells = next(reader)
-        except StopIteration:
-            break
-        except csv.Error as fault:
-            _note_quote(str(fault), source, notices)
-            return None
-        if not width:
-            width = len(cells)
-            if width > WIDEST:
-                notices.error(
-                    f"the headings have {width} cells",
-                    f"a timing file has at most {WIDEST} columns",
-                    heading_line,
-                )
-                return None
-        if source.line > source.row_line:
-            _note_breaks(cells, source.row_line, source.line, delimiter, width, notices)
-        if not any(map(str.strip, cells)) and rows:
-            if len(cells) > 1:
-                notices.repair("a row of empty cells is left out", source.row_line)
-            continue
-        if len(cells) != width:
-            cells = _evened(cells, width, delimiter, source.row_line, notices)
-        rows.append(cells)
-        lines.append(source.row_line)
-    note_comments(iter(source.comments), delimiter, width, notices)
-    if not rows:
+    known: dict[str, str] = {}
+    try:
+        for cells in reader:
+            first, last = source.row_line, source.line
+            source.between_rows = True
+            if not headings:
+                headings = [cell.strip() for cell in cells]
+                if len(headings) > WIDEST:
+                    _note_width(len(headings), heading_line, notices)
+                    return None
+                columns = [[] for _ in headings]
+                continue
+            if last > first:
+                _note_breaks(cells, first, last, delimiter, len(headings), notices)
+            if not any(map(str.strip, cells)):
+                if len(cells) > 1:
+                    notices.repair("a row of empty cells is left out", first)
+                continue
+            if len(cells) != len(headings):
+                cells = _evened(cells, len(headings), delimiter, first, notices)
+            rows.append(cells)
+            lines.append(first)
+            if len(rows) == _BATCH:
+                _move(rows, columns, known)
+    except csv.Error as fault:
+        _note_quote(str(fault), source, notices)
         return None
-    columns = tuple(TextColumn(cells) for cells in zip(*rows[1:], strict=True))
-    if not columns:
-        columns = tuple(TextColumn(()) for _ in range(width))
-    headings = tuple(cell.strip() for cell in rows[0])
-    return Grid(headings, heading_line, np.array(lines[1:], dtype=np.int64), columns, delimiter)
+    _move(rows, columns, known)
+    note_comments(source.comments, delimiter, len(headings), notices)
+    return Grid(
+        tuple(headings),
+        heading_line,
+        np.array(lines, dtype=np.int64),
+        tuple(TextColumn(cells) for cells in columns),
+        delimiter,
+    )
+
+
+def _move(rows: list[list[str]], columns: list[list[str]], known: dict[str, str]) -> None:
+    """Move rows into columns, equal texts as one object; memory is what takes time here."""
+    for column, cells in zip(columns, zip(*rows, strict=True), strict=bool(rows)):
+        column.extend(map(known.setdefault, cells, cells))
+    rows.clear()
+
+
+def _note_width(width: int, heading_line: int, notices: Notices) -> None:
+    notices.error(
+        f"the headings have {width} cells",
+        f"a timing file has at most {WIDEST} columns",
+        heading_line,
+    )
 
 
 def _note_quote(fault: str, source: _Lines, notices: Notices) -> None:
@@ -111,8 +144,7 @@ def _note_breaks(
 ) -> None:
     """List line breaks within quotes; refuse those that seem to have swallowed rows."""
     for number, cell in enumerate(cells, 1):
-        inner = cell.split("\n")[1:-1]
-        if width > 1 and any(line.count(delimiter) >= width - 1 for line in inner):
+        if any(_like_row(inner, delimiter, width) for inner in cell.split("\n")[1:]):
             notices.error(
                 f"a quoted cell runs from line {first} to line {last} and holds whole rows",
                 "look for a quote that is not closed",
@@ -121,6 +153,13 @@ def _note_breaks(
             )
         elif "\n" in cell:
             notices.repair(f"a quoted cell runs on to line {last}", first, number)
+
+
+def _like_row(line: str, delimiter: str, width: int) -> bool:
+    cells = line.split(delimiter)
+    return len(cells) >= width > 1 and any(
+        looks_like_number(cell.strip()) or read_clock(cell.strip()) is not None for cell in cells
+    )
 
 
 def _evened(cells: list[str], width: int, delimiter: str, line: int, notices: Notices) -> list[str]:
