@@ -1,5 +1,6 @@
 from __future__ import annotations
 
+import copy
 import datetime as dt
 import hashlib
 import json
@@ -12,6 +13,7 @@ import pytest
 from uncertainties import ufloat
 
 from plumbfall.bench import read_bench
+from plumbfall.errors import InputError
 
 
 def test_the_whole_sheet_reads_into_si(whole_sheet_file):
@@ -266,3 +268,36 @@ def test_a_thousand_run_sets_do_not_slow_the_reader():
     sets = {f"set {n}": {"tube": "A", "temperature": "25.00(5) degC"} for n in range(1000)}
     sheet = {"tube": {"A": {"bore": "5 cm", "distance": "20 cm"}}, "set": sets}
     assert len(read_bench(sheet).sets) == 1000
+
+
+def places(node, path=()):
+    """Yield the path of every table, list and value."""
+    if path:
+        yield path
+    if isinstance(node, dict | list):
+        for key in node if isinstance(node, dict) else range(len(node)):
+            yield from places(node[key], (*path, key))
+
+
+JUNK = [
+    *(0, -1, 1e308, math.nan, math.inf, 10**400, True, "", " ", "0 mm", "1 kg", "ä\ud800", b"x"),
+    *([], [[]], ["A"], {}, {"": {}}, {"A": {}}, {"value": 1}, {"value": 1, "unit": "mm"}),
+    *(dt.date(2026, 1, 1), dt.time(3), object(), ufloat(1.0, 0.1), ufloat(math.nan, 1.0)),
+]
+
+
+def test_junk_anywhere_is_read_or_refused_as_bad_input(whole_sheet):
+    refused = 0
+    for n, place in enumerate(places(whole_sheet)):
+        for junk in JUNK[n % 8 :: 8]:
+            sheet = copy.deepcopy(whole_sheet)
+            *tables, key = place
+            node = sheet
+            for table in tables:
+                node = node[table]
+            node[key] = junk
+            try:
+                read_bench(sheet)
+            except InputError:
+                refused += 1
+    assert refused > 300

@@ -121,7 +121,7 @@ def _mass_and_diameter(ball: Ball, path: str) -> Iterator[Problem]:
         remedy = "is the diameter twice too large? " + remedy
     yield Problem(
         f"mass '{ball.mass.text}' and diameter '{ball.diameter.text}' make a density of "
-        f"{density / 1000:.3g} g/cm3, outside 0.5 to 25 g/cm3",
+        f"{density / 1000:.4g} g/cm3, outside 0.5 to 25 g/cm3",
         remedy,
         key=path,
     )

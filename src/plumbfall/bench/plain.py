@@ -36,7 +36,7 @@ def _plain(value: Any, parts: tuple[str | int, ...]) -> Any:
     if isinstance(value, Mapping):
         tree: dict[str, Any] = {}
         for key, item in value.items():
-            name = str(key)
+            name = _whole_text(str(key), parts)
             if name in tree:
                 raise InputError(
                     "is given twice", key=key_path(*parts, name), remedy="keep one of the two"
@@ -46,6 +46,8 @@ def _plain(value: Any, parts: tuple[str | int, ...]) -> Any:
         return tree
     if isinstance(value, list | tuple):
         return [_plain(item, (*parts, n)) for n, item in enumerate(value)]
+    if isinstance(value, str):
+        return _whole_text(value, parts)
     if isinstance(value, int) and value.bit_length() > LARGEST_BITS:
         raise InputError(
             "is a number beyond 1e300", key=key_path(*parts), remedy="correct the number"
@@ -53,6 +55,15 @@ def _plain(value: Any, parts: tuple[str | int, ...]) -> Any:
     if hasattr(value, "tolist") and not hasattr(value, "nominal_value"):
         return _plain(value.tolist(), (*parts, 0))
     return value
+
+
+def _whole_text(text: str, parts: tuple[str | int, ...]) -> str:
+    """Return text that has a UTF-8 form; a lone surrogate has none."""
+    if any("\ud800" <= character <= "\udfff" for character in text):
+        raise InputError(
+            "holds half a character", key=key_path(*parts), remedy="type the text anew"
+        )
+    return text
 
 
 def written_tree(tree: Mapping[str, Any], quantities: Mapping[str, Estimate]) -> dict[str, Any]:
