@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 import re
 from decimal import Decimal, InvalidOperation
 
@@ -76,8 +75,3 @@ def _exponent(number: Decimal) -> int:
     if not isinstance(exponent, int):
         raise ValueError(f"{number} is not finite")
     return exponent if number else max(exponent, -12)
-
-
-def fits_float(number: float, *, was_zero: bool) -> bool:
-    """Whether a conversion neither overflowed nor vanished."""
-    return math.isfinite(number) and (number != 0.0 or was_zero)

@@ -5,7 +5,7 @@ from __future__ import annotations
 import json
 import re
 
-__all__ = ["key_path", "matches"]
+__all__ = ["key_path"]
 
 _BARE = re.compile(r"[A-Za-z0-9_-]+")
 
@@ -26,11 +26,3 @@ def key_path(*parts: str | int) -> str:
         bare = _BARE.fullmatch(part) is not None
         path += ("." if path else "") + (part if bare else json.dumps(part, ensure_ascii=False))
     return path
-
-
-def matches(pattern: str, parts: tuple[str | int, ...]) -> bool:
-    """Whether nested keys fit a pattern such as ``tube.*.marks.*`` (``*``: any one key)."""
-    wanted = pattern.split(".")
-    return len(wanted) == len(parts) and all(
-        want in ("*", str(part)) for want, part in zip(wanted, parts, strict=True)
-    )
