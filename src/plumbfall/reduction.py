@@ -10,8 +10,8 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from plumbfall.bench.records import Bench
 from plumbfall.bench.measured import unstated_uncertainties
+from plumbfall.bench.records import Bench
 from plumbfall.errors import InputError
 from plumbfall.findings.data import RunData
 from plumbfall.findings.limits import Limits, limits_from
@@ -33,7 +33,7 @@ if TYPE_CHECKING:
     import pandas as pd
     from numpy.typing import NDArray
 
-__all__ = ["Reduction", "reduce_drops"]
+__all__ = ["Reduction", "reduce_drops", "reduce_numbers"]
 
 OUTLIER_RULE = "grubbs-1-percent"
 
@@ -122,8 +122,7 @@ class Reduction:
 
     @cached_property
     def _rows_by_set(self) -> list[NDArray[np.intp]]:
-        names = self.timings.table["set"].astype(str).map(self._place)
-        return _grouped(names.to_numpy(dtype=np.intp), len(self.names))
+        return _grouped(self.sets.selection.row_set, len(self.names))
 
 
 def reduce_drops(
@@ -169,14 +168,14 @@ def reduce_drops(
             remedy="write 0.95 for 95 %",
         )
     limits = limits_from(bench.limits, bench.path)
-    reduced = _reduce_once(timings, bench, probability)
+    reduced = reduce_numbers(timings, bench, probability)
     while limits.exclude_outliers:
         found = suspects(_data(reduced, limits))
         beyond = found.p_value < limits.outlier_level
         if not beyond.any():
             break
         rows = reduced.selection.row[found.drop[beyond]]
-        reduced = _reduce_once(_exclude(reduced.timings, rows), bench, probability)
+        reduced = reduce_numbers(_exclude(reduced.timings, rows), bench, probability)
     return Reduction(
         sets=reduced,
         found=find(_data(reduced, limits)),
@@ -186,7 +185,8 @@ def reduce_drops(
     )
 
 
-def _reduce_once(timings: Timings, bench: Bench, coverage: float) -> SetColumns:
+def reduce_numbers(timings: Timings, bench: Bench, coverage: float = 0.95) -> SetColumns:
+    """Compute every run set's numbers, in columns, without looking for findings."""
     law = drag_law(bench)
     selection = select(timings, bench)
     inputs = gather(selection.cells, bench, selection.names, model_estimate(bench))

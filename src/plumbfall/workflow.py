@@ -6,7 +6,9 @@ import os
 import warnings
 from collections.abc import Iterable, Mapping
 from pathlib import Path
-from typing import TYPE_CHECKING, Any, TypeAlias
+from typing import Any, TypeAlias
+
+import pandas as pd
 
 from plumbfall.bench.reader import read_bench
 from plumbfall.bench.records import Bench
@@ -14,18 +16,13 @@ from plumbfall.errors import InputError, PlumbfallWarning
 from plumbfall.reduction import reduce_drops
 from plumbfall.report.report import Report
 from plumbfall.timings.reader import collect, read_timings
-from plumbfall.timings.records import Timings
-
-if TYPE_CHECKING:
-    import pandas as pd
+from plumbfall.timings.records import COLUMNS, Timings
 
 __all__ = ["BenchSource", "TimingSource", "find_bench", "inspect_inputs", "reduce"]
 
 FilePath: TypeAlias = str | os.PathLike[str]
-BenchSource: TypeAlias = "FilePath | Mapping[str, Any] | Bench"
-TimingSource: TypeAlias = (
-    "FilePath | pd.DataFrame | Timings | Iterable[FilePath | pd.DataFrame]"
-)
+BenchSource: TypeAlias = FilePath | Mapping[str, Any] | Bench
+TimingSource: TypeAlias = FilePath | pd.DataFrame | Timings | Iterable[FilePath | pd.DataFrame]
 
 DEFAULT_BENCH = "bench.toml"
 
@@ -100,9 +97,7 @@ def reduce(
     inputs = [(file.path, file.sha256) for file in timings.files]
     if bench.path:
         inputs.append((bench.path, bench.sha256))
-    return Report(
-        reduce_drops(timings, bench, coverage=coverage, seed=seed, inputs=tuple(inputs))
-    )
+    return Report(reduce_drops(timings, bench, coverage=coverage, seed=seed, inputs=tuple(inputs)))
 
 
 def inspect_inputs(
@@ -110,7 +105,7 @@ def inspect_inputs(
     bench: BenchSource | None = None,
     *,
     encoding: str | None = None,
-) -> tuple[Timings | None, Bench | None]:
+) -> tuple[Timings, Bench | None]:
     """Read the inputs without computing anything; problems of the timings are listed, not raised.
 
     Parameters
@@ -124,8 +119,8 @@ def inspect_inputs(
 
     Returns
     -------
-    Timings or None, Bench or None
-        What was understood of each that was given.
+    Timings, Bench or None
+        What was understood; no rows where no timings were given.
 
     Raises
     ------
@@ -143,6 +138,8 @@ def inspect_inputs(
             bench = None  # a timing file can be looked at without one
     if bench is not None and not isinstance(bench, Bench):
         bench = read_bench(bench)
-    if timings is not None and not isinstance(timings, Timings):
+    if timings is None:
+        return Timings(pd.DataFrame(columns=list(COLUMNS))), bench
+    if not isinstance(timings, Timings):
         timings = collect(timings, bench, encoding=encoding)
     return timings, bench

@@ -52,7 +52,9 @@ def test_copper_wires_have_a_straggler_but_no_outlier():
 def test_mass_spectrometer_values_have_an_outlier():
     values = [199.31, 199.53, 200.19, 200.82, 201.92, 201.95, 202.18, 245.57]
     assert statistic(values) == pytest.approx(2.4687, abs=1e-4)  # printed
-    assert grubbs_critical(n=8, level=0.10) == pytest.approx(2.032, abs=5e-4)  # printed, one-sided 5 %
+    assert grubbs_critical(n=8, level=0.10) == pytest.approx(
+        2.032, abs=5e-4
+    )  # printed, one-sided 5 %
     assert grubbs_p_value(statistic=statistic(values), n=8) < 1e-4
 
 

@@ -7,12 +7,12 @@ import dataclasses
 import numpy as np
 import pandas as pd
 import pytest
-from support.benches import bench_dict
 
 import plumbfall as pf
 from plumbfall.bench.records import Bench
 from plumbfall.estimate import Estimate
 from plumbfall.reduction import reduce_drops
+from support.benches import bench_dict
 
 DROPS = pd.DataFrame(
     {

@@ -14,7 +14,7 @@ __all__ = ["many_excluded", "nothing_left", "reused_balls", "too_few_drops", "vo
 
 
 def nothing_left(data: RunData) -> Iterator[Found]:
-    """Every row of the set is void or excluded."""
+    """Find sets of which every row is void or excluded."""
     for run_set in np.flatnonzero(data.weights.n_drops == 0):
         yield (
             int(run_set),
@@ -28,7 +28,7 @@ def nothing_left(data: RunData) -> Iterator[Found]:
 
 
 def too_few_drops(data: RunData) -> Iterator[Found]:
-    """Few drops say little of their own scatter, and nothing of an outlier."""
+    """Find sets too short to say much of their own scatter, or anything of an outlier."""
     for run_set in np.flatnonzero(
         (data.weights.n_drops > 0) & (data.weights.n_drops < data.limits.too_few_drops)
     ):
@@ -55,7 +55,7 @@ def too_few_drops(data: RunData) -> Iterator[Found]:
 
 
 def reused_balls(data: RunData) -> Iterator[Found]:
-    """Repeated drops of few balls do not average a ball's own error away."""
+    """Find repeated drops of few balls, which do not average a ball's own error away."""
     reused = np.flatnonzero(
         (data.weights.n_values < data.weights.n_drops) & (data.weights.n_values > 0)
     )
@@ -76,7 +76,7 @@ def reused_balls(data: RunData) -> Iterator[Found]:
 
 
 def many_excluded(data: RunData) -> Iterator[Found]:
-    """A result from what is left of many is a choice, not a measurement."""
+    """Find sets of which much was left out: a choice is not a measurement."""
     n_sets = len(data.names)
     read = np.bincount(data.row_set, minlength=n_sets)
     out = read - data.weights.n_drops
@@ -97,7 +97,7 @@ def many_excluded(data: RunData) -> Iterator[Found]:
 
 
 def void_without_reason(data: RunData) -> Iterator[Found]:
-    """A drop that was struck out must say why."""
+    """Find drops that were struck out without saying why."""
     table = data.timings.table
     void = np.flatnonzero((table["status"] == "void").to_numpy())
     notes = table["note"].iloc[void].astype(str).str.strip()

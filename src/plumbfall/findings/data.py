@@ -13,10 +13,10 @@ from plumbfall.bench.records import Ball, Bench, Liquid, Tube
 from plumbfall.findings.limits import Limits
 from plumbfall.measurement.drops import DropColumns, Weights
 from plumbfall.measurement.inputs import Inputs
-from plumbfall.run_sets.repeatability import Repeatability
 from plumbfall.measurement.selection import Selection
 from plumbfall.physics.drag import DragLaw
 from plumbfall.results import Finding
+from plumbfall.run_sets.repeatability import Repeatability
 from plumbfall.timings.records import Timings
 
 __all__ = ["Detector", "Found", "RunData"]

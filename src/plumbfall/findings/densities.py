@@ -14,7 +14,7 @@ __all__ = ["density_implausible", "radius_as_diameter"]
 
 
 def density_implausible(data: RunData) -> Iterator[Found]:
-    """A ball or a liquid of a density outside what labs use."""
+    """Find a ball or a liquid of a density outside what labs use."""
     limits, cells = data.limits, data.selection.cells
     ball = cold_ball_density(data.inputs)
     slip = _radius_slip(data, ball)
@@ -42,7 +42,7 @@ def density_implausible(data: RunData) -> Iterator[Found]:
 
 
 def radius_as_diameter(data: RunData) -> Iterator[Found]:
-    """A mass that fits eight times the volume: the radius stands where the diameter should."""
+    """Find a mass that fits eight times the volume: a radius written as the diameter."""
     cells = data.selection.cells
     density = cold_ball_density(data.inputs)
     slip = _radius_slip(data, density)

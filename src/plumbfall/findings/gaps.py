@@ -18,7 +18,7 @@ MOST_KEYS = 12
 
 
 def default_gravity(data: RunData) -> Iterator[Found]:
-    """Standard gravity stands in for the local one."""
+    """Note that standard gravity stands in for the local one."""
     site = data.bench.site
     if site.gravity is not None or site.latitude is not None:
         return
@@ -35,7 +35,7 @@ def default_gravity(data: RunData) -> Iterator[Found]:
 
 
 def missing_uncertainty(data: RunData) -> Iterator[Found]:
-    """Measured inputs that were given as if they were exact."""
+    """Find measured inputs that were given as if they were exact."""
     if not data.unstated:
         return
     place = {estimate.name: i for i, estimate in enumerate(data.inputs.estimates)}

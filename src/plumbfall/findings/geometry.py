@@ -21,7 +21,7 @@ GEOMETRY = {
 
 
 def geometry_unknown(data: RunData) -> Iterator[Found]:
-    """Distances without which ends and run-in cannot be judged."""
+    """Find tubes without the distances that ends and run-in are judged by."""
     for run_set, tube in _tubes(data):
         missing = [name for name in GEOMETRY if getattr(tube, name) is None]
         if missing:
@@ -39,7 +39,7 @@ def geometry_unknown(data: RunData) -> Iterator[Found]:
 
 
 def end_near(data: RunData) -> Iterator[Found]:
-    """A mark within one bore radius of an end of the liquid, where the end is felt."""
+    """Find marks within one bore radius of an end of the liquid, where the end is felt."""
     for run_set, tube in _tubes(data):
         assert tube.bore is not None  # a vertical tube has one
         radius = tube.bore.value / 2
@@ -65,23 +65,20 @@ def end_near(data: RunData) -> Iterator[Found]:
 
 
 def run_in_short(data: RunData) -> Iterator[Found]:
-    """The ball reaches the first mark before it has reached its terminal speed."""
+    """Find drops that reach the first mark before they have reached their terminal speed."""
     selection, columns = data.selection, data.columns
     tube = selection.cells.tube[selection.cell]
-    released = np.array(
-        [np.nan if t.release_above is None else t.release_above.value for t in data.tubes]
-    )[tube]
-    bore = np.array([np.nan if t.bore is None else t.bore.value for t in data.tubes])[tube]
-    density = data.inputs.roles["liquid_density"].value[selection.cell]
-    needed = run_in_guard_distance(
-        fall_speed=columns.fall_speed,
-        ball_diameter=columns.diameter,
-        tube_bore=bore,
-        liquid_density=density,
-        viscosity=columns.viscosity,
+    released = _of_tubes(data, "release_above")[tube]
+    at = np.flatnonzero(np.isfinite(columns.viscosity) & np.isfinite(released))
+    needed = np.zeros(len(tube))
+    needed[at] = run_in_guard_distance(
+        fall_speed=columns.fall_speed[at],
+        ball_diameter=columns.diameter[at],
+        tube_bore=_of_tubes(data, "bore")[tube[at]],
+        liquid_density=data.inputs.roles["liquid_density"].value[selection.cell[at]],
+        viscosity=columns.viscosity[at],
     )
-    with np.errstate(invalid="ignore"):
-        short = released < needed
+    short = released < needed
     for run_set, drops in data.flagged(short):
         worst = drops[np.argmax(needed[drops])]
         yield (
@@ -97,6 +94,12 @@ def run_in_short(data: RunData) -> Iterator[Found]:
                 remedy="let the ball go higher above the first mark, or use a smaller ball",
             ),
         )
+
+
+def _of_tubes(data: RunData, key: str) -> np.ndarray:
+    """One estimate's value of every tube, NaN where the tube does not give it."""
+    estimates = [getattr(tube, key) for tube in data.tubes]
+    return np.array([np.nan if one is None else one.value for one in estimates])
 
 
 def _tubes(data: RunData) -> Iterator[tuple[int, Tube]]:

@@ -45,7 +45,8 @@ def grubbs_critical(*, n: ArrayLike, level: float) -> NDArray[np.float64]:
     """
     n = np.asarray(n, dtype=float)
     t = stdtrit(n - 2, 1 - level / (2 * n))
-    return (n - 1) / np.sqrt(n) * np.sqrt(t**2 / (n - 2 + t**2))
+    critical: NDArray[np.float64] = (n - 1) / np.sqrt(n) * np.sqrt(t**2 / (n - 2 + t**2))
+    return critical
 
 
 def grubbs_p_value(*, statistic: ArrayLike, n: ArrayLike) -> NDArray[np.float64]:
@@ -54,7 +55,8 @@ def grubbs_p_value(*, statistic: ArrayLike, n: ArrayLike) -> NDArray[np.float64]
     share = np.minimum(g**2 * n / (n - 1) ** 2, 1.0)
     with np.errstate(divide="ignore"):
         t = np.sqrt(share * (n - 2) / (1 - share))
-    return np.minimum(2 * n * stdtr(n - 2, -t), 1.0)
+    p_value: NDArray[np.float64] = np.minimum(2 * n * stdtr(n - 2, -t), 1.0)
+    return p_value
 
 
 @dataclass(frozen=True, slots=True)
@@ -79,7 +81,8 @@ def suspects(data: RunData) -> Suspects:
     groups = group_scatter(log_viscosity, run_set, n_sets)
     distance = np.abs(log_viscosity - groups.mean[run_set])
     farthest = np.zeros(n_sets)
-    np.maximum.at(farthest, run_set, distance)  # NaN stays, and then nothing is tested
+    with np.errstate(invalid="ignore"):
+        np.maximum.at(farthest, run_set, distance)  # NaN stays, and then nothing is tested
     drop = np.zeros(n_sets, dtype=np.intp)
     at_farthest = np.flatnonzero(distance == farthest[run_set])
     drop[run_set[at_farthest]] = at_farthest
@@ -92,7 +95,7 @@ def suspects(data: RunData) -> Suspects:
 
 
 def outlier(data: RunData) -> Iterator[Found]:
-    """One drop that does not belong with the others; it is kept, and named."""
+    """Find the one drop that does not belong with the others; it is kept, and named."""
     found = suspects(data)
     for run_set in np.flatnonzero(found.p_value < data.limits.outlier_level):
         drop = found.drop[run_set]

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 import numpy as np
 
 from plumbfall.findings.data import Found, RunData
+from plumbfall.physics.inertia import reynolds_of_drag_abraham
 from plumbfall.results import Finding
 
 __all__ = [
@@ -19,7 +20,7 @@ __all__ = [
 
 
 def ball_not_denser(data: RunData) -> Iterator[Found]:
-    """A ball that is not denser than the liquid does not fall."""
+    """Find balls that are not denser than the liquid, and so cannot fall."""
     for run_set, drops in data.flagged(data.columns.floating):
         names = _ball_names(data, drops)
         yield (
@@ -35,7 +36,7 @@ def ball_not_denser(data: RunData) -> Iterator[Found]:
 
 
 def no_solution(data: RunData) -> Iterator[Found]:
-    """No viscosity, however small, lets a ball of this weight fall so fast."""
+    """Find falls so fast that no viscosity, however small, allows them."""
     for run_set, drops in data.flagged(data.columns.no_root):
         yield (
             run_set,
@@ -51,26 +52,29 @@ def no_solution(data: RunData) -> Iterator[Found]:
 
 
 def reynolds_high(data: RunData) -> Iterator[Found]:
-    """The Reynolds number is beyond the drag law's limit: refused, not extrapolated."""
-    for run_set, drops in data.flagged(data.columns.too_fast):
-        ratio = float(np.max(data.columns.diameter_ratio[drops]))
+    """Find Reynolds numbers beyond the drag law's limit: refused, not extrapolated."""
+    columns, limiting = data.columns, data.law.reynolds_law
+    for run_set, drops in data.flagged(columns.too_fast):
+        density = data.inputs.roles["liquid_density"].value[data.selection.cell[drops]]
+        needed = 8 * columns.shear_stress[drops] / (density * columns.fall_speed[drops] ** 2)
+        reynolds = float(np.max(reynolds_of_drag_abraham(drag_coefficient=needed)))
         yield (
             run_set,
             Finding(
                 code="reynolds-high",
                 severity="error",
                 drops=data.numbers(drops),
-                statistic=data.law.max_reynolds,
-                message=f"the Reynolds number is above {data.law.max_reynolds:g}, the limit of the "
-                f"drag law '{data.law.reynolds_law.name}' (diameter ratio {ratio:.3f}); "
-                "no viscosity is given, as the law is not known there",
+                statistic=reynolds,
+                message=f"the Reynolds number is about {reynolds:.0f} (by Abraham's law, without "
+                f"walls), above {limiting.high:g}, the limit of the drag law '{limiting.name}'; "
+                "no viscosity is given, as the drag is not known there",
                 remedy="use a smaller or lighter ball, so that it falls more slowly",
             ),
         )
 
 
 def diameter_ratio_high(data: RunData) -> Iterator[Found]:
-    """The ball fills more of the bore than the drag law covers."""
+    """Find balls that fill more of the bore than the drag law covers."""
     for run_set, drops in data.flagged(data.columns.too_wide & ~data.columns.floating):
         ratio = float(np.max(data.columns.diameter_ratio[drops]))
         yield (
@@ -88,7 +92,7 @@ def diameter_ratio_high(data: RunData) -> Iterator[Found]:
 
 
 def reynolds_uncertain(data: RunData) -> Iterator[Found]:
-    """The law holds, but inertia makes it less certain than the rest."""
+    """Find drops where the law holds, but inertia makes it less certain than the rest."""
     flag = data.columns.model_bound > data.limits.model_bound
     for run_set, drops in data.flagged(flag):
         worst = drops[np.argmax(data.columns.reynolds[drops])]

@@ -29,7 +29,7 @@ def _ranges(data: RunData) -> np.ndarray:
 
 
 def slope_unknown(data: RunData) -> Iterator[Found]:
-    """Without d ln(viscosity)/dT neither bounds nor reduction can take temperature in."""
+    """Find liquids without a temperature slope, which bounds and reduction would need."""
     known = np.zeros(len(data.names), bool)
     known[data.selection.cells.run_set[data.inputs.slope_known]] = True
     ranges = _ranges(data)
@@ -63,7 +63,7 @@ def slope_unknown(data: RunData) -> Iterator[Found]:
 
 
 def temperature_spread(data: RunData) -> Iterator[Found]:
-    """Drops of one set at widely differing temperatures."""
+    """Find sets whose drops were made at widely differing temperatures."""
     ranges = _ranges(data)
     slope = np.zeros(len(data.names))
     slope[data.selection.cells.run_set] = data.inputs.roles["slope"].value
@@ -85,7 +85,7 @@ def temperature_spread(data: RunData) -> Iterator[Found]:
 
 
 def density_temperature(data: RunData) -> Iterator[Found]:
-    """The liquid's density was taken at another temperature, and its expansion is not known."""
+    """Find densities taken at another temperature where the expansion is not known."""
     cells = data.selection.cells
     unknown = np.array([liquid.expansion is None for liquid in data.liquids], bool)[cells.liquid]
     offset = data.columns.set_temperature[cells.run_set] - data.inputs.liquid_density_at

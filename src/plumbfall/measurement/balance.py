@@ -95,7 +95,7 @@ def balance(inputs: Inputs, cell: Codes, time: Numbers, temperature: Numbers) ->
     liquid_offset = _offset(temperature, spread(inputs.liquid_density_at, cell))
 
     cold_diameter = take("diameter") + take("gauge")
-    cold_volume = sphere_volume(ball_diameter=cold_diameter)
+    cold_volume = np.asarray(sphere_volume(ball_diameter=cold_diameter))
     mass = take("ball_density") * cold_volume
     if inputs.weighed.any():
         reading = (take("mass") + take("balance")) / spread(inputs.together, cell)
@@ -103,15 +103,17 @@ def balance(inputs: Inputs, cell: Codes, time: Numbers, temperature: Numbers) ->
         mass = np.where(inputs.weighed[cell], weighed, mass)
 
     diameter = _grown(cold_diameter, roles["ball_expansion"], cell, ball_offset)
-    volume = sphere_volume(ball_diameter=diameter)
+    volume = np.asarray(sphere_volume(ball_diameter=diameter))
     bore = _grown(take("bore"), roles["tube_expansion"], cell, tube_offset)
     distance = take("to_mark") - take("from_mark")
     distance = _grown(distance, roles["tube_expansion"], cell, tube_offset)
-    density = liquid_density(
-        density=take("liquid_density"),
-        expansion=take("liquid_expansion"),
-        temperature=liquid_offset,
-        reference_temperature=0.0,
+    density = np.asarray(
+        liquid_density(
+            density=take("liquid_density"),
+            expansion=take("liquid_expansion"),
+            temperature=liquid_offset,
+            reference_temperature=0.0,
+        )
     )
 
     true_time = time * (1 + take("rate")) - take("bias")
@@ -141,11 +143,13 @@ def balance(inputs: Inputs, cell: Codes, time: Numbers, temperature: Numbers) ->
 def _grown(length: Numbers, expansion: Column, cell: Codes, offset: Numbers) -> Numbers:
     if not expansion.present:
         return length  # saves the passes
-    return expanded_length(
-        length=length,
-        expansion=spread(expansion.value, cell),
-        temperature=offset,
-        reference_temperature=0.0,
+    return np.asarray(
+        expanded_length(
+            length=length,
+            expansion=spread(expansion.value, cell),
+            temperature=offset,
+            reference_temperature=0.0,
+        )
     )
 
 

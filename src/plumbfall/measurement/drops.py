@@ -123,20 +123,40 @@ def compute_drops(
     offset = set_temperature[selection.run_set] - temperature
     np.nan_to_num(offset, copy=False, nan=0.0)
 
-    names = ("viscosity", "at_set", "stokes", "reynolds", "fall_speed", "diameter",
-             "diameter_ratio", "wall", "drag_factor", "shear_stress", "model_bound")  # fmt: skip
-    out = {name: np.empty(n) for name in names}
-    flags = {name: np.empty(n, bool) for name in ("floating", "too_fast", "too_wide", "no_root")}
+    out = _empty_columns(n, temperature, set_temperature)
     sums = empty_sums(len(selection.cells))
     for start in range(0, n, BLOCK):
         block = slice(start, min(start + BLOCK, n))
-        _compute_block(
-            block, selection, inputs, law, temperature, offset, weights.weight, out, flags, sums
-        )
-    columns = DropColumns(
-        temperature=temperature, set_temperature=set_temperature, **out, **flags
+        _compute_block(block, selection, inputs, law, offset, weights.weight, out, sums)
+    return out, sums
+
+
+def _empty_columns(n: int, temperature: Numbers, set_temperature: Numbers) -> DropColumns:
+    def numbers() -> Numbers:
+        return np.empty(n)
+
+    def flags() -> NDArray[np.bool_]:
+        return np.empty(n, dtype=bool)
+
+    return DropColumns(
+        temperature=temperature,
+        viscosity=numbers(),
+        at_set=numbers(),
+        stokes=numbers(),
+        reynolds=numbers(),
+        fall_speed=numbers(),
+        diameter=numbers(),
+        diameter_ratio=numbers(),
+        wall=numbers(),
+        drag_factor=numbers(),
+        shear_stress=numbers(),
+        model_bound=numbers(),
+        floating=flags(),
+        too_fast=flags(),
+        too_wide=flags(),
+        no_root=flags(),
+        set_temperature=set_temperature,
     )
-    return columns, sums
 
 
 def _compute_block(
@@ -144,16 +164,15 @@ def _compute_block(
     selection: Selection,
     inputs: Inputs,
     law: DragLaw,
-    temperature: Numbers,
     offset: Numbers,
     weight: Numbers,
-    out: dict[str, Numbers],
-    flags: dict[str, NDArray[np.bool_]],
+    out: DropColumns,
     sums: Sums,
 ) -> None:
+    """Fill the columns of one block of drops, and add it to the sums."""
     cell, clock = selection.cell[block], selection.time[block]
     with np.errstate(invalid="ignore", divide="ignore"):
-        forces = balance(inputs, cell, clock, temperature[block])
+        forces = balance(inputs, cell, clock, out.temperature[block])
         # A ratio beyond the law's is flagged by the inverse; here it must only not stop the rest.
         drag = law.at(np.minimum(forces.diameter_ratio, law.max_ratio))
         found = invert(forces, drag)
@@ -161,27 +180,29 @@ def _compute_block(
         to_set = np.exp(spread(inputs.roles["slope"].value, cell) * offset[block])
         bound = drag.relative_bound(found.log_reynolds)
         stokes = forces.weight / (3 * np.pi * forces.diameter * forces.speed)
-        out["viscosity"][block] = found.viscosity
-        out["at_set"][block] = found.viscosity * to_set
-        out["stokes"][block] = stokes * to_set
-        out["reynolds"][block] = found.reynolds
-        out["fall_speed"][block] = forces.speed
-        out["diameter"][block] = forces.diameter
-        out["diameter_ratio"][block] = forces.diameter_ratio
-        out["wall"][block] = drag.wall
-        out["drag_factor"][block] = stokes / found.viscosity
-        out["shear_stress"][block] = forces.weight / (np.pi * forces.diameter**2)
-        out["model_bound"][block] = bound
-        for name in flags:
-            flags[name][block] = getattr(found, name)
+        out.viscosity[block] = found.viscosity
+        out.at_set[block] = found.viscosity * to_set
+        out.stokes[block] = stokes * to_set
+        out.reynolds[block] = found.reynolds
+        out.fall_speed[block] = forces.speed
+        out.diameter[block] = forces.diameter
+        out.diameter_ratio[block] = forces.diameter_ratio
+        out.wall[block] = drag.wall
+        out.drag_factor[block] = stokes / found.viscosity
+        out.shear_stress[block] = forces.weight / (np.pi * forces.diameter**2)
+        out.model_bound[block] = bound
+        out.floating[block] = found.floating
+        out.too_fast[block] = found.too_fast
+        out.too_wide[block] = found.too_wide
+        out.no_root[block] = found.no_root
         add_block(
             sums,
             inputs,
             cell,
             clock,
             forces,
-            DropSlopes(ratio_slope, reynolds_slope, bound),
-            weight[block] * out["at_set"][block],
+            DropSlopes(np.asarray(ratio_slope), np.asarray(reynolds_slope), np.asarray(bound)),
+            weight[block] * out.at_set[block],
             offset[block],
             ~np.isnan(selection.temperature[block]),
         )

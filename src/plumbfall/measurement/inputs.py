@@ -125,9 +125,7 @@ def _column(
     return Column(value[codes], entry[codes])  # code -1 reads the neutral last place
 
 
-def gather(
-    cells: Cells, bench: Bench, run_sets: Sequence[str], model: Estimate
-) -> Inputs:
+def gather(cells: Cells, bench: Bench, run_sets: Sequence[str], model: Estimate) -> Inputs:
     """Look up every raw input of the measurement equation, by cell.
 
     Parameters
@@ -252,6 +250,9 @@ def _set_temperatures(
     run_sets: Sequence[str],
 ) -> None:
     """Temperatures given for a whole run set, one reading of its thermometer's each."""
+    if not any(entry.temperature for entry in bench.sets.values()):
+        roles["temperature"] = _column(register, np.full(len(cells), -1, dtype=np.intp), [])
+        return
     per_reading = [t.per_reading for t in bench.thermometers.values()]
     thermometer_of = dict(zip(cells.run_set.tolist(), cells.thermometer.tolist(), strict=True))
     estimates: list[Estimate | None] = []
@@ -302,7 +303,7 @@ def _check_tubes(tubes: Sequence[Tube], bench: Bench) -> None:
             problems.append(
                 Problem(
                     "a calibrated tube cannot be reduced by this version, which has no constants",
-                    "describe the tube's bore and marks and use kind = \"vertical\"",
+                    'describe the tube\'s bore and marks and use kind = "vertical"',
                     path=bench.path,
                     key=f"tube.{tube.name}.kind",
                 )
@@ -312,7 +313,7 @@ def _check_tubes(tubes: Sequence[Tube], bench: Bench) -> None:
             problems.append(
                 Problem(
                     f"the tube has no {missing}",
-                    f"add {missing} = \"… mm\" to [tube.{tube.name}]",
+                    f'add {missing} = "… mm" to [tube.{tube.name}]',
                     path=bench.path,
                     key=f"tube.{tube.name}",
                 )

@@ -72,14 +72,12 @@ def invert(forces: Balance, drag: BoundDrag) -> Inverse:
     inertial = forces.liquid_density * (forces.speed * forces.diameter) ** 2
     with np.errstate(invalid="ignore", divide="ignore"):
         log_demand = np.log(forces.weight / (3 * np.pi * inertial))
-        top = np.log(drag.max_reynolds)
-        at_top = drag.evaluate(np.full(shape, top))[0] - top
-        beyond = log_demand < at_top
-        x = _newton(drag, log_demand, top, shape)
-    x = np.where(floating | late | too_wide | beyond, np.nan, x)
+        x, beyond = _newton(drag, log_demand, float(np.log(drag.max_reynolds)), shape)
+    bad = floating | late | too_wide | beyond
+    if bad.any():
+        x = np.where(bad, np.nan, x)
     reynolds = np.exp(x)
-    coefficient = 24 * np.exp(log_demand)
-    no_root = late | (beyond & (coefficient < MINIMUM_DRAG_COEFFICIENT))
+    no_root = late | (beyond & (log_demand < np.log(MINIMUM_DRAG_COEFFICIENT / 24)))
     return Inverse(
         viscosity=forces.liquid_density * forces.speed * forces.diameter / reynolds,
         reynolds=reynolds,
@@ -93,13 +91,14 @@ def invert(forces: Balance, drag: BoundDrag) -> Inverse:
 
 def _newton(
     drag: BoundDrag, log_demand: Numbers, top: float, shape: tuple[int, ...]
-) -> Numbers:
+) -> tuple[Numbers, NDArray[np.bool_]]:
+    """Return the root, kept below the law's limit, and whether it lies beyond that limit."""
     x = np.minimum(np.broadcast_to(np.log(drag.wall) - log_demand, shape), top)
     for _ in range(MOST_STEPS):
         log_factor, slope = drag.evaluate(x)
-        moved = np.minimum(x + (log_factor - x - log_demand) / (1 - slope), top)
-        change = np.abs(moved - x)
-        x = moved
-        if not np.nanmax(change, initial=0.0) > TOLERANCE:
+        step = (log_factor - x - log_demand) / (1 - slope)
+        beyond = x + step > top
+        x = np.minimum(x + step, top)
+        if not np.abs(step, where=~beyond, out=np.zeros(shape)).max(initial=0.0) > TOLERANCE:
             break
-    return x
+    return x, beyond

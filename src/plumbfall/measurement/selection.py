@@ -101,9 +101,7 @@ def select(timings: Timings, bench: Bench) -> Selection:
     run_set = set_codes[row]
 
     problems: list[Problem] = []
-    codes = {
-        kind: _equipment(kind, table, row, run_set, names, bench, problems) for kind in KINDS
-    }
+    codes = {kind: _equipment(kind, table, row, run_set, names, bench, problems) for kind in KINDS}
     if problems:
         raise InputError(problems)
 
@@ -129,12 +127,16 @@ def select(timings: Timings, bench: Bench) -> Selection:
 
 def _run_sets(column: pd.Series) -> tuple[Codes, tuple[str, ...]]:
     """Codes of the run sets in order of first appearance."""
+    codes, labels = _labelled(column)
+    rank, order = pd.factorize(codes)
+    return rank.astype(np.intp), tuple(labels[i] for i in order.tolist())
+
+
+def _labelled(column: pd.Series) -> tuple[Codes, list[str]]:
+    """Codes of a text column and the labels they count."""
     categorical = column.astype("category").cat
-    present, first = np.unique(categorical.codes.to_numpy(), return_index=True)
-    order = present[np.argsort(first)]
-    rank = np.empty(order.max(initial=-1) + 1, dtype=np.intp)
-    rank[order] = np.arange(len(order))
-    return rank[categorical.codes.to_numpy()], tuple(str(categorical.categories[i]) for i in order)
+    labels = [str(label) for label in categorical.categories.tolist()]
+    return categorical.codes.to_numpy().astype(np.intp), labels
 
 
 def _equipment(
@@ -150,20 +152,21 @@ def _equipment(
     place = {name: code for code, name in enumerate(known)}
     only = 0 if len(known) == 1 else -1
     fallback = np.full(len(names), only, dtype=np.intp)
-    for code, name in enumerate(names):
+    for code, name in enumerate(names) if bench.sets else ():
         entry = bench.sets.get(name)
         chosen = getattr(entry, kind, None) if entry is not None else None
         if chosen is not None:
             fallback[code] = place[chosen]  # the bench sheet's own references are checked there
 
-    column = table[kind].astype("category").cat
-    labels = [str(label) for label in column.categories]
-    code_of_label = np.array([place.get(label, -2) if label else -1 for label in labels] + [-1])
-    own = code_of_label[column.codes.to_numpy()[row]]
-    codes: Codes = np.where(own == -1, fallback[run_set], own).astype(np.intp)
+    label_codes, labels = _labelled(table[kind])
+    code_of_label = np.array(
+        [place.get(label, -2) if label else -1 for label in labels] + [-1], dtype=np.intp
+    )
+    own = code_of_label[label_codes[row]]
+    codes: Codes = np.where(own == -1, fallback[run_set], own)
 
     for place_of in np.flatnonzero(code_of_label[:-1] == -2):
-        rows = row[column.codes.to_numpy()[row] == place_of]
+        rows = row[label_codes[row] == place_of]
         if len(rows):
             problems.append(_unknown(kind, labels[place_of], known, table, int(rows[0])))
     if kind in REQUIRED:

@@ -62,7 +62,7 @@ FIRST = (
 
 
 def empty_sums(n_cells: int) -> Sums:
-    """Sums of no drops."""
+    """Return the sums of no drops."""
 
     def zeros() -> Numbers:
         return np.zeros(n_cells)
@@ -118,7 +118,8 @@ def add_block(
         return spread(roles[role].value, cell)
 
     def total(values: Numbers) -> Numbers:
-        return np.bincount(cell, weights=np.broadcast_to(values, cell.shape), minlength=n)
+        weights = np.broadcast_to(values, cell.shape)
+        return np.asarray(np.bincount(cell, weights=weights, minlength=n), dtype=float)
 
     def add(role: str, values: Callable[[], Numbers]) -> None:
         if roles[role].present:

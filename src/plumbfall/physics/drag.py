@@ -175,17 +175,14 @@ class BoundDrag:
         The rule's own bound with exact walls and the compact inertia, plus how far the chosen
         laws take K from that.
         """
-        best = DragLaw(together=self.law.together)
         bound = self.law.together_law.bound
         assert bound is not None  # every rule of the registry has one
-        wall_excess = best.wall_law.function(diameter_ratio=self.ratio) - 1.0
-        excess, _ = _kernel(best.inertia_law)(np.atleast_1d(log_reynolds))
-        half_width: Numeric = bound(wall_excess, excess)
-        if (self.law.walls, self.law.inertia) != (best.walls, best.inertia):
-            reference, _ = _kernel(best.together_law)(wall_excess, excess)
-            chosen, _ = self.evaluate(log_reynolds)
-            half_width = half_width + np.abs(np.expm1(chosen - np.log1p(reference)))
-        return self._shaped(np.asarray(half_width), log_reynolds)
+        if (self.law.walls, self.law.inertia) == (DEFAULTS["walls"], DEFAULTS["inertia"]):
+            excess, _ = self._inertia(log_reynolds)
+            return self._shaped(np.asarray(bound(self.wall_excess, excess)), log_reynolds)
+        best = DragLaw(together=self.law.together).at(self.ratio)
+        apart = self.evaluate(log_reynolds)[0] - best.evaluate(log_reynolds)[0]
+        return best.relative_bound(log_reynolds) + np.abs(np.expm1(apart))
 
     def _inertia(self, log_reynolds: Numeric) -> tuple[Array, Array]:
         """Excess of the inertia and its slope, as arrays of one dimension at least."""

@@ -27,6 +27,7 @@ __all__ = [
     "inertia_factor_oseen",
     "inertia_factor_schiller_naumann",
     "inertia_factor_stokes",
+    "reynolds_of_drag_abraham",
 ]
 
 OSEEN = 3.0 / 16.0
@@ -310,6 +311,43 @@ def inertia_factor_abraham(*, reynolds: Numeric) -> Numeric:
     """
     factor: Numeric = (1.0 + np.sqrt(reynolds) / ABRAHAM) ** 2
     return factor
+
+
+def reynolds_of_drag_abraham(*, drag_coefficient: Numeric) -> Numeric:
+    r"""Reynolds number that goes with a drag coefficient, by Abraham's law turned round.
+
+    .. math:: Re = \left[\frac{9.06}{\sqrt{9.06^2 C_d / 24} - 1}\right]^2
+
+    Parameters
+    ----------
+    drag_coefficient : float or array, shape (..., drops) [1]
+        Drag over (density of the liquid times speed squared times ball area) / 2.
+
+    Returns
+    -------
+    float or array [1]
+        Reynolds number on the diameter.
+
+    Valid range
+    -----------
+    Drag coefficient above 0.2924, where the law levels off; unbounded liquid.
+
+    Notes
+    -----
+    Explicit, so it tells the size of a Reynolds number that is beyond every law for a tube.
+
+    References
+    ----------
+    [Abraham1970]
+
+    Examples
+    --------
+    >>> phi = inertia_factor_abraham(reynolds=50.0)
+    >>> f"{reynolds_of_drag_abraham(drag_coefficient=24 / 50.0 * phi):.1f}"
+    '50.0'
+    """
+    reynolds: Numeric = (ABRAHAM / (np.sqrt(ABRAHAM**2 * drag_coefficient / 24.0) - 1.0)) ** 2
+    return reynolds
 
 
 def clift_pieces(reynolds: NDArray[np.float64]) -> list[NDArray[np.bool_]]:

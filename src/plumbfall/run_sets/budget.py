@@ -132,7 +132,7 @@ def _declared_line(
     bench: Bench,
     cells: NDArray[np.intp],
 ) -> BudgetLine:
-    """A standard deviation that every drop has to itself; its sensitivity is that of the mean."""
+    """Describe a standard deviation that every drop has to itself, by what it does to the mean."""
     name, value, unit, shape = next(_declared(kind, selection, bench, cells))
     u = value / math.sqrt(6) if kind == "resolution" else value  # two readings, d/sqrt(12) each
     return BudgetLine(

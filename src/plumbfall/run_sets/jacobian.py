@@ -6,20 +6,17 @@ its clock readings or its fresh balls add. The same list of columns serves every
 
 from __future__ import annotations
 
-from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 from scipy import sparse
 
-from plumbfall.bench.records import Bench
-from plumbfall.estimate import Estimate
 from plumbfall.measurement.balance import Numbers
 from plumbfall.measurement.inputs import Inputs
-from plumbfall.run_sets.repeatability import DECLARED, KNOWN, OF_VALUES, Repeatability
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import Sums
+from plumbfall.run_sets.repeatability import DECLARED, KNOWN, OF_VALUES, Repeatability
 
 __all__ = ["Jacobian", "OwnColumns", "build_jacobian", "own_variances"]
 
@@ -60,7 +57,7 @@ class Jacobian:
         return int(self.squared[place]) if place < len(self.squared) else -1
 
     def own_kind(self, column: int) -> str:
-        """What a run set's own column stands for."""
+        """Say what a run set's own column stands for."""
         place = column - self.n_inputs - len(self.squared)
         return OWN_KINDS[place // self.n_sets]
 
@@ -73,7 +70,7 @@ def own_variances(selection: Selection, inputs: Inputs, sums: Sums) -> OwnColumn
     cell_set, n_sets = selection.cells.run_set, len(selection.names)
 
     def by_set(per_cell: Numbers) -> Numbers:
-        return np.bincount(cell_set, weights=per_cell, minlength=n_sets)
+        return np.asarray(np.bincount(cell_set, weights=per_cell, minlength=n_sets), dtype=float)
 
     return OwnColumns(
         per_drop=by_set(sums.timing * inputs.per_drop**2),

@@ -16,16 +16,14 @@ from plumbfall.measurement.sensitivities import Sums
 from plumbfall.physics.drag import DragLaw
 from plumbfall.physics.stokes import shear_rate
 from plumbfall.results import (
-    BallResult,
-    BudgetLine,
     Correction,
-    DropResult,
     Finding,
     Measured,
     Quantity,
     RunSetResult,
 )
 from plumbfall.run_sets.budget import budget_lines
+from plumbfall.run_sets.drop_records import ball_results, drop_results
 from plumbfall.run_sets.jacobian import Jacobian
 from plumbfall.run_sets.outputs import Output, Outputs, SetConditions
 from plumbfall.run_sets.repeatability import Repeatability
@@ -125,11 +123,25 @@ def build_result(
         shear_stress=_largest(drops.shear_stress[used]),
         corrections=() if invalid else _corrections(all_sets, used),
         budget=budget_lines(
-            all_sets.jacobian, all_sets.inputs, all_sets.sums, all_sets.selection,
-            all_sets.scatter, all_sets.bench, run_set,
-        ),  # fmt: skip
-        balls=_balls(all_sets, used),
-        drops=_drops(all_sets, run_set, used, rows, findings),
+            all_sets.jacobian,
+            all_sets.inputs,
+            all_sets.sums,
+            all_sets.selection,
+            all_sets.scatter,
+            all_sets.bench,
+            run_set,
+        ),
+        balls=ball_results(all_sets.bench, all_sets.selection, all_sets.columns, used),
+        drops=drop_results(
+            all_sets.bench,
+            all_sets.timings,
+            all_sets.selection,
+            all_sets.columns,
+            float(all_sets.scatter.mean[run_set]),
+            used,
+            rows,
+            findings,
+        ),
         findings=findings,
     )
 
@@ -161,9 +173,7 @@ def _names(known: object, codes: NDArray[np.intp]) -> str:
     return ", ".join(names[code] for code in np.unique(codes))
 
 
-def _count_balls(
-    all_sets: SetColumns, cells: NDArray[np.intp], used: NDArray[np.intp]
-) -> int:
+def _count_balls(all_sets: SetColumns, cells: NDArray[np.intp], used: NDArray[np.intp]) -> int:
     """Balls that were dropped; a lot's drops are a ball each."""
     fresh = all_sets.inputs.lot[all_sets.selection.cell[used]]
     reused = cells[~all_sets.inputs.lot[cells]]
@@ -171,7 +181,7 @@ def _count_balls(
 
 
 def _temperature_u(all_sets: SetColumns, cells: NDArray[np.intp]) -> float:
-    """What all readings share: the thermometer's correction, and a reading for the whole set."""
+    """Return what all readings share: the correction, and a reading for the whole set."""
     entries = {
         int(all_sets.inputs.roles[role].entry[cell])
         for role in ("thermometer", "temperature")
@@ -212,89 +222,3 @@ def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correcti
             "guard distance, see the documentation",
         ),
     )
-
-
-def _balls(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[BallResult, ...]:
-    drops, selection = all_sets.columns, all_sets.selection
-    ball = selection.cells.ball[selection.cell[used]]
-    names = list(all_sets.bench.balls)
-    found = []
-    for code in dict.fromkeys(ball.tolist()):
-        here = used[ball == code]
-        value = drops.at_set[here]
-        rate = shear_rate(fall_speed=drops.fall_speed[here], ball_diameter=drops.diameter[here])
-        scatter = float(value.std(ddof=1) / math.sqrt(len(value))) if len(value) > 1 else math.nan
-        found.append(
-            BallResult(
-                ball=names[code],
-                n_drops=len(here),
-                viscosity=Quantity(float(value.mean()), "Pa.s", scatter),
-                reynolds=float(drops.reynolds[here].max()),
-                diameter_ratio=float(drops.diameter_ratio[here].max()),
-                shear_rate=float(np.max(rate)),
-                shear_stress=float(drops.shear_stress[here].max()),
-            )
-        )
-    return tuple(found)
-
-
-def _drops(
-    all_sets: SetColumns,
-    run_set: int,
-    used: NDArray[np.intp],
-    rows: NDArray[np.intp],
-    findings: tuple[Finding, ...],
-) -> tuple[DropResult, ...]:
-    columns = all_sets.columns
-    place = dict(zip(all_sets.selection.row[used].tolist(), used.tolist(), strict=True))
-    mean = float(all_sets.scatter.mean[run_set])
-    codes: dict[int, list[str]] = {}
-    for finding in findings:
-        for number in finding.drops:
-            codes.setdefault(number, []).append(finding.code)
-    shown = ["file", "line", "drop", "ball", "time_s", "temperature_K", "status", "note"]
-    ball_names = list(all_sets.bench.balls)
-
-    def number(values: NDArray[np.float64], at: int | None) -> float | None:
-        if at is None or not math.isfinite(values[at]):
-            return None
-        return float(values[at])
-
-    drops = []
-    for row, record in zip(
-        rows.tolist(), all_sets.timings.table[shown].iloc[rows].itertuples(index=False), strict=True
-    ):
-        at = place.get(row)
-        at_set = number(columns.at_set, at)
-        wall = number(columns.wall, at)
-        total = number(columns.drag_factor, at)
-        ball = str(record.ball)
-        if at is not None:
-            ball = ball_names[all_sets.selection.cells.ball[all_sets.selection.cell[at]]]
-        drops.append(
-            DropResult(
-                file=str(record.file),
-                line=int(record.line),
-                drop=int(record.drop),
-                ball=ball,
-                time=float(record.time_s),
-                temperature=float(record.temperature_K)
-                if at is None
-                else float(columns.temperature[at]),
-                viscosity=number(columns.viscosity, at),
-                viscosity_at_set=at_set,
-                stokes_viscosity=number(columns.stokes, at),
-                reynolds=number(columns.reynolds, at),
-                fall_speed=number(columns.fall_speed, at),
-                wall=wall,
-                inertia=total / wall if total is not None and wall is not None else None,
-                end=None if at is None else 1.0,
-                residual=at_set / mean - 1 if at_set is not None and mean else None,
-                used=at is not None,
-                status=str(record.status),
-                note=str(record.note),
-                findings=tuple(codes.get(int(record.drop), ())),
-            )
-        )
-    return tuple(drops)
-

@@ -1,0 +1,155 @@
+"""The command line as a user types it: what is printed, what is written, and the exit code."""
+
+from __future__ import annotations
+
+import json
+import os
+import subprocess
+import sys
+from pathlib import Path
+
+import pytest
+
+from plumbfall.cli import main
+
+SAMPLES = Path(__file__).parents[2] / "sample_runs"
+CLEAN = SAMPLES / "damping_fluid_clean" / "drops.csv"
+BAD = SAMPLES / "resin_bad_drop" / "drops.csv"
+INVALID = SAMPLES / "wash_oil_invalid" / "drops.csv"
+
+
+def test_reduce_prints_a_verdict_a_set_and_exits_with_0(capsys):
+    assert main(["reduce", str(CLEAN)]) == 0
+    out, err = capsys.readouterr()
+    assert out.startswith("valid  tank 3  ")
+    assert "8 of 8 drops, 4 balls  0 warnings" in out.splitlines()[0]
+    assert err == ""
+
+
+def test_json_is_the_report_alone(capsys):
+    assert main(["reduce", str(CLEAN), "--json"]) == 0
+    document = json.loads(capsys.readouterr().out)
+    assert document["schema"] == "plumbfall/report/1"
+    assert document["rows"] == {"read": 8, "used": 8, "void": 0, "excluded": 0}
+
+
+def test_out_writes_four_files_whole(tmp_path, capsys):
+    out = tmp_path / "report"
+    assert main(["reduce", str(CLEAN), "--out", str(out)]) == 0
+    assert sorted(path.name for path in out.iterdir()) == [
+        "drops.csv",
+        "report.html",
+        "report.json",
+        "run_sets.csv",
+    ]
+    assert "written to" in capsys.readouterr().err
+    assert os.listdir(tmp_path) == ["report"]
+
+
+def test_an_invalid_set_exits_with_1_and_still_reports(tmp_path, capsys):
+    out = tmp_path / "report"
+    assert main(["reduce", str(INVALID), "--out", str(out)]) == 1
+    assert (out / "report.html").exists()
+    assert capsys.readouterr().out.startswith("invalid  drops  no viscosity")
+
+
+def test_strict_exits_with_1_on_a_warning(capsys):
+    assert main(["reduce", str(BAD)]) == 0
+    assert main(["reduce", str(BAD), "--strict"]) == 1
+    assert "outlier" in capsys.readouterr().out
+
+
+def test_coverage_widens_the_bounds(capsys):
+    def half_width(*options: str) -> float:
+        main(["reduce", str(CLEAN), "--json", *options])
+        viscosity = json.loads(capsys.readouterr().out)["run_sets"][0]["viscosity"]
+        return viscosity["high"] - viscosity["low"]
+
+    assert half_width("--coverage", "0.99") > 1.25 * half_width()
+
+
+def test_bad_input_exits_with_2_and_writes_nothing(tmp_path, capsys):
+    timings = tmp_path / "drops.csv"
+    timings.write_text("ball,time [s]\nA,12.4\nZ,12.5\nB,1O.2\n", "utf-8")
+    out = tmp_path / "report"
+    bench = SAMPLES / "damping_fluid_clean" / "bench.toml"
+    assert main(["reduce", str(timings), "--bench", str(bench), "--out", str(out)]) == 2
+    err = capsys.readouterr().err
+    assert f"{timings}:3" in err  # the unknown ball
+    assert f"{timings}:4" in err  # the letter O, in the same breath
+    assert not out.exists()
+
+
+def test_no_bench_sheet_says_how_to_name_one(tmp_path, capsys):
+    timings = tmp_path / "drops.csv"
+    timings.write_text("time [s]\n12.4\n", "utf-8")
+    assert main(["reduce", str(timings)]) == 2
+    assert capsys.readouterr().err == (
+        f"error: there is no bench.toml beside {timings}; "
+        "name the bench sheet (--bench FILE, or the second argument)\n"
+    )
+
+
+def test_inspect_computes_nothing_and_lists_what_was_understood(capsys):
+    assert main(["inspect", str(CLEAN)]) == 0
+    out = capsys.readouterr().out
+    assert "utf-8" in out.lower()
+    assert "8" in out
+    assert "Pa.s" not in out
+
+
+def test_inspect_json_has_its_schema(capsys):
+    assert main(["inspect", str(CLEAN), "--json"]) == 0
+    document = json.loads(capsys.readouterr().out)
+    assert document["schema"] == "plumbfall/inspect/1"
+    assert len(document["drops"]) == 8
+
+
+def test_inspect_of_a_broken_file_exits_with_2(tmp_path, capsys):
+    timings = tmp_path / "drops.csv"
+    timings.write_text("ball,time\nA,12.4\n", "utf-8")
+    assert main(["inspect", str(timings)]) == 2
+    out, err = capsys.readouterr()
+    assert "time [s]" in out + err
+
+
+def test_inspect_of_a_bench_alone(capsys):
+    bench = SAMPLES / "damping_fluid_clean" / "bench.toml"
+    assert main(["inspect", "--bench", str(bench)]) == 0
+    assert "tube.long.bore" in capsys.readouterr().out
+
+
+def test_methods_lists_every_law_with_its_source(capsys):
+    assert main(["methods"]) == 0
+    out = capsys.readouterr().out
+    for name in ("bohlin", "haberman-sayre", "schiller-naumann", "screened", "classical"):
+        assert name in out
+    assert max(len(line) for line in out.splitlines()) <= 80
+
+
+def test_usage_errors_exit_with_2(capsys):
+    with pytest.raises(SystemExit) as stop:
+        main(["reduce"])
+    assert stop.value.code == 2
+    with pytest.raises(SystemExit) as stop:
+        main(["reduce", "x.csv", "--coverage", "95"])
+    assert stop.value.code == 2
+    assert "write 0.95 for 95 %" in capsys.readouterr().err
+
+
+def test_console_without_unicode_gets_ascii():
+    done = subprocess.run(
+        [sys.executable, "-m", "plumbfall", "reduce", str(CLEAN)],
+        env={**os.environ, "PYTHONIOENCODING": "ascii"},
+        capture_output=True,
+        check=True,
+    )
+    assert b"+/-" in done.stdout
+    assert all(byte < 128 for byte in done.stdout)
+
+
+def test_output_is_the_same_byte_for_byte(tmp_path):
+    for name in ("one", "two"):
+        main(["reduce", str(BAD), "--out", str(tmp_path / name)])
+    for path in (tmp_path / "one").iterdir():
+        assert path.read_bytes() == (tmp_path / "two" / path.name).read_bytes()
