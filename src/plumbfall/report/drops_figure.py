@@ -119,7 +119,7 @@ def _draw_points(shown: Sequence[tuple[int, DropResult, float]], ax: Axes) -> No
         groups = [("drops", "o", shown)]
     else:
         groups = [
-            (f"ball {short_name(ball, 16)}" if ball else "drops", _SYMBOLS[index],
+            (f"ball {short_name(ball, 24)}" if ball else "drops", _SYMBOLS[index],
              [point for point in shown if point[1].ball == ball])
             for index, ball in enumerate(balls)
         ]  # fmt: skip

@@ -12,7 +12,7 @@ if TYPE_CHECKING:
 
 __all__ = ["budget_table", "csv_text", "drops_table"]
 
-FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r", "\n")
+FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\n")
 """What a spreadsheet takes for the start of a formula (common practice, no source)."""
 
 _BUDGET_COLUMNS = (
@@ -94,7 +94,8 @@ def drops_table(results: Iterable[RunSetResult]) -> pd.DataFrame:
 def csv_text(frame: pd.DataFrame) -> str:
     """Return a table as CSV with plain line feeds and every digit of its numbers.
 
-    A text cell that a spreadsheet would run as a formula gets an apostrophe in front.
+    A text cell that a spreadsheet would run as a formula gets an apostrophe in front; a carriage
+    return in one, which readers take for the end of the row, becomes a line feed.
     """
     safe = frame.copy()
     for name in safe.columns:
@@ -105,9 +106,10 @@ def csv_text(frame: pd.DataFrame) -> str:
 
 
 def _harmless(cell: Any) -> Any:
-    if isinstance(cell, str) and cell.startswith(FORMULA_STARTS):
-        return f"'{cell}"
-    return cell
+    if not isinstance(cell, str):
+        return cell
+    text = cell.replace("\r\n", "\n").replace("\r", "\n")
+    return f"'{text}" if text.startswith(FORMULA_STARTS) else text
 
 
 def _drop_rows(result: RunSetResult) -> Iterable[tuple[object, ...]]:
