@@ -17,10 +17,11 @@ from plumbfall.findings.data import RunData
 from plumbfall.findings.limits import Limits, limits_from
 from plumbfall.findings.outliers import suspects
 from plumbfall.findings.registry import find
+from plumbfall.measurement.balance import corrected_temperature
 from plumbfall.measurement.drops import compute_drops, value_weights
 from plumbfall.measurement.inputs import gather
 from plumbfall.measurement.law import drag_law, model_estimate
-from plumbfall.measurement.selection import select
+from plumbfall.measurement.selection import check_temperatures, select
 from plumbfall.results import Finding, RunSetResult
 from plumbfall.run_sets.jacobian import build_jacobian, own_variances
 from plumbfall.run_sets.outputs import compute_outputs, conditions
@@ -190,8 +191,10 @@ def reduce_numbers(timings: Timings, bench: Bench, coverage: float = 0.95) -> Se
     law = drag_law(bench)
     selection = select(timings, bench)
     inputs = gather(selection.cells, bench, selection.names, model_estimate(bench))
+    readings = corrected_temperature(inputs, selection.cell, selection.temperature)
+    check_temperatures(selection, readings, timings)
     weights = value_weights(selection, inputs)
-    columns, sums = compute_drops(selection, inputs, weights, law)
+    columns, sums = compute_drops(selection, inputs, weights, law, readings)
     own = own_variances(selection, inputs, sums)
     scatter = repeatability(selection, columns, weights, np.sqrt(own.resolution), bench.scatter)
     jacobian = build_jacobian(selection, inputs, sums, own, scatter)

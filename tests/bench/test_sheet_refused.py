@@ -260,26 +260,6 @@ CROSS = [
         "spread",
     ),
     (
-        # 32.25 mg is a 2 mm steel ball; its radius was typed
-        {"ball/A": {"diameter": "1.000(1) mm", "mass": "32.25(1) mg"}},
-        "ball.A: mass '32.25(1) mg' and diameter '1.000(1) mm' make a density of 61.59 g/cm3, "
-        "outside 0.5 to 25 g/cm3; is the diameter a radius? check mass, diameter and their units; "
-        "are several balls on the balance? then add weighed_together",
-    ),
-    (
-        # a glass ball of 2 mm weighs 10.5 mg
-        {"ball/A": {"diameter": "4.000(1) mm", "mass": "10.5(1) mg"}},
-        "ball.A: mass '10.5(1) mg' and diameter '4.000(1) mm' make a density of 0.3133 g/cm3, "
-        "outside 0.5 to 25 g/cm3; is the diameter twice too large? check mass, diameter and their "
-        "units",
-    ),
-    (
-        {"ball/A": {"diameter": "2.000(1) mm", "mass": "32.25(1) g"}},
-        "ball.A: mass '32.25(1) g' and diameter '2.000(1) mm' make a density of 7699 g/cm3, "
-        "outside 0.5 to 25 g/cm3; check mass, diameter and their units; are several balls on the "
-        "balance? then add weighed_together",
-    ),
-    (
         {"ball/A/diameter": "60 mm"},
         "ball.A.diameter: ball 'A' of '60 mm' does not fit tube 'A' with a bore of '50.00(2) mm'; "
         "check both diameters and their units",

@@ -6,11 +6,11 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from support.benches import bench_dict, drops_table, exact_time
 
 import plumbfall as pf
 from plumbfall.errors import PhysicsRangeError
 from plumbfall.physics.drag import DragLaw
+from support.benches import bench_dict, drops_table, exact_time
 
 PLAIN = {
     "tube": {"A": {"bore": "50 mm", "distance": "200 mm"}},

@@ -52,7 +52,13 @@ def perturbed(record: object, name: str, step: float) -> object:
     ],
 )
 def test_every_sensitivity_agrees_with_differences(site):
-    bench = pf.read_bench(bench_dict(site=site, bench__reference_temperature="20 degC"))
+    bench = pf.read_bench(
+        bench_dict(
+            site=site,
+            bench__reference_temperature="20 degC",
+            tube__A__release_offset="2.0(5) mm",
+        )
+    )
     timings = pf.read_timings(DROPS, bench)
     reduced = reduce_drops(timings, bench)
     jacobian = reduced.sets.jacobian
@@ -95,3 +101,23 @@ def own_sums(reduced, column: int) -> np.ndarray:
         here = sets.inputs.roles[role].entry == column
         np.add.at(total, sets.selection.cells.run_set[here], sums[here])
     return total
+
+
+def test_an_offset_from_the_axis_lowers_the_drag_as_happel_and_brenner_say():
+    """Happel and Brenner 1965, chapter 7: f = 2.10444 - 0.6977 beta^2 near the axis."""
+    plain = pf.reduce(DROPS.iloc[:2], bench_dict())["A"].result.viscosity.value
+    moved = bench_dict(tube__A__release_offset="0.50(1) mm")
+    viscosity = pf.reduce(DROPS.iloc[:2], moved)["A"].result.viscosity.value
+    ratio, beta = 2.0005 / 50, 0.02
+    expected = (1 - (2.10444 - 0.6977 * beta**2) * ratio) / (1 - 2.10444 * ratio)
+    assert viscosity / plain - 1 == pytest.approx(expected - 1, rel=2e-3)
+
+
+def test_an_uncertain_offset_about_zero_counts_by_its_square():
+    """JCGM 100:2008, note to 5.1.2: the variance of a squared normal input is f''^2 u^4 / 2."""
+    result = pf.reduce(DROPS.iloc[:2], bench_dict(tube__A__release_offset="0.0(30) mm"))["A"].result
+    line = next(line for line in result.budget if line.input == "tube.A.release_offset")
+    ratio, beta = 2.0005 / 50, 3.0 / 25
+    curvature = 2 * 0.6977 * ratio / (1 - 2.10444 * ratio)
+    expected = curvature * beta**2 / 2**0.5 * result.viscosity.value
+    assert line.contribution == pytest.approx(expected, rel=5e-3)

@@ -7,9 +7,9 @@ import math
 import numpy as np
 import pandas as pd
 import pytest
-from support.benches import bench_dict, drops_table
 
 import plumbfall as pf
+from support.benches import bench_dict, drops_table
 
 # Times of a liquid of 1 Pa.s with some 0.2 % of scatter, found by trial.
 TIMES = {"B1": [14.91, 14.93, 14.89], "B2": [9.78, 9.80, 9.76], "B3": [6.95, 6.96, 6.94]}

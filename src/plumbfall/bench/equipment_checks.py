@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Collection, Iterator
 
 from plumbfall.bench.keys import key_path
@@ -11,9 +10,6 @@ from plumbfall.bench.schema import Sheet
 from plumbfall.errors import Problem
 
 __all__ = ["ball_problems", "misfits", "tube_problems"]
-
-LIGHTEST, HEAVIEST = 500.0, 25_000.0
-"""Density of any ball, kg/m3: from foamed plastic to osmium."""
 
 
 # --- tubes --------------------------------------------------------------------------------------
@@ -101,35 +97,6 @@ def ball_problems(sheet: Sheet, ball: Ball) -> Iterator[Problem]:
             "add lot = true, or drop spread",
             key=f"{path}.spread",
         )
-    if ball.mass is not None:
-        yield from _mass_and_diameter(ball, path)
-
-
-def _mass_and_diameter(ball: Ball, path: str) -> Iterator[Problem]:
-    if ball.mass is None:
-        return
-    volume = math.pi / 6 * ball.diameter.value**3
-    density = ball.mass.value / ball.weighed_together / volume
-    if LIGHTEST <= density <= HEAVIEST:
-        return
-    remedy = "check mass, diameter and their units"
-    if ball.weighed_together == 1 and density > HEAVIEST:
-        remedy += "; are several balls on the balance? then add weighed_together"
-    if _likely(density / 8):
-        remedy = "is the diameter a radius? " + remedy
-    elif _likely(density * 8):
-        remedy = "is the diameter twice too large? " + remedy
-    yield Problem(
-        f"mass '{ball.mass.text}' and diameter '{ball.diameter.text}' make a density of "
-        f"{density / 1000:.4g} g/cm3, outside 0.5 to 25 g/cm3",
-        remedy,
-        key=path,
-    )
-
-
-def _likely(density: float) -> bool:
-    """Whether a density is that of a usual ball, from polyamide to tungsten carbide."""
-    return 900.0 <= density <= 16_000.0
 
 
 def misfits(bench: Bench) -> Iterator[Problem]:

@@ -35,10 +35,20 @@ def density_implausible(data: RunData) -> Iterator[Found]:
                     statistic=at,
                     message=f"{kind} {name} has a density of {at / 1000:.3g} g/cm3, outside "
                     f"{low / 1000:g} to {high / 1000:g} g/cm3",
-                    remedy="check the unit of its density"
-                    + (", or of its mass and diameter" if kind == "ball" else ""),
+                    remedy=_remedy(data, kind, code, at),
                 ),
             )
+
+
+def _remedy(data: RunData, kind: str, code: int, density: float) -> str:
+    if kind == "liquid" or data.balls[code].mass is None:
+        return "check its density and the unit of it"
+    remedy = "check mass, diameter and their units"
+    if data.limits.ball_density_low <= density * 8 <= data.limits.ball_density_high:
+        return f"is the diameter twice too large? {remedy}"
+    if density > data.limits.ball_density_high and data.balls[code].weighed_together == 1:
+        return f"{remedy}; were several balls on the balance? then add weighed_together"
+    return remedy
 
 
 def radius_as_diameter(data: RunData) -> Iterator[Found]:

@@ -8,10 +8,11 @@ import numpy as np
 
 from plumbfall.bench.records import Tube
 from plumbfall.findings.data import Found, RunData
+from plumbfall.measurement.off_axis import near_wall
 from plumbfall.physics.run_in import run_in_guard_distance
 from plumbfall.results import Finding
 
-__all__ = ["end_near", "geometry_unknown", "run_in_short"]
+__all__ = ["end_near", "geometry_unknown", "off_axis_suspected", "run_in_short"]
 
 GEOMETRY = {
     "surface_above": "the end effect of the surface",
@@ -92,6 +93,27 @@ def run_in_short(data: RunData) -> Iterator[Found]:
                 f"to be within 0.2 % of its speed it needs {1000 * needed[worst]:.0f} mm; "
                 "the viscosity comes out too high",
                 remedy="let the ball go higher above the first mark, or use a smaller ball",
+            ),
+        )
+
+
+def off_axis_suspected(data: RunData) -> Iterator[Found]:
+    """Find releases so far off the axis that the ball falls beside the wall."""
+    tube = data.selection.cells.tube[data.selection.cell]
+    beta = _of_tubes(data, "release_offset")[tube] / (_of_tubes(data, "bore")[tube] / 2)
+    for run_set, drops in data.flagged(near_wall(beta, data.columns.diameter_ratio)):
+        worst = drops[np.argmax(np.abs(beta[drops]))]
+        yield (
+            run_set,
+            Finding(
+                code="off-axis-suspected",
+                severity="warning",
+                drops=data.numbers(drops),
+                statistic=float(beta[worst]),
+                message=f"the ball is let go {abs(beta[worst]):.2f} bore radii off the axis and "
+                "falls so near the wall that its drag there is not known; it is taken as on the "
+                "axis, and the viscosity comes out too high",
+                remedy="let the ball go on the axis, through a guide",
             ),
         )
 

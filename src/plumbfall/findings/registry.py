@@ -12,7 +12,12 @@ from plumbfall.findings.counts import (
 from plumbfall.findings.data import Detector, RunData
 from plumbfall.findings.densities import density_implausible, radius_as_diameter
 from plumbfall.findings.gaps import default_gravity, missing_uncertainty
-from plumbfall.findings.geometry import end_near, geometry_unknown, run_in_short
+from plumbfall.findings.geometry import (
+    end_near,
+    geometry_unknown,
+    off_axis_suspected,
+    run_in_short,
+)
 from plumbfall.findings.outliers import outlier
 from plumbfall.findings.solvability import (
     ball_not_denser,
@@ -38,6 +43,7 @@ DETECTORS: tuple[Detector, ...] = (
     reynolds_uncertain,
     run_in_short,
     end_near,
+    off_axis_suspected,
     temperature_spread,
     density_temperature,
     slope_unknown,

@@ -23,8 +23,9 @@ def _ranges(data: RunData) -> np.ndarray:
     """Range of the drops' temperatures by run set, NaN where unknown."""
     n = len(data.names)
     low, high = np.full(n, np.inf), np.full(n, -np.inf)
-    np.minimum.at(low, data.selection.run_set, data.columns.temperature)
-    np.maximum.at(high, data.selection.run_set, data.columns.temperature)
+    with np.errstate(invalid="ignore"):
+        np.minimum.at(low, data.selection.run_set, data.columns.temperature)
+        np.maximum.at(high, data.selection.run_set, data.columns.temperature)
     return np.where(np.isfinite(high), high - low, np.nan)
 
 

@@ -10,9 +10,10 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.measurement.balance import Codes, Numbers, balance, corrected_temperature, spread
+from plumbfall.measurement.balance import Codes, Numbers, balance, spread
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.inverse import invert
+from plumbfall.measurement.off_axis import off_axis
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import DropSlopes, Sums, add_block, empty_sums
 from plumbfall.physics.drag import DragLaw
@@ -56,6 +57,7 @@ class DropColumns:
     diameter: Numbers
     diameter_ratio: Numbers
     wall: Numbers
+    off_axis: Numbers
     drag_factor: Numbers
     shear_stress: Numbers
     model_bound: Numbers
@@ -91,7 +93,7 @@ def value_weights(selection: Selection, inputs: Inputs) -> Weights:
 
 
 def compute_drops(
-    selection: Selection, inputs: Inputs, weights: Weights, law: DragLaw
+    selection: Selection, inputs: Inputs, weights: Weights, law: DragLaw, temperature: Numbers
 ) -> tuple[DropColumns, Sums]:
     """Invert the force balance of every drop and sum its sensitivities.
 
@@ -105,6 +107,8 @@ def compute_drops(
         Each drop's weight in its run set's mean.
     law : DragLaw
         The drag law to invert.
+    temperature : array, shape (drops,) [K]
+        The drops' corrected temperatures, NaN where unknown.
 
     Returns
     -------
@@ -114,7 +118,6 @@ def compute_drops(
         Weighted sensitivities by cell.
     """
     n, n_sets = len(selection.cell), len(selection.names)
-    temperature = corrected_temperature(inputs, selection.cell, selection.temperature)
     with np.errstate(invalid="ignore", divide="ignore"):
         by_set = np.bincount(
             selection.run_set, weights=weights.weight * temperature, minlength=n_sets
@@ -148,6 +151,7 @@ def _empty_columns(n: int, temperature: Numbers, set_temperature: Numbers) -> Dr
         diameter=numbers(),
         diameter_ratio=numbers(),
         wall=numbers(),
+        off_axis=np.ones(n),
         drag_factor=numbers(),
         shear_stress=numbers(),
         model_bound=numbers(),
@@ -175,8 +179,12 @@ def _compute_block(
         forces = balance(inputs, cell, clock, out.temperature[block])
         # A ratio beyond the law's is flagged by the inverse; here it must only not stop the rest.
         drag = law.at(np.minimum(forces.diameter_ratio, law.max_ratio))
-        found = invert(forces, drag)
+        beside = off_axis(inputs, cell, forces)
+        found = invert(forces, drag, beside.log_factor if beside is not None else 0.0)
         ratio_slope, reynolds_slope = drag.slopes(found.log_reynolds)
+        if beside is not None:
+            ratio_slope = ratio_slope + beside.by_ratio
+            out.off_axis[block] = np.exp(beside.log_factor)
         to_set = np.exp(spread(inputs.roles["slope"].value, cell) * offset[block])
         bound = drag.relative_bound(found.log_reynolds)
         stokes = forces.weight / (3 * np.pi * forces.diameter * forces.speed)
@@ -201,7 +209,9 @@ def _compute_block(
             cell,
             clock,
             forces,
-            DropSlopes(np.asarray(ratio_slope), np.asarray(reynolds_slope), np.asarray(bound)),
+            DropSlopes(
+                np.asarray(ratio_slope), np.asarray(reynolds_slope), np.asarray(bound), beside
+            ),
             weight[block] * out.at_set[block],
             offset[block],
             ~np.isnan(selection.temperature[block]),

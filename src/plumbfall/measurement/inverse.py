@@ -46,7 +46,7 @@ class Inverse:
     no_root: NDArray[np.bool_]
 
 
-def invert(forces: Balance, drag: BoundDrag) -> Inverse:
+def invert(forces: Balance, drag: BoundDrag, log_extra: Numbers | float = 0.0) -> Inverse:
     """Solve the force balance for the viscosity of every drop.
 
     Parameters
@@ -55,6 +55,8 @@ def invert(forces: Balance, drag: BoundDrag) -> Inverse:
         Weight, speed and geometry, arrays of shape (drops,).
     drag : BoundDrag
         A drag law at the drops' diameter ratios.
+    log_extra : array, shape (drops,)
+        Logarithm of a further factor of the drag that does not depend on the Reynolds number.
 
     Returns
     -------
@@ -71,7 +73,7 @@ def invert(forces: Balance, drag: BoundDrag) -> Inverse:
     too_wide = np.broadcast_to(~(forces.diameter_ratio <= drag.max_ratio), shape)
     inertial = forces.liquid_density * (forces.speed * forces.diameter) ** 2
     with np.errstate(invalid="ignore", divide="ignore"):
-        log_demand = np.log(forces.weight / (3 * np.pi * inertial))
+        log_demand = np.log(forces.weight / (3 * np.pi * inertial)) - log_extra
         x, beyond = _newton(drag, log_demand, float(np.log(drag.max_reynolds)), shape)
     bad = floating | late | too_wide | beyond
     if bad.any():

@@ -18,7 +18,7 @@ from plumbfall.bench.records import Bench
 from plumbfall.errors import InputError, Problem, nearest_name
 from plumbfall.timings.records import Timings
 
-__all__ = ["KINDS", "Cells", "Selection", "select"]
+__all__ = ["KINDS", "Cells", "Selection", "check_temperatures", "select"]
 
 Codes = NDArray[np.intp]
 
@@ -123,6 +123,37 @@ def select(timings: Timings, bench: Bench) -> Selection:
         time=table["time_s"].to_numpy(dtype=float)[row],
         temperature=table["temperature_K"].to_numpy(dtype=float)[row],
     )
+
+
+def check_temperatures(
+    selection: Selection, temperature: NDArray[np.float64], timings: Timings
+) -> None:
+    """Refuse a run set in which some drops have a temperature and some have none.
+
+    Raises
+    ------
+    InputError
+        With the line of every drop that lacks one.
+    """
+    missing = np.isnan(temperature)
+    n_sets = len(selection.names)
+    lacking = np.bincount(selection.run_set[missing], minlength=n_sets)
+    mixed = (lacking > 0) & (lacking < np.bincount(selection.run_set, minlength=n_sets))
+    at = np.flatnonzero(missing & mixed[selection.run_set])
+    if len(at):
+        rows = timings.table.iloc[selection.row[at]]
+        raise InputError(
+            Problem(
+                f"drop {drop} of run set '{run_set}' has no temperature, though others have",
+                "write it in, or mark the drop void with a reason, or give the run set one "
+                "temperature in the bench sheet",
+                path=str(file),
+                line=int(line),
+            )
+            for file, line, drop, run_set in zip(
+                rows["file"], rows["line"], rows["drop"], rows["set"], strict=True
+            )
+        )
 
 
 def _run_sets(column: pd.Series) -> tuple[Codes, tuple[str, ...]]:

@@ -19,6 +19,7 @@ from numpy.typing import NDArray
 
 from plumbfall.measurement.balance import Balance, Codes, Numbers, spread
 from plumbfall.measurement.inputs import Inputs
+from plumbfall.measurement.off_axis import OffAxis
 from plumbfall.physics.weight import AIR_DENSITY, WEIGHTS_DENSITY
 
 __all__ = ["DropSlopes", "Sums", "add_block", "empty_sums"]
@@ -29,11 +30,13 @@ class DropSlopes:
     """What the drag law adds to a block's balance, each of shape (drops,).
 
     ``ratio_slope`` is w, ``reynolds_slope`` s, ``model_bound`` the law's own relative half-width.
+    ``beside`` is what being off the axis adds, ``None`` where no offset is given.
     """
 
     ratio_slope: Numbers
     reynolds_slope: Numbers
     model_bound: Numbers
+    beside: OffAxis | None = None
 
 
 @dataclass(slots=True)
@@ -41,7 +44,7 @@ class Sums:
     """Sums over drops, by cell: weight x viscosity x d ln(viscosity)/d(input).
 
     ``first`` holds them by role; ``second`` the second derivatives of the inputs that enter by
-    their square (tilt). ``timing``, ``reading`` and ``lot`` are the variances, per unit of the
+    their square (tilt, offset from the axis). ``timing``, ``reading`` and ``lot`` are the variances, per unit of the
     squared standard deviation, of errors that every drop has to itself.
     """
 
@@ -57,7 +60,8 @@ class Sums:
 FIRST = (
     "gravity", "latitude", "elevation", "tilt", "bore", "tube_expansion", "from_mark", "to_mark",
     "diameter", "gauge", "ball_density", "mass", "balance", "ball_expansion", "liquid_density",
-    "liquid_expansion", "slope", "bias", "rate", "thermometer", "temperature", "model",
+    "liquid_expansion", "slope", "bias", "rate", "thermometer", "temperature", "release_offset",
+    "model",
 )  # fmt: skip
 
 
@@ -69,7 +73,7 @@ def empty_sums(n_cells: int) -> Sums:
 
     return Sums(
         first={role: zeros() for role in FIRST},
-        second={"tilt": zeros()},
+        second={"tilt": zeros(), "release_offset": zeros()},
         model_plain=zeros(),
         timing=zeros(),
         reading=zeros(),
@@ -131,6 +135,9 @@ def add_block(
     a_liquid = a_weight * -s
     a_speed = a_liquid - a_weight
     a_diameter = a_speed - a_bore
+    if (beside := slopes.beside) is not None:
+        # the bore also scales the distance from the axis
+        a_bore = a_bore + a_weight * take("release_offset") * beside.by_offset
     displaced = a_weight * (forces.liquid_density * forces.volume / forces.net_mass)
     carried = a_weight + displaced  # a_weight x mass / net mass
 
@@ -149,6 +156,9 @@ def add_block(
         tangent = np.tan(take("tilt"))
         sums.first["tilt"] += total(-a_weight * tangent)
         sums.second["tilt"] += total(-a_weight * (1 + tangent**2))
+    if beside is not None:
+        sums.first["release_offset"] += total(-a_weight * beside.by_offset)
+        sums.second["release_offset"] += total(-a_weight * beside.by_offset_twice)
 
     add("bore", lambda: a_bore / take("bore"))
     add("tube_expansion", lambda: (a_bore + a_speed) * (forces.tube_offset / tube_grown))

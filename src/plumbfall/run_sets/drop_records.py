@@ -89,8 +89,9 @@ def _drop(
     def computed(values: NDArray[np.float64]) -> float | None:
         return float(values[at]) if at is not None and math.isfinite(values[at]) else None
 
-    at_set, wall, total = (
-        computed(column) for column in (columns.at_set, columns.wall, columns.drag_factor)
+    at_set, wall, beside, total = (
+        computed(column)
+        for column in (columns.at_set, columns.wall, columns.off_axis, columns.drag_factor)
     )
     return DropResult(
         file=file,
@@ -105,7 +106,7 @@ def _drop(
         reynolds=computed(columns.reynolds),
         fall_speed=computed(columns.fall_speed),
         wall=wall,
-        inertia=total / wall if total is not None and wall is not None else None,
+        inertia=None if total is None or not wall or not beside else total / (wall * beside),
         end=None if at is None else 1.0,
         residual=at_set / mean - 1 if at_set is not None and mean else None,
         used=at is not None,

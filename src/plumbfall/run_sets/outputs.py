@@ -32,12 +32,14 @@ class SetConditions:
     """What each run set's liquid is like at the set's temperature, arrays of shape (run sets,).
 
     ``cell`` is one of the set's cells (-1 where no drop was used); ``slope_known`` whether
-    d ln(viscosity)/dT is given; ``density`` in kg/m3.
+    d ln(viscosity)/dT is given; ``density`` in kg/m3, ``cold_density`` that of the bench sheet,
+    ``offset`` the set's temperature less that of the latter. NaN where no drop was used.
     """
 
     cell: NDArray[np.intp]
     slope: Numbers
     slope_known: NDArray[np.bool_]
+    cold_density: Numbers
     density: Numbers
     expansion: Numbers
     offset: Numbers
@@ -107,21 +109,26 @@ def conditions(selection: Selection, inputs: Inputs, columns: DropColumns) -> Se
     """Look up each run set's liquid; a run set has one liquid."""
     cell = np.full(len(selection.names), -1, dtype=np.intp)
     cell[selection.cells.run_set] = np.arange(len(selection.cells))
-    density, expansion = inputs.roles["liquid_density"], inputs.roles["liquid_expansion"]
-    offset = np.nan_to_num(columns.set_temperature - inputs.liquid_density_at[cell], nan=0.0)
+
+    def of_set(values: Numbers) -> Numbers:
+        return np.append(values, np.nan)[cell]  # -1 reads the last: a set without drops
+
+    offset = columns.set_temperature - of_set(inputs.liquid_density_at)
+    offset = np.nan_to_num(offset, nan=0.0)
+    expansion = of_set(inputs.roles["liquid_expansion"].value)
+    density = liquid_density(
+        density=of_set(inputs.roles["liquid_density"].value),
+        expansion=expansion,
+        temperature=offset,
+        reference_temperature=0.0,
+    )
     return SetConditions(
         cell=cell,
-        slope=inputs.roles["slope"].value[cell],
-        slope_known=inputs.slope_known[cell] & (cell >= 0),
-        density=np.asarray(
-            liquid_density(
-                density=density.value[cell],
-                expansion=expansion.value[cell],
-                temperature=offset,
-                reference_temperature=0.0,
-            )
-        ),
-        expansion=expansion.value[cell],
+        slope=of_set(inputs.roles["slope"].value),
+        slope_known=of_set(inputs.slope_known.astype(float)) == 1,
+        cold_density=of_set(inputs.roles["liquid_density"].value),
+        density=np.asarray(density),
+        expansion=expansion,
         offset=offset,
     )
 
@@ -166,7 +173,7 @@ def compute_outputs(
     values = np.concatenate([viscosity, viscosity * to_reference, viscosity / liquid.density])
 
     def entries(role: str, amounts: Numbers) -> sparse.csr_array:
-        entry = inputs.roles[role].entry[liquid.cell]
+        entry = np.append(inputs.roles[role].entry, -1)[liquid.cell]
         here = (liquid.cell >= 0) & (entry >= 0)
         return sparse.csr_array(
             (amounts[here], (np.flatnonzero(here), entry[here])), shape=jacobian.matrix.shape
@@ -178,10 +185,9 @@ def compute_outputs(
         jacobian.matrix + entries("slope", viscosity * np.nan_to_num(distance, nan=0.0))
     )
     by_expansion = viscosity * liquid.offset / (1 + liquid.expansion * liquid.offset)
-    density_now = inputs.roles["liquid_density"].value[liquid.cell]
-    kinematic = sparse.diags_array(1 / liquid.density) @ (
+    kinematic = sparse.diags_array(np.nan_to_num(1 / liquid.density, nan=0.0)) @ (
         jacobian.matrix
-        - entries("liquid_density", viscosity / density_now)
+        - entries("liquid_density", viscosity / liquid.cold_density)
         + entries("liquid_expansion", by_expansion)
     )
     stacked = sparse.vstack([jacobian.matrix, at_reference, kinematic], format="csr")

@@ -201,14 +201,22 @@ def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correcti
     law, drops = all_sets.law, all_sets.columns
     wall = float(drops.wall[used].mean())
     total = float(drops.drag_factor[used].mean())
+    off_axis = float(drops.off_axis[used].mean())
+    beside = Correction(
+        "off axis",
+        off_axis,
+        "small ball beside the axis, free to turn",
+        "computed by plumbfall from Stokes flow; Happel and Brenner 1965, chapter 7",
+    )
     return (
         Correction("wall", wall, law.wall_law.name, law.wall_law.citation),
         Correction(
             "inertia",
-            total / wall,
+            total / (wall * off_axis),
             f"{law.inertia_law.name}, joined by the {law.together_law.name} rule",
             "; ".join(dict.fromkeys((law.inertia_law.citation, law.together_law.citation))),
         ),
+        *((beside,) if off_axis != 1 else ()),
         Correction(
             "ends",
             1.0,

@@ -9,9 +9,7 @@ from scipy.special import ndtri, stdtrit
 __all__ = ["coverage_factor", "effective_dof"]
 
 
-def effective_dof(
-    *, u: ArrayLike, contributions_fourth: ArrayLike
-) -> NDArray[np.float64]:
+def effective_dof(*, u: ArrayLike, contributions_fourth: ArrayLike) -> NDArray[np.float64]:
     """Effective degrees of freedom by Welch and Satterthwaite, not truncated.
 
     Parameters
@@ -62,4 +60,5 @@ def coverage_factor(*, dof: ArrayLike, probability: float) -> NDArray[np.float64
     dof = np.asarray(dof, dtype=float)
     tail = (1 + probability) / 2
     finite = np.where(np.isfinite(dof), dof, 1.0)
-    return np.where(np.isfinite(dof), stdtrit(finite, tail), ndtri(tail))
+    factor: NDArray[np.float64] = np.where(np.isfinite(dof), stdtrit(finite, tail), ndtri(tail))
+    return factor

@@ -60,7 +60,7 @@ class Propagation:
         return np.asarray(product.todense() if sparse.issparse(product) else product)
 
     def row(self, output: int) -> tuple[NDArray[np.intp], Numbers]:
-        """Inputs of one output, and their contributions with sign."""
+        """Return the inputs of one output, and their contributions with sign."""
         start, stop = self.contributions.indptr[output : output + 2]
         return self.contributions.indices[start:stop], self.contributions.data[start:stop]
 
