@@ -19,7 +19,7 @@ from plumbfall.findings.outliers import suspects
 from plumbfall.findings.registry import find
 from plumbfall.measurement.balance import corrected_temperature
 from plumbfall.measurement.drops import compute_drops, value_weights
-from plumbfall.measurement.inputs import gather
+from plumbfall.measurement.gather import gather
 from plumbfall.measurement.law import drag_law, model_estimate
 from plumbfall.measurement.selection import check_temperatures, select
 from plumbfall.results import Finding, RunSetResult

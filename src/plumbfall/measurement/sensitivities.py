@@ -44,8 +44,8 @@ class Sums:
     """Sums over drops, by cell: weight x viscosity x d ln(viscosity)/d(input).
 
     ``first`` holds them by role; ``second`` the second derivatives of the inputs that enter by
-    their square (tilt, offset from the axis). ``timing``, ``reading`` and ``lot`` are the variances, per unit of the
-    squared standard deviation, of errors that every drop has to itself.
+    their square (tilt, offset from the axis). ``timing``, ``reading`` and ``lot`` are the
+    variances, per unit of the squared standard deviation, of errors that every drop has to itself.
     """
 
     first: dict[str, Numbers]
