@@ -36,7 +36,7 @@ def read_cells(data: bytes, delimiter: str, heading_line: int, notices: Notices)
     text = data[start:] if start else data
     if b'"' in text:
         text = unquoted(text, delimiter)
-    if text and delimiter != " ":
+    if text and delimiter != " " and bytes((STAND_IN,)) not in data:
         heading, _, body = text.partition(b"\n")
         headings = tuple(
             cell.replace(chr(STAND_IN), delimiter).strip()

@@ -31,7 +31,7 @@ def unquoted(text: bytes, delimiter: str) -> bytes:
     hidden = np.bitwise_xor.accumulate(quote.view(np.uint8)).view(bool) & cut
     if (buffer[hidden] == 10).any():
         return b""
-    return np.where(hidden, np.uint8(STAND_IN), buffer)[~quote][1:-1].tobytes()
+    return bytes(np.where(hidden, np.uint8(STAND_IN), buffer)[~quote][1:-1])
 
 
 def cut_clean(

@@ -58,14 +58,14 @@ def expand(sources: Iterable[str | os.PathLike[str]], notices: Notices) -> list[
     for source in sources:
         typed = os.fspath(source)
         found = [typed]
-        if glob.has_magic(typed) and not os.path.exists(typed):
+        if glob.has_magic(typed) and "\0" not in typed and not os.path.exists(typed):
             found = sorted(glob.glob(typed, recursive=True))
             if not found:
                 notices.error(
                     "no file matches this pattern", "check the folder and the name", path=typed
                 )
         for path in found:
-            same = os.path.realpath(path)
+            same = path if "\0" in path else os.path.realpath(path)
             if same in paths:
                 notices.repair(f"{path} is named twice and read once")
             else:

@@ -94,6 +94,7 @@ def _numbered(drops: Sequence[FileDrops], sets: Labels, notices: Notices) -> Int
         return numbers
     given = numbers > 0
     if len(drops) < 2 and given.all():
+        _note_left_out(numbers, sets, drops, notices)
         return numbers
     in_order = numbered_in_order(sets.codes)
     numbers = np.where(given, numbers, in_order)
@@ -109,7 +110,23 @@ def _numbered(drops: Sequence[FileDrops], sets: Labels, notices: Notices) -> Int
             f"files of run set {quoted(sets.names[code])} use the same drop numbers; its drops are"
             f" numbered 1 to {int(rows.sum())} in the order they were read"
         )
+    _note_left_out(numbers, sets, drops, notices)
     return numbers
+
+
+def _note_left_out(
+    numbers: Integers, sets: Labels, drops: Sequence[FileDrops], notices: Notices
+) -> None:
+    """List sets whose numbers have gaps: a drop that is left out of a file is worth a question."""
+    counts = np.bincount(sets.codes, minlength=len(sets.names))
+    last = np.zeros(len(sets.names), dtype=np.int64)
+    np.maximum.at(last, sets.codes, numbers)
+    for code in np.flatnonzero(last > counts):
+        notices.repair(
+            f"drops of run set {quoted(sets.names[code])} are numbered up to {last[code]}, and"
+            f" there are {counts[code]}",
+            path=drops[0].path if len(drops) == 1 else None,
+        )
 
 
 def _marks(drops: Sequence[FileDrops]) -> NDArray[np.float64] | None:

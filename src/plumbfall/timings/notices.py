@@ -52,12 +52,19 @@ class Notices:
         place = self.path if path is None else path
         self._problems.append(Problem(message, remedy, place, line, column, key, severity=severity))
 
-    def repair(self, what: str, line: int | None = None, column: int | None = None) -> None:
-        """Note one thing that was put right."""
+    def repair(
+        self,
+        what: str,
+        line: int | None = None,
+        column: int | None = None,
+        *,
+        path: str | None = None,
+    ) -> None:
+        """Note one thing that was put right, or that a person should know of."""
         if len(self._repairs) >= _MOST:
             self._more_repairs += 1
             return
-        self._repairs.append(Repair(self.path, line, column, what))
+        self._repairs.append(Repair(self.path if path is None else path, line, column, what))
 
     @property
     def problems(self) -> tuple[Problem, ...]:

@@ -74,6 +74,8 @@ def temperature_unit(text: str) -> Unit | None:
 
 
 def _unit(dimension: str, *spellings: str) -> Unit | None:
+    if any(character.isdigit() for character in spellings[0]):
+        return None  # no unit of time or temperature has a digit, many a cell has
     for spelling in spellings:
         if spelling.strip():
             try:
