@@ -154,3 +154,19 @@ def test_a_wrong_time_in_a_void_row_is_a_warning(tmp_path, monkeypatch):
             "warning",
         )
     ]
+
+
+def test_minutes_and_seconds_that_a_spreadsheet_made_hours_are_warned_about(tmp_path, monkeypatch):
+    monkeypatch.chdir(tmp_path)
+    Path("t.csv").write_text("time\n1:03:00\n1:04:00\n")
+    assert [(str(problem), problem.severity) for problem in read_timings("t.csv").problems] == [
+        (
+            "t.csv:2:1: all clock times of 'time' are whole minutes, such as 1:03:00; if minutes"
+            " and seconds were typed, a spreadsheet has made them hours and minutes: format the"
+            " column as text and type them again",
+            "warning",
+        )
+    ]
+    for rest in ("1:04:01", "0:04:00", "4:00"):
+        Path("t.csv").write_text(f"time\n1:03:00\n{rest}\n")
+        assert not read_timings("t.csv").problems

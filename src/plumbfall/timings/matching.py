@@ -52,8 +52,7 @@ def _match_names(drops: FileDrops, kind: str, known: Collection[str], notices: N
             remedy = f"the bench sheet has {_listed(known)}; "
         else:
             remedy = f"the bench sheet has no {kind}; "
-        rows = f", nor is it in {counts[code] - 1} further rows" if counts[code] > 1 else ""
-        rows = f" ({counts[code]} rows)" if counts[code] > 1 else rows
+        rows = f" ({counts[code]} rows)" if counts[code] > 1 else ""
         notices.error(
             f"{kind} {quoted(name)} is not in the bench sheet{rows}",
             f"{remedy}correct the name, or add [{kind}.{_key(name)}] to the bench sheet",

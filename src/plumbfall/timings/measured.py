@@ -71,6 +71,16 @@ class MeasuredColumns:
         )
         for row, fault in parsed.faults:
             self.fault(row, heading.column, fault.message, fault.remedy)
+        if parsed.hours is not None:
+            cell = column.text(int(parsed.hours[0]))
+            self.notices.error(
+                f"all clock times of {quoted(heading.text)} are whole minutes, such as {cell}",
+                "if minutes and seconds were typed, a spreadsheet has made them hours and minutes:"
+                " format the column as text and type them again",
+                int(self.grid.lines[parsed.hours[0]]),
+                heading.column,
+                severity="warning",
+            )
         stored = self.grid.stored_times.get(heading.column)
         if stored is not None:
             parsed = self._refuse_stored(parsed, heading, stored)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
 
@@ -10,11 +11,13 @@ from numpy.typing import NDArray
 
 from plumbfall.timings.columns import Column, Integers, rows_of
 from plumbfall.timings.decimals import Decimal
+from plumbfall.timings.notices import quoted
 from plumbfall.timings.units import Unit
 from plumbfall.timings.values import Fault, is_missing, read_clock, read_number
 
 __all__ = ["FallTimes", "Parsed", "from_intervals", "from_marks", "parse_column"]
 
+_WHOLE_MINUTES = re.compile(r"0*[1-9][0-9]*:[0-9]{2}:00")
 Floats = NDArray[np.float64]
 Flags = NDArray[np.bool_]
 
@@ -23,7 +26,8 @@ Flags = NDArray[np.bool_]
 class Parsed:
     """One column in SI: NaN where ``missing`` or ``bad``; ``faults`` say why, with their rows.
 
-    ``plain_row`` is the first row with a plain number that no unit covers, or -1.
+    ``plain_row`` is the first row with a plain number that no unit covers, or -1. ``hours`` has
+    two rows or more where all clock times of the column are whole minutes with hours.
     """
 
     values: Floats
@@ -31,6 +35,7 @@ class Parsed:
     bad: Flags
     faults: list[tuple[int, Fault]]
     plain_row: int = -1
+    hours: Integers | None = None
 
 
 @dataclass(slots=True)
@@ -64,6 +69,7 @@ def parse_column(
     missing = np.zeros(len(column), dtype=bool)
     bad = np.zeros(len(column), dtype=bool)
     faults: list[tuple[int, Fault]] = []
+    hours = np.zeros(0, dtype=np.int64)
     plain_row = -1 if scaled or not numbers.clean.any() else int(numbers.clean.argmax())
     rest = np.flatnonzero(~numbers.clean)
     if rest.size:
@@ -78,6 +84,8 @@ def parse_column(
                 absent[code] = True
                 continue
             reading: float | Fault | None = read_clock(text) if clock else None
+            if reading is not None and unit is not None and text.count(":") == 1:
+                reading = _in_hours(text, unit) or reading
             if reading is None:
                 reading = decimal.fault(text) or read_number(text, decimal.mark, what)
                 plain[code] = not isinstance(reading, Fault)
@@ -94,7 +102,21 @@ def parse_column(
         missing[rest] = absent[codes]
         faults = [(int(rest[place]), fault) for place, fault in rows_of(codes, wrong)]
         bad[[row for row, _ in faults]] = True
-    return Parsed(values, missing, bad, faults, plain_row)
+        clocks = np.array([":" in text for text in texts], dtype=bool)
+        whole = np.array([_WHOLE_MINUTES.fullmatch(text) is not None for text in texts], dtype=bool)
+        if clock and whole.any() and (whole == clocks).all():
+            hours = rest[whole[codes]]
+    return Parsed(values, missing, bad, faults, plain_row, hours if hours.size > 1 else None)
+
+
+def _in_hours(text: str, unit: Unit) -> Fault | None:
+    """Refuse 1:03 under a heading in hours."""
+    if unit.exact.factor != 3600:
+        return None
+    return Fault(
+        f"{quoted(text)} in a column of hours may be hours and minutes or minutes and seconds",
+        "write hours, minutes and seconds, such as 1:03:00 or 0:01:03",
+    )
 
 
 def _ends(present: Flags) -> tuple[Integers, Integers, Integers]:
