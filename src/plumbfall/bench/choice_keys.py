@@ -42,23 +42,54 @@ class TimingsKeys(Keys):
     columns: Annotated[
         dict[str, str],
         fields.table_of_text(_known_column),
-        doc("column meant by a heading"),
+        doc(
+            "what each heading of the file means, with or without its unit",
+            example={"Drop, s": "time"},
+        ),
         EMPTY,
     ]
     units: Annotated[
-        dict[str, str], fields.table_of_text(_known_unit), doc("unit of a column"), EMPTY
+        dict[str, str],
+        fields.table_of_text(_known_unit),
+        doc(
+            "unit of a column whose heading has none, by the column's name",
+            example={"time": "s", "temperature": "degC"},
+        ),
+        EMPTY,
     ]
     delimiter: Annotated[
-        str | None, fields.choice((",", ";", "\t", "tab", "|", " ")), doc("between cells")
+        str | None,
+        fields.choice((",", ";", "\t", "tab", "|", " ")),
+        doc("character between cells", example=";", left_out="found from the headings"),
     ] = None
-    decimal: Annotated[str | None, fields.choice((".", ",")), doc("decimal sign")] = None
-    encoding: Annotated[str | None, fields.codec, doc("character encoding")] = None
+    decimal: Annotated[
+        str | None,
+        fields.choice((".", ",")),
+        doc("decimal mark of the file", example=",", left_out="found from all its numbers"),
+    ] = None
+    encoding: Annotated[
+        str | None,
+        fields.codec,
+        doc(
+            "character encoding of the file",
+            example="cp1252",
+            left_out="its byte order mark, or UTF-8",
+        ),
+    ] = None
     header_row: Annotated[
         int | None,
         fields.whole_number("write the line of the headings, counted from 1"),
-        doc("line of the headings, counted from 1"),
+        doc(
+            "line of the headings, counted from 1",
+            example=6,
+            left_out="the first line with text that is no comment",
+        ),
     ] = None
-    sheet: Annotated[str | None, fields.text, doc("sheet of a workbook")] = None
+    sheet: Annotated[
+        str | None,
+        fields.text,
+        doc("sheet of a workbook that holds the drops", example="Drops", left_out="the first"),
+    ] = None
 
 
 def _read_drag(written: object) -> str:
@@ -89,27 +120,58 @@ drag_laws = fields.Reads(
 """Names of laws, at most one for each part of the drag."""
 
 
+DEFAULT_LAW = "the default, which the report names"
+
+
 class MethodKeys(Keys):
     """Choices among the laws; otherwise the defaults, which the report names."""
 
     drag: Annotated[
         str | None,
         drag_laws,
-        doc("laws of the drag: how wall and inertia act together, wall, inertia"),
+        doc(
+            "laws of the drag, at most one each for walls, inertia, and the two together",
+            example="screened",
+            left_out=DEFAULT_LAW,
+        ),
     ] = None
-    walls: Annotated[str | None, fields.choice(names.WALLS), doc("wall factor")] = None
-    inertia: Annotated[str | None, fields.choice(names.INERTIA), doc("inertia factor")] = None
-    ends: Annotated[str | None, fields.choice(names.ENDS), doc("ends of the tube")] = None
-    run_in: Annotated[str | None, fields.choice(names.RUN_IN), doc("run-in before the marks")] = (
-        None
-    )
+    walls: Annotated[
+        str | None,
+        fields.choice(names.WALLS),
+        doc("law of the walls' drag", example="bohlin", left_out=DEFAULT_LAW),
+    ] = None
+    inertia: Annotated[
+        str | None,
+        fields.choice(names.INERTIA),
+        doc("law of the inertia's drag", example="clift-grace-weber", left_out=DEFAULT_LAW),
+    ] = None
+    ends: Annotated[
+        str | None,
+        fields.choice(names.ENDS),
+        doc("how the ends of the tube are corrected", example="none", left_out=DEFAULT_LAW),
+    ] = None
+    run_in: Annotated[
+        str | None,
+        fields.choice(names.RUN_IN),
+        doc("how the run-in before the marks is corrected", example="none", left_out=DEFAULT_LAW),
+    ] = None
     slope: Annotated[
-        str | None, fields.choice(names.SLOPES), doc("fit the temperature slope from the run sets")
+        str | None,
+        fields.choice(names.SLOPES),
+        doc(
+            "law by which the temperature slope is fitted to the run sets themselves",
+            example="andrade",
+            left_out="the liquid's viscosity_slope",
+        ),
     ] = None
     model_uncertainty: Annotated[
         Maybe,
         deviation("ratio", Range(0, 100, "%")),
-        doc("relative standard uncertainty of the drag law"),
+        doc(
+            "relative standard uncertainty of the drag law, the same error for every drop",
+            example="0.05 %",
+            left_out="the law's own error at each drop",
+        ),
     ] = None
 
     @model_validator(mode="after")

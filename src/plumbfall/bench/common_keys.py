@@ -12,8 +12,10 @@ from plumbfall.bench.quantity_fields import Range, unadorned
 from plumbfall.estimate import Estimate
 
 __all__ = [
+    "BLANK",
     "DENSITY",
     "EMPTY",
+    "LEFT_OUT",
     "LIQUID_EXPANSION",
     "SOLID_EXPANSION",
     "TEMPERATURE",
@@ -24,6 +26,9 @@ __all__ = [
     "doc",
     "stated_temperature",
 ]
+
+BLANK = "printed as not supplied"
+"""What becomes of an empty entry of the report."""
 
 Maybe = Estimate | None
 """An optional quantity."""
@@ -38,9 +43,20 @@ SOLID_EXPANSION = Range(-1e-4, 1e-3, "/K")
 LIQUID_EXPANSION = Range(-0.02, 0.02, "/K")
 
 
-def doc(description: str) -> Any:
-    """Return the description of a key, for documents and editors."""
-    return Field(description=description)
+LEFT_OUT = "; left out: "
+"""What stands in a description between what a key means and what holds without it."""
+
+
+def doc(meaning: str, *, example: Any = None, left_out: str = "") -> Any:
+    """Return what a key means, for documents and editors.
+
+    ``example`` is a value as the sheet's reader takes it; ``left_out`` says what holds where the
+    key is not given, unless its default says so.
+    """
+    return Field(
+        description=meaning + (LEFT_OUT + left_out if left_out else ""),
+        examples=None if example is None else [example],
+    )
 
 
 def stated_temperature(
@@ -64,10 +80,22 @@ class Keys(BaseModel):
 
 
 class Equipment(Keys):
-    """What an auditor asks of a piece of equipment."""
+    """What an auditor asks of a piece of equipment; it is printed in the report."""
 
-    identity: Annotated[str, fields.text, doc("serial or inventory number")] = ""
-    certificate: Annotated[str, fields.text, doc("number of its certificate")] = ""
-    calibrated: Annotated[dt.date | None, fields.day, doc("date of its calibration")] = None
-    due: Annotated[dt.date | None, fields.day, doc("date its next calibration is due")] = None
-    note: Annotated[str, fields.text, doc("remark for the report")] = ""
+    identity: Annotated[
+        str, fields.text, doc("serial or inventory number", example="FT-50", left_out=BLANK)
+    ] = ""
+    certificate: Annotated[
+        str, fields.text, doc("number of its certificate", example="C-17/26", left_out=BLANK)
+    ] = ""
+    calibrated: Annotated[
+        dt.date | None,
+        fields.day,
+        doc("date of its calibration", example="2026-01-12", left_out=BLANK),
+    ] = None
+    due: Annotated[
+        dt.date | None,
+        fields.day,
+        doc("date on which its next calibration is due", example="2027-01-12", left_out=BLANK),
+    ] = None
+    note: Annotated[str, fields.text, doc("remark for the report", example="glass")] = ""

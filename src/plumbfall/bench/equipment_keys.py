@@ -1,4 +1,4 @@
-"""Keys of the bench sheet that concern equipment: clocks, thermometers, tubes and balls."""
+"""Keys of the bench sheet that concern equipment: tubes, balls, and the instruments."""
 
 from __future__ import annotations
 
@@ -14,6 +14,12 @@ from plumbfall.bench.common_keys import (
     doc,
     stated_temperature,
 )
+from plumbfall.bench.instrument_keys import (
+    BalanceKeys,
+    GaugeKeys,
+    ThermometerKeys,
+    TimerKeys,
+)
 from plumbfall.bench.quantity_fields import Range, above_zero, quantity
 from plumbfall.estimate import Estimate
 
@@ -28,132 +34,224 @@ __all__ = [
 ]
 
 
-class TimerKeys(Equipment):
-    """A clock: true interval = reading x (1 + rate) - bias."""
+class TubeKeys(Equipment):
+    """A fall tube. A mark is passed when the ball's centre passes it."""
 
     kind: Annotated[
-        str | None,
-        fields.choice(names.TIMER_KINDS),
-        doc("usual values, with their source, stand in for keys not given"),
-    ] = None
-    per_drop: Annotated[
-        Maybe,
-        deviation("time", Range(0, 60, "s")),
-        doc("standard deviation of one timed interval, start and stop together"),
-    ] = None
-    bias: Annotated[Maybe, quantity("time"), doc("common to all intervals; subtracted")] = None
-    rate: Annotated[
-        Maybe, quantity("ratio", Range(-0.1, 0.1, "1")), doc("relative error of the clock")
-    ] = None
-    resolution: Annotated[
-        Maybe, deviation("time", Range(0, 60, "s")), doc("of one clock reading")
-    ] = None
-
-
-class ThermometerKeys(Equipment):
-    """A thermometer."""
-
-    correction: Annotated[
-        Maybe, quantity("temperature difference"), doc("added to every reading")
-    ] = None
-    per_reading: Annotated[
-        Maybe,
-        deviation("temperature difference", Range(0, 50, "K")),
-        doc("standard deviation of one reading"),
-    ] = None
-
-
-class GaugeKeys(Equipment):
-    """A diameter gauge."""
-
-    correction: Annotated[Maybe, quantity("length"), doc("added to every diameter")] = None
-
-
-class BalanceKeys(Equipment):
-    """A balance."""
-
-    correction: Annotated[Maybe, quantity("mass"), doc("added to every mass")] = None
-
-
-class TubeKeys(Equipment):
-    """A fall tube."""
-
-    kind: Annotated[str, fields.choice(names.TUBE_KINDS), doc("vertical or calibrated")] = (
-        "vertical"
-    )
+        str,
+        fields.choice(names.TUBE_KINDS),
+        doc(
+            "vertical: bore and marks are given; calibrated: a tube constant stands for them",
+            example="vertical",
+        ),
+    ] = "vertical"
     bore: Annotated[
-        Maybe, above_zero("length", Range(0.1, 10_000, "mm")), doc("inner diameter")
+        Maybe,
+        above_zero("length", Range(0.1, 10_000, "mm")),
+        doc(
+            "inner diameter of the tube",
+            example="50.00(2) mm",
+            left_out="refused for a vertical tube",
+        ),
     ] = None
     marks: Annotated[
         tuple[Annotated[Estimate, quantity("length")], ...],
-        doc("distances of the marks down from the first mark, the first one included"),
+        doc(
+            "how far each mark is below the first one, which comes first and is 0",
+            example=["0 mm", "200.00(5) mm"],
+            left_out="distance is needed for a vertical tube",
+        ),
     ] = ()
     distance: Annotated[
-        Maybe, above_zero("length"), doc("between the two marks, instead of marks")
+        Maybe,
+        above_zero("length"),
+        doc(
+            "distance between two marks; instead of marks",
+            example="200.00(5) mm",
+            left_out="marks are needed for a vertical tube",
+        ),
     ] = None
     surface_above: Annotated[
-        Maybe, above_zero("length", roughly=True), doc("liquid surface above the first mark")
+        Maybe,
+        above_zero("length", roughly=True),
+        doc(
+            "how far the liquid surface is above the first mark",
+            example="80(2) mm",
+            left_out="the surface is taken as too far to matter, with a note",
+        ),
     ] = None
     bottom_below: Annotated[
-        Maybe, above_zero("length", roughly=True), doc("bottom below the last mark")
+        Maybe,
+        above_zero("length", roughly=True),
+        doc(
+            "how far the tube's bottom is below the last mark",
+            example="80(2) mm",
+            left_out="the bottom is taken as too far to matter, with a note",
+        ),
     ] = None
     release_above: Annotated[
         Maybe,
         quantity("length", Range(0, 100, "m")),
-        doc("ball let go from rest this far above the first mark"),
+        doc(
+            "how far above the first mark the ball is let go, from rest and under the surface",
+            example="70(2) mm",
+            left_out="the ball is taken to have its steady speed at the first mark, with a note",
+        ),
     ] = None
-    release_offset: Annotated[Maybe, quantity("length"), doc("of the ball from the axis")] = None
-    surface: Annotated[str, fields.choice(names.SURFACES), doc("free surface or lid")] = "free"
+    release_offset: Annotated[
+        Maybe,
+        quantity("length"),
+        doc(
+            "how far from the tube's axis the ball is let go",
+            example="0.0(5) mm",
+            left_out="on the axis, taken as exact",
+        ),
+    ] = None
+    surface: Annotated[
+        str,
+        fields.choice(names.SURFACES),
+        doc("what closes the liquid above: its free surface, or a lid", example="free"),
+    ] = "free"
     tilt: Annotated[
-        Maybe, quantity("angle", Range(-89.9, 89.9, "deg")), doc("from the vertical")
+        Maybe,
+        quantity("angle", Range(-89.9, 89.9, "deg")),
+        doc(
+            "angle of the tube from the vertical",
+            example="0.0(3) deg",
+            left_out="upright, taken as exact",
+        ),
     ] = None
     expansion: Annotated[
-        Maybe, quantity("temperature coefficient", SOLID_EXPANSION), doc("linear expansion")
+        Maybe,
+        quantity("temperature coefficient", SOLID_EXPANSION),
+        doc(
+            "linear thermal expansion of bore and marks",
+            example="3.3e-6 /K",
+            left_out="the tube is taken as not expanding",
+        ),
     ] = None
     measured_at: Annotated[
-        Maybe, stated_temperature(), doc("temperature of the lengths; default 20 degC")
+        Maybe,
+        stated_temperature(),
+        doc("temperature at which its lengths hold", example="20 degC", left_out="20 degC"),
     ] = None
     constant: Annotated[
-        tuple[str, ...], fields.names, doc("entries of [constant.NAME]; the ball selects")
+        tuple[str, ...],
+        fields.names,
+        doc(
+            "of a calibrated tube: names of its [constant.NAME] entries; the ball selects one",
+            example=["K1"],
+            left_out="every constant that names this tube",
+        ),
     ] = ()
 
 
 class MaterialKeys(Equipment):
-    """What balls are made of."""
+    """What balls are made of. All balls of a material share the error of its density."""
 
     density: Annotated[
-        Estimate, above_zero("density", DENSITY), doc("shared by all balls of the material")
+        Estimate,
+        above_zero("density", DENSITY),
+        doc("density of the material", example="7.700(3) g/cm3"),
     ]
     expansion: Annotated[
-        Maybe, quantity("temperature coefficient", SOLID_EXPANSION), doc("linear expansion")
+        Maybe,
+        quantity("temperature coefficient", SOLID_EXPANSION),
+        doc(
+            "linear thermal expansion",
+            example="10.4e-6 /K",
+            left_out="that of the ball; otherwise its balls are taken as not expanding",
+        ),
     ] = None
 
 
 class BallKeys(Equipment):
-    """A ball, or a lot of balls; one of density, material and mass says how heavy it is."""
+    """A ball, or a lot of balls. One of density, material and mass says how heavy it is."""
 
     diameter: Annotated[
-        Estimate, above_zero("length", Range(0.01, 1000, "mm")), doc("of the ball, or a lot's mean")
+        Estimate,
+        above_zero("length", Range(0.01, 1000, "mm")),
+        doc("diameter of the ball; of a lot, the mean", example="2.0000(5) mm"),
     ]
-    density: Annotated[Maybe, above_zero("density", DENSITY), doc("of this ball")] = None
-    material: Annotated[str | None, fields.name, doc("entry of [material.NAME]")] = None
-    mass: Annotated[Maybe, above_zero("mass"), doc("reading in air")] = None
+    density: Annotated[
+        Maybe,
+        above_zero("density", DENSITY),
+        doc(
+            "density of this ball alone",
+            example="7.700(3) g/cm3",
+            left_out="material or mass is needed",
+        ),
+    ] = None
+    material: Annotated[
+        str | None,
+        fields.name,
+        doc(
+            "name of a [material.NAME] entry",
+            example="steel",
+            left_out="density or mass is needed",
+        ),
+    ] = None
+    mass: Annotated[
+        Maybe,
+        above_zero("mass"),
+        doc(
+            "balance reading in air; the buoyancy of air is corrected",
+            example="32.25(1) mg",
+            left_out="density or material is needed",
+        ),
+    ] = None
     weighed_together: Annotated[
         int,
         fields.whole_number("write the number of balls on the balance, such as 20"),
-        doc("number of balls that the mass is of"),
+        doc("how many balls were on the balance at once", example=20),
     ] = 1
-    lot: Annotated[bool, fields.flag, doc("each row drops a fresh ball of the lot")] = False
+    lot: Annotated[
+        bool,
+        fields.flag,
+        doc("true: every row of the timing file drops a fresh ball of the lot", example=True),
+    ] = False
     spread: Annotated[
         Maybe,
         deviation("length", Range(0, 1, "mm")),
-        doc("standard deviation of the diameter from ball to ball, of a lot"),
+        doc(
+            "of a lot: standard deviation of the diameter from ball to ball",
+            example="0.5 um",
+            left_out="0 um",
+        ),
     ] = None
-    gauge: Annotated[str | None, fields.name, doc("entry of [gauge.NAME]")] = None
-    balance: Annotated[str | None, fields.name, doc("entry of [balance.NAME]")] = None
+    gauge: Annotated[
+        str | None,
+        fields.name,
+        doc(
+            "name of the [gauge.NAME] entry that the diameter was measured with",
+            example="micrometer",
+            left_out="no correction; the diameter's own uncertainty is all there is",
+        ),
+    ] = None
+    balance: Annotated[
+        str | None,
+        fields.name,
+        doc(
+            "name of the [balance.NAME] entry that the mass was read on",
+            example="analytical",
+            left_out="no correction; the mass's own uncertainty is all there is",
+        ),
+    ] = None
     expansion: Annotated[
-        Maybe, quantity("temperature coefficient", SOLID_EXPANSION), doc("linear expansion")
+        Maybe,
+        quantity("temperature coefficient", SOLID_EXPANSION),
+        doc(
+            "linear thermal expansion",
+            example="10.4e-6 /K",
+            left_out="that of the material; otherwise the ball is taken as not expanding",
+        ),
     ] = None
     measured_at: Annotated[
-        Maybe, stated_temperature(), doc("temperature of diameter and density; default 20 degC")
+        Maybe,
+        stated_temperature(),
+        doc(
+            "temperature at which diameter and density hold",
+            example="20 degC",
+            left_out="20 degC",
+        ),
     ] = None
