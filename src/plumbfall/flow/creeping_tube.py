@@ -49,8 +49,7 @@ def wall_factor_of_order(*, diameter_ratio: float, order: int) -> float:
     cosine, root_weight = (nodes + 1.0) / 2.0, np.sqrt(weights / 2.0)
     rho, z = diameter_ratio * np.sqrt(1.0 - cosine**2), diameter_ratio * cosine
     free = multipole_velocities(orders=orders, radius=diameter_ratio, rho=rho, z=z)
-    wall = TubeWall(orders=orders, radius=diameter_ratio, reach=diameter_ratio)
-    answers = wall.velocities(rho=rho, z=z)
+    answers = TubeWall(orders=orders, radius=diameter_ratio, rho=rho).velocities(z=z)
     columns = np.concatenate([free[0] + answers[0], free[1] + answers[1]], axis=1)
     # (axis, unknown, point) -> (axis and point, unknown)
     matrix = (columns * root_weight).transpose(0, 2, 1).reshape(-1, 2 * orders.size)

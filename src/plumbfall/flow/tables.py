@@ -36,6 +36,7 @@ FORMAT = "plumbfall/table/1"
 TABLE_MODULES = (
     "plumbfall.flow.creeping_tube",
     "plumbfall.flow.off_axis",
+    "plumbfall.flow.end_excess",
 )
 
 
@@ -99,8 +100,11 @@ def tables_directory() -> Path:
     return Path(str(files("plumbfall") / "physics" / "tables"))
 
 
-def _listed(values: NDArray[np.float64]) -> object:
-    return np.where(np.isnan(values), None, values).tolist()  # type: ignore[call-overload]  # object array
+def _listed(values: NDArray[np.float64]) -> str:
+    """JSON of an array, one innermost list a line."""
+    if values.ndim > 1:
+        return "[\n" + ",\n".join(_listed(row) for row in values) + "\n]"
+    return json.dumps([None if np.isnan(value) else float(value) for value in values])
 
 
 def write_table(table: Table, directory: Path) -> Path:
@@ -119,17 +123,16 @@ def write_table(table: Table, directory: Path) -> Path:
         The file written.
     """
     target = directory / f"{table.name}.json"
-    content = {
-        "format": FORMAT,
-        "name": table.name,
-        "about": dict(table.about),
-        "arrays": {name: _listed(values) for name, values in table.arrays.items()},
-    }
+    head = {"format": FORMAT, "name": table.name, "about": dict(table.about)}
+    arrays = ",\n".join(
+        f"{json.dumps(name)}: {_listed(values)}" for name, values in table.arrays.items()
+    )
+    opening = json.dumps(head, ensure_ascii=False, allow_nan=False, indent=1).removesuffix("\n}")
+    content = f'{opening},\n "arrays": {{\n{arrays}\n}}\n}}\n'
     handle, draft = tempfile.mkstemp(dir=directory, prefix=f".{table.name}.", suffix=".json")
     try:
         with os.fdopen(handle, "w", encoding="utf-8") as file:
-            json.dump(content, file, ensure_ascii=False, allow_nan=False, indent=1)
-            file.write("\n")
+            file.write(content)
         Path(draft).chmod(0o644)
         os.replace(draft, target)
     except BaseException:

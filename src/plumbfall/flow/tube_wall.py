@@ -22,6 +22,7 @@ __all__ = ["TubeWall", "wave_numbers"]
 Array = NDArray[np.float64]
 
 _PANEL_POINTS = 16
+_GRADED_POINTS = 10
 _GRADED_PANELS = 40  # halvings towards k = 0, where the integrands have logarithms
 
 
@@ -40,10 +41,15 @@ def wave_numbers(highest: float, *, panel: float = 2.0) -> tuple[Array, Array]:
     tuple of two arrays, shape (nodes,)
         Wave numbers and weights.
     """
-    graded = 2.0 ** -np.arange(_GRADED_PANELS, -1, -1.0)
+    graded = np.concatenate([[0.0], 2.0 ** -np.arange(_GRADED_PANELS, -1, -1.0)])
     count = max(1, int(np.ceil((highest - 1.0) / panel)))
-    edges = np.concatenate([[0.0], graded, np.linspace(1.0, highest, count + 1)[1:]])
-    nodes, weights = np.polynomial.legendre.leggauss(_PANEL_POINTS)
+    even = np.linspace(1.0, highest, count + 1)
+    parts = [_panels(graded, _GRADED_POINTS), _panels(even, _PANEL_POINTS)]
+    return np.concatenate([p[0] for p in parts]), np.concatenate([p[1] for p in parts])
+
+
+def _panels(edges: Array, points: int) -> tuple[Array, Array]:
+    nodes, weights = np.polynomial.legendre.leggauss(points)
     half, middle = np.diff(edges) / 2, (edges[1:] + edges[:-1]) / 2
     return (middle[:, None] + half[:, None] * nodes).ravel(), (half[:, None] * weights).ravel()
 
@@ -57,15 +63,16 @@ class TubeWall:
         Orders of the multipoles.
     radius : float
         Ball radius, which scales the multipoles as in ``multipole_velocities``.
-    reach : float
-        Largest distance from the axis at which velocities will be asked for, at most 1.
+    rho : array, shape (points,)
+        Distances from the axis, at most 1, at which velocities will be asked for.
     """
 
-    def __init__(self, *, orders: NDArray[np.int_], radius: float, reach: float) -> None:
+    def __init__(self, *, orders: NDArray[np.int_], radius: float, rho: Array) -> None:
         top = float(orders.max())
-        # the integrand is k^n exp(-k (2 - reach)): a peak near k = n/(2 - reach), and its tail
-        k, weights = wave_numbers((top + 9.0 * np.sqrt(top) + 45.0) / (2.0 - reach))
-        self._k, self._radius, self._orders = k, radius, orders
+        # the integrand is k^n exp(-k (2 - rho)): a peak near k = n/(2 - rho), and its tail
+        highest = (top + 9.0 * np.sqrt(top) + 45.0) / (2.0 - float(rho.max()))
+        k, weights = wave_numbers(highest)
+        self._k, self._orders = k[:, None], orders
         n = orders[:, None]
         amplitude = np.exp(n * np.log(radius * k) - gammaln(n + 1.0) - radius * k)
         # the two signs of the n-th derivative of cos kz
@@ -75,45 +82,45 @@ class TubeWall:
         det = 2.0 * (i1 * i1 - i0 * i2)
         to_force = amplitude * radius / (n + 1)
         to_dipole = amplitude * radius**3 / ((n + 1) * (n + 2))
-        self._force_alpha = to_force * ((k0 * (2 * i2 - k * i1) - k * k1 * i2) / det)
-        self._force_beta = to_force * (2 * (k0 * i2 + k1 * i1) / det)
-        self._dipole_alpha = to_dipole * (-(k**2) * (k1 * i1 + k0 * i2) / det)
-        self._dipole_beta = to_dipole * (2 / det)
+        # the two factors side by side, forces above dipoles
+        alpha = [
+            to_force * ((k0 * (2 * i2 - k * i1) - k * k1 * i2) / det),
+            to_dipole * (-(k**2) * (k1 * i1 + k0 * i2) / det),
+        ]
+        beta = [to_force * (2 * (k0 * i2 + k1 * i1) / det), to_dipole * (2 / det)]
+        self._factors = np.concatenate([np.stack(alpha), np.stack(beta)], axis=-1)
 
-    def velocities(self, *, rho: Array, z: Array) -> tuple[Array, Array]:
+        # exponents of the scaled Bessel functions and of the amplitude, taken together: never > 0
+        argument = self._k * rho
+        scale = np.exp(argument + (radius - 2.0) * self._k)
+        inner = [ive(order, argument) * scale for order in range(3)]
+        self._axial = (2.0 * inner[0], argument * inner[1])
+        self._radial = (2.0 * inner[1], argument * inner[2])
+
+    def velocities(self, *, z: Array) -> tuple[Array, Array]:
         """Velocities of the wall's answers to forces and to dipoles.
 
         Parameters
         ----------
-        rho, z : array, shape (points,)
-            Distance from the axis, at most the reach, and along it from the ball's centre.
+        z : array, shape (points,) or (1,)
+            Distance along the axis from the centre of the multipoles.
 
         Returns
         -------
         tuple of two arrays, shape (2, orders, points)
             Axial and radial velocity for forces, and for dipoles.
         """
-        k = self._k[:, None]
-        # exponents of the scaled Bessel functions and of the amplitude, taken together: never > 0
-        scale = np.exp(k * (rho + self._radius - 2.0))
-        i0, i1, i2 = (ive(order, k * rho) * scale for order in range(3))
-        cosine, sine = np.cos(k * z), np.sin(k * z)
-        forces = np.empty((2, self._orders.size, rho.size))
-        dipoles = np.empty_like(forces)
+        cosine, sine = np.cos(self._k * z), np.sin(self._k * z)
+        points = self._axial[0].shape[1]
+        found = np.empty((2, 2, self._orders.size, points))  # kind, axis, order, point
         # u_z follows the wave of the source; u_rho is a quarter wave behind
-        for odd, (along, across) in enumerate(((cosine, sine), (sine, -cosine))):
+        for odd, waves in enumerate(((cosine, sine), (sine, -cosine))):
             chosen = self._orders % 2 == odd
             if not chosen.any():
                 continue
-            waves = (
-                (2.0 * i0 * along, k * rho * i1 * along),
-                (2.0 * i1 * across, k * rho * i2 * across),
-            )
-            for axis, (alpha, beta) in enumerate(waves):
-                forces[axis, chosen] = (
-                    self._force_alpha[chosen] @ alpha + self._force_beta[chosen] @ beta
-                )
-                dipoles[axis, chosen] = (
-                    self._dipole_alpha[chosen] @ alpha + self._dipole_beta[chosen] @ beta
-                )
-        return forces, dipoles
+            factors = self._factors[:, chosen]
+            for axis, (pair, wave) in enumerate(
+                zip((self._axial, self._radial), waves, strict=True)
+            ):
+                found[:, axis, chosen] = factors @ np.concatenate([part * wave for part in pair])
+        return found[0], found[1]
