@@ -19,9 +19,11 @@ from plumbfall.findings.outliers import suspects
 from plumbfall.findings.registry import find
 from plumbfall.measurement.balance import corrected_temperature
 from plumbfall.measurement.drops import compute_drops, value_weights
+from plumbfall.measurement.ends import path_ends
 from plumbfall.measurement.gather import gather
 from plumbfall.measurement.law import drag_law, model_estimate
 from plumbfall.measurement.selection import check_temperatures, select
+from plumbfall.physics.laws import DEFAULTS
 from plumbfall.results import Finding, RunSetResult
 from plumbfall.run_sets.jacobian import build_jacobian, own_variances
 from plumbfall.run_sets.outputs import compute_outputs, conditions
@@ -194,7 +196,13 @@ def reduce_numbers(timings: Timings, bench: Bench, coverage: float = 0.95) -> Se
     readings = corrected_temperature(inputs, selection.cell, selection.temperature)
     check_temperatures(selection, readings, timings)
     weights = value_weights(selection, inputs)
-    columns, sums = compute_drops(selection, inputs, weights, law, readings)
+    ends = path_ends(
+        inputs,
+        selection.cells,
+        list(bench.tubes.values()),
+        bench.methods.ends or DEFAULTS["ends"],
+    )
+    columns, sums = compute_drops(selection, inputs, weights, law, readings, ends)
     own = own_variances(selection, inputs, sums)
     scatter = repeatability(selection, columns, weights, np.sqrt(own.resolution), bench.scatter)
     jacobian = build_jacobian(selection, inputs, sums, own, scatter)
@@ -210,7 +218,7 @@ def reduce_numbers(timings: Timings, bench: Bench, coverage: float = 0.95) -> Se
     )
     return SetColumns(
         bench, timings, selection, inputs, columns, sums, weights, scatter, jacobian, liquid,
-        outputs, law,
+        outputs, law, ends,
     )  # fmt: skip
 
 
@@ -229,6 +237,7 @@ def _data(sets: SetColumns, limits: Limits) -> RunData:
         law=sets.law,
         relative_u=relative_u,
         limits=limits,
+        ends=sets.ends,
         unstated=unstated_uncertainties(sets.bench),
     )
 

@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from plumbfall.bench.records import Ball, Bench, Liquid, Tube
 from plumbfall.findings.limits import Limits
 from plumbfall.measurement.drops import DropColumns, Weights
+from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.physics.drag import DragLaw
@@ -29,7 +30,8 @@ Found = tuple[int, Finding]
 class RunData:
     """Everything known once the drops are reduced and the uncertainties propagated.
 
-    ``relative_u`` is each run set's relative standard uncertainty, shape (run sets,).
+    ``relative_u`` is each run set's relative standard uncertainty, shape (run sets,); ``ends``
+    what the tubes' ends add to each cell's path, ``None`` where nothing is added.
     """
 
     bench: Bench
@@ -42,6 +44,7 @@ class RunData:
     law: DragLaw
     relative_u: NDArray[np.float64]
     limits: Limits
+    ends: Ends | None = None
     unstated: tuple[str, ...] = ()
 
     @property

@@ -50,15 +50,17 @@ def end_near(data: RunData) -> Iterator[Found]:
         ):
             if distance is None or distance.value >= data.limits.end_clearance * radius:
                 continue
+            allowed, effect = _allowed_for(data, run_set)
             yield (
                 run_set,
                 Finding(
                     code="end-near",
                     severity="warning",
                     statistic=distance.value / radius,
+                    effect=effect,
                     message=f"the {name} mark of tube {tube.name} is only "
                     f"{distance.value / radius:.2f} bore radii from the {end}; the drag there is "
-                    "higher than the drag law's, and the viscosity comes out too high",
+                    f"higher, {allowed}",
                     remedy=f"keep the {name} mark at least one bore radius "
                     f"({1000 * radius:.0f} mm) from the {end}, better one and a half",
                 ),
@@ -95,6 +97,17 @@ def run_in_short(data: RunData) -> Iterator[Found]:
                 remedy="let the ball go higher above the first mark, or use a smaller ball",
             ),
         )
+
+
+def _allowed_for(data: RunData, run_set: int) -> tuple[str, float | None]:
+    """Say whether the result allows for the ends, and by how much."""
+    if data.ends is None:
+        return "and the viscosity comes out too high", None
+    cells = data.selection.cells.run_set == run_set
+    if data.ends.unknown[cells].any():
+        return "by an unknown amount, and the viscosity comes out too high", None
+    effect = float(np.max(data.ends.factor[cells])) - 1
+    return f"which the result allows for ({100 * effect:.2f} % of viscosity)", effect
 
 
 def off_axis_suspected(data: RunData) -> Iterator[Found]:

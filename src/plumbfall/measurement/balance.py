@@ -31,7 +31,8 @@ class Balance:
 
     ``ball_offset``, ``tube_offset`` and ``liquid_offset`` are temperatures less the one at
     which the ball, the tube and the liquid's density were measured, 0 where unknown.
-    ``cold_diameter`` and ``cold_volume`` are those at the measuring temperature, gauge corrected.
+    ``speed`` is that far from the ends of the tube. ``cold_diameter`` and ``cold_volume`` are
+    those at the measuring temperature, gauge corrected.
     """
 
     temperature: Numbers
@@ -66,7 +67,13 @@ def corrected_temperature(inputs: Inputs, cell: Codes, reading: Numbers) -> Numb
     return reading + spread(inputs.roles["thermometer"].value, cell)
 
 
-def balance(inputs: Inputs, cell: Codes, time: Numbers, temperature: Numbers) -> Balance:
+def balance(
+    inputs: Inputs,
+    cell: Codes,
+    time: Numbers,
+    temperature: Numbers,
+    end_factor: Numbers | float = 1.0,
+) -> Balance:
     """Compute the force balance of a block of drops.
 
     Parameters
@@ -79,6 +86,8 @@ def balance(inputs: Inputs, cell: Codes, time: Numbers, temperature: Numbers) ->
         Clock readings between the marks.
     temperature : array, shape (drops,) [K]
         The drops' corrected temperatures; NaN where unknown.
+    end_factor : array, shape (drops,) [1]
+        Mean over the path of the drag over its value far from the tube's ends.
 
     Returns
     -------
@@ -131,7 +140,7 @@ def balance(inputs: Inputs, cell: Codes, time: Numbers, temperature: Numbers) ->
         bore=bore,
         distance=distance,
         time=true_time,
-        speed=distance / true_time,
+        speed=distance * end_factor / true_time,
         mass=mass,
         liquid_density=density,
         net_mass=net_mass,

@@ -11,6 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.measurement.balance import Codes, Numbers, balance, spread
+from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.inverse import invert
 from plumbfall.measurement.off_axis import off_axis
@@ -58,6 +59,7 @@ class DropColumns:
     diameter_ratio: Numbers
     wall: Numbers
     off_axis: Numbers
+    end: Numbers
     drag_factor: Numbers
     shear_stress: Numbers
     model_bound: Numbers
@@ -93,7 +95,12 @@ def value_weights(selection: Selection, inputs: Inputs) -> Weights:
 
 
 def compute_drops(
-    selection: Selection, inputs: Inputs, weights: Weights, law: DragLaw, temperature: Numbers
+    selection: Selection,
+    inputs: Inputs,
+    weights: Weights,
+    law: DragLaw,
+    temperature: Numbers,
+    ends: Ends | None = None,
 ) -> tuple[DropColumns, Sums]:
     """Invert the force balance of every drop and sum its sensitivities.
 
@@ -109,6 +116,8 @@ def compute_drops(
         The drag law to invert.
     temperature : array, shape (drops,) [K]
         The drops' corrected temperatures, NaN where unknown.
+    ends : Ends, optional
+        What the tubes' ends add to the drag on each cell's path.
 
     Returns
     -------
@@ -130,7 +139,7 @@ def compute_drops(
     sums = empty_sums(len(selection.cells))
     for start in range(0, n, BLOCK):
         block = slice(start, min(start + BLOCK, n))
-        _compute_block(block, selection, inputs, law, offset, weights.weight, out, sums)
+        _compute_block(block, selection, inputs, law, ends, offset, weights.weight, out, sums)
     return out, sums
 
 
@@ -152,6 +161,7 @@ def _empty_columns(n: int, temperature: Numbers, set_temperature: Numbers) -> Dr
         diameter_ratio=numbers(),
         wall=numbers(),
         off_axis=np.ones(n),
+        end=np.ones(n),
         drag_factor=numbers(),
         shear_stress=numbers(),
         model_bound=numbers(),
@@ -168,6 +178,7 @@ def _compute_block(
     selection: Selection,
     inputs: Inputs,
     law: DragLaw,
+    ends: Ends | None,
     offset: Numbers,
     weight: Numbers,
     out: DropColumns,
@@ -176,7 +187,8 @@ def _compute_block(
     """Fill the columns of one block of drops, and add it to the sums."""
     cell, clock = selection.cell[block], selection.time[block]
     with np.errstate(invalid="ignore", divide="ignore"):
-        forces = balance(inputs, cell, clock, out.temperature[block])
+        end_factor = 1.0 if ends is None else spread(ends.factor, cell)
+        forces = balance(inputs, cell, clock, out.temperature[block], end_factor)
         # A ratio beyond the law's is flagged by the inverse; here it must only not stop the rest.
         drag = law.at(np.minimum(forces.diameter_ratio, law.max_ratio))
         beside = off_axis(inputs, cell, forces)
@@ -187,7 +199,7 @@ def _compute_block(
             out.off_axis[block] = np.exp(beside.log_factor)
         to_set = np.exp(spread(inputs.roles["slope"].value, cell) * offset[block])
         bound = drag.relative_bound(found.log_reynolds)
-        stokes = forces.weight / (3 * np.pi * forces.diameter * forces.speed)
+        stokes = forces.weight * end_factor / (3 * np.pi * forces.diameter * forces.speed)
         out.viscosity[block] = found.viscosity
         out.at_set[block] = found.viscosity * to_set
         out.stokes[block] = stokes * to_set
@@ -196,6 +208,7 @@ def _compute_block(
         out.diameter[block] = forces.diameter
         out.diameter_ratio[block] = forces.diameter_ratio
         out.wall[block] = drag.wall
+        out.end[block] = end_factor
         out.drag_factor[block] = stokes / found.viscosity
         out.shear_stress[block] = forces.weight / (np.pi * forces.diameter**2)
         out.model_bound[block] = bound
@@ -210,7 +223,7 @@ def _compute_block(
             clock,
             forces,
             DropSlopes(
-                np.asarray(ratio_slope), np.asarray(reynolds_slope), np.asarray(bound), beside
+                np.asarray(ratio_slope), np.asarray(reynolds_slope), np.asarray(bound), beside, ends
             ),
             weight[block] * out.at_set[block],
             offset[block],

@@ -92,6 +92,8 @@ def gather(cells: Cells, bench: Bench, run_sets: Sequence[str], model: Estimate)
     of("bore", cells.tube, [tube.bore for tube in tubes])
     of("tilt", cells.tube, [tube.tilt for tube in tubes])
     of("tube_expansion", cells.tube, [tube.expansion for tube in tubes])
+    of("surface_above", cells.tube, [tube.surface_above for tube in tubes])
+    of("bottom_below", cells.tube, [tube.bottom_below for tube in tubes])
     of("release_offset", cells.tube, [tube.release_offset for tube in tubes])
     for role, marks in (("from_mark", cells.from_mark), ("to_mark", cells.to_mark)):
         roles[role] = _marks(register, cells.tube, marks, tubes)
@@ -139,6 +141,7 @@ def gather(cells: Cells, bench: Bench, run_sets: Sequence[str], model: Estimate)
         per_reading=sd(cells.thermometer, [t.per_reading for t in thermometers]),
         slope_known=roles["slope"].entry >= 0,
         temperature_known=roles["temperature"].entry >= 0,
+        model_declared=bench.methods.model_uncertainty is not None,
         gravity_slopes=slopes,
         individual=_individual(register.estimates, balls),
     )

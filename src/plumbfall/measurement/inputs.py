@@ -42,7 +42,8 @@ class Inputs:
     """Every raw input by role, and the distinct estimates they come from.
 
     ``weighed`` says which cells know their ball's mass (instead of its density), ``together``
-    how many balls were weighed at once; reference temperatures are in kelvin; ``individual``
+    how many balls were weighed at once; reference temperatures are in kelvin; ``model_declared``
+    says that the drag law's uncertainty is the bench sheet's own, not the law's; ``individual``
     marks the entries that belong to one ball (not to a lot or a material).
     """
 
@@ -60,6 +61,7 @@ class Inputs:
     per_reading: NDArray[np.float64]
     slope_known: NDArray[np.bool_]
     temperature_known: NDArray[np.bool_]
+    model_declared: bool = False
     gravity_slopes: tuple[float, float] = (0.0, 0.0)
     individual: NDArray[np.bool_] = field(default_factory=lambda: np.zeros(0, dtype=bool))
 

@@ -18,6 +18,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.measurement.balance import Balance, Codes, Numbers, spread
+from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.off_axis import OffAxis
 from plumbfall.physics.weight import AIR_DENSITY, WEIGHTS_DENSITY
@@ -30,13 +31,15 @@ class DropSlopes:
     """What the drag law adds to a block's balance, each of shape (drops,).
 
     ``ratio_slope`` is w, ``reynolds_slope`` s, ``model_bound`` the law's own relative half-width.
-    ``beside`` is what being off the axis adds, ``None`` where no offset is given.
+    ``beside`` is what being off the axis adds, ``None`` where no offset is given; ``ends`` what
+    the tube's ends add to each cell's path, ``None`` where they are out of reach.
     """
 
     ratio_slope: Numbers
     reynolds_slope: Numbers
     model_bound: Numbers
     beside: OffAxis | None = None
+    ends: Ends | None = None
 
 
 @dataclass(slots=True)
@@ -61,7 +64,7 @@ FIRST = (
     "gravity", "latitude", "elevation", "tilt", "bore", "tube_expansion", "from_mark", "to_mark",
     "diameter", "gauge", "ball_density", "mass", "balance", "ball_expansion", "liquid_density",
     "liquid_expansion", "slope", "bias", "rate", "thermometer", "temperature", "release_offset",
-    "model",
+    "surface_above", "bottom_below", "model",
 )  # fmt: skip
 
 
@@ -161,8 +164,12 @@ def add_block(
         sums.second["release_offset"] += total(-a_weight * beside.by_offset_twice)
 
     add("bore", lambda: a_bore / take("bore"))
-    add("tube_expansion", lambda: (a_bore + a_speed) * (forces.tube_offset / tube_grown))
-    by_mark = a_speed * (tube_grown / forces.distance)
+    a_length = a_speed
+    if (ends := slopes.ends) is not None:
+        a_length = a_speed * spread(ends.length_share, cell)
+        _add_ends(sums, inputs, ends, total(a_speed))
+    add("tube_expansion", lambda: (a_bore + a_length) * (forces.tube_offset / tube_grown))
+    by_mark = a_length * (tube_grown / forces.distance)
     add("from_mark", lambda: -by_mark)
     add("to_mark", lambda: by_mark)
 
@@ -195,16 +202,31 @@ def add_block(
 
     by_temperature = (
         grow * (take("ball_expansion") / grown)
-        + (a_bore + a_speed) * (take("tube_expansion") / tube_grown)
+        + (a_bore + a_length) * (take("tube_expansion") / tube_grown)
         - by_density * (take("liquid_expansion") / liquid_grown)
         - pull * take("slope")
     )
     add("thermometer", lambda: by_temperature)
     add("temperature", lambda: np.where(own_reading, 0.0, by_temperature))
-    sums.first["model"] += total(-a_weight * slopes.model_bound)
+    by_model = -a_weight if inputs.model_declared else -a_weight * slopes.model_bound
+    sums.first["model"] += total(by_model)
     sums.model_plain += total(-a_weight)
 
     sums.timing += total((by_time * (1 + take("rate"))) ** 2)
     sums.reading += total(np.where(own_reading, by_temperature**2, 0.0))
     if inputs.lot.any():
         sums.lot += total(by_diameter**2)
+
+
+def _add_ends(sums: Sums, inputs: Inputs, ends: Ends, pull: Numbers) -> None:
+    """Add what the ends' factor of the speed does, its derivatives being those of a cell.
+
+    The factor is that of the sheet's own lengths: their expansion by some kelvin does not move it.
+    """
+    roles = inputs.roles
+    cold_diameter = roles["diameter"].value + roles["gauge"].value
+    sums.first["bore"] += pull * (ends.by_bore - ends.by_ratio) / roles["bore"].value
+    sums.first["diameter"] += pull * ends.by_ratio / cold_diameter
+    sums.first["gauge"] += pull * ends.by_ratio / cold_diameter
+    sums.first["surface_above"] += pull * ends.by_surface
+    sums.first["bottom_below"] += pull * ends.by_bottom

@@ -11,7 +11,7 @@ from typing import Any
 
 _NAMES_OF = {
     "drag": ("BoundDrag", "DragLaw"),
-    "ends": ("end_factor_classical", "plane_factor"),
+    "ends": ("end_excess", "end_factor_classical", "plane_factor"),
     "factors": ("inertia_factor", "tube_drag_factor", "wall_factor"),
     "gravity": (
         "STANDARD_GRAVITY",

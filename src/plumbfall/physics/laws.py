@@ -23,7 +23,7 @@ KINDS = ("walls", "inertia", "together", "ends")
 """Kinds of law, in the order in which they enter the drag."""
 
 DEFAULTS: Mapping[str, str] = MappingProxyType(
-    {"walls": "exact", "inertia": "compact", "together": "screened", "ends": "none"}
+    {"walls": "exact", "inertia": "compact", "together": "screened", "ends": "table"}
 )
 """The law of each kind that is used where none is chosen."""
 
@@ -112,7 +112,8 @@ def laws_of(kind: str) -> Mapping[str, Law]:
     return _LAWS[kind]
 
 
-_OWN = "computed by plumbfall from Navier-Stokes and Stokes flow"
+_OWN = "computed by plumbfall from Navier-Stokes"
+_OWN_CREEPING = "computed by plumbfall from Stokes flow"
 
 
 def _wall(name: str, high: float, error: str, source_key: str, citation: str) -> Law:
@@ -168,7 +169,7 @@ _OSEEN = "Oseen 1910, Ark. Mat. Astron. Fys. 6, no. 29"
 _ABRAHAM = "Abraham 1970, Phys. Fluids 13, 2194"
 _FAXEN = "Faxén 1922/23, Ark. Mat. Astron. Fys. 17, no. 27"
 _ALL = (
-    _wall("exact", 0.95, "1e-6 to ratio 0.8", "Plumbfall", _OWN),
+    _wall("exact", 0.95, "1e-9 to ratio 0.8, 1e-6 to 0.95", "Plumbfall", _OWN_CREEPING),
     _wall("ladenburg", 0.2, "12 % at 0.2", "Ladenburg1907", "Ladenburg 1907, Ann. Phys. 328, 447"),
     _wall("faxen", 0.5, "6.4 % at 0.5, 1.4 % at 0.4", "Faxen1922", _FAXEN),
     _wall("faxen-cubic", 0.4, "4.7 % at 0.4, 0.8 % at 0.3", "Faxen1922", _FAXEN),
@@ -237,6 +238,17 @@ _ALL = (
         "common practice, no source",
     ),
     Law(
+        name="table",
+        kind="ends",
+        function=ends.end_excess,
+        variable="distance of the ball from an end over the bore radius",
+        low=0.0,
+        high=math.inf,
+        error="1e-4 of the drag; ratio to 0.8, gap at least 0.01 ball radii, Reynolds number 0",
+        source_key="Plumbfall",
+        citation=_OWN_CREEPING,
+    ),
+    Law(
         name="none",
         kind="ends",
         function=ends.end_factor_none,
@@ -245,7 +257,7 @@ _ALL = (
         high=math.inf,
         error="0.6 % at ratio 0.3, 0.2 % at 0.2, 0.12 % at 0.1; below 1e-5 beyond 1.5",
         source_key="Plumbfall",
-        citation=_OWN,
+        citation=_OWN_CREEPING,
     ),
     Law(
         name="classical",

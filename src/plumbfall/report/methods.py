@@ -25,13 +25,15 @@ def methods_text() -> str:
         for name, law in laws_of(kind).items():
             default = "  (default)" if DEFAULTS.get(kind) == name else ""
             lines.append(f"  {name}{default}")
-            about = f"{law.variable} {law.low:g} to {law.high:g}; {law.error}. Source: {law.citation}."
+            about = (
+                f"{law.variable} {law.low:g} to {law.high:g}; {law.error}. Source: {law.citation}."
+            )
             lines += textwrap.wrap(
                 about, WIDTH, initial_indent="      ", subsequent_indent="      "
             )
         lines.append("")
     lines += textwrap.wrap(
-        "In a bench sheet, [methods] drag = \"NAME …\" takes one name of a kind or several; what "
+        'In a bench sheet, [methods] drag = "NAME …" takes one name of a kind or several; what '
         "is not named is the default. The drag factor is the drag on the ball over its drag by "
         "Stokes' law.",
         WIDTH,

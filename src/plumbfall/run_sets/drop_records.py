@@ -89,10 +89,10 @@ def _drop(
     def computed(values: NDArray[np.float64]) -> float | None:
         return float(values[at]) if at is not None and math.isfinite(values[at]) else None
 
-    at_set, wall, beside, total = (
-        computed(column)
-        for column in (columns.at_set, columns.wall, columns.off_axis, columns.drag_factor)
+    at_set, wall, total = (
+        computed(column) for column in (columns.at_set, columns.wall, columns.drag_factor)
     )
+    others = 1.0 if at is None else float(columns.wall[at] * columns.off_axis[at] * columns.end[at])
     return DropResult(
         file=file,
         line=line,
@@ -106,8 +106,8 @@ def _drop(
         reynolds=computed(columns.reynolds),
         fall_speed=computed(columns.fall_speed),
         wall=wall,
-        inertia=None if total is None or not wall or not beside else total / (wall * beside),
-        end=None if at is None else 1.0,
+        inertia=None if total is None else total / others,
+        end=computed(columns.end),
         residual=at_set / mean - 1 if at_set is not None and mean else None,
         used=at is not None,
         status=status,

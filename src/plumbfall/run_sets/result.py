@@ -10,10 +10,12 @@ from numpy.typing import NDArray
 
 from plumbfall.bench.records import Bench
 from plumbfall.measurement.drops import DropColumns, Weights
+from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import Sums
 from plumbfall.physics.drag import DragLaw
+from plumbfall.physics.laws import DEFAULTS, law
 from plumbfall.physics.stokes import shear_rate
 from plumbfall.results import (
     Correction,
@@ -54,6 +56,7 @@ class SetColumns:
     liquid: SetConditions
     outputs: Outputs
     law: DragLaw
+    ends: Ends | None
 
 
 def status_of(findings: tuple[Finding, ...]) -> str:
@@ -212,17 +215,12 @@ def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correcti
         Correction("wall", wall, law.wall_law.name, law.wall_law.citation),
         Correction(
             "inertia",
-            total / (wall * off_axis),
+            total / (wall * off_axis * float(drops.end[used].mean())),
             f"{law.inertia_law.name}, joined by the {law.together_law.name} rule",
             "; ".join(dict.fromkeys((law.inertia_law.citation, law.together_law.citation))),
         ),
         *((beside,) if off_axis != 1 else ()),
-        Correction(
-            "ends",
-            1.0,
-            "none: an end is not felt beyond one bore radius",
-            "Tanner 1963, J. Fluid Mech. 17, 161",
-        ),
+        _ends(all_sets, float(drops.end[used].mean())),
         Correction(
             "run-in",
             1.0,
@@ -230,3 +228,9 @@ def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correcti
             "guard distance, see the documentation",
         ),
     )
+
+
+def _ends(all_sets: SetColumns, factor: float) -> Correction:
+    chosen = law("ends", all_sets.bench.methods.ends or DEFAULTS["ends"])
+    method = "mean of the end excess over the path" if chosen.name == "table" else chosen.name
+    return Correction("ends", factor, method, chosen.citation)

@@ -1,0 +1,181 @@
+"""The ends of the tube: how much longer the fall between the marks takes because of them.
+
+Near an end the drag is (1 + E) times that far away, E dying off within a bore radius or two. The
+ball's time between the marks is the integral of dz/v along its path, so that what counts is the
+mean of E over the path, and the speed far from the ends is v = L (1 + mean E) / t.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Literal
+
+import numpy as np
+
+from plumbfall.bench.records import Tube
+from plumbfall.measurement.balance import Numbers
+from plumbfall.measurement.inputs import Inputs
+from plumbfall.measurement.selection import Cells
+from plumbfall.physics.ends import end_factor_classical
+from plumbfall.physics.exact_ends import (
+    END_EXCESS_RATIO_LIMITS,
+    END_EXCESS_REACH,
+    end_excess_table,
+)
+
+__all__ = ["Ends", "path_ends"]
+
+NODES, WEIGHTS = np.polynomial.legendre.leggauss(40)
+"""Quadrature over the reach of an end: the excess is smooth, and 40 nodes give 1e-12 of it."""
+
+
+@dataclass(frozen=True, slots=True)
+class Ends:
+    """Mean effect of both ends on each cell's path, arrays of shape (cells,).
+
+    ``factor`` is 1 + mean E. The others are derivatives of its logarithm: with respect to
+    ln(diameter ratio) at a given bore, to ln(bore) at a given ratio, and to the distances of the
+    first mark from the surface and of the last from the bottom [1/m]; ``length_share`` is
+    d ln(length x factor)/d ln(length). ``unknown`` marks cells whose excess cannot be had.
+    """
+
+    factor: Numbers
+    by_ratio: Numbers
+    by_bore: Numbers
+    by_surface: Numbers
+    by_bottom: Numbers
+    length_share: Numbers
+    unknown: np.ndarray
+
+
+@dataclass(frozen=True, slots=True)
+class _OneEnd:
+    mean: Numbers
+    by_ratio: Numbers
+    by_bore: Numbers
+    by_distance: Numbers
+    at_far_mark: Numbers
+
+
+def path_ends(
+    inputs: Inputs, cells: Cells, tubes: Sequence[Tube], method: str = "table"
+) -> Ends | None:
+    """Return the effect of the tube's ends; ``None`` where there is none.
+
+    Parameters
+    ----------
+    inputs : Inputs
+        Raw inputs by cell.
+    cells : Cells
+        Which tube and marks each cell has.
+    tubes : sequence of Tube
+        The bench's tubes, as the cells count them.
+    method : {"table", "classical", "none"}
+        The computed excess, the factor of 1907, or nothing.
+
+    Notes
+    -----
+    Distances that the bench sheet does not give are taken as out of reach, which a finding says.
+    """
+    if method == "none":
+        return None
+    if method == "classical":
+        return _classical(inputs, cells, tubes)
+    roles = inputs.roles
+    radius = roles["bore"].value / 2
+    ratio = (roles["diameter"].value + roles["gauge"].value) / roles["bore"].value
+    length = roles["to_mark"].value - roles["from_mark"].value
+    last = np.array([t.marks[-1].value - t.marks[0].value if t.marks else 0.0 for t in tubes])
+    first = np.array([t.marks[0].value if t.marks else 0.0 for t in tubes])
+    above = roles["from_mark"].value - first[cells.tube]
+    below = last[cells.tube] - (roles["to_mark"].value - first[cells.tube])
+    surface = _distance(inputs, "surface_above") + above
+    bottom = _distance(inputs, "bottom_below") + below
+    if not ((np.minimum(surface, bottom) < END_EXCESS_REACH * radius) & (ratio < 1)).any():
+        return None
+    lids = np.array([tube.surface == "lid" for tube in tubes])[cells.tube]
+    lower = _one_end(ratio, bottom, length, radius, "solid")
+    free = _one_end(ratio, np.where(lids, np.inf, surface), length, radius, "free")
+    lid = _one_end(ratio, np.where(lids, surface, np.inf), length, radius, "solid")
+    mean = lower.mean + free.mean + lid.mean
+    unknown = np.isnan(mean)
+    factor = np.where(unknown, 1.0, 1 + mean)
+
+    def known(values: Numbers) -> Numbers:
+        return np.where(unknown, 0.0, values) / factor
+
+    far = lower.at_far_mark + free.at_far_mark + lid.at_far_mark
+    return Ends(
+        factor=factor,
+        by_ratio=known(lower.by_ratio + free.by_ratio + lid.by_ratio),
+        by_bore=known(lower.by_bore + free.by_bore + lid.by_bore),
+        by_surface=known(free.by_distance + lid.by_distance),
+        by_bottom=known(lower.by_distance),
+        length_share=np.where(unknown, 1.0, (1 + far) / factor),
+        unknown=unknown,
+    )
+
+
+def _classical(inputs: Inputs, cells: Cells, tubes: Sequence[Tube]) -> Ends:
+    """Return the end factor of 1907, one number for the whole path."""
+    roles = inputs.roles
+    spans = np.array([t.marks[-1].value - t.marks[0].value if t.marks else 0.0 for t in tubes])
+    height = _distance(inputs, "surface_above") + spans[cells.tube]
+    height = height + _distance(inputs, "bottom_below")
+    radius = (roles["diameter"].value + roles["gauge"].value) / 2
+    factor = np.asarray(end_factor_classical(height_ratio=height / radius))
+    share = (factor - 1) / factor
+    length = roles["to_mark"].value - roles["from_mark"].value
+    return Ends(
+        factor=factor,
+        by_ratio=share,
+        by_bore=share,
+        by_surface=-share / height,
+        by_bottom=-share / height,
+        length_share=1 - share * length / height,
+        unknown=np.isinf(height),
+    )
+
+
+def _distance(inputs: Inputs, role: str) -> Numbers:
+    column = inputs.roles[role]
+    return np.where(column.entry >= 0, column.value, np.inf)
+
+
+def _one_end(
+    ratio: Numbers,
+    distance: Numbers,
+    length: Numbers,
+    radius: Numbers,
+    end: Literal["solid", "free"],
+) -> _OneEnd:
+    """Average one end's excess over a path that starts at a distance from it."""
+    start, whole = distance / radius, length / radius
+    near = np.minimum(start, END_EXCESS_REACH)
+    far = np.minimum(start + whole, END_EXCESS_REACH)
+    half = (far - near) / 2
+    places = near + half + NODES[:, None] * half
+    excess, _, of_ratio = _excess(ratio, places, end)
+    within = half > 0
+    share = np.where(within, half, 0.0) / whole
+    mean = share * (WEIGHTS @ np.where(within, excess, 0.0))
+    by_ratio = share * (WEIGHTS @ np.where(within, of_ratio, 0.0)) * ratio
+    at_near, _, _ = _excess(ratio, np.where(within, near, END_EXCESS_REACH), end)
+    at_far, _, _ = _excess(ratio, far, end)
+    by_distance = (at_far - at_near) / length
+    reach = np.where(within, start, 0.0)  # an end out of reach may be infinitely far
+    by_bore = mean - (at_far * (reach + whole) - at_near * reach) / whole
+    return _OneEnd(mean, by_ratio, by_bore, by_distance, at_far)
+
+
+def _excess(
+    ratio: Numbers, places: Numbers, end: Literal["solid", "free"]
+) -> tuple[Numbers, Numbers, Numbers]:
+    """Excess of the table; below its least ratio in proportion to the ratio, its limit."""
+    least = END_EXCESS_RATIO_LIMITS[0]
+    small = ratio < least
+    found = end_excess_table(np.where(small, least, ratio), places, end)
+    excess, of_place, of_ratio = (np.asarray(part) for part in found)
+    scale = np.where(small, ratio / least, 1.0)
+    return excess * scale, of_place * scale, np.where(small, excess / least, of_ratio)

@@ -1,0 +1,97 @@
+"""The sample runs: what the README promises of each, and the expected reports beside them."""
+
+from __future__ import annotations
+
+import json
+import math
+from pathlib import Path
+
+import pytest
+
+import plumbfall as pf
+
+FOLDER = Path(__file__).parents[1] / "sample_runs"
+RUNS = {
+    "damping_fluid_clean": "drops.csv",
+    "resin_bad_drop": "drops.csv",
+    "varnish_warm": "drops.tsv",
+    "wash_oil_invalid": "drops.csv",
+}
+
+
+@pytest.fixture(autouse=True)
+def at_the_root(monkeypatch):
+    """Paths stand in reports as typed."""
+    monkeypatch.chdir(FOLDER.parent)
+
+
+def reduced(name: str) -> pf.Report:
+    return pf.reduce(f"sample_runs/{name}/{RUNS[name]}")
+
+
+@pytest.mark.parametrize("name", RUNS)
+def test_every_file_says_that_the_data_are_invented(name):
+    for path in ("bench.toml", RUNS[name]):
+        assert "invented data" in (FOLDER / name / path).read_text("utf-8").lower()
+
+
+@pytest.mark.parametrize("name", RUNS)
+def test_expected_report(name):
+    expected = json.loads((FOLDER / name / "expected_report.json").read_text("utf-8"))
+    same(json.loads(reduced(name).to_json()), expected, "report")
+    text = (FOLDER / name / "expected_report.txt").read_text("utf-8")
+    assert reduced(name).text() == text
+
+
+def same(ours: object, expected: object, place: str) -> None:
+    """Assert equal documents; numbers may differ in their last digits between machines."""
+    if isinstance(expected, dict):
+        assert isinstance(ours, dict)
+        assert list(ours) == list(expected), place
+        for key, value in expected.items():
+            if key != "version":
+                same(ours[key], value, f"{place}.{key}")
+    elif isinstance(expected, list):
+        assert isinstance(ours, list)
+        assert len(ours) == len(expected), place
+        for index, (one, other) in enumerate(zip(ours, expected, strict=True)):
+            same(one, other, f"{place}[{index}]")
+    elif isinstance(expected, float):
+        assert ours == pytest.approx(expected, rel=1e-6, abs=1e-12), place
+    else:
+        assert ours == expected, place
+
+
+def test_clean_set_covers_the_truth():
+    clean = reduced("damping_fluid_clean")["tank 3"]
+    slope = -0.019
+    truth = 0.9472 * math.exp(slope * (clean.result.temperature.value - 298.15))
+    assert clean.interval[0] < truth < clean.interval[1]
+    assert clean.result.status == "valid"
+
+
+def test_bad_drop_is_named_and_without_it_the_truth_is_covered():
+    resin = reduced("resin_bad_drop")["batch 118"].result
+    (warning,) = (f for f in resin.findings if f.severity == "warning")
+    assert (warning.code, warning.drops) == ("outlier", (6,))
+    without = resin.viscosity.value * (1 + warning.effect)
+    truth = 1.620 * math.exp(-0.082 * (resin.temperature.value - 296.15))
+    assert without == pytest.approx(truth, rel=0.01)
+    (void,) = (drop for drop in resin.drops if not drop.used)
+    assert void.note == "ball touched the wall"
+
+
+def test_warm_sets_are_reduced_to_the_reference_temperature():
+    report = reduced("varnish_warm")
+    for run_set in report:
+        at_25 = run_set.result.viscosity_at_reference
+        assert at_25.low < 1.150 < at_25.high
+    ratio = report["tuesday"].viscosity / report["monday"].viscosity
+    relative = [s.result.viscosity.u / s.result.viscosity.value for s in report]
+    assert ratio.std_dev / ratio.n < math.hypot(*relative)
+
+
+def test_invalid_set_has_no_viscosity():
+    result = reduced("wash_oil_invalid")["drops"].result
+    assert (result.status, result.viscosity) == ("invalid", None)
+    assert result.findings[0].code == "reynolds-high"
