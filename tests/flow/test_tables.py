@@ -115,6 +115,20 @@ def test_unknown_table_is_refused_with_the_known_ones(capsys):
     assert "wall_factor" in capsys.readouterr().err
 
 
+@pytest.mark.parametrize(
+    ("options", "remedy"),
+    [(["--directory", "nowhere"], "make it"), (["--check", "--directory", "."], "without --check")],
+)
+def test_missing_directory_or_table_is_said_with_a_remedy(
+    options, remedy, tmp_path, monkeypatch, capsys
+):
+    monkeypatch.chdir(tmp_path)
+    with pytest.raises(SystemExit) as stop:
+        main(["--only", "wall_factor", *options])
+    assert stop.value.code == 2
+    assert remedy in capsys.readouterr().err
+
+
 @pytest.mark.slow
 @pytest.mark.parametrize("name", SOLVED_HERE)
 def test_shipped_table_passes_its_check(name):

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import os
 import sys
 from collections.abc import Sequence
 from pathlib import Path
@@ -105,8 +106,18 @@ def main(arguments: Sequence[str] | None = None) -> int:
     if unknown := [name for name in names if name not in known]:
         parser.error(f"no table named {', '.join(unknown)}; known are {', '.join(known)}")
     chosen = [known[name] for name in names]
+    directory: Path = options.directory
+    if not directory.is_dir():
+        parser.error(f"{directory} is not a directory; make it, or leave --directory out")
+    if options.check:
+        if missing := [name for name in names if not (directory / f"{name}.json").is_file()]:
+            parser.error(
+                f"{directory} holds no table {', '.join(missing)}; make it without --check"
+            )
+    elif not os.access(directory, os.W_OK):
+        parser.error(f"{directory} cannot be written to; name another with --directory")
     work = _check if options.check else _build
-    return work(chosen, options.directory, console)
+    return work(chosen, directory, console)
 
 
 if __name__ == "__main__":
