@@ -37,6 +37,7 @@ TABLE_MODULES = (
     "plumbfall.flow.creeping_tube",
     "plumbfall.flow.off_axis",
     "plumbfall.flow.end_excess",
+    "plumbfall.flow.drag_map_table",
 )
 
 
