@@ -198,3 +198,8 @@ def test_importing_loads_no_unit_library():
     code = "import sys, plumbfall.quantities; print('pint' in sys.modules)"
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
     assert done.stdout.strip() == "False"
+
+
+def test_a_power_of_zero_is_no_unit():
+    with pytest.raises(InputError, match="'l0' cannot be read"):
+        exact_unit("l0", "time")

@@ -290,6 +290,8 @@ def _factors(text: str) -> tuple[tuple[str, int], ...]:
             if under and not (bracket or expects):
                 raise ValueError(f"the unit '{text.strip()}' can be read in two ways")
             power = int(token["power"] or 1)
+            if power == 0:
+                raise ValueError(f"the unit '{text.strip()}' cannot be read")
             factors.append((_NAME_OF[symbol], -power if under else power))
             expects = False
         elif sign == "/" and not bracket and (not expects or place == 1):

@@ -9,7 +9,6 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Literal
 
 import numpy as np
 
@@ -18,16 +17,10 @@ from plumbfall.measurement.balance import Numbers
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Cells
 from plumbfall.physics.ends import end_factor_classical
-from plumbfall.physics.exact_ends import (
-    END_EXCESS_RATIO_LIMITS,
-    END_EXCESS_REACH,
-    end_excess_table,
-)
+from plumbfall.physics.exact_ends import END_EXCESS_REACH
+from plumbfall.physics.path import path_excess
 
 __all__ = ["Ends", "path_ends"]
-
-NODES, WEIGHTS = np.polynomial.legendre.leggauss(40)
-"""Quadrature over the reach of an end: the excess is smooth, and 40 nodes give 1e-12 of it."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,15 +40,6 @@ class Ends:
     by_bottom: Numbers
     length_share: Numbers
     unknown: np.ndarray
-
-
-@dataclass(frozen=True, slots=True)
-class _OneEnd:
-    mean: Numbers
-    by_ratio: Numbers
-    by_bore: Numbers
-    by_distance: Numbers
-    at_far_mark: Numbers
 
 
 def path_ends(
@@ -95,9 +79,9 @@ def path_ends(
     if not ((np.minimum(surface, bottom) < END_EXCESS_REACH * radius) & (ratio < 1)).any():
         return None
     lids = np.array([tube.surface == "lid" for tube in tubes])[cells.tube]
-    lower = _one_end(ratio, bottom, length, radius, "solid")
-    free = _one_end(ratio, np.where(lids, np.inf, surface), length, radius, "free")
-    lid = _one_end(ratio, np.where(lids, surface, np.inf), length, radius, "solid")
+    lower = path_excess(ratio, bottom, length, radius, "solid")
+    free = path_excess(ratio, np.where(lids, np.inf, surface), length, radius, "free")
+    lid = path_excess(ratio, np.where(lids, surface, np.inf), length, radius, "solid")
     mean = lower.mean + free.mean + lid.mean
     unknown = np.isnan(mean)
     factor = np.where(unknown, 1.0, 1 + mean)
@@ -141,41 +125,3 @@ def _classical(inputs: Inputs, cells: Cells, tubes: Sequence[Tube]) -> Ends:
 def _distance(inputs: Inputs, role: str) -> Numbers:
     column = inputs.roles[role]
     return np.where(column.entry >= 0, column.value, np.inf)
-
-
-def _one_end(
-    ratio: Numbers,
-    distance: Numbers,
-    length: Numbers,
-    radius: Numbers,
-    end: Literal["solid", "free"],
-) -> _OneEnd:
-    """Average one end's excess over a path that starts at a distance from it."""
-    start, whole = distance / radius, length / radius
-    near = np.minimum(start, END_EXCESS_REACH)
-    far = np.minimum(start + whole, END_EXCESS_REACH)
-    half = (far - near) / 2
-    places = near + half + NODES[:, None] * half
-    excess, _, of_ratio = _excess(ratio, places, end)
-    within = half > 0
-    share = np.where(within, half, 0.0) / whole
-    mean = share * (WEIGHTS @ np.where(within, excess, 0.0))
-    by_ratio = share * (WEIGHTS @ np.where(within, of_ratio, 0.0)) * ratio
-    at_near, _, _ = _excess(ratio, np.where(within, near, END_EXCESS_REACH), end)
-    at_far, _, _ = _excess(ratio, far, end)
-    by_distance = (at_far - at_near) / length
-    reach = np.where(within, start, 0.0)  # an end out of reach may be infinitely far
-    by_bore = mean - (at_far * (reach + whole) - at_near * reach) / whole
-    return _OneEnd(mean, by_ratio, by_bore, by_distance, at_far)
-
-
-def _excess(
-    ratio: Numbers, places: Numbers, end: Literal["solid", "free"]
-) -> tuple[Numbers, Numbers, Numbers]:
-    """Excess of the table; below its least ratio in proportion to the ratio, its limit."""
-    least = END_EXCESS_RATIO_LIMITS[0]
-    small = ratio < least
-    found = end_excess_table(np.where(small, least, ratio), places, end)
-    excess, of_place, of_ratio = (np.asarray(part) for part in found)
-    scale = np.where(small, ratio / least, 1.0)
-    return excess * scale, of_place * scale, np.where(small, excess / least, of_ratio)

@@ -180,18 +180,13 @@ def end_excess(*, diameter_ratio: Numeric, distance: Numeric, end: str = "bottom
         Ball diameter over tube bore, symbol lambda.
     distance : float or array, shape (..., drops) [1]
         Distance of the ball's centre from the end, in bore radii.
-    end : {"bottom", "surface"}
-        A solid end, or a free surface that stays level.
+    end : str
+        ``bottom``, a solid end, or ``surface``, a free surface that stays level.
 
     Returns
     -------
     float or array [1]
         Excess E, 0 out of an end's reach.
-
-    Valid range
-    -----------
-    Within 3 bore radii of the end: diameter ratio 0.01 to 0.8, a gap between ball and end of at
-    least 0.01 ball radii. Beyond: any ratio below 1. Reynolds number 0, ball on the axis.
 
     Raises
     ------
@@ -200,6 +195,11 @@ def end_excess(*, diameter_ratio: Numeric, distance: Numeric, end: str = "bottom
     PhysicsRangeError
         Beyond the range.
 
+    Valid range
+    -----------
+    Within 3 bore radii of the end: diameter ratio 0.01 to 0.8, a gap between ball and end of at
+    least 0.01 ball radii. Beyond: any ratio below 1. Reynolds number 0, ball on the axis.
+
     Notes
     -----
     Dies off within a bore radius or two, not over the height of the liquid: 0.1 % at one radius for
@@ -207,7 +207,7 @@ def end_excess(*, diameter_ratio: Numeric, distance: Numeric, end: str = "bottom
 
     References
     ----------
-    [Brenner1961], [Tanner1963]
+    [Plumbfall], [Brenner1961], [Tanner1963]
 
     Examples
     --------

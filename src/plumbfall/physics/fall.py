@@ -1,0 +1,229 @@
+"""The forward problem: how long a ball takes from mark to mark in a liquid of known viscosity."""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from plumbfall.errors import InputError, PhysicsRangeError
+from plumbfall.physics.drag import DragLaw
+from plumbfall.physics.path import path_excess
+from plumbfall.physics.run_in import run_in_guard_distance
+from plumbfall.physics.weight import effective_weight
+
+__all__ = ["fall_time", "terminal_speed"]
+
+TOLERANCE = 1e-14
+MOST_STEPS = 60
+
+
+def terminal_speed(
+    *,
+    viscosity: ArrayLike,
+    weight: ArrayLike,
+    ball_diameter: ArrayLike,
+    liquid_density: ArrayLike,
+    tube_bore: ArrayLike,
+) -> NDArray[np.float64]:
+    r"""Speed at which drag equals weight less buoyancy, far from the ends of a tube.
+
+    .. math:: 3\pi\eta d v\, K(\lambda, Re) = W
+
+    Parameters
+    ----------
+    viscosity : float or array, shape (..., drops) [Pa.s]
+        Dynamic viscosity of the liquid.
+    weight : float or array, shape (..., drops) [N]
+        Weight less buoyancy W.
+    ball_diameter : float or array, shape (..., drops) [m]
+        Diameter d.
+    liquid_density : float or array, shape (..., drops) [kg/m3]
+        Density of the liquid.
+    tube_bore : float or array, shape (..., drops) [m]
+        Bore of the tube.
+
+    Returns
+    -------
+    array [m/s]
+        Terminal speed.
+
+    Raises
+    ------
+    PhysicsRangeError
+        Where the ball does not sink, or its Reynolds number is beyond the drag law.
+
+    Valid range
+    -----------
+    That of the default drag law; a ball denser than the liquid.
+
+    Notes
+    -----
+    Newton's method in ln Re on ln K + ln Re = ln(Re of Stokes' law), which increases in Re.
+
+    References
+    ----------
+    [Stokes1851]
+
+    Examples
+    --------
+    >>> speed = terminal_speed(
+    ...     viscosity=1.0, weight=2.76e-4, ball_diameter=2e-3, liquid_density=970.0, tube_bore=0.05
+    ... )
+    >>> f"{1e3 * speed:.2f}"
+    '13.41'
+    """
+    eta, w, d, rho, bore = np.broadcast_arrays(
+        *(
+            np.asarray(value, dtype=float)
+            for value in (viscosity, weight, ball_diameter, liquid_density, tube_bore)
+        )
+    )
+    if not (w > 0).all():
+        raise PhysicsRangeError("a ball that is not denser than the liquid does not sink")
+    drag = DragLaw().at(d / bore)
+    creeping = np.log(w * rho / (3 * np.pi * eta**2))
+    top = float(np.log(drag.max_reynolds))
+    x = np.minimum(creeping - np.log(drag.wall), top)
+    for _ in range(MOST_STEPS):
+        log_factor, slope = drag.evaluate(x)
+        step = (creeping - log_factor - x) / (1 + slope)
+        if (x + step > top + 1e-9).any() and (x >= top).any():
+            raise PhysicsRangeError(
+                f"the ball would fall at a Reynolds number above {drag.max_reynolds:g}, the limit "
+                f"of the drag law '{drag.law.reynolds_law.name}'"
+            )
+        x = np.minimum(x + step, top)
+        if np.abs(step).max(initial=0.0) < TOLERANCE * np.maximum(1.0, np.abs(x)).max(initial=1.0):
+            break
+    speed: NDArray[np.float64] = np.exp(x) * eta / (rho * d)
+    return speed
+
+
+def fall_time(
+    *,
+    viscosity: ArrayLike,
+    ball_diameter: ArrayLike,
+    ball_density: ArrayLike,
+    liquid_density: ArrayLike,
+    tube_bore: ArrayLike,
+    marks: ArrayLike,
+    surface_above: ArrayLike = np.inf,
+    bottom_below: ArrayLike = np.inf,
+    release_above: ArrayLike = np.inf,
+    gravity: ArrayLike = 9.80665,
+    surface: str = "free",
+) -> NDArray[np.float64]:
+    r"""Time between successive marks of a ball falling on the axis of a vertical tube.
+
+    .. math:: t = \int \frac{dz}{v(z)} = \frac{L}{v}\,(1 + \bar E)
+
+    Parameters
+    ----------
+    viscosity : float or array, shape (drops,) [Pa.s]
+        Dynamic viscosity of the liquid.
+    ball_diameter : float or array, shape (drops,) [m]
+        Diameter of the ball.
+    ball_density : float or array, shape (drops,) [kg/m3]
+        Density of the ball.
+    liquid_density : float or array, shape (drops,) [kg/m3]
+        Density of the liquid.
+    tube_bore : float or array, shape (drops,) [m]
+        Bore of the tube.
+    marks : array, shape (marks,) [m]
+        Distances down from the first mark, at least two, increasing.
+    surface_above : float or array, shape (drops,) [m]
+        Liquid surface above the first mark; infinite where it is not felt.
+    bottom_below : float or array, shape (drops,) [m]
+        Bottom below the last mark; infinite where it is not felt.
+    release_above : float or array, shape (drops,) [m]
+        Ball let go from rest this far above the first mark; infinite where the run-in is over.
+    gravity : float or array, shape (drops,) [m/s2]
+        Acceleration of free fall.
+    surface : str
+        What the liquid ends with at the top: ``free`` or ``lid``.
+
+    Returns
+    -------
+    array, shape (..., marks - 1) [s]
+        Times between successive marks.
+
+    Raises
+    ------
+    InputError
+        If the marks do not increase or the surface is neither.
+    PhysicsRangeError
+        If the ball does not sink, or beyond the range.
+
+    Valid range
+    -----------
+    That of the default drag law and of the end excess.
+
+    Notes
+    -----
+    The ends are felt within a bore radius or two; what they add is averaged over the path.
+
+    References
+    ----------
+    [Stokes1851], [Tanner1963]
+
+    Examples
+    --------
+    >>> time = fall_time(
+    ...     viscosity=1.0, ball_diameter=2e-3, ball_density=7700.0, liquid_density=970.0,
+    ...     tube_bore=0.05, marks=[0.0, 0.1, 0.2], gravity=9.81
+    ... )
+    >>> [f"{t:.2f}" for t in time]
+    ['7.44', '7.44']
+    """
+    places = np.asarray(marks, dtype=float)
+    if places.ndim != 1 or len(places) < 2 or (np.diff(places) <= 0).any():
+        raise InputError("marks do not increase", remedy="give distances down from the first mark")
+    if surface not in ("free", "lid"):
+        raise InputError(f"there is no surface '{surface}'", remedy="known: free, lid")
+    per_drop = (
+        np.asarray(value, dtype=float)[..., None]
+        for value in (
+            viscosity, ball_diameter, ball_density, liquid_density, tube_bore, surface_above,
+            bottom_below, release_above, gravity,
+        )
+    )  # fmt: skip
+    eta, d, rho_b, rho, bore, above, below, release, g = per_drop
+    weight = effective_weight(ball_diameter=d, ball_density=rho_b, liquid_density=rho, gravity=g)
+    speed = terminal_speed(
+        viscosity=eta, weight=weight, ball_diameter=d, liquid_density=rho, tube_bore=bore
+    )
+    _check_run_in(release, speed, d, bore, rho, eta)
+    ratio, length, radius = d / bore, np.diff(places), bore / 2
+    from_surface = above + places[:-1] - places[0]
+    from_bottom = below + places[-1] - places[1:]
+    top = "free" if surface == "free" else "solid"
+    mean = path_excess(ratio, from_bottom, length, radius, "solid").mean
+    mean = mean + path_excess(ratio, from_surface, length, radius, top).mean  # type: ignore[arg-type]  # one of two
+    if np.isnan(mean).any():
+        raise PhysicsRangeError(
+            "a mark is so near an end of the liquid that the drag there is not known"
+        )
+    return np.asarray(length / speed * (1 + mean))
+
+
+def _check_run_in(
+    release: NDArray[np.float64],
+    speed: NDArray[np.float64],
+    diameter: NDArray[np.float64],
+    bore: NDArray[np.float64],
+    density: NDArray[np.float64],
+    viscosity: NDArray[np.float64],
+) -> None:
+    if np.isinf(release).all():
+        return
+    guard = run_in_guard_distance(
+        ball_diameter=diameter,
+        tube_bore=bore,
+        fall_speed=speed,
+        liquid_density=density,
+        viscosity=viscosity,
+    )
+    if (release < guard).any():
+        raise PhysicsRangeError(
+            "the ball is let go too near the first mark to have its terminal speed there"
+        )
