@@ -234,6 +234,7 @@ def _data(sets: SetColumns, limits: Limits) -> RunData:
         columns=sets.columns,
         weights=sets.weights,
         scatter=sets.scatter,
+        jacobian=sets.jacobian,
         law=sets.law,
         relative_u=relative_u,
         limits=limits,

@@ -17,6 +17,7 @@ from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.physics.drag import DragLaw
 from plumbfall.results import Finding
+from plumbfall.run_sets.jacobian import Jacobian
 from plumbfall.run_sets.repeatability import Repeatability
 from plumbfall.timings.records import Timings
 
@@ -41,6 +42,7 @@ class RunData:
     columns: DropColumns
     weights: Weights
     scatter: Repeatability
+    jacobian: Jacobian
     law: DragLaw
     relative_u: NDArray[np.float64]
     limits: Limits

@@ -4,8 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-import numpy as np
-
 from plumbfall.findings.data import Found, RunData
 from plumbfall.results import Finding
 
@@ -38,15 +36,15 @@ def missing_uncertainty(data: RunData) -> Iterator[Found]:
     """Find measured inputs that were given as if they were exact."""
     if not data.unstated:
         return
-    place = {estimate.name: i for i, estimate in enumerate(data.inputs.estimates)}
-    missing = {place[name] for name in data.unstated if name in place}
+    unstated = set(data.unstated)
+    missing = [
+        place for place, estimate in enumerate(data.inputs.estimates) if estimate.name in unstated
+    ]
+    # What moves no result is not asked for: an end out of reach, a ball within its set's scatter.
+    rows, columns = data.jacobian.matrix[:, missing].nonzero()
     by_set: dict[int, set[int]] = {}
-    for column in data.inputs.roles.values():
-        at = np.flatnonzero(np.isin(column.entry, list(missing)))
-        for run_set, entry in zip(
-            data.selection.cells.run_set[at].tolist(), column.entry[at].tolist(), strict=True
-        ):
-            by_set.setdefault(run_set, set()).add(entry)
+    for run_set, column in zip(rows.tolist(), columns.tolist(), strict=True):
+        by_set.setdefault(run_set, set()).add(missing[column])
     for run_set, entries in sorted(by_set.items()):
         keys = [data.inputs.estimates[i].name for i in sorted(entries)]
         shown = ", ".join(keys[:MOST_KEYS]) + (
