@@ -9,10 +9,11 @@ import numpy as np
 import pytest
 
 import plumbfall as pf
+from plumbfall.physics.drag import DragLaw
 from plumbfall.physics.exact import off_axis_coefficient
 from plumbfall.physics.laws import laws_of
 from plumbfall.uncertainty.coverage import coverage_factor
-from support.documents import number, table_headed
+from support.documents import TEXTS, number, table_headed
 
 
 def test_coverage_factors_of_few_values():
@@ -33,6 +34,11 @@ def test_wall_factors_and_off_axis_coefficients_are_those_of_the_code():
     for offset, coefficient in zip(offsets[1:], coefficients[1:], strict=True):
         computed, _ = off_axis_coefficient(float(offset))
         assert computed == pytest.approx(float(coefficient), abs=1.1e-5)
+
+
+def test_range_of_the_default_law_is_that_of_the_code():
+    ranges = re.findall(r"\(([\d.]+) with the defaults", TEXTS["physics.md"])
+    assert [float(value) for value in ranges] == [DragLaw().max_ratio, DragLaw().max_reynolds]
 
 
 @pytest.mark.parametrize(
