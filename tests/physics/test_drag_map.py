@@ -194,6 +194,20 @@ def test_stated_error_vanishes_with_the_inertia_and_stays_small():
     # what is asked of the law: 0.2 % to Reynolds number 10, 0.5 % to 100
     assert bound.max() < 2e-3
     assert (drag.relative_bound(-np.inf) == 0).all()
+    assert 0 < DragMap().at(0.0).relative_bound(1.0) < 2e-4
+
+
+def test_root_of_the_force_balance_is_found_by_newton():
+    # ln K - ln Re falls steadily, so that Newton's method from creeping flow must find its root
+    rng = np.random.default_rng(20)
+    ratio, x = rng.uniform(0, 0.8, 2000), rng.uniform(-12, np.log(99), 2000)
+    drag = DragMap().at(ratio)
+    demand = drag.evaluate(x)[0] - x
+    found = np.log(drag.wall) - demand
+    for _ in range(8):
+        log_factor, slope = drag.evaluate(found)
+        found = np.minimum(found + (log_factor - found - demand) / (1 - slope), np.log(100))
+    np.testing.assert_allclose(found, x, rtol=0, atol=1e-12)
 
 
 def test_table_says_what_made_it_and_how_good_it_is():

@@ -16,6 +16,7 @@ there is no tube. Beyond Re' = 100 the last bracket, 1e-5, is kept.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cache
 
 import numpy as np
 from numpy.typing import NDArray
@@ -39,7 +40,7 @@ _LOW, _HIGH = RATIO_LIMITS
 _LOG_TOP = float(np.log(HIGHEST_REYNOLDS))
 _ROUNDING = 1e-12  # ln 100 asked for is within the range however it was rounded
 _FARTHEST = 700.0  # in place of the infinite ln(0.01 / ratio) where there is no tube
-_BOUND = 5e-5  # twice the solver's error at its worst node; the interpolation's is smaller
+_BOUND = 5e-5  # the worst node's change between degrees; solver one degree up: within 1.5e-5
 _WIDE_BOUND = 1.5e-4  # measured against the solver between ratios 0.001 and 0.01: 1.2e-4
 _WHERE = "the computed drag table"
 
@@ -86,13 +87,16 @@ class DragMap:
         check_range(diameter_ratio, low=0.0, high=_HIGH, variable="diameter ratio", where=_WHERE)
         ratio = np.asarray(diameter_ratio, dtype=np.float64)
         wall, wall_slope = creeping_wall_factor(ratio)
+        wide = ratio < _LOW
         return BoundDragMap(
             law=self,
             ratio=ratio,
             wall=wall,
             wall_slope=wall_slope,
             excess=bind_excess(np.maximum(ratio, _LOW)),
-            wide=ratio < _LOW,
+            log_base=np.log(np.where(wide, _edge_wall(), wall)),
+            wide=wide,
+            farther=_farther(ratio),
         )
 
 
@@ -101,7 +105,9 @@ class BoundDragMap:
     """Drag factor K of given balls as a function of ln Re, with its derivatives.
 
     ``wall`` is K0 and ``wall_slope`` its local power d ln K0 / d ln(ratio). Beyond the largest
-    Reynolds number everything is NaN. Minus infinity stands for Reynolds number 0.
+    Reynolds number everything is NaN. Minus infinity stands for Reynolds number 0. In a tube
+    ``wide`` of the table, the table is read at its edge and at a Reynolds number ``farther`` up in
+    ln Re, where the wall's factor has the logarithm ``log_base``.
     """
 
     law: DragMap
@@ -109,7 +115,9 @@ class BoundDragMap:
     wall: Numeric
     wall_slope: Numeric
     excess: BoundExcess
+    log_base: Array
     wide: NDArray[np.bool_]
+    farther: Array
 
     @property
     def max_reynolds(self) -> float:
@@ -134,17 +142,24 @@ class BoundDragMap:
     def evaluate(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
         """Return ln K and its slope d ln K / d ln Re."""
         x = self._within(log_reynolds)
+        log_factor, slope = self.excess(self._read_at(x))
+        log_factor += self.log_base
         if self.wide.any():
-            log_factor, _, slope = self._with_wide(x, ratio_slope=False)
-        else:
-            log_factor, slope = self.excess(x)
-            log_factor += np.log(self.wall)
+            self._widen(x, log_factor, slope, None)
         return _plain(log_factor), _plain(slope)
 
     def slopes(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
         """Return the local powers d ln K / d ln(ratio) and d ln K / d ln Re."""
-        _, by_ratio, by_reynolds = self._with_wide(self._within(log_reynolds), ratio_slope=True)
-        return _plain(by_ratio), _plain(by_reynolds)
+        x = self._within(log_reynolds)
+        read_at = self._read_at(x)
+        log_factor, slope = self.excess(read_at)
+        log_factor += self.log_base
+        by_ratio = np.asarray(
+            self.excess.by_ratio(read_at) / (1.0 - self.ratio) + self.wall_slope, dtype=np.float64
+        )
+        if self.wide.any():
+            self._widen(x, log_factor, slope, by_ratio)
+        return _plain(by_ratio), _plain(slope)
 
     def factor(self, reynolds: Numeric) -> Numeric:
         """Return K at a Reynolds number, 0 included."""
@@ -165,8 +180,7 @@ class BoundDragMap:
         the exact wall factor needs none. In tubes wider than the table's it is of the first order
         in Re, as the screening there is an approximation.
         """
-        x = self._within(log_reynolds) + _farther(self.ratio)
-        share = self.excess.inertia_share(x)
+        share = self.excess.inertia_share(self._read_at(self._within(log_reynolds)))
         return _plain(np.where(self.wide, _WIDE_BOUND * np.sqrt(share), _BOUND * share))
 
     def _within(self, log_reynolds: Numeric) -> Array:
@@ -176,32 +190,32 @@ class BoundDragMap:
             return x
         return np.where(x > _LOG_TOP + _ROUNDING, np.nan, np.minimum(x, _LOG_TOP))
 
-    def _with_wide(self, x: Array, *, ratio_slope: bool) -> tuple[Array, Array, Array]:
-        """Return ln K and its local powers in the ratio and in Re, wide tubes included."""
-        farther = _farther(self.ratio)
-        screened = np.where(self.wide, np.minimum(x + farther, _LOG_TOP), x)
-        log_factor, slope = self.excess(screened)
-        by_ratio = np.zeros_like(log_factor)
-        if ratio_slope:
-            by_ratio = self.excess.by_ratio(screened) / (1.0 - self.ratio) + self.wall_slope
-        log_factor += np.log(np.where(self.wide, _edge_wall(), self.wall))
-        if not self.wide.any():
-            return log_factor, by_ratio, slope
+    def _read_at(self, x: Array) -> Array:
+        return np.minimum(x + self.farther, _LOG_TOP) if self.wide.any() else x
+
+    def _widen(self, x: Array, log_factor: Array, slope: Array, by_ratio: Array | None) -> None:
+        """Turn the table's values at its edge into those of the wide tubes, in place."""
+        shape = log_factor.shape
+        wide = np.broadcast_to(self.wide, shape)
+
+        def of_wide(values: Numeric) -> Array:
+            return np.broadcast_to(values, shape)[wide]
+
+        x, farther = of_wide(x), of_wide(self.farther)
+        wall, wall_slope = of_wide(self.wall), of_wide(self.wall_slope)
         unbounded, unbounded_slope = unbounded_excess(x)
-        inner, inner_slope = unbounded_excess(screened)
-        edge, inner, free = np.exp(-log_factor), np.exp(-inner), np.exp(-unbounded)
+        inner, inner_slope = unbounded_excess(np.minimum(x + farther, _LOG_TOP))
+        edge, inner, free = np.exp(-log_factor[wide]), np.exp(-inner), np.exp(-unbounded)
         edge_walls = 1.0 - 1.0 / _edge_wall()
-        share = (1.0 - 1.0 / np.asarray(self.wall)) / edge_walls
-        share_slope = self.wall_slope / (self.wall * edge_walls)
+        share = (1.0 - 1.0 / wall) / edge_walls
         total = free + share * (edge - inner)
         held = x + farther > _LOG_TOP + _ROUNDING
-        change = share * np.where(held, 0.0, inner * inner_slope - edge * slope)
-        wide = np.broadcast_to(self.wide, log_factor.shape)
-        return (
-            np.where(wide, -np.log(np.where(wide, total, 1.0)), log_factor),
-            np.where(wide, (change - share_slope * (edge - inner)) / total, by_ratio),
-            np.where(wide, (free * unbounded_slope - change) / total, slope),
-        )
+        change = share * np.where(held, 0.0, inner * inner_slope - edge * slope[wide])
+        log_factor[wide] = -np.log(total)
+        slope[wide] = (free * unbounded_slope - change) / total
+        if by_ratio is not None:
+            share_slope = wall_slope / (wall * edge_walls)
+            by_ratio[wide] = (change - share_slope * (edge - inner)) / total
 
 
 def tube_drag_table(*, diameter_ratio: Numeric, reynolds: Numeric) -> Numeric:
@@ -258,6 +272,7 @@ def _farther(ratio: Array) -> Array:
     return farther
 
 
+@cache
 def _edge_wall() -> float:
     return float(creeping_wall_factor(_LOW)[0])
 
