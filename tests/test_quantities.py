@@ -203,3 +203,14 @@ def test_importing_loads_no_unit_library():
 def test_a_power_of_zero_is_no_unit():
     with pytest.raises(InputError, match="'l0' cannot be read"):
         exact_unit("l0", "time")
+
+
+@pytest.mark.parametrize("text", ["% mm", "ppm mm", "mm.%", "%.kg/m3"])
+def test_a_share_of_a_unit_is_no_unit(text):
+    with pytest.raises(InputError, match="mixes a share with a unit"):
+        exact_unit(text, "length")
+
+
+def test_a_share_per_kelvin_is_a_unit():
+    assert exact_unit("%/K", "temperature coefficient").factor == Fraction(1, 100)
+    assert exact_unit("ppm/degC", "temperature coefficient").factor == Fraction(1, 10**6)

@@ -166,6 +166,11 @@ _SPELLING_OF = {name: spelling for spelling, name in reversed(_NAME_OF.items())}
 _ZERO = {"celsius": Fraction("273.15"), "fahrenheit": Fraction("459.67") * Fraction(5, 9)}
 
 
+_SHARES = ("percent", "ppm")
+_PER_SHARE = ("kelvin", "celsius", "fahrenheit")
+"""A share stands alone or per kelvin; "0.1 % mm" is no length."""
+
+
 @dataclass(frozen=True, slots=True)
 class ExactUnit:
     """SI value = number x ``factor`` + ``offset``; a difference takes the factor only."""
@@ -308,6 +313,10 @@ def _factors(text: str) -> tuple[tuple[str, int], ...]:
             raise ValueError(f"the unit '{text.strip()}' cannot be read")
     if expects or bracket:
         raise ValueError(f"the unit '{text.strip()}' cannot be read")
+    if any(name in _SHARES for name, _ in factors) and any(
+        name not in (*_SHARES, *_PER_SHARE) for name, _ in factors
+    ):
+        raise ValueError(f"the unit '{text.strip()}' mixes a share with a unit")
     return tuple(factors)
 
 

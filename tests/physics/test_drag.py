@@ -11,7 +11,8 @@ from plumbfall.physics import DragLaw
 from plumbfall.physics.laws import laws_of
 from plumbfall.physics.slopes import SCREENED_ERROR
 
-EVERY = list(itertools.product(*(laws_of(kind) for kind in ("together", "walls", "inertia"))))
+RULES = [name for name in laws_of("together") if name != "table"]  # that has tests of its own
+EVERY = list(itertools.product(RULES, laws_of("walls"), laws_of("inertia")))
 STEP = 1e-5
 
 
@@ -56,27 +57,27 @@ def test_slope_by_reynolds_number_as_printed(reynolds, printed):
     [(0.05, ".117"), (0.1, ".258"), (0.2, ".626"), (0.3, "1.133"), (0.5, "2.79")],
 )
 def test_slope_by_diameter_ratio_as_printed(ratio, printed):
-    by_ratio, _ = DragLaw().at(ratio).slopes(-np.inf)
+    by_ratio, _ = DragLaw("screened").at(ratio).slopes(-np.inf)
     assert by_ratio == pytest.approx(float(printed), abs=half_digit(printed))
 
 
 def test_all_is_finite_where_walls_and_inertia_vanish():
-    drag = DragLaw().at(np.array([0.0, 1e-12, 0.1]))
+    drag = DragLaw("screened").at(np.array([0.0, 1e-12, 0.1]))
     for x in (-np.inf, -700.0, -300.0, 0.0):
         for values in (*drag.evaluate(x), *drag.slopes(x), drag.relative_bound(x)):
             assert np.all(np.isfinite(values))
-    log_factor, slope = DragLaw().at(0.0).evaluate(-np.inf)
+    log_factor, slope = DragLaw("screened").at(0.0).evaluate(-np.inf)
     assert (log_factor, slope) == (0.0, 0.0)
 
 
 def test_the_unbounded_ball_has_the_slope_of_its_inertia():
     x = np.log([0.1, 1.0, 10.0])
-    screened = DragLaw().at(0.0).evaluate(x)
+    screened = DragLaw("screened").at(0.0).evaluate(x)
     additive = DragLaw(together="additive").at(0.0).evaluate(x)
     assert screened == pytest.approx(np.array(additive), rel=1e-14)
 
 
-@pytest.mark.parametrize("rule", laws_of("together"))
+@pytest.mark.parametrize("rule", RULES)
 @pytest.mark.parametrize(("ratio", "reynolds", "factor"), IN_TUBE_POINTS)
 def test_the_bound_covers_navier_stokes(rule, ratio, reynolds, factor):
     law = DragLaw(together=rule)
@@ -115,7 +116,7 @@ def test_the_bound_covers_the_error_of_the_inertia(name, reynolds):
 
 
 def test_the_bound_of_the_screened_rule_vanishes_at_rest():
-    drag = DragLaw().at(np.array([0.05, 0.1, 0.3]))
+    drag = DragLaw("screened").at(np.array([0.05, 0.1, 0.3]))
     assert np.all(drag.relative_bound(-np.inf) == 0.0)
     x = np.log(np.geomspace(1e-4, 10.0, 60))[:, np.newaxis]
     bound = drag.relative_bound(x)
@@ -126,7 +127,7 @@ def test_the_bound_of_the_screened_rule_vanishes_at_rest():
 
 
 def test_limits_and_the_laws_that_set_them():
-    screened = DragLaw()
+    screened = DragLaw("screened")
     assert (screened.max_reynolds, screened.reynolds_law.name) == (10.0, "screened")
     assert (screened.max_ratio, screened.ratio_law.name) == (0.8, "screened")
     other = DragLaw(together="product", walls="faxen", inertia="oseen")
@@ -137,13 +138,13 @@ def test_limits_and_the_laws_that_set_them():
 
 def test_binding_beyond_the_ratio_is_refused():
     with pytest.raises(PhysicsRangeError, match=r"diameter ratio 0\.85 is beyond 0\.8"):
-        DragLaw().at(np.array([0.1, 0.85]))
+        DragLaw("screened").at(np.array([0.1, 0.85]))
     with pytest.raises(PhysicsRangeError, match=r"diameter ratio 0\.3 is beyond 0\.2"):
         DragLaw(walls="ladenburg").at(0.3)
 
 
 def test_a_reynolds_number_beyond_the_law_is_refused():
-    drag = DragLaw().at(0.1)
+    drag = DragLaw("screened").at(0.1)
     drag.check(10.0)
     with pytest.raises(PhysicsRangeError, match=r"Reynolds number 10\.5 is beyond 10"):
         drag.check(np.array([1.0, 10.5]))
@@ -171,10 +172,10 @@ def test_description_and_source_name_the_laws():
 
 
 def test_shapes_follow_balls_and_reynolds_numbers():
-    assert np.ndim(DragLaw().at(0.1).evaluate(0.0)[0]) == 0
-    assert DragLaw().at(0.1).evaluate(np.zeros(4))[0].shape == (4,)
-    assert DragLaw().at(np.full(4, 0.1)).slopes(0.0)[0].shape == (4,)
-    assert DragLaw().at(np.full((2, 1), 0.1)).evaluate(np.zeros(3))[1].shape == (2, 3)
+    assert np.ndim(DragLaw("screened").at(0.1).evaluate(0.0)[0]) == 0
+    assert DragLaw("screened").at(0.1).evaluate(np.zeros(4))[0].shape == (4,)
+    assert DragLaw("screened").at(np.full(4, 0.1)).slopes(0.0)[0].shape == (4,)
+    assert DragLaw("screened").at(np.full((2, 1), 0.1)).evaluate(np.zeros(3))[1].shape == (2, 3)
 
 
 @pytest.mark.parametrize("names", EVERY, ids="-".join)
@@ -188,3 +189,21 @@ def test_the_argument_is_left_as_it_was(names):
     assert np.array_equal(x, before)
     assert np.array_equal(drag.wall_excess, walls)
     assert np.array_equal(first, again)
+
+
+def test_the_default_is_the_computed_table():
+    law = DragLaw()
+    assert (law.together, law.max_reynolds, law.max_ratio) == ("table", 100.0, 0.8)
+    assert law.at(0.1).factor(1.0) == pytest.approx(1.2895, abs=1e-4)  # formula book, section 3b
+    assert "table" in law.description
+
+
+def test_the_table_takes_no_other_law_beside_it():
+    with pytest.raises(InputError, match="'table' has walls and inertia in it") as caught:
+        DragLaw(together="table", walls="faxen")
+    assert "such as 'screened'" in caught.value.remedy
+
+
+def test_a_law_named_alone_is_joined_by_the_screened_rule():
+    assert DragLaw(walls="bohlin").together == "screened"
+    assert DragLaw(inertia="oseen").together == "screened"

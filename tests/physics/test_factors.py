@@ -35,14 +35,10 @@ def test_an_inertia_law_at_below_and_above_its_limit(name):
 
 
 def test_the_default_law_at_its_limits():
-    assert tube_drag_factor(diameter_ratio=0.8, reynolds=10.0) > 74.0
-    with pytest.raises(
-        PhysicsRangeError, match=r"Reynolds number 12\.3 is beyond 10, .*'screened'"
-    ):
-        tube_drag_factor(diameter_ratio=0.1, reynolds=12.3)
-    with pytest.raises(
-        PhysicsRangeError, match=r"diameter ratio 0\.81 is beyond 0\.8, .*'screened'"
-    ):
+    assert tube_drag_factor(diameter_ratio=0.8, reynolds=100.0) > 74.0
+    with pytest.raises(PhysicsRangeError, match=r"Reynolds number 123 is beyond 100, .* table"):
+        tube_drag_factor(diameter_ratio=0.1, reynolds=123.0)
+    with pytest.raises(PhysicsRangeError, match=r"diameter ratio 0\.81 is beyond 0\.8, .* table"):
         tube_drag_factor(diameter_ratio=0.81, reynolds=1.0)
 
 
@@ -89,11 +85,12 @@ def test_the_drag_factor_grows_with_ratio_and_reynolds_number(ratio, reynolds):
     assert tube_drag_factor(diameter_ratio=ratio * 1.01, reynolds=reynolds) > here
     assert tube_drag_factor(diameter_ratio=ratio, reynolds=reynolds * 1.01) >= here
     assert here >= wall_factor(diameter_ratio=ratio)
-    assert here >= inertia_factor(reynolds=reynolds)
+    assert here >= inertia_factor(reynolds=reynolds) * (1 - 1e-3)  # the fit's stated error
 
 
 def test_a_wide_tube_leaves_the_unbounded_factor():
     reynolds = np.linspace(0.0, 10.0, 21)
     assert tube_drag_factor(diameter_ratio=0.0, reynolds=reynolds) == pytest.approx(
-        inertia_factor(reynolds=reynolds), rel=1e-14
+        inertia_factor(reynolds=reynolds),
+        rel=1e-3,  # the fit's stated error
     )

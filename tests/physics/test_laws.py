@@ -42,7 +42,7 @@ def test_an_unknown_kind_names_the_nearest():
 
 
 def test_an_unknown_law_lists_what_there_is():
-    with pytest.raises(InputError, match="known: screened, additive, product") as caught:
+    with pytest.raises(InputError, match="known: table, screened, additive, product") as caught:
         law("together", "zzz")
     assert caught.value.key == "methods.together"
 

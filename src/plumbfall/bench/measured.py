@@ -62,9 +62,7 @@ def unstated_uncertainties(bench: Bench) -> tuple[str, ...]:
     listed = dict.fromkeys(
         found.name
         for found, instrument in _measured(bench)
-        if found.text
-        and found.distribution == "exact"
-        and (instrument is None or instrument.exact)
+        if found.text and found.distribution == "exact" and (instrument is None or instrument.exact)
     )
     return tuple(listed)
 

@@ -25,6 +25,7 @@ REFERENCE_LAWS = ("water",)
 WALLS = ("exact", "ladenburg", "faxen", "francis", "haberman-sayre", "bohlin")
 """Laws of the wall factor at Reynolds number 0."""
 INERTIA = (
+    "compact",
     "stokes",
     "oseen",
     "schiller-naumann",

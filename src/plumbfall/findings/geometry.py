@@ -14,6 +14,8 @@ from plumbfall.results import Finding
 
 __all__ = ["end_near", "geometry_unknown", "off_axis_suspected", "run_in_short"]
 
+GUARD_REYNOLDS = 30.0
+
 GEOMETRY = {
     "surface_above": "the end effect of the surface",
     "bottom_below": "the end effect of the bottom",
@@ -72,7 +74,9 @@ def run_in_short(data: RunData) -> Iterator[Found]:
     selection, columns = data.selection, data.columns
     tube = selection.cells.tube[selection.cell]
     released = _of_tubes(data, "release_above")[tube]
-    at = np.flatnonzero(np.isfinite(columns.viscosity) & np.isfinite(released))
+    # The rule of thumb is known to Reynolds number 30; a ball faster than that is not judged.
+    known = np.isfinite(columns.viscosity) & (columns.reynolds <= GUARD_REYNOLDS)
+    at = np.flatnonzero(known & np.isfinite(released))
     needed = np.zeros(len(tube))
     needed[at] = run_in_guard_distance(
         fall_speed=columns.fall_speed[at],

@@ -14,6 +14,7 @@ from plumbfall.measurement.balance import Codes, Numbers, balance, spread
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.inverse import invert
+from plumbfall.measurement.law import LEFT_OUT
 from plumbfall.measurement.off_axis import off_axis
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import DropSlopes, Sums, add_block, empty_sums
@@ -198,7 +199,7 @@ def _compute_block(
             ratio_slope = ratio_slope + beside.by_ratio
             out.off_axis[block] = np.exp(beside.log_factor)
         to_set = np.exp(spread(inputs.roles["slope"].value, cell) * offset[block])
-        bound = drag.relative_bound(found.log_reynolds)
+        bound = drag.relative_bound(found.log_reynolds) + LEFT_OUT
         stokes = forces.weight * end_factor / (3 * np.pi * forces.diameter * forces.speed)
         out.viscosity[block] = found.viscosity
         out.at_set[block] = found.viscosity * to_set

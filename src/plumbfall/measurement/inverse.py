@@ -13,7 +13,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.measurement.balance import Balance, Numbers
-from plumbfall.physics.drag import BoundDrag
+from plumbfall.physics.drag import Bound
 
 __all__ = ["MINIMUM_DRAG_COEFFICIENT", "Inverse", "invert"]
 
@@ -46,14 +46,14 @@ class Inverse:
     no_root: NDArray[np.bool_]
 
 
-def invert(forces: Balance, drag: BoundDrag, log_extra: Numbers | float = 0.0) -> Inverse:
+def invert(forces: Balance, drag: Bound, log_extra: Numbers | float = 0.0) -> Inverse:
     """Solve the force balance for the viscosity of every drop.
 
     Parameters
     ----------
     forces : Balance
         Weight, speed and geometry, arrays of shape (drops,).
-    drag : BoundDrag
+    drag : Bound
         A drag law at the drops' diameter ratios.
     log_extra : array, shape (drops,)
         Logarithm of a further factor of the drag that does not depend on the Reynolds number.
@@ -92,7 +92,7 @@ def invert(forces: Balance, drag: BoundDrag, log_extra: Numbers | float = 0.0) -
 
 
 def _newton(
-    drag: BoundDrag, log_demand: Numbers, top: float, shape: tuple[int, ...]
+    drag: Bound, log_demand: Numbers, top: float, shape: tuple[int, ...]
 ) -> tuple[Numbers, NDArray[np.bool_]]:
     """Return the root, kept below the law's limit, and whether it lies beyond that limit."""
     x = np.minimum(np.broadcast_to(np.log(drag.wall) - log_demand, shape), top)

@@ -11,7 +11,15 @@ from plumbfall.measurement.inputs import MODEL_INPUT
 from plumbfall.physics.drag import DragLaw
 from plumbfall.physics.laws import laws_of
 
-__all__ = ["drag_law", "model_estimate"]
+__all__ = ["LEFT_OUT", "drag_law", "model_estimate"]
+
+LEFT_OUT = 5e-4
+"""What every drag law leaves out, as a half-width relative to the drag.
+
+A declared allowance for tubes not quite round and straight, balls that turn or drift, liquid not
+quite at rest (common practice, no source). It is part of ``methods.model_uncertainty``, which the
+bench sheet may set.
+"""
 
 PARTS = ("together", "walls", "inertia")
 
@@ -20,7 +28,8 @@ def drag_law(bench: Bench) -> DragLaw:
     """Return the drag law of ``[methods]``.
 
     ``drag`` is one or several names of laws, such as ``"product faxen schiller-naumann"``: each
-    word takes its part (the rule, the walls, the inertia), and what is not named is the default.
+    word takes its part (the rule, the walls, the inertia). Nothing named is the computed table;
+    walls or inertia named without a rule are joined by the screened one.
 
     Raises
     ------

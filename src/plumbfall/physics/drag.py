@@ -3,39 +3,78 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
-from typing import Any
+from typing import Any, Protocol
 
 import numpy as np
 from numpy.typing import NDArray
 
+from plumbfall.errors import InputError
+from plumbfall.physics.drag_map import DragMap
 from plumbfall.physics.laws import DEFAULTS, Law, law
 from plumbfall.physics.numeric import Numeric
 
-__all__ = ["BoundDrag", "DragLaw"]
+__all__ = ["Bound", "BoundDrag", "DragLaw"]
+
+TABLE, JOINING = "table", "screened"
+"""The computed law, and the rule that joins others where none is named."""
 
 Array = NDArray[np.float64]
+
+
+class Bound(Protocol):
+    """A drag law bound to balls in tubes: K as a function of ln Re, with its derivatives."""
+
+    @property
+    def wall(self) -> Numeric:
+        """K at Reynolds number 0."""
+
+    @property
+    def max_reynolds(self) -> float:
+        """Largest Reynolds number."""
+
+    @property
+    def max_ratio(self) -> float:
+        """Largest ball diameter over tube bore."""
+
+    def evaluate(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
+        """Return ln K and its slope d ln K / d ln Re."""
+
+    def slopes(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
+        """Return the local powers d ln K / d ln(ratio) and d ln K / d ln Re."""
+
+    def factor(self, reynolds: Numeric) -> Numeric:
+        """Return K at a Reynolds number, 0 included."""
+
+    def check(self, reynolds: Numeric) -> None:
+        """Raise :class:`PhysicsRangeError` unless every Reynolds number is within range."""
+
+    def relative_bound(self, log_reynolds: Numeric) -> Numeric:
+        """Return the half-width of the law's own error relative to K."""
 
 
 @dataclass(frozen=True, slots=True)
 class DragLaw:
     """A choice of laws for walls and inertia and of the rule that joins them.
 
+    The computed table has walls and inertia in it. Where a law of the one or the other is named
+    and no rule, the screened rule joins them.
+
     Raises
     ------
     InputError
-        If a law is not known.
+        If a law is not known, or the table is named together with other laws.
 
     Examples
     --------
     >>> drag = DragLaw()
     >>> drag.max_reynolds, drag.max_ratio
-    (10.0, 0.8)
+    (100.0, 0.8)
     >>> log_factor, slope = drag.at(0.1).evaluate(np.log(1.0))
-    >>> f"{np.exp(log_factor):.3f} {slope:.3f}"
-    '1.298 0.042'
+    >>> f"{np.exp(log_factor):.4f} {slope:.3f}"
+    '1.2895 0.047'
     """
 
-    together: str = DEFAULTS["together"]
+    together: str = ""
     walls: str = DEFAULTS["walls"]
     inertia: str = DEFAULTS["inertia"]
     together_law: Law = field(init=False, repr=False)
@@ -43,6 +82,16 @@ class DragLaw:
     inertia_law: Law = field(init=False, repr=False)
 
     def __post_init__(self) -> None:
+        single = (self.walls, self.inertia) == (DEFAULTS["walls"], DEFAULTS["inertia"])
+        if not self.together:
+            object.__setattr__(self, "together", TABLE if single else JOINING)
+        if self.together == TABLE and not single:
+            raise InputError(
+                f"the drag law '{TABLE}' has walls and inertia in it",
+                key="methods.drag",
+                remedy=f"name a rule to join '{self.walls}' and '{self.inertia}', such as "
+                f"'{JOINING}', or '{TABLE}' alone",
+            )
         object.__setattr__(self, "together_law", law("together", self.together))
         object.__setattr__(self, "wall_law", law("walls", self.walls))
         object.__setattr__(self, "inertia_law", law("inertia", self.inertia))
@@ -71,15 +120,19 @@ class DragLaw:
     @property
     def description(self) -> str:
         """The choice in one line, for a report."""
+        if self.together == TABLE:
+            return DragMap().description
         return f"{self.together} rule, walls {self.walls}, inertia {self.inertia}"
 
     @property
     def source(self) -> str:
         """Where the rule and the two laws are from, for a report."""
         laws = (self.together_law, self.wall_law, self.inertia_law)
+        if self.together == TABLE:
+            return self.together_law.citation
         return "; ".join(dict.fromkeys(one.citation for one in laws))
 
-    def at(self, diameter_ratio: Numeric) -> BoundDrag:
+    def at(self, diameter_ratio: Numeric) -> Bound:
         """Bind the law to balls in tubes, shape (..., drops), computing the walls once.
 
         Raises
@@ -87,6 +140,8 @@ class DragLaw:
         PhysicsRangeError
             If a ratio is outside the range of the walls or of the rule.
         """
+        if self.together == TABLE:
+            return DragMap().at(diameter_ratio)
         self.wall_law.check(diameter_ratio)
         self.together_law.check_ratio(diameter_ratio)
         wall, wall_slope = _kernel(self.wall_law)(diameter_ratio)

@@ -80,7 +80,8 @@ def terminal_speed(
     )
     if not (w > 0).all():
         raise PhysicsRangeError("a ball that is not denser than the liquid does not sink")
-    drag = DragLaw().at(d / bore)
+    law = DragLaw()
+    drag = law.at(d / bore)
     creeping = np.log(w * rho / (3 * np.pi * eta**2))
     top = float(np.log(drag.max_reynolds))
     x = np.minimum(creeping - np.log(drag.wall), top)
@@ -90,7 +91,7 @@ def terminal_speed(
         if (x + step > top + 1e-9).any() and (x >= top).any():
             raise PhysicsRangeError(
                 f"the ball would fall at a Reynolds number above {drag.max_reynolds:g}, the limit "
-                f"of the drag law '{drag.law.reynolds_law.name}'"
+                f"of the drag law '{law.together}'"
             )
         x = np.minimum(x + step, top)
         if np.abs(step).max(initial=0.0) < TOLERANCE * np.maximum(1.0, np.abs(x)).max(initial=1.0):

@@ -14,6 +14,8 @@ from typing import Any
 
 from plumbfall.errors import InputError, nearest_name
 from plumbfall.physics import ends, inertia, slopes, together, wall
+from plumbfall.physics.drag_map import tube_drag_table
+from plumbfall.physics.drag_surface import HIGHEST_REYNOLDS, RATIO_LIMITS
 from plumbfall.physics.numeric import Numeric
 from plumbfall.physics.ranges import check_range
 
@@ -23,7 +25,7 @@ KINDS = ("walls", "inertia", "together", "ends")
 """Kinds of law, in the order in which they enter the drag."""
 
 DEFAULTS: Mapping[str, str] = MappingProxyType(
-    {"walls": "exact", "inertia": "compact", "together": "screened", "ends": "table"}
+    {"walls": "exact", "inertia": "compact", "together": "table", "ends": "table"}
 )
 """The law of each kind that is used where none is chosen."""
 
@@ -222,6 +224,18 @@ _ALL = (
         "Brown and Lawler 2003, J. Environ. Eng. 129, 222",
     ),
     _inertia("abraham", 5000.0, "8.3 % to 100", "Abraham1970", _ABRAHAM),
+    Law(
+        name="table",
+        kind="together",
+        function=tube_drag_table,
+        variable=REYNOLDS,
+        low=0.0,
+        high=HIGHEST_REYNOLDS,
+        ratio_high=RATIO_LIMITS[1],
+        error="0.005 % (0.015 % below ratio 0.01); walls and inertia are both in it",
+        source_key="Plumbfall",
+        citation=_OWN,
+    ),
     _together("screened", 10.0, "0.74 % to 5, 1.7 % to 10", "Plumbfall", _OWN),
     _together(
         "additive",
