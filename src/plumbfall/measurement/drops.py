@@ -18,11 +18,14 @@ from plumbfall.measurement.law import LEFT_OUT
 from plumbfall.measurement.off_axis import off_axis
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import DropSlopes, Sums, add_block, empty_sums
-from plumbfall.physics.drag import DragLaw
+from plumbfall.physics.drag import Bound, DragLaw
 
 __all__ = ["DropColumns", "Weights", "compute_drops", "value_weights"]
 
 BLOCK = 16_384
+
+LARGEST_SHIFT = 1e-5
+"""Largest logarithm of a drop's diameter ratio over its cell's that is taken to first order."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -138,9 +141,16 @@ def compute_drops(
 
     out = _empty_columns(n, temperature, set_temperature)
     sums = empty_sums(len(selection.cells))
+    in_cells = set_temperature[selection.cells.run_set]
+    every = np.arange(len(in_cells))
+    with np.errstate(invalid="ignore"):
+        cell_ratio = balance(inputs, every, np.ones(len(every)), in_cells).diameter_ratio
+    cell_ratio = np.broadcast_to(cell_ratio, in_cells.shape)
     for start in range(0, n, BLOCK):
         block = slice(start, min(start + BLOCK, n))
-        _compute_block(block, selection, inputs, law, ends, offset, weights.weight, out, sums)
+        _compute_block(
+            block, selection, inputs, law, ends, cell_ratio, offset, weights.weight, out, sums
+        )
     return out, sums
 
 
@@ -174,12 +184,34 @@ def _empty_columns(n: int, temperature: Numbers, set_temperature: Numbers) -> Dr
     )
 
 
+def _bind(
+    law: DragLaw, ratio: Numbers, cell: Codes, cell_ratio: Numbers
+) -> tuple[Bound, Numbers | float]:
+    """Bind the drag law, to cells where their drops' ratios lie together, else to every drop.
+
+    Drops of a cell differ by thermal expansion alone. The law is then bound to the cell's ratio
+    and the inverse takes the rest to first order; what that leaves out is the square of the shift
+    times about 2 (d2 lnK/dln(ratio)2 / 2 at ratio 0.5), so below 2e-10 at the largest one allowed.
+    """
+    inside = np.minimum(ratio, law.max_ratio)  # beyond it the inverse flags the drop
+    first, last = int(cell.min()), int(cell.max())
+    if len(ratio) == 1 or 2 * (last - first) > len(cell):
+        return law.at(inside), 0.0
+    bound_to = np.minimum(cell_ratio[first : last + 1], law.max_ratio)
+    index = cell - first
+    shift = np.log(inside / bound_to[index])
+    if not np.abs(shift).max() <= LARGEST_SHIFT:
+        return law.at(inside), 0.0
+    return law.at(bound_to).take(index), shift
+
+
 def _compute_block(
     block: slice,
     selection: Selection,
     inputs: Inputs,
     law: DragLaw,
     ends: Ends | None,
+    cell_ratio: Numbers,
     offset: Numbers,
     weight: Numbers,
     out: DropColumns,
@@ -190,11 +222,10 @@ def _compute_block(
     with np.errstate(invalid="ignore", divide="ignore"):
         end_factor = 1.0 if ends is None else spread(ends.factor, cell)
         forces = balance(inputs, cell, clock, out.temperature[block], end_factor)
-        # A ratio beyond the law's is flagged by the inverse; here it must only not stop the rest.
-        drag = law.at(np.minimum(forces.diameter_ratio, law.max_ratio))
+        drag, shift = _bind(law, forces.diameter_ratio, cell, cell_ratio)
         beside = off_axis(inputs, cell, forces)
-        found = invert(forces, drag, beside.log_factor if beside is not None else 0.0)
-        ratio_slope, reynolds_slope = drag.slopes(found.log_reynolds)
+        found = invert(forces, drag, beside.log_factor if beside is not None else 0.0, shift)
+        ratio_slope = found.ratio_slope
         if beside is not None:
             ratio_slope = ratio_slope + beside.by_ratio
             out.off_axis[block] = np.exp(beside.log_factor)
@@ -208,7 +239,7 @@ def _compute_block(
         out.fall_speed[block] = forces.speed
         out.diameter[block] = forces.diameter
         out.diameter_ratio[block] = forces.diameter_ratio
-        out.wall[block] = drag.wall
+        out.wall[block] = drag.wall * np.exp(drag.wall_slope * shift)
         out.end[block] = end_factor
         out.drag_factor[block] = stokes / found.viscosity
         out.shear_stress[block] = forces.weight / (np.pi * forces.diameter**2)
@@ -223,9 +254,7 @@ def _compute_block(
             cell,
             clock,
             forces,
-            DropSlopes(
-                np.asarray(ratio_slope), np.asarray(reynolds_slope), np.asarray(bound), beside, ends
-            ),
+            DropSlopes(ratio_slope, found.reynolds_slope, np.asarray(bound), beside, ends),
             weight[block] * out.at_set[block],
             offset[block],
             ~np.isnan(selection.temperature[block]),

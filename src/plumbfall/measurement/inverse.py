@@ -32,6 +32,7 @@ MOST_STEPS = 60
 class Inverse:
     """What the balance gives, each of shape (drops,); NaN viscosity where there is none.
 
+    ``ratio_slope`` and ``reynolds_slope`` are the local powers of K at the solution.
     ``floating``, ``too_fast``, ``too_wide`` and ``no_root`` say why: the ball is not denser than
     the liquid; its Reynolds number is beyond the law's; its diameter ratio is; no viscosity at
     all makes it fall so fast (or the corrected time is not positive).
@@ -40,13 +41,20 @@ class Inverse:
     viscosity: Numbers
     reynolds: Numbers
     log_reynolds: Numbers
+    ratio_slope: Numbers
+    reynolds_slope: Numbers
     floating: NDArray[np.bool_]
     too_fast: NDArray[np.bool_]
     too_wide: NDArray[np.bool_]
     no_root: NDArray[np.bool_]
 
 
-def invert(forces: Balance, drag: Bound, log_extra: Numbers | float = 0.0) -> Inverse:
+def invert(
+    forces: Balance,
+    drag: Bound,
+    log_extra: Numbers | float = 0.0,
+    shift: Numbers | float = 0.0,
+) -> Inverse:
     """Solve the force balance for the viscosity of every drop.
 
     Parameters
@@ -57,6 +65,9 @@ def invert(forces: Balance, drag: Bound, log_extra: Numbers | float = 0.0) -> In
         A drag law at the drops' diameter ratios.
     log_extra : array, shape (drops,)
         Logarithm of a further factor of the drag that does not depend on the Reynolds number.
+    shift : array, shape (drops,)
+        Logarithm of each drop's diameter ratio over the one its law is bound to, so small that
+        the first order is exact enough.
 
     Returns
     -------
@@ -78,12 +89,16 @@ def invert(forces: Balance, drag: Bound, log_extra: Numbers | float = 0.0) -> In
     bad = floating | late | too_wide | beyond
     if bad.any():
         x = np.where(bad, np.nan, x)
+    ratio_slope, reynolds_slope = (np.asarray(slope) for slope in drag.slopes(x))
+    x = x + ratio_slope * shift / (1 - reynolds_slope)
     reynolds = np.exp(x)
     no_root = late | (beyond & (log_demand < np.log(MINIMUM_DRAG_COEFFICIENT / 24)))
     return Inverse(
         viscosity=forces.liquid_density * forces.speed * forces.diameter / reynolds,
         reynolds=reynolds,
         log_reynolds=x,
+        ratio_slope=ratio_slope,
+        reynolds_slope=reynolds_slope,
         floating=floating,
         too_fast=beyond & ~no_root & ~floating & ~too_wide,
         too_wide=too_wide,

@@ -29,6 +29,13 @@ class Bound(Protocol):
         """K at Reynolds number 0."""
 
     @property
+    def wall_slope(self) -> Numeric:
+        """Local power d ln K / d ln(ratio) at Reynolds number 0."""
+
+    def take(self, index: NDArray[np.intp]) -> Bound:
+        """Return the law of some of the balls, shape (balls,), in an order of their own."""
+
+    @property
     def max_reynolds(self) -> float:
         """Largest Reynolds number."""
 
@@ -167,6 +174,14 @@ class BoundDrag:
     wall: Numeric
     wall_slope: Numeric
     wall_excess: Numeric
+
+    def take(self, index: NDArray[np.intp]) -> BoundDrag:
+        """Return the law of some of the balls, shape (balls,), in an order of their own."""
+        of_balls = (np.asarray(part)[index] for part in self._parts())
+        return BoundDrag(self.law, *of_balls)
+
+    def _parts(self) -> tuple[Numeric, ...]:
+        return (self.ratio, self.wall, self.wall_slope, self.wall_excess)
 
     @property
     def max_reynolds(self) -> float:

@@ -119,6 +119,19 @@ class BoundDragMap:
     wide: NDArray[np.bool_]
     farther: Array
 
+    def take(self, index: NDArray[np.intp]) -> BoundDragMap:
+        """Return the law of some of the balls, shape (balls,), in an order of their own."""
+        return BoundDragMap(
+            law=self.law,
+            ratio=self.ratio[index],
+            wall=np.asarray(self.wall)[index],
+            wall_slope=np.asarray(self.wall_slope)[index],
+            excess=self.excess.take(index),
+            log_base=self.log_base[index],
+            wide=self.wide[index],
+            farther=self.farther[index],
+        )
+
     @property
     def max_reynolds(self) -> float:
         """Largest Reynolds number."""

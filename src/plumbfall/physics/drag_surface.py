@@ -49,13 +49,30 @@ class BoundExcess:
     """ln(K / K0) of given balls in tubes as a function of ln Re.
 
     ``powers`` are the coefficients of H over the powers of its second argument, lowest first,
-    shape (powers, ...); ``log_scale`` is ln Re_s and ``span`` x at the largest Reynolds number.
+    shape (powers, ...), ``turned`` their derivatives by t, ``None`` until they are asked for;
+    ``log_scale`` is ln Re_s and ``span`` x at the largest Reynolds number.
     """
 
     position: Array
     powers: Array
     log_scale: Array
     span: Array
+    turned: Array | None = None
+
+    def take(self, index: NDArray[np.intp]) -> BoundExcess:
+        """Return the excess of some of the balls, shape (balls,), in an order of their own."""
+        return BoundExcess(
+            position=self.position[index],
+            powers=self.powers.take(index, axis=1),
+            log_scale=self.log_scale[index],
+            span=self.span[index],
+            turned=self._turned().take(index, axis=1),
+        )
+
+    def _turned(self) -> Array:
+        if self.turned is not None:
+            return self.turned
+        return _surface().powers_at(self.position, derivative=True)
 
     def __call__(self, log_reynolds: Array) -> tuple[Array, Array]:
         """Excess and its slope by ln Re."""
@@ -73,7 +90,7 @@ class BoundExcess:
         x, share = self._variable(log_reynolds)
         argument = x * (2.0 / self.span) - 1.0
         height, slope = _horner(self.powers, argument)
-        turned, _ = _horner(_surface().powers_at(self.position, derivative=True), argument)
+        turned = _horner_value(self._turned(), argument)
         _, end_share = _log_root(_LOG_HIGHEST - self.log_scale)
         slope *= 2.0 * x / self.span
         by_scale: Array = (height + slope) * share
@@ -172,6 +189,17 @@ def _log_root(log_ratio: Numeric) -> tuple[Array, Array]:
     """Return ln(1 + r^2) / 2 of ln r, and its slope r^2 / (1 + r^2)."""
     square = np.exp(2.0 * np.asarray(log_ratio))
     return 0.5 * np.log1p(square), square / (1.0 + square)
+
+
+def _horner_value(powers: Array, argument: Array) -> Array:
+    """Value of polynomials with their coefficients on the first axis, lowest first."""
+    value = np.broadcast_to(
+        powers[-1], np.broadcast_shapes(powers.shape[1:], np.shape(argument))
+    ).copy()
+    for coefficient in powers[-2::-1]:
+        value *= argument
+        value += coefficient
+    return value
 
 
 def _horner(powers: Array, argument: Array) -> tuple[Array, Array]:
