@@ -13,7 +13,7 @@ from plumbfall.physics.drag_map import DragMap
 from plumbfall.physics.laws import DEFAULTS, Law, law
 from plumbfall.physics.numeric import Numeric
 
-__all__ = ["Bound", "BoundDrag", "DragLaw"]
+__all__ = ["TABLE", "Bound", "BoundDrag", "DragLaw"]
 
 TABLE, JOINING = "table", "screened"
 """The computed law, and the rule that joins others where none is named."""

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import Literal
+
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
@@ -197,9 +199,10 @@ def fall_time(
     ratio, length, radius = d / bore, np.diff(places), bore / 2
     from_surface = above + places[:-1] - places[0]
     from_bottom = below + places[-1] - places[1:]
-    top = "free" if surface == "free" else "solid"
-    mean = path_excess(ratio, from_bottom, length, radius, "solid").mean
-    mean = mean + path_excess(ratio, from_surface, length, radius, top).mean  # type: ignore[arg-type]  # one of two
+    at_top: Literal["free", "solid"] = "free" if surface == "free" else "solid"
+    lower = path_excess(ratio, from_bottom, length, radius, "solid")
+    upper = path_excess(ratio, from_surface, length, radius, at_top)
+    mean = lower.mean + upper.mean
     if np.isnan(mean).any():
         raise PhysicsRangeError(
             "a mark is so near an end of the liquid that the drag there is not known"

@@ -14,7 +14,7 @@ from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import Sums
-from plumbfall.physics.drag import DragLaw
+from plumbfall.physics.drag import TABLE, DragLaw
 from plumbfall.physics.laws import DEFAULTS, law
 from plumbfall.physics.stokes import shear_rate
 from plumbfall.results import (
@@ -216,8 +216,8 @@ def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correcti
         Correction(
             "inertia",
             total / (wall * off_axis * float(drops.end[used].mean())),
-            f"{law.inertia_law.name}, joined by the {law.together_law.name} rule",
-            "; ".join(dict.fromkeys((law.inertia_law.citation, law.together_law.citation))),
+            _inertia_method(law),
+            law.source,
         ),
         *((beside,) if off_axis != 1 else ()),
         _ends(all_sets, float(drops.end[used].mean())),
@@ -228,6 +228,12 @@ def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correcti
             "guard distance, see the documentation",
         ),
     )
+
+
+def _inertia_method(law: DragLaw) -> str:
+    if law.together == TABLE:
+        return "table of walls and inertia together, over the walls alone"
+    return f"{law.inertia_law.name}, joined by the {law.together_law.name} rule"
 
 
 def _ends(all_sets: SetColumns, factor: float) -> Correction:
