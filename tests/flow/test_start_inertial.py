@@ -45,8 +45,8 @@ def test_error_falls_with_the_length_of_the_steps():
 def test_steel_ball_agrees_with_an_independent_computation():
     # formula book, section 5: full Navier-Stokes start by another finite-element program; steel
     # of 3 mm, viscosity 0.1 Pa.s, ratio 0.075, Reynolds number 6.8: bias in % of a 50 mm timing
-    # that starts so many mm below the release, and mm to 99 % and 99.9 % of the speed. Densities are
-    # not printed: steel of 7800 kg/m3 in a liquid of 1200 kg/m3, aqueous glycerol, is assumed.
+    # that starts so many mm below the release, and mm to 99 % and 99.9 % of the speed. Densities
+    # are not printed: steel of 7800 kg/m3 in a liquid of 1200 kg/m3, aqueous glycerol, is assumed.
     printed = {3.5: 3.63, 5.0: 2.65, 10.0: 1.04, 20.0: 0.20, 30.0: 0.04}
     reynolds, radius = 6.8, 1.5
     history = InertialStart(diameter_ratio=0.075, reynolds=reynolds, degree=3).run(

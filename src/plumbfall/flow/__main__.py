@@ -39,6 +39,9 @@ def _parser() -> argparse.ArgumentParser:
         metavar="NAME",
         help="this table only; may be given several times",
     )
+    parser.add_argument(
+        "--quick", action="store_true", help="leave out the tables that --list calls slow"
+    )
     parser.add_argument("--list", action="store_true", help="name the tables and stop")
     parser.add_argument(
         "--directory",
@@ -100,9 +103,11 @@ def main(arguments: Sequence[str] | None = None) -> int:
     known = {builder.name: builder for builder in builders()}
     if options.list:
         for builder in known.values():
-            console.print(f"{builder.name}: {builder.title}")
+            console.print(f"{builder.name}: {builder.title}{' (slow)' if builder.slow else ''}")
         return 0
-    names = options.only or list(known)
+    names = options.only or [
+        name for name, builder in known.items() if not (options.quick and builder.slow)
+    ]
     if unknown := [name for name in names if name not in known]:
         parser.error(f"no table named {', '.join(unknown)}; known are {', '.join(known)}")
     chosen = [known[name] for name in names]

@@ -38,6 +38,7 @@ TABLE_MODULES = (
     "plumbfall.flow.off_axis",
     "plumbfall.flow.end_excess",
     "plumbfall.flow.drag_map_table",
+    "plumbfall.flow.start_table",
 )
 
 
@@ -81,7 +82,8 @@ class TableBuilder:
     """How a table is made and checked.
 
     ``build`` is handed a function to call after each of ``steps`` steps, for the progress bar;
-    ``check`` recomputes a sample of the nodes of a table that was read.
+    ``check`` recomputes a sample of the nodes of a table that was read. A ``slow`` table may
+    be left out.
     """
 
     name: str
@@ -89,6 +91,7 @@ class TableBuilder:
     steps: int
     build: Callable[[Callable[[], None]], Table]
     check: Callable[[Table], Iterable[NodeCheck]]
+    slow: bool = False
 
 
 def builders() -> list[TableBuilder]:

@@ -35,6 +35,7 @@ _NAMES_OF = {
         "run_in_distance",
         "run_in_guard_distance",
     ),
+    "start_up": ("run_in_delay",),
     "stokes": (
         "drag_coefficient",
         "reynolds_number",
