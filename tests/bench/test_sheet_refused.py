@@ -144,8 +144,8 @@ SCHEMA = [
         {"methods": {"drag": "screend"}},
         "methods.drag: 'screend' is no drag law; did you mean 'screened'? known are together: "
         "table, screened, additive, product; walls: exact, ladenburg, faxen, francis, "
-        "haberman-sayre, bohlin; inertia: stokes, oseen, schiller-naumann, clift-grace-weber, "
-        "brown-lawler, abraham",
+        "haberman-sayre, bohlin; inertia: compact, stokes, oseen, schiller-naumann, "
+        "clift-grace-weber, brown-lawler, abraham",
     ),
     (
         {"methods": {"drag": "faxen bohlin"}},
