@@ -183,8 +183,9 @@ def run_in_delay(
     Notes
     -----
     T and G are polynomials through the table of ``plumbfall.flow.start_table``. The bias of a
-    timing over a ball diameter or more is known to 10 %, or to 1e-4 of the transit where that is
-    more: the largest seen against 40 starts computed at random between the nodes are 8 % and 8e-5.
+    timing over a ball diameter or more is known to 15 %, or to 1.5e-4 of the transit where that is
+    more: the largest seen against 56 starts computed between the nodes are 12 % and 1e-4, at ratios
+    near 0.04 and Reynolds numbers of 0.7 to 2; elsewhere 8 % and 7e-5.
     In wide tubes the vortex left behind takes another 7e-5 of the speed for longer; left out.
 
     References
