@@ -22,6 +22,7 @@ from plumbfall.measurement.drops import compute_drops, value_weights
 from plumbfall.measurement.ends import path_ends
 from plumbfall.measurement.gather import gather
 from plumbfall.measurement.law import drag_law, model_estimate
+from plumbfall.measurement.run_in import releases
 from plumbfall.measurement.selection import check_temperatures, select
 from plumbfall.physics.laws import DEFAULTS
 from plumbfall.results import Finding, RunSetResult
@@ -196,13 +197,15 @@ def reduce_numbers(timings: Timings, bench: Bench, coverage: float = 0.95) -> Se
     readings = corrected_temperature(inputs, selection.cell, selection.temperature)
     check_temperatures(selection, readings, timings)
     weights = value_weights(selection, inputs)
+    tubes = list(bench.tubes.values())
     ends = path_ends(
         inputs,
         selection.cells,
-        list(bench.tubes.values()),
+        tubes,
         bench.methods.ends or DEFAULTS["ends"],
     )
-    columns, sums = compute_drops(selection, inputs, weights, law, readings, ends)
+    released = None if bench.methods.run_in == "none" else releases(inputs, selection.cells, tubes)
+    columns, sums = compute_drops(selection, inputs, weights, law, readings, ends, released)
     own = own_variances(selection, inputs, sums)
     scatter = repeatability(selection, columns, weights, np.sqrt(own.resolution), bench.scatter)
     jacobian = build_jacobian(selection, inputs, sums, own, scatter)

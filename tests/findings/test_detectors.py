@@ -146,7 +146,7 @@ def test_a_short_run_in_is_found():
     bench = {"tube__A__release_above": "3(1) mm", "liquid__oil__density": "870(1) kg/m3"}
     found, _ = findings(table=table, **bench)
     assert found["run-in-short"].severity == "warning"
-    assert "let go 3 mm above the first mark" in found["run-in-short"].message
+    assert "let go only 3 mm above the first mark" in found["run-in-short"].message
     assert found["run-in-short"].drops == (1, 2)
 
 

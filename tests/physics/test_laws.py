@@ -10,8 +10,9 @@ from plumbfall.physics.laws import DEFAULTS, KINDS
 CHOICES = {
     "walls": "exact ladenburg faxen francis haberman-sayre bohlin",
     "inertia": "stokes oseen schiller-naumann clift-grace-weber brown-lawler abraham",
-    "together": "screened additive product",
-    "ends": "none classical",
+    "together": "table screened additive product",
+    "ends": "table none classical",
+    "run-in": "table",
 }
 
 

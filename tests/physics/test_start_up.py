@@ -7,7 +7,7 @@ from hypothesis import strategies as st
 
 from plumbfall.flow.start_creeping import CreepingStart
 from plumbfall.flow.start_inertial import InertialStart
-from plumbfall.physics import run_in_delay, tube_drag_factor
+from plumbfall.physics import run_in_delay, run_in_delay_slope, tube_drag_factor
 from plumbfall.physics.start_up import (
     RUN_IN_DENSITY_RATIO_LIMITS,
     RUN_IN_HIGHEST_REYNOLDS,
@@ -193,3 +193,19 @@ def test_table_says_what_made_it():
     about = shipped_table("start_up").about
     assert "start_inertial" in str(about["solver"])
     assert float(str(about["estimated_relative_error_of_bias"])) <= 0.2
+
+
+@pytest.mark.parametrize("depth", [1e-4, 3e-3, 10e-3, 40e-3, 0.3])
+def test_slope_is_that_of_the_delay(depth):
+    start = {
+        "ball_diameter": 3e-3,
+        "tube_bore": 40e-3,
+        "fall_speed": 0.1889,
+        "liquid_density": 1200.0,
+        "viscosity": 0.1,
+        "ball_density": 7800.0,
+    }
+    step = 1e-5 * depth
+    up, down = (run_in_delay(depth=depth + sign * step, **start) for sign in (1, -1))
+    slope = run_in_delay_slope(depth=depth, **start)
+    assert slope == pytest.approx((up - down) / (2 * step), rel=1e-6, abs=1e-12)

@@ -24,7 +24,7 @@ SECTIONS = (
     "Examples",
 )
 OPTIONAL = {"Raises"}
-DERIVED_UNITS = {"m3", "N", "m/s2/rad", "1/s2"}
+DERIVED_UNITS = {"m3", "N", "s/m", "m/s2/rad", "1/s2"}
 REFERENCES = Path(__file__).parents[2] / "docs" / "references.md"
 # machinery of the inverse and look-ups of tables, not formulas: the equation stands in the module
 SUPPORT = {

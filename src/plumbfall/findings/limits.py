@@ -31,6 +31,8 @@ class Limits:
         Largest half-width of the drag law itself before the Reynolds number is warned of.
     end_clearance
         Least distance of a mark from an end of the liquid, in bore radii (Tanner 1963).
+    run_in
+        Largest part of the time lost in the run-in before it is warned of.
     ball_density_low, ball_density_high
         Plausible ball densities in kg/m3: polymers to tungsten carbide.
     liquid_density_low, liquid_density_high
@@ -51,6 +53,7 @@ class Limits:
     temperature_spread: float = 1.0
     model_bound: float = 0.01
     end_clearance: float = 1.0
+    run_in: float = 2e-3
     ball_density_low: float = 900.0
     ball_density_high: float = 20000.0
     liquid_density_low: float = 600.0

@@ -14,7 +14,7 @@ from rich.progress import BarColumn, Progress, TextColumn, TimeElapsedColumn, Ti
 # Before numpy is imported: the solvers' small dense systems are far quicker on one thread.
 os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
 
-from plumbfall.flow.tables import (  # noqa: E402  # the setting above must come first
+from plumbfall.flow.tables import (
     TableBuilder,
     builders,
     read_table,

@@ -31,8 +31,8 @@ class Balance:
 
     ``ball_offset``, ``tube_offset`` and ``liquid_offset`` are temperatures less the one at
     which the ball, the tube and the liquid's density were measured, 0 where unknown.
-    ``speed`` is that far from the ends of the tube. ``cold_diameter`` and ``cold_volume`` are
-    those at the measuring temperature, gauge corrected.
+    ``speed`` is that far from ends and release, and ``time`` what it would take. ``cold_diameter``
+    and ``cold_volume`` are those at the measuring temperature, gauge corrected.
     """
 
     temperature: Numbers
@@ -73,6 +73,7 @@ def balance(
     time: Numbers,
     temperature: Numbers,
     end_factor: Numbers | float = 1.0,
+    run_in: Numbers | float = 0.0,
 ) -> Balance:
     """Compute the force balance of a block of drops.
 
@@ -88,6 +89,8 @@ def balance(
         The drops' corrected temperatures; NaN where unknown.
     end_factor : array, shape (drops,) [1]
         Mean over the path of the drag over its value far from the tube's ends.
+    run_in : array, shape (drops,) [s]
+        Time lost between the marks because the ball started from rest.
 
     Returns
     -------
@@ -125,7 +128,7 @@ def balance(
         )
     )
 
-    true_time = time * (1 + take("rate")) - take("bias")
+    true_time = time * (1 + take("rate")) - take("bias") - run_in
     net_mass = mass - density * volume
     weight = net_mass * (take("gravity") * np.cos(take("tilt")))
     return Balance(

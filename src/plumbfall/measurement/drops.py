@@ -10,12 +10,13 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.measurement.balance import Codes, Numbers, balance, spread
+from plumbfall.measurement.balance import Balance, Codes, Numbers, balance, spread
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.inverse import invert
 from plumbfall.measurement.law import LEFT_OUT
 from plumbfall.measurement.off_axis import off_axis
+from plumbfall.measurement.run_in import Release, RunIn, run_in
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import DropSlopes, Sums, add_block, empty_sums
 from plumbfall.physics.drag import Bound, DragLaw
@@ -23,6 +24,9 @@ from plumbfall.physics.drag import Bound, DragLaw
 __all__ = ["DropColumns", "Weights", "compute_drops", "value_weights"]
 
 BLOCK = 16_384
+
+MOST_STARTS, TOLERANCE = 30, 1e-12
+"""Repetitions of the run-in, and the relative change of the time that ends them."""
 
 LARGEST_SHIFT = 1e-5
 """Largest logarithm of a drop's diameter ratio over its cell's that is taken to first order."""
@@ -64,6 +68,7 @@ class DropColumns:
     wall: Numbers
     off_axis: Numbers
     end: Numbers
+    run_in: Numbers
     drag_factor: Numbers
     shear_stress: Numbers
     model_bound: Numbers
@@ -71,6 +76,7 @@ class DropColumns:
     too_fast: NDArray[np.bool_]
     too_wide: NDArray[np.bool_]
     no_root: NDArray[np.bool_]
+    start_unknown: NDArray[np.bool_]
     set_temperature: Numbers
 
 
@@ -105,6 +111,7 @@ def compute_drops(
     law: DragLaw,
     temperature: Numbers,
     ends: Ends | None = None,
+    released: Release | None = None,
 ) -> tuple[DropColumns, Sums]:
     """Invert the force balance of every drop and sum its sensitivities.
 
@@ -122,6 +129,8 @@ def compute_drops(
         The drops' corrected temperatures, NaN where unknown.
     ends : Ends, optional
         What the tubes' ends add to the drag on each cell's path.
+    released : Release, optional
+        Depths of the marks below the release; without it no run-in is taken off.
 
     Returns
     -------
@@ -149,7 +158,17 @@ def compute_drops(
     for start in range(0, n, BLOCK):
         block = slice(start, min(start + BLOCK, n))
         _compute_block(
-            block, selection, inputs, law, ends, cell_ratio, offset, weights.weight, out, sums
+            block,
+            selection,
+            inputs,
+            law,
+            ends,
+            released,
+            cell_ratio,
+            offset,
+            weights.weight,
+            out,
+            sums,
         )
     return out, sums
 
@@ -173,6 +192,7 @@ def _empty_columns(n: int, temperature: Numbers, set_temperature: Numbers) -> Dr
         wall=numbers(),
         off_axis=np.ones(n),
         end=np.ones(n),
+        run_in=np.ones(n),
         drag_factor=numbers(),
         shear_stress=numbers(),
         model_bound=numbers(),
@@ -180,8 +200,15 @@ def _empty_columns(n: int, temperature: Numbers, set_temperature: Numbers) -> Dr
         too_fast=flags(),
         too_wide=flags(),
         no_root=flags(),
+        start_unknown=np.zeros(n, dtype=bool),
         set_temperature=set_temperature,
     )
+
+
+def _settled(before: RunIn | None, now: RunIn, forces: Balance) -> bool:
+    """Whether the run-in's bias no longer changes; where none of it is felt it never did."""
+    last = 0.0 if before is None else before.bias
+    return not np.nanmax(np.abs(now.bias - last) / forces.time, initial=0.0) > TOLERANCE
 
 
 def _bind(
@@ -211,6 +238,7 @@ def _compute_block(
     inputs: Inputs,
     law: DragLaw,
     ends: Ends | None,
+    released: Release | None,
     cell_ratio: Numbers,
     offset: Numbers,
     weight: Numbers,
@@ -224,7 +252,16 @@ def _compute_block(
         forces = balance(inputs, cell, clock, out.temperature[block], end_factor)
         drag, shift = _bind(law, forces.diameter_ratio, cell, cell_ratio)
         beside = off_axis(inputs, cell, forces)
-        found = invert(forces, drag, beside.log_factor if beside is not None else 0.0, shift)
+        log_beside = beside.log_factor if beside is not None else 0.0
+        found = invert(forces, drag, log_beside, shift)
+        start = None
+        for _ in range(MOST_STARTS if released is not None else 0):
+            assert released is not None  # as the range is not empty
+            before, start = start, run_in(released, cell, forces, found)
+            if start is None or _settled(before, start, forces):
+                break
+            forces = balance(inputs, cell, clock, out.temperature[block], end_factor, start.bias)
+            found = invert(forces, drag, log_beside, shift)
         ratio_slope = found.ratio_slope
         if beside is not None:
             ratio_slope = ratio_slope + beside.by_ratio
@@ -232,6 +269,13 @@ def _compute_block(
         to_set = np.exp(spread(inputs.roles["slope"].value, cell) * offset[block])
         bound = drag.relative_bound(found.log_reynolds) + LEFT_OUT
         stokes = forces.weight * end_factor / (3 * np.pi * forces.diameter * forces.speed)
+        if start is not None:
+            longer = 1 + start.bias / forces.time
+            stokes = stokes * longer
+            out.run_in[block] = longer
+            out.start_unknown[block] = start.unknown
+            # an error of the time is one of the drag, (1 + s) times as large
+            bound = bound + (1 + found.reynolds_slope) * start.error
         out.viscosity[block] = found.viscosity
         out.at_set[block] = found.viscosity * to_set
         out.stokes[block] = stokes * to_set
@@ -254,7 +298,7 @@ def _compute_block(
             cell,
             clock,
             forces,
-            DropSlopes(ratio_slope, found.reynolds_slope, np.asarray(bound), beside, ends),
+            DropSlopes(ratio_slope, found.reynolds_slope, np.asarray(bound), beside, ends, start),
             weight[block] * out.at_set[block],
             offset[block],
             ~np.isnan(selection.temperature[block]),

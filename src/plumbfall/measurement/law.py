@@ -71,7 +71,6 @@ def model_estimate(bench: Bench) -> Estimate:
 def _check_choices(bench: Bench) -> None:
     """Refuse what the bench sheet may name but this version cannot do; never pass it over."""
     unable = {
-        "run_in": (bench.methods.run_in, "no run-in correction", "release the ball higher"),
         "slope": (bench.methods.slope, "no fit of the slope", "give the liquid's viscosity_slope"),
     }
     problems = [

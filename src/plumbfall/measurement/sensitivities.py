@@ -21,6 +21,7 @@ from plumbfall.measurement.balance import Balance, Codes, Numbers, spread
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.off_axis import OffAxis
+from plumbfall.measurement.run_in import RunIn
 from plumbfall.physics.weight import AIR_DENSITY, WEIGHTS_DENSITY
 
 __all__ = ["DropSlopes", "Sums", "add_block", "empty_sums"]
@@ -32,7 +33,8 @@ class DropSlopes:
 
     ``ratio_slope`` is w, ``reynolds_slope`` s, ``model_bound`` the law's own relative half-width.
     ``beside`` is what being off the axis adds, ``None`` where no offset is given; ``ends`` what
-    the tube's ends add to each cell's path, ``None`` where they are out of reach.
+    the tube's ends add to each cell's path, ``None`` where they are out of reach; ``start`` what
+    the run-in takes, a given number but for the height of the release.
     """
 
     ratio_slope: Numbers
@@ -40,6 +42,7 @@ class DropSlopes:
     model_bound: Numbers
     beside: OffAxis | None = None
     ends: Ends | None = None
+    start: RunIn | None = None
 
 
 @dataclass(slots=True)
@@ -64,7 +67,7 @@ FIRST = (
     "gravity", "latitude", "elevation", "tilt", "bore", "tube_expansion", "from_mark", "to_mark",
     "diameter", "gauge", "ball_density", "mass", "balance", "ball_expansion", "liquid_density",
     "liquid_expansion", "slope", "bias", "rate", "thermometer", "temperature", "release_offset",
-    "surface_above", "bottom_below", "model",
+    "surface_above", "bottom_below", "release_above", "model",
 )  # fmt: skip
 
 
@@ -199,6 +202,8 @@ def add_block(
     by_time = a_speed / forces.time  # dln v = -dt/t, and t falls as the bias grows
     add("bias", lambda: by_time)
     add("rate", lambda: -by_time * clock)
+    if (start := slopes.start) is not None:
+        add("release_above", lambda: by_time * start.by_release)
 
     by_temperature = (
         grow * (take("ball_expansion") / grown)

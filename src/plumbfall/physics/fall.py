@@ -10,7 +10,12 @@ from numpy.typing import ArrayLike, NDArray
 from plumbfall.errors import InputError, PhysicsRangeError
 from plumbfall.physics.drag import DragLaw
 from plumbfall.physics.path import path_excess
-from plumbfall.physics.run_in import run_in_guard_distance
+from plumbfall.physics.start_up import (
+    RUN_IN_DENSITY_RATIO_LIMITS,
+    RUN_IN_HIGHEST_REYNOLDS,
+    RUN_IN_RATIO_LIMITS,
+    run_in_delay,
+)
 from plumbfall.physics.weight import effective_weight
 
 __all__ = ["fall_time", "terminal_speed"]
@@ -118,7 +123,7 @@ def fall_time(
 ) -> NDArray[np.float64]:
     r"""Time between successive marks of a ball falling on the axis of a vertical tube.
 
-    .. math:: t = \int \frac{dz}{v(z)} = \frac{L}{v}\,(1 + \bar E)
+    .. math:: t = \int \frac{dz}{v(z)} = \frac{L}{v}\,(1 + \bar E) + \tau(y_2) - \tau(y_1)
 
     Parameters
     ----------
@@ -163,7 +168,8 @@ def fall_time(
 
     Notes
     -----
-    The ends are felt within a bore radius or two; what they add is averaged over the path.
+    The ends are felt within a bore radius or two; what they add is averaged over the path. The
+    delay tau of a start from rest is a difference of two depths y below the release.
 
     References
     ----------
@@ -195,7 +201,6 @@ def fall_time(
     speed = terminal_speed(
         viscosity=eta, weight=weight, ball_diameter=d, liquid_density=rho, tube_bore=bore
     )
-    _check_run_in(release, speed, d, bore, rho, eta)
     ratio, length, radius = d / bore, np.diff(places), bore / 2
     from_surface = above + places[:-1] - places[0]
     from_bottom = below + places[-1] - places[1:]
@@ -207,27 +212,24 @@ def fall_time(
         raise PhysicsRangeError(
             "a mark is so near an end of the liquid that the drag there is not known"
         )
-    return np.asarray(length / speed * (1 + mean))
-
-
-def _check_run_in(
-    release: NDArray[np.float64],
-    speed: NDArray[np.float64],
-    diameter: NDArray[np.float64],
-    bore: NDArray[np.float64],
-    density: NDArray[np.float64],
-    viscosity: NDArray[np.float64],
-) -> None:
+    times = np.asarray(length / speed * (1 + mean))
     if np.isinf(release).all():
-        return
-    guard = run_in_guard_distance(
-        ball_diameter=diameter,
+        return times
+    delays = run_in_delay(
+        depth=release + places - places[0],
+        ball_diameter=d,
         tube_bore=bore,
         fall_speed=speed,
-        liquid_density=density,
-        viscosity=viscosity,
+        liquid_density=rho,
+        viscosity=eta,
+        ball_density=rho_b,
     )
-    if (release < guard).any():
+    late = np.where(np.isinf(release), 0.0, np.diff(delays, axis=-1))
+    if np.isnan(late).any():
         raise PhysicsRangeError(
-            "the ball is let go too near the first mark to have its terminal speed there"
+            f"the run-in is known for diameter ratios {RUN_IN_RATIO_LIMITS[0]:g} to "
+            f"{RUN_IN_RATIO_LIMITS[1]:g}, Reynolds numbers to {RUN_IN_HIGHEST_REYNOLDS:g} and "
+            f"density ratios {RUN_IN_DENSITY_RATIO_LIMITS[0]:g} to "
+            f"{RUN_IN_DENSITY_RATIO_LIMITS[1]:g}; leave release_above out, or stay within"
         )
+    return times + late

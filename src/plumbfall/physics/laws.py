@@ -18,14 +18,25 @@ from plumbfall.physics.drag_map import tube_drag_table
 from plumbfall.physics.drag_surface import HIGHEST_REYNOLDS, RATIO_LIMITS
 from plumbfall.physics.numeric import Numeric
 from plumbfall.physics.ranges import check_range
+from plumbfall.physics.start_up import (
+    RUN_IN_HIGHEST_REYNOLDS,
+    RUN_IN_RATIO_LIMITS,
+    run_in_delay,
+)
 
-__all__ = ["DEFAULTS", "KINDS", "Law", "law", "laws_of"]
+__all__ = ["DEFAULTS", "KINDS", "OWN", "Law", "law", "laws_of"]
 
-KINDS = ("walls", "inertia", "together", "ends")
+KINDS = ("walls", "inertia", "together", "ends", "run-in")
 """Kinds of law, in the order in which they enter the drag."""
 
 DEFAULTS: Mapping[str, str] = MappingProxyType(
-    {"walls": "exact", "inertia": "compact", "together": "table", "ends": "table"}
+    {
+        "walls": "exact",
+        "inertia": "compact",
+        "together": "table",
+        "ends": "table",
+        "run-in": "table",
+    }
 )
 """The law of each kind that is used where none is chosen."""
 
@@ -114,7 +125,7 @@ def laws_of(kind: str) -> Mapping[str, Law]:
     return _LAWS[kind]
 
 
-_OWN = "computed by plumbfall from Navier-Stokes"
+OWN = "computed by plumbfall from Navier-Stokes"
 _OWN_CREEPING = "computed by plumbfall from Stokes flow"
 
 
@@ -191,7 +202,7 @@ _ALL = (
         "Bohlin1960",
         "Bohlin 1960, Trans. R. Inst. Technol. Stockholm 155",
     ),
-    _inertia("compact", 100.0, "0.10 %", "Plumbfall", _OWN),
+    _inertia("compact", 100.0, "0.10 %", "Plumbfall", OWN),
     _inertia(
         "stokes", 1.0, "12 % at 1", "Stokes1851", "Stokes 1851, Trans. Camb. Philos. Soc. 9, 8"
     ),
@@ -234,9 +245,9 @@ _ALL = (
         ratio_high=RATIO_LIMITS[1],
         error="0.005 % (0.015 % below ratio 0.01); walls and inertia are both in it",
         source_key="Plumbfall",
-        citation=_OWN,
+        citation=OWN,
     ),
-    _together("screened", 10.0, "0.74 % to 5, 1.7 % to 10", "Plumbfall", _OWN),
+    _together("screened", 10.0, "0.74 % to 5, 1.7 % to 10", "Plumbfall", OWN),
     _together(
         "additive",
         100.0,
@@ -250,6 +261,18 @@ _ALL = (
         "the smaller of the two excesses",
         "CommonPractice",
         "common practice, no source",
+    ),
+    Law(
+        name="table",
+        kind="run-in",
+        function=run_in_delay,
+        variable=REYNOLDS,
+        low=0.0,
+        high=RUN_IN_HIGHEST_REYNOLDS,
+        ratio_high=RUN_IN_RATIO_LIMITS[1],
+        error="15 % of the bias, or 1.5e-4 of the transit; ratio 0.01 to 0.4, density 1.1 to 15",
+        source_key="Plumbfall",
+        citation=OWN,
     ),
     Law(
         name="table",

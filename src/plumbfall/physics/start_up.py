@@ -14,9 +14,12 @@ from plumbfall.physics.tables import shipped_table
 
 __all__ = [
     "RUN_IN_DENSITY_RATIO_LIMITS",
+    "RUN_IN_ERROR",
+    "RUN_IN_FLOOR",
     "RUN_IN_HIGHEST_REYNOLDS",
     "RUN_IN_RATIO_LIMITS",
     "run_in_delay",
+    "run_in_delay_slope",
 ]
 
 Array = NDArray[np.float64]
@@ -27,6 +30,9 @@ RUN_IN_HIGHEST_REYNOLDS = 30.0
 """Largest terminal Reynolds number of which starts are known."""
 RUN_IN_DENSITY_RATIO_LIMITS = (1.1, 15.0)
 """Ball densities over that of the liquid between which starts are known."""
+
+RUN_IN_ERROR, RUN_IN_FLOOR = 0.15, 1.5e-4
+"""Stated error of a timing's bias: a part of the bias, or of the transit where that is more."""
 
 _SCREENING = 20.0
 _ADDED = 0.5
@@ -74,21 +80,28 @@ class _Starts:
             found += part
         return found
 
-    def log_shape(self, powers: Array, log_depth: Array) -> Array:
-        """Return ln G over ln Z; straight beyond the depths of the table, at first as free fall."""
+    def log_shape(self, powers: Array, log_depth: Array) -> tuple[Array, Array]:
+        """Return ln G and its slope by ln Z.
+
+        Both are continued straight beyond the depths of the table, at first as in free fall.
+        """
         place = _scaled(log_depth, self.depth_ends)
         inside = np.clip(place, -1.0, 1.0)
         value: Array = powers[-1] * inside
+        slope: Array = np.broadcast_to(powers[-1], value.shape).copy()
         for power in powers[-2:0:-1]:
             value += power
+            slope *= inside
+            slope += value
             value *= inside
         value += powers[0]
         if (beyond := place != inside).any():
             free_fall = 0.25 * (self.depth_ends[1] - self.depth_ends[0])
             last = np.tensordot(np.arange(len(powers)), powers, axes=1)
-            slope = np.where(place < inside, free_fall, last)
-            value = np.where(beyond, value + (place - inside) * slope, value)
-        return value
+            outside = np.where(place < inside, free_fall, last)
+            value = np.where(beyond, value + (place - inside) * outside, value)
+            slope = np.where(beyond, outside, slope)
+        return value, slope * (2.0 / (self.depth_ends[1] - self.depth_ends[0]))
 
 
 def _scaled(values: Array, ends: Array) -> Array:
@@ -204,7 +217,78 @@ def run_in_delay(
     >>> f"{100 * (second - first) / (50e-3 / 0.1889):.1f} %"
     '1.1 %'
     """
-    given = (ball_diameter, tube_bore, fall_speed, liquid_density, viscosity, ball_density)
+    delay, _ = _delay_and_slope(
+        depth,
+        (ball_diameter, tube_bore, fall_speed, liquid_density, viscosity, ball_density),
+    )
+    return float(delay) if np.ndim(delay) == 0 else delay
+
+
+def run_in_delay_slope(
+    *,
+    depth: Numeric,
+    ball_diameter: Numeric,
+    tube_bore: Numeric,
+    fall_speed: Numeric,
+    liquid_density: Numeric,
+    viscosity: Numeric,
+    ball_density: Numeric,
+) -> Numeric:
+    r"""Growth of the run-in's delay with the depth: 1/v(y) less 1/v.
+
+    .. math:: \frac{d}{dy}\left[t(y) - \frac{y}{v}\right]
+        = \frac{d^2}{4 \nu}\, T\, e^{-G}\, \frac{G}{y}\, \frac{d \ln G}{d \ln Z}
+
+    Parameters
+    ----------
+    depth : float or array, shape (..., drops) [m]
+        Distance y below the point of release, above 0.
+    ball_diameter : float or array, shape (..., drops) [m]
+        Diameter d.
+    tube_bore : float or array, shape (..., drops) [m]
+        Bore of the tube.
+    fall_speed : float or array, shape (..., drops) [m/s]
+        Speed v long after the release.
+    liquid_density : float or array, shape (..., drops) [kg/m3]
+        Density of the liquid.
+    viscosity : float or array, shape (..., drops) [Pa.s]
+        Viscosity of the liquid; over the density it is nu.
+    ball_density : float or array, shape (..., drops) [kg/m3]
+        Density of the ball.
+
+    Returns
+    -------
+    float or array [s/m]
+        Slope of the delay, falling to 0; NaN outside the range.
+
+    Valid range
+    -----------
+    That of :func:`run_in_delay`.
+
+    Notes
+    -----
+    The derivative of :func:`run_in_delay`, analytic.
+
+    References
+    ----------
+    [Plumbfall]
+
+    Examples
+    --------
+    >>> ball = {"ball_diameter": 3e-3, "tube_bore": 40e-3, "fall_speed": 0.1889}
+    >>> liquid = {"liquid_density": 1200.0, "viscosity": 0.1}
+    >>> slope = run_in_delay_slope(depth=10e-3, **ball, **liquid, ball_density=7800.0)
+    >>> f"{slope:.3f}"
+    '0.175'
+    """
+    _, slope = _delay_and_slope(
+        depth,
+        (ball_diameter, tube_bore, fall_speed, liquid_density, viscosity, ball_density),
+    )
+    return float(slope) if np.ndim(slope) == 0 else slope
+
+
+def _delay_and_slope(depth: Numeric, given: tuple[Numeric, ...]) -> tuple[Array, Array]:
     d, bore, v, rho, eta, rho_b = np.broadcast_arrays(*(np.asarray(one, float) for one in given))
     diameter, speed = d.ravel(), v.ravel()
     kinematic = (eta / rho).ravel()
@@ -225,9 +309,11 @@ def run_in_delay(
     lost = np.where(inside, unit * np.exp(found[0]), np.nan).reshape(d.shape)
     with np.errstate(divide="ignore", invalid="ignore"):
         log_depth = np.log(np.asarray(depth, float) / (v * lost))
-        shape = starts.log_shape(found[1:].reshape(-1, *d.shape), log_depth)
-        delay: Numeric = -lost * np.expm1(-np.exp(shape))
-    return float(delay) if np.ndim(delay) == 0 else delay
+        shape, by_depth = starts.log_shape(found[1:].reshape(-1, *d.shape), log_depth)
+        grown = np.exp(shape)
+        delay: Array = -lost * np.expm1(-grown)
+        slope: Array = lost * np.exp(-grown) * grown * by_depth / np.asarray(depth, float)
+    return delay, slope
 
 
 def _between(values: Array, low: float, high: float) -> NDArray[np.bool_]:

@@ -14,6 +14,7 @@ TITLES = {
     "inertia": "Inertia: drag in an unbounded liquid over Stokes' drag",
     "together": "Together: how walls and inertia join",
     "ends": "Ends of the tube",
+    "run-in": "Run-in: the start from rest (ends and run-in may also be switched off: none)",
 }
 
 
@@ -35,7 +36,7 @@ def methods_text() -> str:
     lines += textwrap.wrap(
         'In a bench sheet, [methods] drag = "NAME …" takes one name of a kind or several; what '
         "is not named is the default. The drag factor is the drag on the ball over its drag by "
-        "Stokes' law.",
+        "Stokes' law; a law's error is that against the computed one.",
         WIDTH,
     )
     return "\n".join(lines) + "\n"

@@ -74,6 +74,11 @@ def drop_results(
     )
 
 
+def _others(columns: DropColumns, at: int) -> float:
+    """Return the product of every factor of the drag but the inertia's."""
+    return float(columns.wall[at] * columns.off_axis[at] * columns.end[at] * columns.run_in[at])
+
+
 def _drop(
     row: int,
     at: int | None,
@@ -92,7 +97,7 @@ def _drop(
     at_set, wall, total = (
         computed(column) for column in (columns.at_set, columns.wall, columns.drag_factor)
     )
-    others = 1.0 if at is None else float(columns.wall[at] * columns.off_axis[at] * columns.end[at])
+    others = 1.0 if at is None else _others(columns, at)
     return DropResult(
         file=file,
         line=line,

@@ -15,7 +15,7 @@ from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import Sums
 from plumbfall.physics.drag import TABLE, DragLaw
-from plumbfall.physics.laws import DEFAULTS, law
+from plumbfall.physics.laws import DEFAULTS, OWN, law
 from plumbfall.physics.stokes import shear_rate
 from plumbfall.results import (
     Correction,
@@ -205,6 +205,8 @@ def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correcti
     wall = float(drops.wall[used].mean())
     total = float(drops.drag_factor[used].mean())
     off_axis = float(drops.off_axis[used].mean())
+    run_in = float(drops.run_in[used].mean())
+    others = wall * off_axis * float(drops.end[used].mean()) * run_in
     beside = Correction(
         "off axis",
         off_axis,
@@ -215,19 +217,20 @@ def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correcti
         Correction("wall", wall, law.wall_law.name, law.wall_law.citation),
         Correction(
             "inertia",
-            total / (wall * off_axis * float(drops.end[used].mean())),
+            total / others,
             _inertia_method(law),
             law.source,
         ),
         *((beside,) if off_axis != 1 else ()),
         _ends(all_sets, float(drops.end[used].mean())),
-        Correction(
-            "run-in",
-            1.0,
-            "none: the ball is at its terminal speed at the first mark",
-            "guard distance, see the documentation",
-        ),
+        _run_in(all_sets, run_in),
     )
+
+
+def _run_in(all_sets: SetColumns, factor: float) -> Correction:
+    if all_sets.bench.methods.run_in == "none":
+        return Correction("run-in", factor, "none", "")
+    return Correction("run-in", factor, "computed start from rest in the tube", OWN)
 
 
 def _inertia_method(law: DragLaw) -> str:

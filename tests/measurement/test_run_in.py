@@ -1,0 +1,97 @@
+"""The run-in taken off the timing: against the forward fall, and where it is not known."""
+
+from __future__ import annotations
+
+import pandas as pd
+import pytest
+
+import plumbfall as pf
+
+BENCH = {
+    "site": {"gravity": "9.81 m/s2"},
+    "tube": {
+        "A": {
+            "bore": "40 mm",
+            "marks": ["0 mm", "50 mm"],
+            "surface_above": "100 mm",
+            "bottom_below": "100 mm",
+            "release_above": "10 mm",
+        }
+    },
+    "ball": {"X": {"diameter": "3 mm", "density": "7800 kg/m3"}},
+    "liquid": {"oil": {"density": "970 kg/m3"}},
+}
+
+
+def bench(**changes: object) -> dict:
+    tube = {"A": {**BENCH["tube"]["A"], **changes.pop("tube", {})}}
+    return {**BENCH, "tube": tube, **changes}
+
+
+def reduced(time: float, **changes: object):
+    report = pf.reduce(pd.DataFrame({"ball": ["X"], "time [s]": [time]}), bench(**changes))
+    return report[report.names[0]].result
+
+
+def fall(viscosity: float, release: float) -> float:
+    (time,) = pf.physics.fall_time(
+        viscosity=viscosity, ball_diameter=3e-3, ball_density=7800.0, liquid_density=970.0,
+        tube_bore=0.04, marks=[0, 0.05], surface_above=0.1, bottom_below=0.1,
+        release_above=release, gravity=9.81,
+    )  # fmt: skip
+    return float(time)
+
+
+@pytest.mark.parametrize("release", [0.0, 0.002, 0.010, 0.050])
+@pytest.mark.parametrize("viscosity", [0.08, 0.15, 1.0])
+def test_forward_and_inverse_agree_with_a_run_in(viscosity, release):
+    result = reduced(fall(viscosity, release), tube={"release_above": f"{1000 * release} mm"})
+    assert result.viscosity.value == pytest.approx(viscosity, rel=1e-9)
+
+
+def test_the_bias_is_that_of_the_formula_book():
+    """A 50 mm timing, steel of 3 mm in 0.1 Pa.s at ratio .075, 10 mm below the release: 1.04 %.
+
+    The project's formula book, section 5, by an independent Navier-Stokes start; its liquid's
+    density is not printed; with 1200 kg/m3 the Reynolds number is 7.1 where it has 6.8. Stated
+    error 15 %.
+    """
+    liquid = {"liquid": {"oil": {"density": "1200 kg/m3"}}}
+    (time,) = pf.physics.fall_time(
+        viscosity=0.1, ball_diameter=3e-3, ball_density=7800.0, liquid_density=1200.0,
+        tube_bore=0.04, marks=[0, 0.05], release_above=0.010, gravity=9.81,
+    )  # fmt: skip
+    result = reduced(float(time), **liquid)
+    run_in = next(c.factor for c in result.corrections if c.name == "run-in")
+    assert result.reynolds == pytest.approx(6.8, abs=0.3)
+    assert run_in - 1 == pytest.approx(0.0104, rel=0.15)
+
+
+def test_its_own_error_is_in_the_bounds():
+    short = reduced(fall(0.1, 0.005), tube={"release_above": "5 mm"})
+    far = reduced(fall(0.1, 0.080), tube={"release_above": "80 mm"})
+    model = [
+        next(line for line in r.budget if line.input == "methods.model_uncertainty").u
+        for r in (short, far)
+    ]
+    run_in = next(c.factor for c in short.corrections if c.name == "run-in") - 1
+    assert model[0] > 0.15 * run_in / 3**0.5
+    assert model[1] < 4e-4
+
+
+def test_no_run_in_is_taken_off_where_none_is_wanted_or_none_is_given():
+    time = fall(0.1, 0.005)
+    none = reduced(time, tube={"release_above": "5 mm"}, methods={"run_in": "none"})
+    blank = reduced(time, tube={"release_above": None})
+    assert none.viscosity.value == blank.viscosity.value > 0.1
+    assert "geometry-unknown" in [f.code for f in blank.findings]
+
+
+def test_a_start_beyond_the_table_is_said_and_not_corrected():
+    # the ball fills half the bore, and is let go close above the first mark
+    wide = {"ball": {"X": {"diameter": "20 mm", "density": "1200 kg/m3"}}}
+    result = reduced(0.6, tube={"release_above": "2 mm"}, **wide)
+    run_in = next(c.factor for c in result.corrections if c.name == "run-in")
+    (finding,) = (f for f in result.findings if f.code == "run-in-short")
+    assert run_in == 1.0
+    assert "is not known here" in finding.message
