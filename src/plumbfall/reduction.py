@@ -18,12 +18,13 @@ from plumbfall.findings.limits import Limits, limits_from
 from plumbfall.findings.outliers import suspects
 from plumbfall.findings.registry import find
 from plumbfall.measurement.balance import corrected_temperature
-from plumbfall.measurement.drops import compute_drops, value_weights
+from plumbfall.measurement.drops import compute_drops
 from plumbfall.measurement.ends import path_ends
 from plumbfall.measurement.gather import gather
 from plumbfall.measurement.law import drag_law, model_estimate
 from plumbfall.measurement.run_in import releases
 from plumbfall.measurement.selection import check_temperatures, select
+from plumbfall.measurement.values import value_weights
 from plumbfall.physics.laws import DEFAULTS
 from plumbfall.results import Finding, RunSetResult
 from plumbfall.run_sets.jacobian import build_jacobian, own_variances

@@ -11,10 +11,11 @@ from numpy.typing import NDArray
 
 from plumbfall.bench.records import Ball, Bench, Liquid, Tube
 from plumbfall.findings.limits import Limits
-from plumbfall.measurement.drops import DropColumns, Weights
+from plumbfall.measurement.columns import DropColumns
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
+from plumbfall.measurement.values import Weights
 from plumbfall.physics.drag import DragLaw
 from plumbfall.results import Finding
 from plumbfall.run_sets.jacobian import Jacobian

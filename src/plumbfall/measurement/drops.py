@@ -5,12 +5,10 @@ Blocks keep the working arrays in the processor's cache and memory flat in the n
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
-from numpy.typing import NDArray
 
 from plumbfall.measurement.balance import Balance, Codes, Numbers, balance, spread
+from plumbfall.measurement.columns import DropColumns, empty_columns
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.inverse import invert
@@ -19,9 +17,10 @@ from plumbfall.measurement.off_axis import off_axis
 from plumbfall.measurement.run_in import Release, RunIn, run_in
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import DropSlopes, Sums, add_block, empty_sums
+from plumbfall.measurement.values import Weights
 from plumbfall.physics.drag import Bound, DragLaw
 
-__all__ = ["DropColumns", "Weights", "compute_drops", "value_weights"]
+__all__ = ["compute_drops"]
 
 BLOCK = 16_384
 
@@ -30,78 +29,6 @@ MOST_STARTS, TOLERANCE = 30, 1e-12
 
 LARGEST_SHIFT = 1e-5
 """Largest logarithm of a drop's diameter ratio over its cell's that is taken to first order."""
-
-
-@dataclass(frozen=True, slots=True)
-class Weights:
-    """How drops make a run set's mean: means of values, a value being a ball's mean.
-
-    ``value`` is each drop's value, shape (drops,); ``value_set`` the run set of each value;
-    ``weight`` each drop's weight in its set's mean. ``n_values`` counts them by run set. Where
-    every drop is its own ball (a lot), a value is a drop.
-    """
-
-    value: Codes
-    value_set: Codes
-    value_drops: NDArray[np.intp]
-    n_values: NDArray[np.intp]
-    n_drops: NDArray[np.intp]
-    weight: Numbers
-
-
-@dataclass(frozen=True, slots=True)
-class DropColumns:
-    """What was computed of each used drop, SI, shape (drops,); NaN where there is no solution.
-
-    ``at_set`` is the viscosity brought to the run set's temperature, ``stokes`` the same by
-    Stokes' law alone. ``set_temperature`` has shape (run sets,), NaN where unknown.
-    """
-
-    temperature: Numbers
-    viscosity: Numbers
-    at_set: Numbers
-    stokes: Numbers
-    reynolds: Numbers
-    fall_speed: Numbers
-    diameter: Numbers
-    diameter_ratio: Numbers
-    wall: Numbers
-    off_axis: Numbers
-    end: Numbers
-    run_in: Numbers
-    drag_factor: Numbers
-    shear_stress: Numbers
-    model_bound: Numbers
-    floating: NDArray[np.bool_]
-    too_fast: NDArray[np.bool_]
-    too_wide: NDArray[np.bool_]
-    no_root: NDArray[np.bool_]
-    start_unknown: NDArray[np.bool_]
-    set_temperature: Numbers
-
-
-def value_weights(selection: Selection, inputs: Inputs) -> Weights:
-    """Group drops into values: a ball's drops of one run set, or single drops of a lot."""
-    cells, n_sets = selection.cells, len(selection.names)
-    pair = cells.run_set * (cells.ball.max(initial=0) + 1) + cells.ball
-    _, first, value_of_cell = np.unique(pair, return_index=True, return_inverse=True)
-    value, value_set = value_of_cell[selection.cell], cells.run_set[first]
-    fresh = inputs.lot[selection.cell]
-    if fresh.any():
-        own = np.where(fresh, len(first) + np.arange(len(value)), value)
-        _, first, value = np.unique(own, return_index=True, return_inverse=True)
-        value_set = selection.run_set[first]
-    value_drops = np.bincount(value, minlength=len(first))
-    n_values = np.bincount(value_set, minlength=n_sets)
-    weight = 1.0 / (value_drops * n_values[value_set])
-    return Weights(
-        value=value,
-        value_set=value_set,
-        value_drops=value_drops,
-        n_values=n_values,
-        n_drops=np.bincount(selection.run_set, minlength=n_sets),
-        weight=weight[value],
-    )
 
 
 def compute_drops(
@@ -148,7 +75,7 @@ def compute_drops(
     offset = set_temperature[selection.run_set] - temperature
     np.nan_to_num(offset, copy=False, nan=0.0)
 
-    out = _empty_columns(n, temperature, set_temperature)
+    out = empty_columns(n, temperature, set_temperature)
     sums = empty_sums(len(selection.cells))
     in_cells = set_temperature[selection.cells.run_set]
     every = np.arange(len(in_cells))
@@ -171,38 +98,6 @@ def compute_drops(
             sums,
         )
     return out, sums
-
-
-def _empty_columns(n: int, temperature: Numbers, set_temperature: Numbers) -> DropColumns:
-    def numbers() -> Numbers:
-        return np.empty(n)
-
-    def flags() -> NDArray[np.bool_]:
-        return np.empty(n, dtype=bool)
-
-    return DropColumns(
-        temperature=temperature,
-        viscosity=numbers(),
-        at_set=numbers(),
-        stokes=numbers(),
-        reynolds=numbers(),
-        fall_speed=numbers(),
-        diameter=numbers(),
-        diameter_ratio=numbers(),
-        wall=numbers(),
-        off_axis=np.ones(n),
-        end=np.ones(n),
-        run_in=np.ones(n),
-        drag_factor=numbers(),
-        shear_stress=numbers(),
-        model_bound=numbers(),
-        floating=flags(),
-        too_fast=flags(),
-        too_wide=flags(),
-        no_root=flags(),
-        start_unknown=np.zeros(n, dtype=bool),
-        set_temperature=set_temperature,
-    )
 
 
 def _settled(before: RunIn | None, now: RunIn, forces: Balance) -> bool:

@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.bench.records import Bench
-from plumbfall.measurement.drops import DropColumns
+from plumbfall.measurement.columns import DropColumns
 from plumbfall.measurement.selection import Selection
 from plumbfall.physics.stokes import shear_rate
 from plumbfall.results import BallResult, DropResult, Finding, Quantity

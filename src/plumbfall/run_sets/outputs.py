@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 from scipy import sparse
 
 from plumbfall.measurement.balance import Numbers
-from plumbfall.measurement.drops import DropColumns
+from plumbfall.measurement.columns import DropColumns
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.physics.thermal import liquid_density

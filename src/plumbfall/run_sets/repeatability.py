@@ -16,8 +16,9 @@ from numpy.typing import NDArray
 
 from plumbfall.bench.records import Scatter
 from plumbfall.measurement.balance import Numbers
-from plumbfall.measurement.drops import DropColumns, Weights
+from plumbfall.measurement.columns import DropColumns
 from plumbfall.measurement.selection import Selection
+from plumbfall.measurement.values import Weights
 from plumbfall.uncertainty.type_a import group_scatter
 
 __all__ = ["DECLARED", "FEWEST", "KNOWN", "OF_DROPS", "OF_VALUES", "Repeatability", "repeatability"]

@@ -9,11 +9,12 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.bench.records import Bench
-from plumbfall.measurement.drops import DropColumns, Weights
+from plumbfall.measurement.columns import DropColumns
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import Sums
+from plumbfall.measurement.values import Weights
 from plumbfall.physics.drag import TABLE, DragLaw
 from plumbfall.physics.laws import DEFAULTS, OWN, law
 from plumbfall.physics.stokes import shear_rate
