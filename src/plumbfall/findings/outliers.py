@@ -125,7 +125,8 @@ def outlier(data: RunData) -> Iterator[Found]:
                 message=f"drop {number} ({data.selection.time[drop]:.2f} s) is "
                 f"{100 * abs(own / mean - 1):.1f} % {'above' if own > mean else 'below'} the mean "
                 f"(Grubbs {found.statistic[run_set]:.2f}, 1 % limit {critical:.2f} for {n} drops); "
-                f"it is kept; without it the viscosity would be {100 * effect:+.2f} % different",
+                f"it is kept; without it the viscosity would be {100 * abs(effect):.2f} % "
+                f"{'higher' if effect > 0 else 'lower'}",
                 remedy="look for a bubble, a wrong ball, or a mistimed mark; if there was one, "
                 "mark the drop void and note the reason",
             ),
