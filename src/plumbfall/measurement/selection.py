@@ -200,7 +200,7 @@ def _equipment(
         rows = row[label_codes[row] == place_of]
         if len(rows):
             problems.append(_unknown(kind, labels[place_of], known, table, int(rows[0])))
-    if kind in REQUIRED:
+    if kind in REQUIRED or len(known) > 1:
         for code in np.unique(run_set[codes == -1]):
             problems.append(_open(kind, names[code], known, bench))
     return codes
