@@ -34,6 +34,7 @@ SUPPORT = {
     "exact",
     "exact_ends",
     "laws",
+    "measured_errors",
     "numeric",
     "path",
     "piecewise",
