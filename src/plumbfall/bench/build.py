@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from types import MappingProxyType
 from typing import Any
 
 from plumbfall.bench import choice_keys, records, run_keys
@@ -17,6 +16,7 @@ from plumbfall.bench.build_equipment import (
     tube_from,
 )
 from plumbfall.bench.naming import identity, named, value
+from plumbfall.bench.read_only import ReadOnly
 from plumbfall.bench.schema import Sheet
 
 __all__ = ["bench_from"]
@@ -55,8 +55,8 @@ def bench_from(
         gauges=_each(sheet.gauge, gauge_from),
         balances=_each(sheet.balance, balance_from),
         tubes=_each(sheet.tube, tube_from),
-        materials=MappingProxyType(materials),
-        balls=MappingProxyType(
+        materials=ReadOnly(materials),
+        balls=ReadOnly(
             {name: ball_from(name, keys, materials) for name, keys in sheet.ball.items()}
         ),
         liquids=_each(sheet.liquid, _liquid),
@@ -66,20 +66,20 @@ def bench_from(
         constants=_each(sheet.constant, _constant),
         timings=_timings(sheet.timings),
         methods=_methods(sheet.methods),
-        limits=MappingProxyType(dict(sheet.limits)),
+        limits=ReadOnly(sheet.limits),
         path=path,
         sha256=sha256,
-        source=MappingProxyType(dict(source)),
+        source=ReadOnly(source),
     )
 
 
 def _each(entries: Mapping[str, Any], build: Any) -> Mapping[str, Any]:
-    return MappingProxyType({name: build(name, keys) for name, keys in entries.items()})
+    return ReadOnly({name: build(name, keys) for name, keys in entries.items()})
 
 
 def _words(keys: Any) -> Mapping[str, str]:
     given = {name: getattr(keys, name) for name in type(keys).model_fields}
-    return MappingProxyType({name: str(value) for name, value in given.items() if value})
+    return ReadOnly({name: str(value) for name, value in given.items() if value})
 
 
 def _liquid(name: str, keys: run_keys.LiquidKeys) -> records.Liquid:
@@ -154,8 +154,8 @@ def _constant(name: str, keys: run_keys.ConstantKeys) -> records.Constant:
 
 def _timings(keys: choice_keys.TimingsKeys) -> records.TimingHints:
     return records.TimingHints(
-        columns=MappingProxyType(dict(keys.columns)),
-        units=MappingProxyType(dict(keys.units)),
+        columns=ReadOnly(keys.columns),
+        units=ReadOnly(keys.units),
         delimiter="\t" if keys.delimiter == "tab" else keys.delimiter,
         decimal=keys.decimal,
         encoding=keys.encoding,

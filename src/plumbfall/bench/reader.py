@@ -5,9 +5,9 @@ from __future__ import annotations
 import os
 from collections.abc import Mapping
 from dataclasses import replace
-from types import MappingProxyType
 from typing import Any
 
+from plumbfall.bench.read_only import ReadOnly
 from plumbfall.bench.records import Bench
 from plumbfall.errors import InputError, Problem
 
@@ -49,7 +49,7 @@ def read_bench(source: str | os.PathLike[str] | Mapping[str, Any]) -> Bench:
         if problems:
             raise InputError(problems)
         tree = written_tree(bench.source, bench.quantities())
-        return replace(bench, source=MappingProxyType(tree), sha256=digest(tree))
+        return replace(bench, source=ReadOnly(tree), sha256=digest(tree))
     file = read_file(source)
     path = os.fspath(source)
     try:

@@ -9,9 +9,9 @@ from __future__ import annotations
 import datetime as dt
 from collections.abc import Mapping
 from dataclasses import dataclass, field
-from types import MappingProxyType
 from typing import Any
 
+from plumbfall.bench.read_only import ReadOnly
 from plumbfall.estimate import Estimate
 
 __all__ = [
@@ -38,7 +38,7 @@ __all__ = [
 
 
 def _none() -> Mapping[str, Any]:
-    return MappingProxyType({})
+    return ReadOnly()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
