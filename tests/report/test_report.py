@@ -63,6 +63,11 @@ def test_a_set_without_value_is_not_a_number(report: Report) -> None:
     assert all(math.isnan(bound) for bound in report["batch 120"].interval)
 
 
+def test_a_report_of_sets_without_value_has_none(report: Report) -> None:
+    alone = Report(InventedReduction((report["batch 120"].result,)))
+    assert math.isnan(alone["batch 120"].viscosity.nominal_value)
+
+
 def test_exact_and_fully_correlated_sets_warn_of_nothing() -> None:
     sets = tuple(
         replace(valid_set(name), viscosity=measured(0.85, u))

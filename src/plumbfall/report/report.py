@@ -144,13 +144,10 @@ class Report:
         with warnings.catch_warnings():
             # Exact or fully correlated sets leave variables of zero spread, which is no mistake.
             warnings.filterwarnings("ignore", message=".*std_dev==0.*")
-            numbers = dict(
-                zip(
-                    have.tolist(),
-                    correlated_values(values[have].tolist(), covariance[np.ix_(have, have)]),
-                    strict=True,
-                )
-            )
+            numbers = {}
+            if len(have):  # the library cannot correlate nothing
+                known = correlated_values(values[have].tolist(), covariance[np.ix_(have, have)])
+                numbers = dict(zip(have.tolist(), known, strict=True))
             return {
                 name: numbers.get(index, ufloat(float("nan"), float("nan")))
                 for index, name in enumerate(self.names)

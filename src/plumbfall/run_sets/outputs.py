@@ -92,6 +92,7 @@ class Outputs:
     def _columns(self) -> dict[str, Output]:
         u, dof = self.propagation.u, self.propagation.effective_dof
         factor = coverage_factor(dof=dof, probability=self.coverage)
+        factor = np.where(np.isfinite(self.values), factor, np.nan)
         return {
             name: Output(
                 value=self.values[rows],
