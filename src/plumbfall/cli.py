@@ -6,9 +6,12 @@ Nothing heavy is imported until a command runs, so that help comes at once.
 from __future__ import annotations
 
 import argparse
+import io
+import os
 import sys
-from collections.abc import Sequence
-from typing import TYPE_CHECKING
+from collections.abc import Iterator, Sequence
+from contextlib import contextmanager
+from typing import TYPE_CHECKING, TextIO
 
 from plumbfall._version import __version__
 
@@ -17,7 +20,7 @@ if TYPE_CHECKING:
 
 __all__ = ["build_parser", "main"]
 
-DONE, INVALID, BAD_INPUT = 0, 1, 2
+DONE, INVALID, BAD_INPUT, INTERRUPTED = 0, 1, 2, 130
 
 CAUTIONS = (
     "Results are computed from the numbers you supply and do not replace calibration by an "
@@ -32,6 +35,9 @@ def main(arguments: Sequence[str] | None = None) -> int:
     Exit codes: 0 done and every set valid; 1 a set invalid (with ``--strict`` also one with
     warnings); 2 bad input or usage, and then nothing has been written.
     """
+    for name in ("stdout", "stderr"):
+        if getattr(sys, name) is None:  # closed by the shell: what is said there goes nowhere
+            setattr(sys, name, io.StringIO())
     parsed = build_parser().parse_args(arguments)
     from plumbfall.errors import InputError, PlumbfallError
 
@@ -43,9 +49,9 @@ def main(arguments: Sequence[str] | None = None) -> int:
     except PlumbfallError as error:
         _say(f"error: {error}")
         return BAD_INPUT
-    except BrokenPipeError:  # the reader of our output has gone, which is no error
-        sys.stderr.close()
-        return DONE
+    except KeyboardInterrupt:
+        _say("stopped before the end")
+        return INTERRUPTED
 
 
 def build_parser() -> argparse.ArgumentParser:
@@ -82,6 +88,12 @@ def build_parser() -> argparse.ArgumentParser:
         "--coverage", type=_probability, metavar="P", help="coverage probability (default 0.95)"
     )
     reduce.add_argument(
+        "--draws",
+        type=_draws,
+        metavar="N|auto",
+        help="Monte Carlo draws; this version propagates linearly and says so (default auto)",
+    )
+    reduce.add_argument(
         "--seed", type=int, default=0, metavar="N", help="recorded in the report (default 0)"
     )
     reduce.add_argument(
@@ -110,32 +122,69 @@ def _add_inputs(parser: argparse.ArgumentParser, timings: str) -> None:
 
 
 def _probability(text: str) -> float:
-    value = float(text)
+    try:
+        value = float(text)
+    except ValueError:
+        raise argparse.ArgumentTypeError(f"{text!r} is no number; write 0.95 for 95 %") from None
     if not 0 < value < 1:
         raise argparse.ArgumentTypeError(f"{text} is not between 0 and 1; write 0.95 for 95 %")
     return value
 
 
+def _draws(text: str) -> int | None:
+    if text == "auto":
+        return None
+    if not text.isdecimal():
+        raise argparse.ArgumentTypeError(f"{text!r} is no number of draws; write 200000, or auto")
+    return int(text)
+
+
+@contextmanager
+def _standard_output() -> Iterator[TextIO]:
+    """Write to the standard output; a reader that has gone, as ``head`` goes, is no error."""
+    from plumbfall.errors import PlumbfallError
+
+    try:
+        yield sys.stdout
+        sys.stdout.flush()
+    except OSError as error:
+        # Whatever is still held back would be tried, and fail, once more when the program ends.
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        if not isinstance(error, BrokenPipeError):
+            raise PlumbfallError(
+                f"the standard output cannot be written: {error.strerror or error}"
+            ) from error
+
+
 def _reduce(options: argparse.Namespace) -> int:
+    import warnings
+
+    from plumbfall.errors import PlumbfallWarning
     from plumbfall.report.text import show
     from plumbfall.workflow import find_bench, reduce
 
-    report = reduce(
-        options.timings,
-        options.bench or find_bench(options.timings),
-        seed=options.seed,
-        coverage=options.coverage,
-        encoding=options.encoding,
-    )
+    with warnings.catch_warnings(record=True) as said:
+        warnings.simplefilter("always", PlumbfallWarning)
+        report = reduce(
+            options.timings,
+            options.bench or find_bench(options.timings),
+            draws=options.draws,
+            seed=options.seed,
+            coverage=options.coverage,
+            encoding=options.encoding,
+        )
+    for warning in said:
+        _say(f"warning: {warning.message}")
+    statuses = set(report.table()["status"])
+    failing = {"invalid", "valid-with-warnings"} if options.strict else {"invalid"}
     if options.out:
         report.write(options.out)
         _say(f"written to {options.out}: report.html, report.json, run_sets.csv, drops.csv")
-    if options.json:
-        sys.stdout.write(report.to_json())
-    else:
-        show(report, sys.stdout)
-    statuses = set(report.table()["status"])
-    failing = {"invalid", "valid-with-warnings"} if options.strict else {"invalid"}
+    with _standard_output() as output:
+        if options.json:
+            output.write(report.to_json())
+        else:
+            show(report, output)
     return INVALID if statuses & failing else DONE
 
 
@@ -144,16 +193,24 @@ def _inspect(options: argparse.Namespace) -> int:
     from plumbfall.report.inspection import inspection_text, inspection_to_dict
     from plumbfall.report.json_report import json_text
     from plumbfall.report.text import printable
+    from plumbfall.timings.records import Timings
     from plumbfall.workflow import inspect_inputs
 
-    timings, bench = inspect_inputs(options.timings, options.bench, encoding=options.encoding)
-    if options.json:
-        sys.stdout.write(json_text(inspection_to_dict(timings, bench)))
-    else:
-        sys.stdout.write(printable(inspection_text(timings, bench), sys.stdout.encoding))
+    bench = None
+    try:
+        timings, bench = inspect_inputs(options.timings, options.bench, encoding=options.encoding)
+    except InputError as error:
+        if not options.json:
+            raise
+        timings = Timings.empty(problems=error.problems)
     errors = [problem for problem in timings.problems if problem.severity == "error"]
     if errors and options.json:
         _say_problems(InputError(errors))
+    with _standard_output() as output:
+        if options.json:
+            output.write(json_text(inspection_to_dict(timings, bench)))
+        else:
+            output.write(printable(inspection_text(timings, bench), output.encoding))
     return BAD_INPUT if errors else DONE
 
 
@@ -161,7 +218,8 @@ def _methods(options: argparse.Namespace) -> int:
     from plumbfall.report.methods import methods_text
     from plumbfall.report.text import printable
 
-    sys.stdout.write(printable(methods_text(), sys.stdout.encoding))
+    with _standard_output() as output:
+        output.write(printable(methods_text(), output.encoding))
     return DONE
 
 

@@ -16,7 +16,7 @@ from plumbfall.errors import InputError, PlumbfallWarning
 from plumbfall.reduction import reduce_drops
 from plumbfall.report.report import Report
 from plumbfall.timings.reader import collect, read_timings
-from plumbfall.timings.records import COLUMNS, Timings
+from plumbfall.timings.records import Timings
 
 __all__ = ["BenchSource", "TimingSource", "find_bench", "inspect_inputs", "reduce"]
 
@@ -139,7 +139,7 @@ def inspect_inputs(
     if bench is not None and not isinstance(bench, Bench):
         bench = read_bench(bench)
     if timings is None:
-        return Timings(pd.DataFrame(columns=list(COLUMNS))), bench
+        return Timings.empty(), bench
     if not isinstance(timings, Timings):
         timings = collect(timings, bench, encoding=encoding)
     return timings, bench

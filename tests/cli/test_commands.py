@@ -137,6 +137,68 @@ def test_usage_errors_exit_with_2(capsys):
     assert "write 0.95 for 95 %" in capsys.readouterr().err
 
 
+def test_draws_are_taken_and_their_lack_is_said(capsys):
+    assert main(["reduce", str(CLEAN), "--draws", "1000", "--json"]) == 0
+    out, err = capsys.readouterr()
+    assert json.loads(out)["run_sets"][0]["monte_carlo"] is None
+    assert err.startswith("warning: this version has no Monte Carlo")
+    for draws in ("0", "auto"):
+        assert main(["reduce", str(CLEAN), "--draws", draws]) == 0
+        assert capsys.readouterr().err == ""
+    with pytest.raises(SystemExit):
+        main(["reduce", str(CLEAN), "--draws", "many"])
+    assert "write 200000, or auto" in capsys.readouterr().err
+
+
+def test_inspect_json_lists_what_is_wrong_with_the_bench_sheet(tmp_path, capsys):
+    bench = tmp_path / "bench.toml"
+    bench.write_text('[tube.A]\nbor = "50.00(2) mm"\n', "utf-8")
+    assert main(["inspect", str(CLEAN), "--bench", str(bench), "--json"]) == 2
+    out, err = capsys.readouterr()
+    (problem,) = json.loads(out)["problems"]
+    assert (problem["file"], problem["line"], problem["key"]) == (str(bench), 2, "tube.A.bor")
+    assert problem["remedy"] == "did you mean 'bore'?"
+    assert str(bench) in err
+
+
+def test_an_empty_name_is_said_to_be_empty(capsys):
+    bench = str(CLEAN.with_name("bench.toml"))
+    assert main(["reduce", "", "--bench", bench]) == 2
+    assert capsys.readouterr().err == "error: a timing file's name is empty; name the file\n"
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="no device that is always full")
+def test_a_full_disk_under_the_output_is_no_verdict():
+    with open("/dev/full", "wb") as full:
+        done = subprocess.run(
+            [sys.executable, "-m", "plumbfall", "reduce", str(CLEAN)],
+            stdout=full,
+            stderr=subprocess.PIPE,
+        )
+    assert done.returncode == 2
+    assert done.stderr.startswith(b"error: the standard output cannot be written: ")
+    assert b"Traceback" not in done.stderr
+
+
+@pytest.mark.skipif(os.name == "nt", reason="a shell of POSIX closes the streams")
+def test_closed_streams_leave_the_exit_code_as_it_is():
+    def code(arguments: str) -> int:
+        shell = f'exec "{sys.executable}" -m plumbfall reduce {arguments}'
+        return subprocess.run(["sh", "-c", shell], stdout=subprocess.DEVNULL).returncode
+
+    assert code(f'"{CLEAN}" >&-') == 0
+    assert code(f'"{INVALID}" >&-') == 1
+    assert code('"no such file.csv" 2>&-') == 2
+
+
+def test_a_reader_that_leaves_early_keeps_the_verdict():
+    command = [sys.executable, "-m", "plumbfall", "reduce", str(INVALID), "--json"]
+    with subprocess.Popen(command, stdout=subprocess.PIPE, stderr=subprocess.PIPE) as done:
+        done.stdout.close()
+        assert done.stderr.read() == b""
+    assert done.returncode == 1
+
+
 def test_console_without_unicode_gets_ascii():
     done = subprocess.run(
         [sys.executable, "-m", "plumbfall", "reduce", str(CLEAN)],

@@ -76,6 +76,9 @@ def expand(sources: Iterable[str | os.PathLike[str]], notices: Notices) -> list[
 def load(path: str, notices: Notices) -> RawFile | None:
     """Read a file whole; ``None``, and an error in the notices, where that cannot be done."""
     try:
+        if not path:
+            notices.error("a timing file's name is empty", "name the file")
+            return None
         if os.path.isdir(path):
             notices.error(
                 "is a folder, not a timing file",

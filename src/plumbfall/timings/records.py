@@ -97,5 +97,12 @@ class Timings:
     repairs: tuple[Repair, ...] = ()
     problems: tuple[Problem, ...] = field(default=())
 
+    @classmethod
+    def empty(cls, problems: tuple[Problem, ...] = ()) -> Timings:
+        """Return timings without rows, such as an input that could not be read."""
+        import pandas as pd
+
+        return cls(pd.DataFrame(columns=list(COLUMNS)), problems=problems)
+
     def __len__(self) -> int:
         return len(self.table)
