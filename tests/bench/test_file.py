@@ -17,10 +17,7 @@ def refusal(source):
 
 def test_a_missing_file(tmp_path):
     path = tmp_path / "bench.toml"
-    assert str(refusal(path)) == (
-        f"{path}: no such file; check the path; `plumbfall template DIR` writes a bench sheet to "
-        "fill in"
-    )
+    assert str(refusal(path)) == (f"{path}: no such file; check the folder and the name")
 
 
 def test_a_folder(tmp_path):
@@ -54,7 +51,7 @@ def test_a_pipe_is_not_waited_for(tmp_path):
 def test_an_empty_file(write_sheet, text):
     path = write_sheet(text)
     assert str(refusal(path)) == (
-        f"{path}: is empty; `plumbfall template DIR` writes a bench sheet to fill in"
+        f"{path}: is empty; describe the equipment in it, or name another bench sheet"
     )
 
 

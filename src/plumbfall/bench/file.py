@@ -54,7 +54,7 @@ def _bytes_of(path: str) -> bytes:
             raise InputError(
                 "no such file",
                 path=path,
-                remedy="check the path; `plumbfall template DIR` writes a bench sheet to fill in",
+                remedy="check the folder and the name",
             )
         if not file.is_file():
             raise InputError("is not a regular file", path=path, remedy="give a bench sheet")
@@ -97,7 +97,7 @@ def _text_of(data: bytes, path: str) -> str:
         raise InputError(
             "is empty",
             path=path,
-            remedy="`plumbfall template DIR` writes a bench sheet to fill in",
+            remedy="describe the equipment in it, or name another bench sheet",
         )
     return text
 
