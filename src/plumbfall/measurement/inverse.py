@@ -24,7 +24,9 @@ Brown and Lawler 2003 give a minimum of 0.3895 at Reynolds number 3981, Clift, G
 1978 0.387 at 5370; walls only add to it.
 """
 
-TOLERANCE = 1e-13
+NEAR, TOLERANCE = 1e-7, 1e-13
+"""Last steps in ln Re: after one below the first, Newton's next is below 1e-14 on a smooth law."""
+
 MOST_STEPS = 60
 
 
@@ -83,13 +85,22 @@ def invert(
     late = np.broadcast_to(~(forces.speed > 0) | np.isinf(forces.speed), shape)
     too_wide = np.broadcast_to(~(forces.diameter_ratio <= drag.max_ratio), shape)
     inertial = forces.liquid_density * (forces.speed * forces.diameter) ** 2
+    top = float(np.log(drag.max_reynolds))
     with np.errstate(invalid="ignore", divide="ignore"):
         log_demand = np.log(forces.weight / (3 * np.pi * inertial)) - log_extra
-        x, beyond = _newton(drag, log_demand, float(np.log(drag.max_reynolds)), shape)
-    bad = floating | late | too_wide | beyond
+        start = np.log(drag.wall) - log_demand
+        x, beyond = _newton(drag, log_demand, top, start, shape, NEAR)
+        bad = floating | late | too_wide | beyond
+        log_factor, ratio_slope, reynolds_slope = (np.asarray(part) for part in drag.expand(x))
+        left = np.abs(log_factor - x - log_demand, where=~bad, out=np.zeros(shape))
+        if left.max(initial=0.0) > TOLERANCE:  # a law with a kink at the root
+            x, beyond = _newton(drag, log_demand, top, x, shape, TOLERANCE)
+            bad = floating | late | too_wide | beyond
+            ratio_slope, reynolds_slope = (np.asarray(part) for part in drag.slopes(x))
     if bad.any():
-        x = np.where(bad, np.nan, x)
-    ratio_slope, reynolds_slope = (np.asarray(slope) for slope in drag.slopes(x))
+        x, ratio_slope, reynolds_slope = (
+            np.where(bad, np.nan, part) for part in (x, ratio_slope, reynolds_slope)
+        )
     x = x + ratio_slope * shift / (1 - reynolds_slope)
     reynolds = np.exp(x)
     no_root = late | (beyond & (log_demand < np.log(MINIMUM_DRAG_COEFFICIENT / 24)))
@@ -107,15 +118,20 @@ def invert(
 
 
 def _newton(
-    drag: Bound, log_demand: Numbers, top: float, shape: tuple[int, ...]
+    drag: Bound,
+    log_demand: Numbers,
+    top: float,
+    start: Numbers,
+    shape: tuple[int, ...],
+    tolerance: float,
 ) -> tuple[Numbers, NDArray[np.bool_]]:
     """Return the root, kept below the law's limit, and whether it lies beyond that limit."""
-    x = np.minimum(np.broadcast_to(np.log(drag.wall) - log_demand, shape), top)
+    x = np.minimum(np.broadcast_to(start, shape), top)
     for _ in range(MOST_STEPS):
         log_factor, slope = drag.evaluate(x)
         step = (log_factor - x - log_demand) / (1 - slope)
         beyond = x + step > top
         x = np.minimum(x + step, top)
-        if not np.abs(step, where=~beyond, out=np.zeros(shape)).max(initial=0.0) > TOLERANCE:
+        if not np.abs(step, where=~beyond, out=np.zeros(shape)).max(initial=0.0) > tolerance:
             break
     return x, beyond

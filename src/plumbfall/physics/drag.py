@@ -46,6 +46,9 @@ class Bound(Protocol):
     def evaluate(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
         """Return ln K and its slope d ln K / d ln Re."""
 
+    def expand(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric, Numeric]:
+        """Return ln K and its slopes d ln K / d ln(ratio) and d ln K / d ln Re."""
+
     def slopes(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
         """Return the local powers d ln K / d ln(ratio) and d ln K / d ln Re."""
 
@@ -215,17 +218,22 @@ class BoundDrag:
             self._shaped(slope, log_reynolds),
         )
 
-    def slopes(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
-        """Return the local powers d ln K / d ln(ratio) and d ln K / d ln Re."""
+    def expand(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric, Numeric]:
+        """Return ln K and its slopes d ln K / d ln(ratio) and d ln K / d ln Re."""
         rule = _kernel(self.law.together_law)
         excess, by_log = self._inertia(log_reynolds)
         total, by_inertia = rule(self.wall_excess, excess)
         _, by_wall = rule(excess, self.wall_excess + np.zeros_like(total))
         factor = 1.0 + total
         return (
+            self._shaped(np.log(factor), log_reynolds),
             self._shaped(by_wall * (self.wall * self.wall_slope) / factor, log_reynolds),
             self._shaped(by_inertia * by_log / factor, log_reynolds),
         )
+
+    def slopes(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
+        """Return the local powers d ln K / d ln(ratio) and d ln K / d ln Re."""
+        return self.expand(log_reynolds)[1:]
 
     def factor(self, reynolds: Numeric) -> Numeric:
         """Return K at a Reynolds number, 0 included."""

@@ -161,18 +161,20 @@ class BoundDragMap:
             self._widen(x, log_factor, slope, None)
         return _plain(log_factor), _plain(slope)
 
-    def slopes(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
-        """Return the local powers d ln K / d ln(ratio) and d ln K / d ln Re."""
+    def expand(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric, Numeric]:
+        """Return ln K and its slopes d ln K / d ln(ratio) and d ln K / d ln Re."""
         x = self._within(log_reynolds)
-        read_at = self._read_at(x)
-        log_factor, slope = self.excess(read_at)
+        log_factor, slope, by_ratio = self.excess.with_ratio_slope(self._read_at(x))
         log_factor += self.log_base
-        by_ratio = np.asarray(
-            self.excess.by_ratio(read_at) / (1.0 - self.ratio) + self.wall_slope, dtype=np.float64
-        )
+        by_ratio /= 1.0 - self.ratio
+        by_ratio += self.wall_slope
         if self.wide.any():
             self._widen(x, log_factor, slope, by_ratio)
-        return _plain(by_ratio), _plain(slope)
+        return _plain(log_factor), _plain(by_ratio), _plain(slope)
+
+    def slopes(self, log_reynolds: Numeric) -> tuple[Numeric, Numeric]:
+        """Return the local powers d ln K / d ln(ratio) and d ln K / d ln Re."""
+        return self.expand(log_reynolds)[1:]
 
     def factor(self, reynolds: Numeric) -> Numeric:
         """Return K at a Reynolds number, 0 included."""

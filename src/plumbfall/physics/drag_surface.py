@@ -85,16 +85,22 @@ class BoundExcess:
         height *= x
         return height, slope
 
-    def by_ratio(self, log_reynolds: Array) -> Array:
-        """Slope of the excess by t = ln(ratio / (1 - ratio)), at the same Reynolds number."""
+    def with_ratio_slope(self, log_reynolds: Array) -> tuple[Array, Array, Array]:
+        """Excess, its slope by ln Re, and that by t = ln(ratio / (1 - ratio)) at the same Re."""
         x, share = self._variable(log_reynolds)
         argument = x * (2.0 / self.span) - 1.0
         height, slope = _horner(self.powers, argument)
-        turned = _horner_value(self._turned(), argument)
-        _, end_share = _log_root(_LOG_HIGHEST - self.log_scale)
-        slope *= 2.0 * x / self.span
-        by_scale: Array = (height + slope) * share
-        return x * turned - by_scale + slope * x * (end_share / self.span)
+        by_ratio = _horner_value(self._turned(), argument)
+        slope *= x
+        slope *= 2.0 / self.span
+        end_share = -np.expm1(-2.0 * self.span)
+        by_ratio += slope * (end_share / self.span)
+        slope += height
+        slope *= share
+        by_ratio *= x
+        by_ratio -= slope
+        height *= x
+        return height, slope, by_ratio
 
     def inertia_share(self, log_reynolds: Array) -> Array:
         """Re^2 / (Re^2 + Re_s^2): 0 where walls screen all inertia, 1 where they screen none."""
@@ -139,8 +145,8 @@ class _Surface:
         width = self.high - self.low
         scaled = (2.0 * np.ravel(position) - self.low - self.high) / width
         series = chebyshev.chebder(self.series) * (2.0 / width) if derivative else self.series
-        terms = chebyshev.chebvander(scaled, series.shape[0] - 1)
-        return (series.T @ terms.T).reshape(series.shape[1], *np.shape(position))
+        powers = series.T @ _chebyshev(scaled, series.shape[0])
+        return powers.reshape(series.shape[1], *np.shape(position))
 
 
 @cache
@@ -179,6 +185,17 @@ def _through(points: Array, values: Array) -> Array:
     """Chebyshev series through as many points of [-1, 1] as it has terms."""
     terms = chebyshev.chebvander(points, len(points) - 1)
     return np.asarray(np.linalg.solve(terms, values), dtype=np.float64)
+
+
+def _chebyshev(x: Array, count: int) -> Array:
+    """First Chebyshev polynomials of positions, shape (count, positions)."""
+    terms = np.empty((count, x.size))
+    terms[0], terms[1] = 1.0, x
+    twice = 2.0 * x
+    for n in range(2, count):
+        np.multiply(twice, terms[n - 1], out=terms[n])
+        terms[n] -= terms[n - 2]
+    return terms
 
 
 def _as_powers(series: Array) -> Array:
