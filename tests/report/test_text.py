@@ -67,6 +67,12 @@ def test_it_holds(text: str, part: str) -> None:
     assert part in text
 
 
+def test_what_was_repaired_or_looks_wrong_in_the_files_is_told(text: str) -> None:
+    flat = " ".join(text.split())
+    assert "repaired runs/invented.csv:3: a blank before the unit was taken out" in flat
+    assert "warning runs/invented.csv:8: no reason is given; write a note" in flat
+
+
 def test_a_word_is_explained_once(text: str) -> None:
     assert " ".join(text.split()).count("this many standard uncertainties") == 1
     assert " ".join(text.split()).count("drag on the ball in this tube over its drag") == 1

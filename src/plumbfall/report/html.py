@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any
 from plumbfall._version import __version__
 from plumbfall.report.equipment import bench_conditions, equipment_view, identification
 from plumbfall.report.json_report import json_text, report_document
-from plumbfall.report.observed import observed
+from plumbfall.report.observed import observed, reading_remarks
 from plumbfall.report.page_sets import overview, set_page
 from plumbfall.report.scales import pretty_unit
 from plumbfall.report.summary import counted, visible
@@ -49,6 +49,7 @@ def page(report: Report) -> str:
         equipment=equipment_view(report.bench),
         report=report,
         rows_sum=rows_sum(report),
+        remarks=reading_remarks(report.timings),
         statements=STATEMENTS,
         cautions=CAUTIONS,
         explain=Explainer(),

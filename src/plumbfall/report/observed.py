@@ -12,7 +12,7 @@ if TYPE_CHECKING:
 
     from plumbfall.timings.records import Timings
 
-__all__ = ["Observed", "observed"]
+__all__ = ["Observed", "observed", "reading_remarks"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -69,3 +69,12 @@ def _marks(rows: pd.DataFrame, readings: list[list[float]]) -> dict[tuple[str, i
         key: "  ".join(clock.pair(reading, 0.0).value for reading in clocks)
         for key, clocks in zip(keys, readings, strict=True)
     }
+
+
+def reading_remarks(timings: Timings) -> list[tuple[str, str]]:
+    """Return what was ``repaired`` in reading and what is a ``warning``, each with its place."""
+    remarks = []
+    for repair in timings.repairs:
+        place = f"{repair.file}:{repair.line}" if repair.line else repair.file
+        remarks.append(("repaired", f"{place}: {repair.what}" if place else repair.what))
+    return remarks + [("warning", str(problem)) for problem in timings.problems]

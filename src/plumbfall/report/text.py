@@ -8,6 +8,7 @@ from collections.abc import Iterable, Iterator, Sequence
 from typing import TYPE_CHECKING, TextIO
 
 from plumbfall._version import __version__
+from plumbfall.report.observed import reading_remarks
 from plumbfall.report.scales import Scale
 from plumbfall.report.set_tables import finding_evidence, why_not_used
 from plumbfall.report.summary import counted, visible
@@ -99,9 +100,8 @@ def _lines(report: Report) -> Iterator[str]:
         f"{counted(rows['read'], 'row')} read = {rows['used']} used + {rows['void']} void + "
         f"{rows['excluded']} excluded by rule",
     )
-    for repair in report.timings.repairs:
-        place = f"{repair.file}:{repair.line}" if repair.line else repair.file
-        yield from _wrapped("repaired  ", f"{visible(place)}: {visible(repair.what)}")
+    for kind, what in reading_remarks(report.timings):
+        yield from _wrapped(f"{kind}  ", visible(what))
     yield f"plumbfall {__version__}, seed {report.seed}"
 
 
