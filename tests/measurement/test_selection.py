@@ -4,9 +4,9 @@ from __future__ import annotations
 
 import pandas as pd
 import pytest
-from support.benches import bench_dict, drops_table
 
 import plumbfall as pf
+from support.benches import bench_dict, drops_table
 
 TIMES = {"B1": [14.91, 14.93]}
 SECOND = {
@@ -52,3 +52,26 @@ def test_nothing_described_is_said():
 def test_run_sets_keep_the_order_of_the_file():
     table = pd.concat([drops_table(TIMES, run_set=name) for name in ("z", "a", "m")])
     assert pf.reduce(table, bench_dict()).names == ("z", "a", "m")
+
+
+def test_a_run_set_in_two_liquids_is_refused_with_its_line():
+    bench = bench_dict(liquid__second=SECOND["liquid"])
+    table = drops_table(TIMES).assign(liquid=["oil", "second"])
+    with pytest.raises(pf.InputError, match="drops in liquid 'oil' and, from here, in 'sec") as e:
+        pf.reduce(table, bench)
+    assert e.value.line == 2
+    assert "a run set of their own" in e.value.remedy
+    apart = pf.reduce(table.assign(set=["A", "B"]), bench)
+    assert apart.names == ("A", "B")
+
+
+def test_laws_that_cannot_be_joined_are_refused_with_the_sheet(tmp_path):
+    sheet = tmp_path / "bench.toml"
+    sheet.write_text(
+        '[tube.A]\nbore = "50.00(2) mm"\ndistance = "200.00(5) mm"\n'
+        '[ball.B1]\ndiameter = "2.0000(5) mm"\ndensity = "7.700(3) g/cm3"\n'
+        '[liquid.oil]\ndensity = "970.2(2) kg/m3"\n[methods]\ndrag = "table oseen"\n'
+    )
+    with pytest.raises(pf.InputError) as error:
+        pf.reduce(drops_table(TIMES), sheet)
+    assert (error.value.path, error.value.key) == (str(sheet), "methods.drag")

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
 from plumbfall.bench.records import Bench
 from plumbfall.errors import InputError, Problem
@@ -53,7 +54,10 @@ def drag_law(bench: Bench) -> DragLaw:
                 remedy="name one of them",
             )
         chosen[part] = word
-    return DragLaw(**chosen)
+    try:
+        return DragLaw(**chosen)
+    except InputError as error:  # what may not be joined: the law does not know the bench sheet
+        raise InputError(replace(problem, path=bench.path) for problem in error.problems) from None
 
 
 def model_estimate(bench: Bench) -> Estimate:

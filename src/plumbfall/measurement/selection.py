@@ -92,7 +92,8 @@ def select(timings: Timings, bench: Bench) -> Selection:
     Raises
     ------
     InputError
-        Where a drop's ball, tube or liquid cannot be known, or is not on the bench.
+        Where a drop's ball, tube or liquid cannot be known, or is not on the bench, and where
+        a run set has drops in several liquids.
     """
     table = timings.table
     set_codes, names = _run_sets(table["set"])
@@ -104,6 +105,7 @@ def select(timings: Timings, bench: Bench) -> Selection:
     codes = {kind: _equipment(kind, table, row, run_set, names, bench, problems) for kind in KINDS}
     if problems:
         raise InputError(problems)
+    _check_liquids(table, row, run_set, codes["liquid"], names, list(bench.liquids))
 
     n_marks = np.array([len(tube.marks) for tube in bench.tubes.values()], dtype=np.intp)
     from_mark = table["from_mark"].to_numpy(dtype=np.intp)[row] - 1
@@ -229,6 +231,32 @@ def _open(kind: str, run_set: str, known: list[str], bench: Bench) -> Problem:
         f'[set."{run_set}"] of the bench sheet (known: {", ".join(known)})',
         path=bench.path,
     )
+
+
+def _check_liquids(
+    table: pd.DataFrame,
+    row: Codes,
+    run_set: Codes,
+    liquid: Codes,
+    names: Sequence[str],
+    known: list[str],
+) -> None:
+    """Refuse run sets of several liquids: a mean of two liquids' viscosities is that of none."""
+    own = np.full(len(names), -1, dtype=np.intp)
+    own[run_set[::-1]] = liquid[::-1]  # the first drop's, being written last
+    other = np.flatnonzero(liquid != own[run_set])
+    firsts = other[np.unique(run_set[other], return_index=True)[1]]
+    if len(firsts):
+        raise InputError(
+            Problem(
+                f"run set '{names[run_set[at]]}' has drops in liquid '{known[own[run_set[at]]]}' "
+                f"and, from here, in '{known[liquid[at]]}'",
+                "give the drops in each liquid a run set of their own, or correct the liquid",
+                path=str(table["file"].iloc[int(row[at])]),
+                line=int(table["line"].iloc[int(row[at])]),
+            )
+            for at in firsts.tolist()
+        )
 
 
 def _check_marks(
