@@ -69,6 +69,20 @@ def test_clean_data_stay_clean():
             "through a guide",
         ),
         (
+            {"tube__A__tilt": "5.0(3) deg"},
+            "off-axis-suspected",
+            "warning",
+            "the tube is tilted by 5 deg, which brings a ball 0.94 bore radii off the axis",
+            "plumb the tube",
+        ),
+        (
+            {"timer": {}},
+            "missing-uncertainty",
+            "note",
+            "no timer is described: the bounds leave out the error that all times share",
+            "add [timer.NAME]",
+        ),
+        (
             {"liquid__oil__viscosity_slope": None},
             "slope-unknown",
             "note",
@@ -178,6 +192,12 @@ def test_an_outlier_is_left_out_only_by_the_named_rule():
     assert (drop.used, drop.status, drop.note) == (False, "excluded", "grubbs-1-percent")
 
 
+def test_an_outlier_is_told_with_the_level_it_was_judged_by():
+    times = [14.91, 14.93, 14.90, 14.94, 14.92, 14.91, 16.2, 14.93]
+    found, _ = findings({"B1": times}, limits={"outlier_level": 0.001})
+    assert ", 0.1 % limit 2.38 for 8 drops" in found["outlier"].message
+
+
 def test_three_drops_have_no_outlier_and_that_is_said():
     found, _ = findings({"B1": [14.9, 14.9, 19.0]})
     assert "outlier" not in found
@@ -224,6 +244,42 @@ def test_no_temperature_at_all_is_said():
     found, result = findings(table=table, liquid__oil__viscosity_slope=None)
     assert "no temperature was recorded" in found["slope-unknown"].message
     assert result.temperature is None
+
+
+def test_no_temperature_is_said_of_a_liquid_with_a_slope_too():
+    table = pd.DataFrame({"ball": ["B1"], "time [s]": [14.9], "set": ["A"]})
+    found, result = findings(table=table, bench__reference_temperature="20 degC")
+    assert found["density-temperature"].severity == "warning"
+    assert "no temperature was recorded" in found["density-temperature"].message
+    assert "nothing is reduced to the reference" in found["density-temperature"].message
+    assert result.viscosity_at_reference is None
+
+
+def test_a_wide_ball_on_the_axis_is_not_called_off_it():
+    wide = {"diameter": "30.000(5) mm", "density": "7.700(3) g/cm3"}
+    tube = {"tube__A__release_offset": "0.0(5) mm", "tube__A__tilt": None}
+    found, _ = findings({"B9": [12.60, 12.61]}, ball={"B9": wide}, **tube)
+    assert "off-axis-suspected" not in found
+    tube["tube__A__release_offset"] = "2.0(5) mm"
+    assert "off-axis-suspected" in findings({"B9": [12.60, 12.61]}, ball={"B9": wide}, **tube)[0]
+
+
+def test_a_ratio_just_beyond_a_limit_is_told_from_it():
+    wide = {"diameter": "30.003(5) mm", "density": "7.700(3) g/cm3"}
+    found, _ = findings({"B9": [12.60]}, ball={"B9": wide}, methods={"drag": "bohlin"})
+    assert "diameter ratio 0.60003 is above 0.6," in found["diameter-ratio-high"].message
+
+
+@pytest.mark.parametrize(
+    ("limits", "says"),
+    [
+        ({"outlier_level": 5}, "5 cannot be a limit of this kind; write a number from 0 to below"),
+        ({"temperature_spread": -1}, "-1 cannot be a limit of this kind; write a number of at"),
+    ],
+)
+def test_a_number_that_cannot_be_the_limit_is_refused(limits, says):
+    with pytest.raises(pf.InputError, match=f"limits.{next(iter(limits))}: {says}"):
+        findings(limits=limits)
 
 
 def test_limits_may_be_overridden_and_unknown_ones_are_refused():

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
+import numpy as np
+
 from plumbfall.findings.data import Found, RunData
 from plumbfall.results import Finding
 
@@ -34,6 +36,7 @@ def default_gravity(data: RunData) -> Iterator[Found]:
 
 def missing_uncertainty(data: RunData) -> Iterator[Found]:
     """Find measured inputs that were given as if they were exact."""
+    yield from _no_timer(data)
     if not data.unstated:
         return
     unstated = set(data.unstated)
@@ -58,5 +61,21 @@ def missing_uncertainty(data: RunData) -> Iterator[Found]:
                 statistic=float(len(keys)),
                 message=f"no uncertainty is given for {shown}; the bounds leave it out",
                 remedy="write it into the bench sheet, such as '50.00(2) mm'",
+            ),
+        )
+
+
+def _no_timer(data: RunData) -> Iterator[Found]:
+    cells = data.selection.cells
+    for run_set in np.unique(cells.run_set[cells.timer == -1]):
+        yield (
+            int(run_set),
+            Finding(
+                code="missing-uncertainty",
+                severity="note",
+                message="no timer is described: the bounds leave out the error that all times "
+                "share, such as a late hand or a slow clock",
+                remedy='add [timer.NAME] with kind = "stopwatch", gate or video, or its bias and '
+                "rate",
             ),
         )

@@ -118,9 +118,12 @@ def _allowed_for(data: RunData, run_set: int) -> tuple[str, float | None]:
 def off_axis_suspected(data: RunData) -> Iterator[Found]:
     """Find releases so far off the axis that the ball falls beside the wall."""
     tube = data.selection.cells.tube[data.selection.cell]
-    beta = _of_tubes(data, "release_offset")[tube] / (_of_tubes(data, "bore")[tube] / 2)
-    for run_set, drops in data.flagged(near_wall(beta, data.columns.diameter_ratio)):
-        worst = drops[np.argmax(np.abs(beta[drops]))]
+    radius = _of_tubes(data, "bore")[tube] / 2
+    beta = np.abs(_of_tubes(data, "release_offset")[tube]) / radius
+    let_go_beside = _beside(beta, data.columns.diameter_ratio)
+    yield from _tilted(data, ~let_go_beside)
+    for run_set, drops in data.flagged(let_go_beside):
+        worst = drops[np.argmax(beta[drops])]
         yield (
             run_set,
             Finding(
@@ -128,10 +131,45 @@ def off_axis_suspected(data: RunData) -> Iterator[Found]:
                 severity="warning",
                 drops=data.numbers(drops),
                 statistic=float(beta[worst]),
-                message=f"the ball is let go {abs(beta[worst]):.2f} bore radii off the axis and "
+                message=f"the ball is let go {beta[worst]:.2f} bore radii off the axis and "
                 "falls so near the wall that its drag there is not known; it is taken as on the "
                 "axis, and the viscosity comes out too high",
                 remedy="let the ball go on the axis, through a guide",
+            ),
+        )
+
+
+def _beside(beta: np.ndarray, ratio: np.ndarray) -> np.ndarray:
+    """Whether a ball's drag off the axis is not known, and it is off by more than a touch.
+
+    A wide ball is near the wall on the axis too, where its drag is known: a tenth of its
+    clearance is let pass (common practice, no source).
+    """
+    beside: np.ndarray = near_wall(beta, ratio) & (beta > (1 - ratio) / 10)
+    return beside
+
+
+def _tilted(data: RunData, among: np.ndarray) -> Iterator[Found]:
+    """Find tubes so far from the vertical that the ball meets the wall before the last mark."""
+    cell = data.selection.cell
+    tube = data.selection.cells.tube[cell]
+    known = {key: np.nan_to_num(_of_tubes(data, key)) for key in ("tilt", "release_above")}
+    path = known["release_above"][tube] + data.inputs.roles["to_mark"].value[cell]
+    drift = path * np.abs(np.tan(known["tilt"][tube])) / (_of_tubes(data, "bore")[tube] / 2)
+    for run_set, drops in data.flagged(among & _beside(drift, data.columns.diameter_ratio)):
+        worst = drops[np.argmax(drift[drops])]
+        tilt = np.degrees(abs(known["tilt"][tube[worst]]))
+        yield (
+            run_set,
+            Finding(
+                code="off-axis-suspected",
+                severity="warning",
+                drops=data.numbers(drops),
+                statistic=float(drift[worst]),
+                message=f"the tube is tilted by {tilt:.2g} deg, which brings a ball "
+                f"{drift[worst]:.2f} bore radii off the axis by the last mark, near the wall; its "
+                "drag there is not known, and the viscosity comes out too high",
+                remedy="plumb the tube, and repeat the run set",
             ),
         )
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import dataclasses
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass
 
@@ -62,13 +63,17 @@ class Limits:
     density_effect: float = 5e-4
 
 
+_PROBABILITIES = ("outlier_level", "straggler_level", "many_excluded")
+
+
 def limits_from(overrides: Mapping[str, float | bool], path: str = "") -> Limits:
     """Return the limits with the bench sheet's overrides.
 
     Raises
     ------
     InputError
-        For a limit that no finding uses; it names the nearest one.
+        For a limit that no finding uses (it names the nearest one), and for a number that
+        cannot be one.
     """
     known = [f.name for f in dataclasses.fields(Limits)]
     problems = []
@@ -79,6 +84,16 @@ def limits_from(overrides: Mapping[str, float | bool], path: str = "") -> Limits
                 Problem(
                     f"no finding uses a limit '{name}'",
                     f"did you mean '{near}'?" if near else f"known: {', '.join(known)}",
+                    path=path,
+                    key=f"limits.{name}",
+                )
+            )
+        elif not 0 <= float(overrides[name]) < (1 if name in _PROBABILITIES else math.inf):
+            wanted = "from 0 to below 1" if name in _PROBABILITIES else "of at least 0"
+            problems.append(
+                Problem(
+                    f"{overrides[name]:g} cannot be a limit of this kind",
+                    f"write a number {wanted}",
                     path=path,
                     key=f"limits.{name}",
                 )

@@ -112,6 +112,7 @@ def outlier(data: RunData) -> Iterator[Found]:
             without = mean + (mean - own) / max(values - 1, 1)
         effect = float(without / mean - 1)
         number = data.numbers(np.array([drop]))[0]
+        level = f"{100 * data.limits.outlier_level:g} %"
         critical = float(grubbs_critical(n=n, level=data.limits.outlier_level))
         yield (
             int(run_set),
@@ -124,8 +125,8 @@ def outlier(data: RunData) -> Iterator[Found]:
                 effect=effect,
                 message=f"drop {number} ({data.selection.time[drop]:.2f} s) is "
                 f"{100 * abs(own / mean - 1):.1f} % {'above' if own > mean else 'below'} the mean "
-                f"(Grubbs {found.statistic[run_set]:.2f}, 1 % limit {critical:.2f} for {n} drops); "
-                f"it is kept; without it the viscosity would be {100 * abs(effect):.2f} % "
+                f"(Grubbs {found.statistic[run_set]:.2f}, {level} limit {critical:.2f} for {n} "
+                f"drops); it is kept; without it the viscosity would be {100 * abs(effect):.2f} % "
                 f"{'higher' if effect > 0 else 'lower'}",
                 remedy="look for a bubble, a wrong ball, or a mistimed mark; if there was one, "
                 "mark the drop void and note the reason",

@@ -84,7 +84,7 @@ def diameter_ratio_high(data: RunData) -> Iterator[Found]:
                 severity="error",
                 drops=data.numbers(drops),
                 statistic=ratio,
-                message=f"the diameter ratio {ratio:.3f} is above {data.law.max_ratio:g}, the "
+                message=f"the diameter ratio {ratio:.5g} is above {data.law.max_ratio:g}, the "
                 f"limit of the drag law '{data.law.ratio_law.name}'",
                 remedy="use a smaller ball or a wider tube, or calibrate the tube with this ball",
             ),

@@ -86,7 +86,8 @@ def temperature_spread(data: RunData) -> Iterator[Found]:
 
 
 def density_temperature(data: RunData) -> Iterator[Found]:
-    """Find densities taken at another temperature where the expansion is not known."""
+    """Find densities that cannot be brought to the drops' temperature, or that at none."""
+    yield from _temperature_missing(data)
     cells = data.selection.cells
     unknown = np.array([liquid.expansion is None for liquid in data.liquids], bool)[cells.liquid]
     offset = data.columns.set_temperature[cells.run_set] - data.inputs.liquid_density_at
@@ -111,5 +112,23 @@ def density_temperature(data: RunData) -> Iterator[Found]:
                 f"about {100 * effect[worst]:.2f} % of viscosity",
                 remedy=f'add expansion = "… /K" to [liquid.{liquid}], or the density at '
                 "the drops' temperature",
+            ),
+        )
+
+
+def _temperature_missing(data: RunData) -> Iterator[Found]:
+    """Find sets without temperature whose liquid is said to change with it."""
+    lost = np.isnan(_ranges(data))[data.selection.cells.run_set] & data.inputs.slope_known
+    for run_set in np.unique(data.selection.cells.run_set[lost]):
+        asked = data.bench.reference_temperature is not None
+        yield (
+            int(run_set),
+            Finding(
+                code="density-temperature",
+                severity="warning",
+                message="no temperature was recorded, so the viscosity holds at an unknown one, "
+                "and the liquid's density is taken as it stands in the bench sheet"
+                + ("; nothing is reduced to the reference temperature" if asked else ""),
+                remedy="add a temperature column to the timing file, or temperature to the run set",
             ),
         )
