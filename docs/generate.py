@@ -21,9 +21,11 @@ from plumbfall.bench.schema import Sheet
 from plumbfall.bench.usual import USUAL
 from plumbfall.cli import build_parser
 from plumbfall.findings.limits import Limits
+from plumbfall.flow.tables import read_table, tables_directory
 from plumbfall.physics.laws import DEFAULTS, KINDS, laws_of
+from plumbfall.physics.measured_errors import PLACES, measured_errors
 from plumbfall.quantities import DIMENSIONS
-from plumbfall.report.methods import TITLES
+from plumbfall.report.methods import TITLES, percent
 
 __all__ = ["DOCS", "PARTS", "filled", "main", "toml"]
 
@@ -259,6 +261,37 @@ def laws() -> str:
     return "\n\n".join(parts)
 
 
+def errors() -> str:
+    """Return the measured error of every law in percent, a table for each kind and place."""
+    parts = []
+    for kind in KINDS:
+        found = measured_errors(kind)
+        for law_or_all in sorted({name for of, name in PLACES if of == kind}, reverse=True):
+            ones = [one for one in found if law_or_all in ("", one.law)]
+            cells = {(one.law, one.place): percent(one.error) for one in ones}
+            places = sorted({one.place for one in ones})
+            names = list(dict.fromkeys(one.law for one in ones))
+            head = ", ".join(PLACES[kind, law_or_all])
+            rows = (
+                (f"`{name}`", *(cells.get((name, place), "") for place in places)) for name in names
+            )
+            columns = (", ".join(f"{number:g}" for number in place) for place in places)
+            parts += [f"**{TITLES[kind]}**", table((f"law; {head}", *columns), rows)]
+    return "\n\n".join(parts)
+
+
+def shipped() -> str:
+    """Return every shipped table with what made it and the error it states."""
+    rows = []
+    for name in sorted(path.stem for path in tables_directory().glob("*.json")):
+        about = read_table(name, tables_directory()).about
+        size = (tables_directory() / f"{name}.json").stat().st_size
+        error = next(value for key, value in about.items() if key.startswith("estimated"))
+        made = (str(about[key]) for key in ("quantity", "solver", "settings"))
+        rows.append((f"`{name}`", *made, f"{error:g}", f"{size / 1000:.0f}"))
+    return table(("table", "what", "solver", "settings", "estimated error", "kB"), rows)
+
+
 def limits() -> str:
     """Return every limit of the findings with its default."""
     about = dict(_described(inspect.getdoc(Limits) or ""))
@@ -280,6 +313,8 @@ PARTS: Mapping[tuple[str, str], Callable[[], str]] = {
     ("bench_sheet.md", "keys"): bench_keys,
     ("command_line.md", "commands"): commands,
     ("findings.md", "limits"): limits,
+    ("methods.md", "errors"): errors,
+    ("methods.md", "tables"): shipped,
     ("physics.md", "laws"): laws,
 }
 """What makes each generated part, by document and name."""
