@@ -37,7 +37,7 @@ def summary_table(sets: SetColumns, found: tuple[tuple[Finding, ...], ...]) -> p
     return pd.DataFrame(
         {
             "set": list(sets.selection.names),
-            "status": [status_of(findings) for findings in found],
+            "status": [status_of(findings) if findings else "valid" for findings in found],
             "viscosity_mPa_s": viscosity.value * 1e3,
             "standard_uncertainty_mPa_s": viscosity.u * 1e3,
             "expanded_uncertainty_mPa_s": viscosity.expanded * 1e3,
@@ -51,7 +51,8 @@ def summary_table(sets: SetColumns, found: tuple[tuple[Finding, ...], ...]) -> p
             "n_drops": sets.weights.n_drops,
             "n_balls": n_balls,
             "findings": [
-                " ".join(dict.fromkeys(finding.code for finding in findings)) for findings in found
+                " ".join(dict.fromkeys(finding.code for finding in findings)) if findings else ""
+                for findings in found
             ],
         }
     )
