@@ -97,6 +97,13 @@ def test_clean_data_stay_clean():
             "viscosity_slope",
         ),
         (
+            {"liquid__oil__viscosity_slope": "2.0(2) %/K"},
+            "unit-slip-suspected",
+            "warning",
+            "is said to rise by 2 %/K as it warms",
+            "check the sign",
+        ),
+        (
             {"ball__B3__diameter": "1.5001(2) mm"},
             "radius-as-diameter-suspected",
             "error",

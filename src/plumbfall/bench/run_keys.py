@@ -79,7 +79,7 @@ class LiquidKeys(Equipment):
     ] = None
     viscosity_slope: Annotated[
         Maybe,
-        quantity("temperature coefficient", Range(-100, 0, "%/K")),
+        quantity("temperature coefficient", Range(-100, 100, "%/K")),
         doc(
             "relative change of the viscosity with temperature, d ln(viscosity)/dT; below zero",
             example="-2.0(2) %/K",

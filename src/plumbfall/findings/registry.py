@@ -26,7 +26,12 @@ from plumbfall.findings.solvability import (
     reynolds_high,
     reynolds_uncertain,
 )
-from plumbfall.findings.temperatures import density_temperature, slope_unknown, temperature_spread
+from plumbfall.findings.temperatures import (
+    density_temperature,
+    slope_sign,
+    slope_unknown,
+    temperature_spread,
+)
 from plumbfall.results import SEVERITIES, Finding
 
 __all__ = ["DETECTORS", "find"]
@@ -46,6 +51,7 @@ DETECTORS: tuple[Detector, ...] = (
     off_axis_suspected,
     temperature_spread,
     density_temperature,
+    slope_sign,
     slope_unknown,
     many_excluded,
     void_without_reason,

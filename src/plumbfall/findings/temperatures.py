@@ -10,7 +10,7 @@ from plumbfall.findings.data import Found, RunData
 from plumbfall.measurement.inputs import cold_ball_density
 from plumbfall.results import Finding
 
-__all__ = ["density_temperature", "slope_unknown", "temperature_spread"]
+__all__ = ["density_temperature", "slope_sign", "slope_unknown", "temperature_spread"]
 
 USUAL_EXPANSION = 7e-4
 """Volumetric expansion of common liquids, 1/K, to judge what an unknown one may cost.
@@ -59,6 +59,27 @@ def slope_unknown(data: RunData) -> Iterator[Found]:
                 statistic=None if np.isnan(span) else float(span),
                 message=message,
                 remedy=remedy,
+            ),
+        )
+
+
+def slope_sign(data: RunData) -> Iterator[Found]:
+    """Find liquids that are said to thicken as they warm; most often the minus is missing."""
+    for run_set, code in data.pairs("liquid"):
+        liquid = data.liquids[code]
+        slope = liquid.viscosity_slope
+        if slope is None or slope.value <= 0:
+            continue
+        yield (
+            int(run_set),
+            Finding(
+                code="unit-slip-suspected",
+                severity="warning",
+                statistic=slope.value,
+                message=f"the viscosity of {liquid.name} is said to rise by "
+                f"{100 * slope.value:.2g} %/K as it warms; nearly every liquid thins",
+                remedy=f"check the sign of [liquid.{liquid.name}] viscosity_slope; "
+                "it is negative where the liquid thins",
             ),
         )
 
