@@ -22,7 +22,9 @@ __all__ = ["BenchSource", "TimingSource", "find_bench", "inspect_inputs", "reduc
 
 FilePath: TypeAlias = str | os.PathLike[str]
 BenchSource: TypeAlias = FilePath | Mapping[str, Any] | Bench
-TimingSource: TypeAlias = FilePath | pd.DataFrame | Timings | Iterable[FilePath | pd.DataFrame]
+TimingSource: TypeAlias = (
+    FilePath | pd.DataFrame | Mapping[str, Any] | Timings | Iterable[FilePath | pd.DataFrame]
+)
 
 DEFAULT_BENCH = "bench.toml"
 
@@ -60,7 +62,7 @@ def reduce(
 
     Parameters
     ----------
-    timings : path, list of paths, DataFrame or Timings
+    timings : path, list of paths, DataFrame, dict of columns or Timings
         Timed drops, one row a drop.
     bench : path, dict or Bench, optional
         The bench sheet; ``bench.toml`` beside the timing file where not given.

@@ -169,3 +169,11 @@ def test_a_table_s_default_set_and_named_index(folder):
 )
 def test_wrong_tables_are_refused(columns, says):
     assert str(collect(pd.DataFrame(columns)).problems[0]) == says
+
+
+def test_a_dict_of_columns_is_a_table():
+    columns = {"set": ["a", "a"], "time [s]": [12.5, 12.6]}
+    frame = pd.DataFrame(columns)
+    pd.testing.assert_frame_equal(read_timings(columns).table, read_timings(frame).table)
+    with pytest.raises(TypeError, match="a source of timings is a path or a DataFrame, not 5"):
+        read_timings(5)

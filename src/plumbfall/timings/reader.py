@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from dataclasses import replace
 from pathlib import PurePath
-from typing import TypeAlias
+from typing import Any, TypeAlias
 
 import pandas as pd
 
@@ -34,7 +34,7 @@ from plumbfall.timings.spreadsheets import spreadsheet_grid
 __all__ = ["Source", "collect", "read_timings"]
 
 Path: TypeAlias = str | os.PathLike[str]
-Source: TypeAlias = Path | pd.DataFrame | Iterable[Path | pd.DataFrame]
+Source: TypeAlias = Path | pd.DataFrame | Mapping[str, Any] | Iterable[Path | pd.DataFrame]
 
 
 def read_timings(
@@ -48,9 +48,10 @@ def read_timings(
 
     Parameters
     ----------
-    source : path, DataFrame, or list of them
-        CSV, TSV, text or XLSX files; wildcards are expanded. A DataFrame has the headings of a
-        file, units included; its drops come from the file ``<table>``, lines counted from 1.
+    source : path, DataFrame, dict, or list of paths and DataFrames
+        CSV, TSV, text or XLSX files; wildcards are expanded. A DataFrame, or a dict of columns,
+        has the headings of a file, units included; its drops come from the file ``<table>``,
+        lines counted from 1.
     bench : Bench, optional
         Names of balls, tubes, liquids and instruments, and the tubes' marks, are checked against
         it, and its ``timings`` entry helps to read the files.
@@ -174,8 +175,12 @@ def _sources(source: Source, notices: Notices) -> list[str | pd.DataFrame]:
     """Return every table and every path, wildcards expanded."""
     if isinstance(source, (str, os.PathLike)):
         return list(expand([source], notices))
+    if isinstance(source, Mapping):
+        source = pd.DataFrame(source)
     if isinstance(source, pd.DataFrame):
         return [source]
+    if not isinstance(source, Iterable):
+        raise TypeError(f"a source of timings is a path or a DataFrame, not {source!r:.40}")
     found: list[str | pd.DataFrame] = []
     paths: list[Path] = []
     for item in source:
