@@ -25,7 +25,10 @@ SEVERITIES = ("error", "warning", "note")
 
 @dataclass(frozen=True, slots=True)
 class Quantity:
-    """A value in its SI unit with its standard uncertainty (0 where exact)."""
+    """A value in its SI unit with its standard uncertainty.
+
+    0 where the value is exact, NaN where no uncertainty is claimed.
+    """
 
     value: float
     unit: str

@@ -99,7 +99,7 @@ def test_what_cannot_be_answered_is_refused():
         fall_time(viscosity=1.0, tube_bore=0.05, marks=[0, 0.1], **{**STEEL, "ball_density": 900.0})
     with pytest.raises(PhysicsRangeError, match="Reynolds number above"):
         fall_time(viscosity=1e-3, tube_bore=0.05, marks=[0, 0.1], **STEEL)
-    with pytest.raises(InputError, match="marks do not increase"):
+    with pytest.raises(InputError, match="marks are not a list of at least two increasing"):
         fall_time(viscosity=1.0, tube_bore=0.05, marks=[0.1, 0.0], **STEEL)
     with pytest.raises(InputError, match="no surface 'open'"):
         fall_time(viscosity=1.0, tube_bore=0.05, marks=[0, 0.1], surface="open", **STEEL)

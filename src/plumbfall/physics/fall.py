@@ -186,7 +186,10 @@ def fall_time(
     """
     places = np.asarray(marks, dtype=float)
     if places.ndim != 1 or len(places) < 2 or (np.diff(places) <= 0).any():
-        raise InputError("marks do not increase", remedy="give distances down from the first mark")
+        raise InputError(
+            "marks are not a list of at least two increasing distances",
+            remedy="give distances down from the first mark, such as [0.0, 0.2]",
+        )
     if surface not in ("free", "lid"):
         raise InputError(f"there is no surface '{surface}'", remedy="known: free, lid")
     per_drop = (

@@ -101,10 +101,7 @@ def facts(result: RunSetResult, scale: Scale) -> list[Fact]:
         where = scale_for(measured.unit, measured.value)
         shown.append(_interval("Kinematic viscosity", measured, where, "kinematic viscosity"))
     if result.stokes_viscosity is not None:
-        pair = scale.pair(result.stokes_viscosity.value, result.stokes_viscosity.u)
-        text = pair.concise if result.stokes_viscosity.u else scale.alone(
-            result.stokes_viscosity.value, 5
-        )  # fmt: skip
+        text = scale.alone(result.stokes_viscosity.value, 5)
         shown.append(Fact("By Stokes' law alone", text, scale.unit, "Stokes' law"))
     counts = f"{result.n_drops} of {counted(result.n_read, 'drop')}"
     shown.append(Fact("Drops and balls", f"{counts}, {counted(result.n_balls, 'ball')}"))

@@ -195,8 +195,13 @@ def _temperature_u(all_sets: SetColumns, cells: NDArray[np.intp]) -> float:
 
 
 def _stokes(all_sets: SetColumns, used: NDArray[np.intp]) -> Quantity | None:
+    """Return Stokes' law's own answer; no uncertainty is claimed for what leaves the walls out."""
     value = float(np.sum(all_sets.weights.weight[used] * all_sets.columns.stokes[used]))
-    return Quantity(value, "Pa.s") if len(used) and math.isfinite(value) and value > 0 else None
+    return (
+        Quantity(value, "Pa.s", math.nan)
+        if len(used) and math.isfinite(value) and value > 0
+        else None
+    )
 
 
 def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correction, ...]:
