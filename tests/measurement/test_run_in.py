@@ -2,10 +2,13 @@
 
 from __future__ import annotations
 
+import numpy as np
 import pandas as pd
 import pytest
 
 import plumbfall as pf
+from plumbfall.flow.start_inertial import InertialStart
+from plumbfall.measurement.run_in import start_beyond_table
 
 BENCH = {
     "site": {"gravity": "9.81 m/s2"},
@@ -95,3 +98,47 @@ def test_a_start_beyond_the_table_is_said_and_not_corrected():
     (finding,) = (f for f in result.findings if f.code == "run-in-short")
     assert run_in == 1.0
     assert "is not known here" in finding.message
+
+
+def test_beyond_the_table_the_bounds_hold_what_is_left_in():
+    # Reynolds number near 50, let go 12 and 50 ball diameters above the first mark
+    near, far = (
+        reduced(0.12, tube={"release_above": f"{y} mm", "surface_above": "400 mm"})
+        for y in (36, 150)
+    )
+    assert near.reynolds == far.reynolds > 31
+    (finding,) = (f for f in near.findings if f.code == "run-in-short")
+    assert "only the bounds allow for" in finding.message
+    assert finding.effect > 0.01
+    assert not {"run-in-short", "reynolds-high"} & {f.code for f in far.findings}
+    assert "reynolds-high" not in [f.code for f in near.findings]  # the drag itself is well known
+    short, none = (
+        next(line for line in r.budget if line.input == "methods.model_uncertainty").u
+        for r in (near, far)
+    )
+    assert short > finding.effect / 2 > 4e-4 > none
+
+
+@pytest.mark.parametrize(
+    ("ratio", "reynolds", "density_ratio"),
+    [(0.1, 100.0, 8.0), (0.05, 60.0, 2.0), (0.45, 60.0, 8.0), (0.1, 20.0, 20.0)],
+)
+def test_most_a_start_beyond_the_table_may_come_to(ratio, reynolds, density_ratio):
+    run = InertialStart(diameter_ratio=ratio, reynolds=reynolds, degree=3).run(
+        density_ratio=density_ratio, missing=1e-4
+    )
+    fallen = np.append(reynolds / 2 * (run.time - run.lost), 1e9)
+    first, one = np.array([2.0, 10.0, 20.0, 30.0]), np.ones(4)  # ball radii
+    computed = np.diff(
+        np.interp([first, first + 40.0], fallen, np.append(run.lost, run.lost_in_all)), axis=0
+    )[0]
+    ball = {
+        "ball_diameter": 2 * one,
+        "tube_bore": 2 * one / ratio,
+        "fall_speed": reynolds / 2 * one,
+        "liquid_density": one,
+        "ball_density": density_ratio * one,
+    }
+    most = start_beyond_table(first, first + 40.0, ball, reynolds * one)
+    assert (most > computed).all()
+    assert (most < 2.5 * computed + 1e-3 * 40 / (reynolds / 2)).all()

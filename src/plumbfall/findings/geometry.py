@@ -13,12 +13,6 @@ from plumbfall.results import Finding
 
 __all__ = ["end_near", "geometry_unknown", "off_axis_suspected", "run_in_short"]
 
-GUARD_DIAMETERS = 25.0 / 3.0
-"""Ball diameters of fall after which a start beyond the computed ones is taken as over.
-
-The project's book of formulas gives this for Reynolds numbers 5 to 30; a rule of thumb.
-"""
-
 GEOMETRY = {
     "surface_above": "the end effect of the surface",
     "bottom_below": "the end effect of the bottom",
@@ -78,12 +72,16 @@ def run_in_short(data: RunData) -> Iterator[Found]:
     tube = data.selection.cells.tube[data.selection.cell]
     released = _of_tubes(data, "release_above")[tube]
     bias = columns.run_in - 1
-    near = released < GUARD_DIAMETERS * columns.diameter
-    unknown = columns.start_unknown & near
+    unknown = columns.start_unknown
     for run_set, drops in data.flagged((bias > data.limits.run_in) | unknown):
-        worst = drops[np.argmax(np.where(unknown[drops], np.inf, bias[drops]))]
+        late = np.where(unknown, 1.0 + columns.start_bound, bias)
+        worst = drops[np.argmax(late[drops])]
         if unknown[worst]:
-            cost = "how much later the last mark is reached because of that is not known here"
+            cost = (
+                "how much later the last mark is reached because of that is not known here; the "
+                f"viscosity may be {100 * columns.start_bound[worst]:.2g} % too high, which only "
+                "the bounds allow for"
+            )
         else:
             cost = (
                 f"the timing is {100 * bias[worst]:.2f} % too long because of that, which the "
@@ -96,7 +94,7 @@ def run_in_short(data: RunData) -> Iterator[Found]:
                 severity="warning",
                 drops=data.numbers(drops),
                 statistic=float(released[worst]),
-                effect=None if unknown[worst] else float(bias[worst]),
+                effect=float(columns.start_bound[worst] if unknown[worst] else bias[worst]),
                 message=f"the ball is let go only {1000 * released[worst]:.0f} mm above the first "
                 f"mark and is still gaining speed there; {cost}",
                 remedy="let the ball go higher above the first mark, or use a smaller ball",

@@ -93,11 +93,12 @@ def diameter_ratio_high(data: RunData) -> Iterator[Found]:
 
 def reynolds_uncertain(data: RunData) -> Iterator[Found]:
     """Find drops where the law holds, but inertia makes it less certain than the rest."""
-    flag = data.columns.model_bound > data.limits.model_bound
+    of_law = data.columns.model_bound - data.columns.start_bound
+    flag = of_law > data.limits.model_bound
     for run_set, drops in data.flagged(flag):
         worst = drops[np.argmax(data.columns.reynolds[drops])]
         reynolds = float(data.columns.reynolds[worst])
-        bound = float(data.columns.model_bound[worst])
+        bound = float(of_law[worst])
         yield (
             run_set,
             Finding(

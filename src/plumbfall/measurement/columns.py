@@ -17,7 +17,8 @@ class DropColumns:
     """What was computed of each used drop, SI, shape (drops,); NaN where there is no solution.
 
     ``at_set`` is the viscosity brought to the run set's temperature, ``stokes`` the same by
-    Stokes' law alone. ``set_temperature`` has shape (run sets,), NaN where unknown.
+    Stokes' law alone. ``start_bound`` is the run-in's part of ``model_bound``. ``set_temperature``
+    has shape (run sets,), NaN where unknown.
     """
 
     temperature: Numbers
@@ -35,6 +36,7 @@ class DropColumns:
     drag_factor: Numbers
     shear_stress: Numbers
     model_bound: Numbers
+    start_bound: Numbers
     floating: NDArray[np.bool_]
     too_fast: NDArray[np.bool_]
     too_wide: NDArray[np.bool_]
@@ -68,6 +70,7 @@ def empty_columns(n: int, temperature: Numbers, set_temperature: Numbers) -> Dro
         drag_factor=numbers(),
         shear_stress=numbers(),
         model_bound=numbers(),
+        start_bound=np.zeros(n),
         floating=flags(),
         too_fast=flags(),
         too_wide=flags(),

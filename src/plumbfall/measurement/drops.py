@@ -170,7 +170,8 @@ def _compute_block(
             out.run_in[block] = longer
             out.start_unknown[block] = start.unknown
             # an error of the time is one of the drag, (1 + s) times as large
-            bound = bound + (1 + found.reynolds_slope) * start.error
+            out.start_bound[block] = (1 + found.reynolds_slope) * start.error
+            bound = bound + out.start_bound[block]
         out.viscosity[block] = found.viscosity
         out.at_set[block] = found.viscosity * to_set
         out.stokes[block] = stokes * to_set

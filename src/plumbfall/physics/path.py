@@ -12,6 +12,7 @@ from typing import Literal
 import numpy as np
 from numpy.typing import NDArray
 
+from plumbfall.physics.exact import creeping_wall_factor
 from plumbfall.physics.exact_ends import (
     END_EXCESS_RATIO_LIMITS,
     END_EXCESS_REACH,
@@ -96,10 +97,27 @@ def path_excess(
 def _excess(
     ratio: Numbers, places: Numbers, end: Literal["solid", "free"]
 ) -> tuple[Numbers, Numbers, Numbers]:
-    """Excess of the table; below its least ratio in proportion to the ratio, its limit."""
+    """Excess of the table; below its least ratio that of a small ball.
+
+    A small ball's drag in a given place is 1 / (1 - C ratio) times its Stokes drag (Faxén 1922 in a
+    tube, Lorentz 1907 near a plane). C is read where the table ends.
+    """
     least = END_EXCESS_RATIO_LIMITS[0]
     small = ratio < least
     found = end_excess_table(np.where(small, least, ratio), places, end)
     excess, of_place, of_ratio = (np.asarray(part) for part in found)
-    scale = np.where(small, ratio / least, 1.0)
-    return excess * scale, of_place * scale, np.where(small, excess / least, of_ratio)
+    if not small.any():
+        return excess, of_place, of_ratio
+    edge_wall = float(creeping_wall_factor(least)[0])
+    wall, wall_slope = creeping_wall_factor(np.where(small, ratio, least))
+    edge = edge_wall * (1.0 + excess)
+    coefficient = (1.0 - 1.0 / edge) / least
+    factor = 1.0 / (1.0 - coefficient * np.minimum(ratio, least))
+    share = factor / wall
+    by_place = share * factor * ratio * of_place * edge_wall / (edge**2 * least)
+    by_ratio = share * (factor * coefficient - wall_slope / np.where(small, ratio, least))
+    return (
+        np.where(small, share - 1.0, excess),
+        np.where(small, by_place, of_place),
+        np.where(small, by_ratio, of_ratio),
+    )
