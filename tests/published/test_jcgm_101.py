@@ -24,6 +24,7 @@ from plumbfall.uncertainty.intervals import tolerance_delta, validate
 from plumbfall.uncertainty.linear import propagate
 from plumbfall.uncertainty.monte_carlo import run_monte_carlo
 from plumbfall.uncertainty.monte_carlo_result import MonteCarlo
+from plumbfall.uncertainty.stopping import adaptive_block
 
 Array = NDArray[np.float64]
 
@@ -343,6 +344,16 @@ def test_7_9_2_numerical_tolerance():
     assert tolerance_delta(2.0, digits=1) == pytest.approx(0.5)  # printed, 2 K
     assert tolerance_delta(0.0996, digits=1) == pytest.approx(0.05)  # rounds to 0.1, by definition
     assert tolerance_delta(0.0, digits=1) == 0.0
+
+
+def test_7_9_4_draws_of_a_block():
+    # by definition: the larger of 10,000 and the smallest integer not below 100/(1 - p)
+    assert [adaptive_block(p) for p in (0.95, 0.99, 0.995, 0.999)] == [
+        10_000,
+        10_000,
+        20_000,
+        100_000,
+    ]
 
 
 @pytest.mark.parametrize(("digits", "part"), [(1, 1.0), (2, 1.0), (1, 0.2)])

@@ -65,6 +65,16 @@ def test_one_name_is_one_random_variable():
     assert (found.low[0], found.high[0]) == (0.0, 0.0)
 
 
+def test_moments_are_those_of_numpy():
+    # M - 1 in the divisor: JCGM 101:2008, 7.6
+    found = run_monte_carlo(keep_all, ALL, draws=60, keep=True)
+    np.testing.assert_allclose(found.mean, found.values.mean(axis=1), rtol=1e-14)
+    np.testing.assert_allclose(found.covariance, np.cov(found.values), rtol=1e-12, atol=1e-16)
+    theirs = np.corrcoef(found.values[1:])
+    np.testing.assert_allclose(found.correlation[1:, 1:], theirs, atol=1e-12)
+    assert np.array_equal(found.u**2 > 0, np.arange(len(ALL)) > 0)
+
+
 @pytest.mark.parametrize("seed", range(6))
 def test_linear_model_of_normal_inputs_agrees_with_linear_propagation(seed):
     rng = np.random.default_rng(seed)
