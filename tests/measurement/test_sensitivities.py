@@ -176,3 +176,17 @@ def test_other_sensitivities_miss_no_more_than_some_times_the_run_in():
         # in parts of the sensitivity, or of the viscosity for as large a part of the input
         size = max(abs(difference), reduced.sets.scatter.mean[0] / max(abs(estimate.value), 1e-3))
         assert abs(analytic - difference) <= 6 * run_in * size, estimate.name
+
+
+@pytest.mark.parametrize("offset", [1.0, -1.0])
+def test_the_budget_line_of_an_offset_is_that_of_happel_and_brenner(offset):
+    """Happel and Brenner 1965, chapter 7: ln K falls as 0.6977 ratio beta^2/(1 - 2.10444 ratio)."""
+    bench = bench_dict(tube__A__release_offset=f"{offset}(2) mm")
+    result = pf.reduce(DROPS.iloc[:2], bench)["A"].result
+    line = next(line for line in result.budget if line.input == "tube.A.release_offset")
+    ratio, radius = 2.0005e-3 / 50e-3, 25e-3
+    beta = offset * 1e-3 / radius
+    slope = 2 * 0.6977 * beta / radius * ratio / (1 - 2.10444 * ratio)
+    # off the axis the ball falls faster, which by the law on the axis would be a thinner liquid
+    assert line.sensitivity == pytest.approx(slope * result.viscosity.value, rel=2e-2)
+    assert abs(line.contribution) == pytest.approx(abs(line.sensitivity) * 0.2e-3, rel=2e-2)
