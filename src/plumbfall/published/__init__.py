@@ -1,0 +1,1 @@
+"""Figures from print, with source and basis, and their recomputation with the shipped code."""
