@@ -33,7 +33,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
     """Run a command and return its exit code.
 
     Exit codes: 0 done and every set valid; 1 a set invalid (with ``--strict`` also one with
-    warnings); 2 bad input or usage, and then nothing has been written.
+    warnings), or a figure of the self-test failed; 2 bad input or usage, and then nothing has
+    been written.
     """
     for name in ("stdout", "stderr"):
         if getattr(sys, name) is None:  # closed by the shell: what is said there goes nowhere
@@ -107,6 +108,16 @@ def build_parser() -> argparse.ArgumentParser:
         description="List the laws that [methods] of a bench sheet may name.",
     )
     methods.set_defaults(run=_methods)
+
+    selftest = commands.add_parser(
+        "selftest",
+        help="recompute known figures and print each with its source: evidence for validation",
+        description="Recompute known figures with the code as installed; print each with its "
+        "source, its basis and the difference.",
+        epilog="Exit code: 0 every figure agrees, 1 one does not.",
+    )
+    selftest.add_argument("--json", action="store_true", help="print JSON instead of text")
+    selftest.set_defaults(run=_selftest)
     return parser
 
 
@@ -221,6 +232,21 @@ def _methods(options: argparse.Namespace) -> int:
     with _standard_output() as output:
         output.write(printable(methods_text(), output.encoding))
     return DONE
+
+
+def _selftest(options: argparse.Namespace) -> int:
+    from plumbfall.published.selftest import selftest
+    from plumbfall.report.json_report import json_text
+    from plumbfall.report.selftest_text import selftest_text
+    from plumbfall.report.text import printable
+
+    result = selftest()
+    with _standard_output() as output:
+        if options.json:
+            output.write(json_text(result.to_dict()))
+        else:
+            output.write(printable(selftest_text(result), output.encoding))
+    return INVALID if result.failed else DONE
 
 
 def _say_problems(error: InputError) -> None:
