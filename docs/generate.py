@@ -24,8 +24,10 @@ from plumbfall.findings.limits import Limits
 from plumbfall.flow.tables import read_table, tables_directory
 from plumbfall.physics.laws import DEFAULTS, KINDS, laws_of
 from plumbfall.physics.measured_errors import PLACES, measured_errors
+from plumbfall.published.selftest import selftest
 from plumbfall.quantities import DIMENSIONS
 from plumbfall.report.methods import TITLES, percent
+from plumbfall.report.selftest_text import totals_table
 
 __all__ = ["DOCS", "PARTS", "filled", "main", "toml"]
 
@@ -300,6 +302,12 @@ def limits() -> str:
     return table(("limit", "default", "meaning"), rows)
 
 
+def totals() -> str:
+    """Return how many figures the self-test recomputes, by area and basis."""
+    head, *rows = totals_table(selftest())
+    return table(head, rows)
+
+
 def _described(docstring: str) -> Iterator[tuple[str, str]]:
     """Yield the names that a docstring explains, each with its text."""
     for found in re.finditer(r"^(\w+(?:, \w+)*)\n((?:    .*\n?)+)", docstring, re.MULTILINE):
@@ -316,6 +324,7 @@ PARTS: Mapping[tuple[str, str], Callable[[], str]] = {
     ("methods.md", "errors"): errors,
     ("methods.md", "tables"): shipped,
     ("physics.md", "laws"): laws,
+    ("validation.md", "totals"): totals,
 }
 """What makes each generated part, by document and name."""
 
