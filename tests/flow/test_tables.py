@@ -140,3 +140,21 @@ def test_missing_directory_or_table_is_said_with_a_remedy(
 @pytest.mark.parametrize("name", SOLVED_HERE)
 def test_shipped_table_passes_its_check(name):
     assert main(["--check", "--only", name]) == 0
+
+
+def test_quick_leaves_the_slow_tables_out(monkeypatch, tmp_path):
+    built = []
+
+    def work(chosen, directory, _console):
+        built.append([builder.name for builder in chosen])
+        assert directory == tmp_path
+        return 0
+
+    monkeypatch.setattr("plumbfall.flow.__main__._build", work)
+    assert main(["--directory", str(tmp_path)]) == 0
+    assert main(["--quick", "--directory", str(tmp_path)]) == 0
+    everything, quick = built
+    slow = {builder.name for builder in builders() if builder.slow}
+    assert slow == {"start_up"}
+    assert sorted(everything) == SHIPPED
+    assert set(everything) - set(quick) == slow
