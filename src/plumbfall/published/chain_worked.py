@@ -12,10 +12,12 @@ from typing import Any
 
 import pandas as pd
 
+from plumbfall.bench.reader import read_bench
 from plumbfall.published.figure import DEFINITION, figures
+from plumbfall.reduction import reduce_drops
 from plumbfall.report.report import Report
 from plumbfall.results import RunSetResult
-from plumbfall.workflow import reduce
+from plumbfall.timings.reader import read_timings
 
 __all__ = ["FIGURES"]
 
@@ -77,7 +79,8 @@ def _report(example: str) -> Report:
         for name, times in _TIMES[example].items()
         for time in times
     ]
-    return reduce(pd.DataFrame(rows), _BENCHES[example], draws=0)
+    bench = read_bench(_BENCHES[example])
+    return Report(reduce_drops(read_timings(pd.DataFrame(rows), bench), bench))
 
 
 Get = Callable[[RunSetResult], Any]
