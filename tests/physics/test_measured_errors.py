@@ -103,6 +103,21 @@ def test_stated_errors_are_the_measured_ones(kind):
     assert compared >= 6
 
 
+@pytest.mark.parametrize(("low", "high"), [(0.01, 5.0), (5.0, 10.0)])
+def test_stated_errors_of_the_rules_are_the_measured_ones(low, high):
+    ratio, reynolds = np.linspace(0.01, 0.8, 160), np.geomspace(low, high, 60)[:, None]
+    text = laws_of("together")["screened"].error
+    stated = {place: number for number, place in re.findall(r"([\d.]+) % to (\d+)", text)}[
+        f"{high:g}"
+    ]
+    largest = 100 * np.abs(together_error("screened", ratio, reynolds)).max()
+    assert float(stated) - 10.0 ** -len(stated.partition(".")[2]) < largest <= float(stated)
+    for rule in ("additive", "product"):
+        printed = re.findall(r"(\d+) % at", laws_of("together")[rule].error)
+        for number, place in zip(printed, ((0.1, 1.0), (0.3, 10.0)), strict=True):
+            assert 100 * together_error(rule, *place) == pytest.approx(float(number), abs=0.6)
+
+
 def test_they_are_printed():
     text = " ".join(methods_text().split())
     assert "Measured at diameter ratio 0.05, 0.1, 0.2: +0.24, -1.8, -12 %." in text

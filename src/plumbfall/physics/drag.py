@@ -250,17 +250,11 @@ class BoundDrag:
     def relative_bound(self, log_reynolds: Numeric) -> Numeric:
         """Return the half-width of the law's own error relative to K, taken as rectangular.
 
-        The rule's own bound with exact walls and the compact inertia, plus how far the chosen
-        laws take K from that.
+        How far the chosen laws take K from the computed table, and the table's own error.
         """
-        bound = self.law.together_law.bound
-        assert bound is not None  # every rule of the registry has one
-        if (self.law.walls, self.law.inertia) == (DEFAULTS["walls"], DEFAULTS["inertia"]):
-            excess, _ = self._inertia(log_reynolds)
-            return self._shaped(np.asarray(bound(self.wall_excess, excess)), log_reynolds)
-        best = DragLaw(together=self.law.together).at(self.ratio)
-        apart = self.evaluate(log_reynolds)[0] - best.evaluate(log_reynolds)[0]
-        return best.relative_bound(log_reynolds) + np.abs(np.expm1(apart))
+        computed = DragMap().at(self.ratio)
+        apart = self.evaluate(log_reynolds)[0] - computed.evaluate(log_reynolds)[0]
+        return computed.relative_bound(log_reynolds) + np.abs(np.expm1(apart))
 
     def _inertia(self, log_reynolds: Numeric) -> tuple[Array, Array]:
         """Excess of the inertia and its slope, as arrays of one dimension at least."""

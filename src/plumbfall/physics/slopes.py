@@ -20,7 +20,6 @@ from plumbfall.physics.exact import creeping_wall_factor
 from plumbfall.physics.numeric import Numeric
 
 __all__ = [
-    "additive_bound",
     "additive_excess",
     "inertia_excess_abraham",
     "inertia_excess_brown_lawler",
@@ -29,9 +28,7 @@ __all__ = [
     "inertia_excess_oseen",
     "inertia_excess_schiller_naumann",
     "inertia_excess_stokes",
-    "product_bound",
     "product_excess",
-    "screened_bound",
     "screened_excess",
     "wall_pair_bohlin",
     "wall_pair_exact",
@@ -42,9 +39,6 @@ __all__ = [
     "wall_pair_haberman_sayre",
     "wall_pair_ladenburg",
 ]
-
-SCREENED_ERROR = 0.0175
-"""Largest error of the screened rule to Reynolds number 10: 1.7 % as printed, and its rounding."""
 
 Array = NDArray[np.float64]
 Pair = tuple[Numeric, Numeric]
@@ -198,28 +192,3 @@ def product_excess(one: Numeric, other: Array) -> ArrayPair:
     excess = one + other
     excess += one * other
     return excess, 1.0 + (one + np.zeros_like(excess))
-
-
-def screened_bound(wall_excess: Numeric, inertia_excess: Numeric) -> Numeric:
-    """Half-width of the screened rule: its largest error, or the inertia's part where smaller.
-
-    With K0 exact the rule is exact at rest, and in every case computed its error is smaller than
-    the inertia's own part of the drag.
-    """
-    root = np.sqrt(wall_excess**2 + inertia_excess**2)
-    rise = inertia_excess**2 / np.maximum(root + wall_excess, _TINY)
-    bound: Numeric = np.minimum(SCREENED_ERROR, rise / (1.0 + wall_excess))
-    return bound
-
-
-def additive_bound(wall_excess: Numeric, inertia_excess: Numeric) -> Numeric:
-    """Half-width of the additive rule: the smaller excess, as the larger factor acts at least."""
-    smaller = np.minimum(wall_excess, inertia_excess)
-    bound: Numeric = smaller / (1.0 + np.maximum(wall_excess, inertia_excess))
-    return bound
-
-
-def product_bound(wall_excess: Numeric, inertia_excess: Numeric) -> Numeric:
-    """Half-width of the product rule: the smaller excess, as the larger factor acts at least."""
-    bound: Numeric = np.minimum(wall_excess, inertia_excess)
-    return bound

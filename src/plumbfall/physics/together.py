@@ -32,7 +32,7 @@ def tube_drag_screened(*, wall_factor: Numeric, inertia_factor: Numeric) -> Nume
 
     Notes
     -----
-    Within 0.74 % of Navier-Stokes to Reynolds number 5 and 1.7 % to 10. Beyond it falls off: -5 %
+    Within 0.76 % of Navier-Stokes to Reynolds number 5 and 1.8 % to 10. Beyond it falls off: -5 %
     at diameter ratio 0.2, Reynolds number 100.
 
     References
@@ -72,7 +72,7 @@ def tube_drag_additive(*, wall_factor: Numeric, inertia_factor: Numeric) -> Nume
     Notes
     -----
     Too high against Navier-Stokes: 5 % at diameter ratio 0.05, Reynolds number 0.5; 9 % at 0.1, 1;
-    19 % at 0.2, 10. Never by more than the smaller excess over the larger factor.
+    19 % at 0.2, 10. Too low above 0.45 near 100, by 8 % at most.
 
     References
     ----------
@@ -110,7 +110,7 @@ def tube_drag_product(*, wall_factor: Numeric, inertia_factor: Numeric) -> Numer
     Notes
     -----
     Too high against Navier-Stokes: 6 % at diameter ratio 0.05, Reynolds number 0.5; 12 % at 0.1,
-    1; 45 % at 0.2, 10. Never by more than the smaller excess.
+    1; 45 % at 0.2, 10.
 
     References
     ----------
