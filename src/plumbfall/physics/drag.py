@@ -81,7 +81,7 @@ class DragLaw:
     (100.0, 0.8)
     >>> log_factor, slope = drag.at(0.1).evaluate(np.log(1.0))
     >>> f"{np.exp(log_factor):.4f} {slope:.3f}"
-    '1.2895 0.047'
+    '1.2895 0.037'
     """
 
     together: str = ""

@@ -279,7 +279,7 @@ def run_in_delay_slope(
     >>> liquid = {"liquid_density": 1200.0, "viscosity": 0.1}
     >>> slope = run_in_delay_slope(depth=10e-3, **ball, **liquid, ball_density=7800.0)
     >>> f"{slope:.3f}"
-    '0.175'
+    '0.495'
     """
     _, slope = _delay_and_slope(
         depth,
