@@ -273,7 +273,7 @@ def svg(drawing: Drawing, numbers: Numbers) -> str:
     text = re.sub(r"<!--.*?-->\n?", "", text[text.index("<svg") :], flags=re.S)
     text = re.sub(r"<metadata>.*?</metadata>", "", text, flags=re.S)
     text = text.replace("'DejaVu Sans'", "'DejaVu Sans', sans-serif")
-    text = re.sub(r"\d+\.\d{3,}", lambda found: f"{float(found[0]):.2f}", text)
+    text = re.sub(r"(?<![>\d])\d+\.\d{3,}", lambda found: f"{float(found[0]):.2f}", text)
     head, tag, body = text.partition(">")
     about = (
         f"\n <title>{escape(drawing.title)}</title>\n <desc>{escape(drawing.description)}</desc>"
