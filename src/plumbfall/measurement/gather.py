@@ -4,12 +4,12 @@ from __future__ import annotations
 
 import dataclasses
 import math
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Mapping, Sequence
 
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.bench.records import Ball, Bench, Tube
+from plumbfall.bench.records import Balance, Ball, Bench, Gauge, Tube
 from plumbfall.errors import InputError, Problem
 from plumbfall.estimate import Estimate
 from plumbfall.measurement.inputs import Column, Inputs
@@ -208,11 +208,10 @@ def _marks(
     return _column(register, (starts[tube] + mark).astype(np.intp), flat)
 
 
-def _correction(name: str | None, instruments: object) -> Estimate | None:
-    if name is None:
-        return None
-    correction: Estimate = instruments[name].correction  # type: ignore[index]  # a mapping of either kind
-    return correction
+def _correction(
+    name: str | None, instruments: Mapping[str, Gauge] | Mapping[str, Balance]
+) -> Estimate | None:
+    return None if name is None else instruments[name].correction
 
 
 def _individual(estimates: Sequence[Estimate], balls: Sequence[Ball]) -> NDArray[np.bool_]:

@@ -157,7 +157,8 @@ def add_block(
     gravity = take("gravity")
     add("gravity", lambda: a_weight / gravity)
     for role, slope in zip(("latitude", "elevation"), inputs.gravity_slopes, strict=True):
-        add(role, lambda slope=slope: a_weight * (slope / gravity))  # type: ignore[misc]  # bound now
+        if roles[role].present:
+            sums.first[role] += total(a_weight * (slope / gravity))
     if roles["tilt"].present:
         tangent = np.tan(take("tilt"))
         sums.first["tilt"] += total(-a_weight * tangent)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Mapping
 from dataclasses import dataclass
 
 import numpy as np
@@ -172,8 +173,8 @@ def _largest(values: NDArray[np.float64]) -> float | None:
     return None if math.isnan(largest) else largest
 
 
-def _names(known: object, codes: NDArray[np.intp]) -> str:
-    names = list(known)  # type: ignore[call-overload]  # a mapping of any kind
+def _names(known: Mapping[str, object], codes: NDArray[np.intp]) -> str:
+    names = list(known)
     return ", ".join(names[code] for code in np.unique(codes))
 
 
