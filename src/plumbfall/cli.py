@@ -92,10 +92,14 @@ def build_parser() -> argparse.ArgumentParser:
         "--draws",
         type=_draws,
         metavar="N|auto",
-        help="Monte Carlo draws; this version propagates linearly and says so (default auto)",
+        help="Monte Carlo draws, such as 200000, or as many as it takes (default 0: linear only)",
     )
     reduce.add_argument(
-        "--seed", type=int, default=0, metavar="N", help="recorded in the report (default 0)"
+        "--seed",
+        type=_seed,
+        default=0,
+        metavar="N",
+        help="seed of the draws, recorded in the report (default 0)",
     )
     reduce.add_argument(
         "--strict", action="store_true", help="exit with 1 also where a set has warnings"
@@ -142,9 +146,15 @@ def _probability(text: str) -> float:
     return value
 
 
-def _draws(text: str) -> int | None:
+def _seed(text: str) -> int:
+    if not text.isdecimal():
+        raise argparse.ArgumentTypeError(f"{text!r} is no seed; write a whole number from 0 up")
+    return int(text)
+
+
+def _draws(text: str) -> int | str:
     if text == "auto":
-        return None
+        return text
     if not text.isdecimal():
         raise argparse.ArgumentTypeError(f"{text!r} is no number of draws; write 200000, or auto")
     return int(text)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import dataclasses
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 from typing import TYPE_CHECKING
 
@@ -15,6 +15,7 @@ from plumbfall.bench.records import Bench
 from plumbfall.errors import InputError
 from plumbfall.findings.data import RunData
 from plumbfall.findings.limits import Limits, limits_from
+from plumbfall.findings.linearity import linear_not_validated
 from plumbfall.findings.outliers import suspects
 from plumbfall.findings.registry import find
 from plumbfall.measurement.balance import corrected_temperature
@@ -27,10 +28,12 @@ from plumbfall.measurement.selection import check_temperatures, select
 from plumbfall.measurement.values import value_weights
 from plumbfall.physics.laws import DEFAULTS
 from plumbfall.results import Finding, RunSetResult
+from plumbfall.run_sets.drawn import Drawn
 from plumbfall.run_sets.jacobian import build_jacobian, own_variances
+from plumbfall.run_sets.monte_carlo import draw_run_set
 from plumbfall.run_sets.outputs import compute_outputs, conditions
 from plumbfall.run_sets.repeatability import repeatability
-from plumbfall.run_sets.result import SetColumns, build_result
+from plumbfall.run_sets.result import SetColumns, build_result, status_of
 from plumbfall.run_sets.table import summary_table
 from plumbfall.timings.records import Timings
 
@@ -47,7 +50,8 @@ OUTLIER_RULE = "grubbs-1-percent"
 class Reduction:
     """Every run set's results in columns; a run set's record is built when it is asked for.
 
-    ``found`` holds the findings by run set, ``inputs`` the files with their hashes.
+    ``found`` holds the findings by run set, ``inputs`` the files with their hashes,
+    ``drawn`` what Monte Carlo says of those that were drawn, by their place.
     """
 
     sets: SetColumns
@@ -56,6 +60,7 @@ class Reduction:
     seed: int
     inputs: tuple[tuple[str, str], ...]
     findings: tuple[Finding, ...] = ()
+    drawn: Mapping[int, Drawn] = field(default_factory=dict)
 
     @property
     def bench(self) -> Bench:
@@ -89,12 +94,13 @@ class Reduction:
                 self._used_by_set[place],
                 self._rows_by_set[place],
                 self.found[place],
+                self.drawn.get(place),
             )
         return self._built[name]
 
     def summary_table(self) -> pd.DataFrame:
         """Return one row a run set, numeric, units in the column names (INTERFACE section 6)."""
-        return summary_table(self.sets, self.found)
+        return summary_table(self.sets, self.found, self.drawn)
 
     def covariance(self, quantity: str = "viscosity") -> NDArray[np.float64]:
         """Covariance of the run sets' values of a quantity; NaN where a set has none."""
@@ -135,6 +141,7 @@ def reduce_drops(
     bench: Bench,
     *,
     coverage: float | None = None,
+    draws: int | str = 0,
     seed: int = 0,
     inputs: tuple[tuple[str, str], ...] = (),
 ) -> Reduction:
@@ -148,8 +155,10 @@ def reduce_drops(
         The bench sheet.
     coverage : float, optional
         Coverage probability of the intervals; that of the bench sheet where not given.
+    draws : int or "auto"
+        Monte Carlo draws of every run set that is not invalid; 0 for none.
     seed : int
-        Recorded in the report; linear propagation draws nothing.
+        Of the draws; recorded in the report.
     inputs : tuple of (path, sha256)
         The input files, recorded in the report.
 
@@ -181,13 +190,32 @@ def reduce_drops(
             break
         rows = reduced.selection.row[found.drop[beyond]]
         reduced = reduce_numbers(_exclude(reduced.timings, rows), bench, probability)
+    findings = find(_data(reduced, limits))
+    drawn = _drawn(reduced, findings, draws, seed) if draws else {}
+    for place, of_set in drawn.items():
+        note = linear_not_validated(reduced.outputs, of_set, place)
+        findings = (*findings[:place], findings[place] + note, *findings[place + 1 :])
     return Reduction(
         sets=reduced,
-        found=find(_data(reduced, limits)),
+        found=findings,
         coverage=probability,
         seed=seed,
         inputs=inputs,
+        drawn=drawn,
     )
+
+
+def _drawn(
+    sets: SetColumns, findings: tuple[tuple[Finding, ...], ...], draws: int | str, seed: int
+) -> dict[int, Drawn]:
+    """Draw every run set that has a viscosity and is not invalid."""
+    used = _grouped(sets.selection.run_set, len(sets.selection.names))
+    has_value = np.isfinite(sets.outputs.of("viscosity").value)
+    return {
+        place: draw_run_set(sets, place, used[place], draws=draws, seed=seed)
+        for place in np.flatnonzero(has_value).tolist()
+        if status_of(findings[place]) != "invalid"
+    }
 
 
 def reduce_numbers(timings: Timings, bench: Bench, coverage: float = 0.95) -> SetColumns:
@@ -205,7 +233,7 @@ def reduce_numbers(timings: Timings, bench: Bench, coverage: float = 0.95) -> Se
         tubes,
         bench.methods.ends or DEFAULTS["ends"],
     )
-    released = None if bench.methods.run_in == "none" else releases(inputs, selection.cells, tubes)
+    released = None if bench.methods.run_in == "none" else releases(inputs)
     columns, sums = compute_drops(selection, inputs, weights, law, readings, ends, released)
     own = own_variances(selection, inputs, sums)
     scatter = repeatability(selection, columns, weights, np.sqrt(own.resolution), bench.scatter)

@@ -16,6 +16,7 @@ __all__ = [
     "DropResult",
     "Finding",
     "Measured",
+    "MonteCarloResult",
     "Quantity",
     "RunSetResult",
 ]
@@ -58,6 +59,26 @@ class Measured:
     def relative_expanded(self) -> float:
         """Expanded uncertainty over the value."""
         return self.expanded / self.value
+
+
+@dataclass(frozen=True, slots=True)
+class MonteCarloResult:
+    """What draws of the inputs say of a run set's viscosity, in Pa.s (JCGM 101).
+
+    ``low`` and ``high`` bound the probabilistically symmetric interval, infinite where too many
+    draws have no viscosity, which ``undefined`` counts. ``standard_uncertainty`` is ``None`` where
+    it does not exist. ``validated_linear`` says that the linear interval agrees with it at one
+    significant digit of the standard uncertainty (JCGM 101, 8).
+    """
+
+    low: float
+    high: float
+    shortest_low: float
+    shortest_high: float
+    standard_uncertainty: float | None
+    draws: int
+    validated_linear: bool
+    undefined: int = 0
 
 
 @dataclass(frozen=True, slots=True)
@@ -160,7 +181,8 @@ class RunSetResult:
 
     ``viscosity`` is ``None`` where none can be had; ``viscosity_at_reference`` is ``None``
     without a temperature slope or a reference temperature. ``reynolds``, ``diameter_ratio``,
-    ``shear_rate`` and ``shear_stress`` are the largest of the set.
+    ``shear_rate`` and ``shear_stress`` are the largest of the set. ``linear`` is the viscosity as
+    the law of propagation gives it; ``monte_carlo`` is ``None`` where nothing was drawn.
     """
 
     name: str
@@ -187,6 +209,8 @@ class RunSetResult:
     balls: tuple[BallResult, ...]
     drops: tuple[DropResult, ...]
     findings: tuple[Finding, ...]
+    linear: Measured | None = None
+    monte_carlo: MonteCarloResult | None = None
 
     @property
     def interval(self) -> tuple[float, float]:

@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 import os
-import warnings
 from collections.abc import Iterable, Mapping
+from numbers import Integral
 from pathlib import Path
 from typing import Any, TypeAlias
 
@@ -12,7 +12,7 @@ import pandas as pd
 
 from plumbfall.bench.reader import read_bench
 from plumbfall.bench.records import Bench
-from plumbfall.errors import InputError, PlumbfallWarning
+from plumbfall.errors import InputError
 from plumbfall.reduction import reduce_drops
 from plumbfall.report.report import Report
 from plumbfall.timings.reader import collect, read_timings
@@ -53,7 +53,7 @@ def reduce(
     timings: TimingSource,
     bench: BenchSource | None = None,
     *,
-    draws: int | None = None,
+    draws: int | str | None = None,
     seed: int = 0,
     coverage: float | None = None,
     encoding: str | None = None,
@@ -66,11 +66,12 @@ def reduce(
         Timed drops, one row a drop.
     bench : path, dict or Bench, optional
         The bench sheet; ``bench.toml`` beside the timing file where not given.
-    draws : int, optional
-        Monte Carlo draws. This version propagates linearly only, so that any number but 0 is
-        answered with a warning.
+    draws : int or "auto", optional
+        Monte Carlo draws of every run set, such as 200,000, or as many as it takes to validate
+        the linear bounds; none where not given. Where the linear bounds are not validated those
+        of Monte Carlo are quoted.
     seed : int
-        Recorded in the report.
+        Seed of the draws, not below zero; recorded in the report.
     coverage : float, optional
         Coverage probability of the bounds; that of the bench sheet (default 0.95) where not given.
     encoding : str, optional
@@ -90,16 +91,31 @@ def reduce(
         bench = read_bench(find_bench(timings) if bench is None else bench)
     if not isinstance(timings, Timings):
         timings = read_timings(timings, bench, encoding=encoding)
-    if draws:
-        warnings.warn(
-            "this version has no Monte Carlo: the bounds are linear (GUM)",
-            PlumbfallWarning,
-            stacklevel=2,
-        )
     inputs = [(file.path, file.sha256) for file in timings.files]
     if bench.path:
         inputs.append((bench.path, bench.sha256))
-    return Report(reduce_drops(timings, bench, coverage=coverage, seed=seed, inputs=tuple(inputs)))
+    return Report(
+        reduce_drops(
+            timings,
+            bench,
+            coverage=coverage,
+            draws=_checked_draws(draws),
+            seed=seed,
+            inputs=tuple(inputs),
+        )
+    )
+
+
+def _checked_draws(draws: int | str | None) -> int | str:
+    if draws is None or draws == "auto":
+        return draws or 0
+    if isinstance(draws, bool) or not isinstance(draws, Integral) or draws < 0:
+        raise InputError(
+            f"draws = {draws!r} is no number of draws",
+            key="draws",
+            remedy='give 200_000, or "auto", or 0 for none',
+        )
+    return int(draws)
 
 
 def inspect_inputs(

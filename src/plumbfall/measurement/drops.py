@@ -7,28 +7,21 @@ from __future__ import annotations
 
 import numpy as np
 
-from plumbfall.measurement.balance import Balance, Codes, Numbers, balance, spread
+from plumbfall.measurement.balance import Numbers, spread
 from plumbfall.measurement.columns import DropColumns, empty_columns
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
-from plumbfall.measurement.inverse import invert
 from plumbfall.measurement.law import LEFT_OUT
-from plumbfall.measurement.off_axis import off_axis
-from plumbfall.measurement.run_in import Release, RunIn, run_in
+from plumbfall.measurement.run_in import Release
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import DropSlopes, Sums, add_block, empty_sums
+from plumbfall.measurement.solving import cell_ratios, solve
 from plumbfall.measurement.values import Weights
-from plumbfall.physics.drag import Bound, DragLaw
+from plumbfall.physics.drag import DragLaw
 
 __all__ = ["compute_drops"]
 
 BLOCK = 16_384
-
-MOST_STARTS, TOLERANCE = 30, 1e-12
-"""Repetitions of the run-in, and the relative change of the time that ends them."""
-
-LARGEST_SHIFT = 1e-5
-"""Largest logarithm of a drop's diameter ratio over its cell's that is taken to first order."""
 
 
 def compute_drops(
@@ -78,10 +71,7 @@ def compute_drops(
     out = empty_columns(n, temperature, set_temperature)
     sums = empty_sums(len(selection.cells))
     in_cells = set_temperature[selection.cells.run_set]
-    every = np.arange(len(in_cells))
-    with np.errstate(invalid="ignore"):
-        cell_ratio = balance(inputs, every, np.ones(len(every)), in_cells).diameter_ratio
-    cell_ratio = np.broadcast_to(cell_ratio, in_cells.shape)
+    cell_ratio = cell_ratios(inputs, in_cells)
     for start in range(0, n, BLOCK):
         block = slice(start, min(start + BLOCK, n))
         _compute_block(
@@ -100,33 +90,6 @@ def compute_drops(
     return out, sums
 
 
-def _settled(before: RunIn | None, now: RunIn, forces: Balance) -> bool:
-    """Whether the run-in's bias no longer changes; where none of it is felt it never did."""
-    last = 0.0 if before is None else before.bias
-    return not np.nanmax(np.abs(now.bias - last) / forces.time, initial=0.0) > TOLERANCE
-
-
-def _bind(
-    law: DragLaw, ratio: Numbers, cell: Codes, cell_ratio: Numbers
-) -> tuple[Bound, Numbers | float]:
-    """Bind the drag law, to cells where their drops' ratios lie together, else to every drop.
-
-    Drops of a cell differ by thermal expansion alone. The law is then bound to the cell's ratio
-    and the inverse takes the rest to first order; what that leaves out is the square of the shift
-    times about 2 (d2 lnK/dln(ratio)2 / 2 at ratio 0.5), so below 2e-10 at the largest one allowed.
-    """
-    inside = np.minimum(ratio, law.max_ratio)  # beyond it the inverse flags the drop
-    first, last = int(cell.min()), int(cell.max())
-    if len(ratio) == 1 or 2 * (last - first) > len(cell):
-        return law.at(inside), 0.0
-    bound_to = np.minimum(cell_ratio[first : last + 1], law.max_ratio)
-    index = cell - first
-    shift = np.log(inside / bound_to[index])
-    if not np.abs(shift).max() <= LARGEST_SHIFT:
-        return law.at(inside), 0.0
-    return law.at(bound_to).take(index), shift
-
-
 def _compute_block(
     block: slice,
     selection: Selection,
@@ -142,21 +105,10 @@ def _compute_block(
 ) -> None:
     """Fill the columns of one block of drops, and add it to the sums."""
     cell, clock = selection.cell[block], selection.time[block]
+    solved = solve(inputs, law, ends, released, cell, clock, out.temperature[block], cell_ratio)
+    forces, found, drag, shift = solved.forces, solved.found, solved.drag, solved.shift
+    beside, start, end_factor = solved.beside, solved.start, solved.end_factor
     with np.errstate(invalid="ignore", divide="ignore"):
-        end_factor = 1.0 if ends is None else spread(ends.factor, cell)
-        forces = balance(inputs, cell, clock, out.temperature[block], end_factor)
-        drag, shift = _bind(law, forces.diameter_ratio, cell, cell_ratio)
-        beside = off_axis(inputs, cell, forces)
-        log_beside = beside.log_factor if beside is not None else 0.0
-        found = invert(forces, drag, log_beside, shift)
-        start = None
-        for _ in range(MOST_STARTS if released is not None else 0):
-            assert released is not None  # as the range is not empty
-            before, start = start, run_in(released, cell, forces, found)
-            if start is None or _settled(before, start, forces):
-                break
-            forces = balance(inputs, cell, clock, out.temperature[block], end_factor, start.bias)
-            found = invert(forces, drag, log_beside, shift)
         ratio_slope = found.ratio_slope
         if beside is not None:
             ratio_slope = ratio_slope + beside.by_ratio

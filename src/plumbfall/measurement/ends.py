@@ -65,15 +65,14 @@ def path_ends(
     if method == "none":
         return None
     if method == "classical":
-        return _classical(inputs, cells, tubes)
+        return _classical(inputs)
     roles = inputs.roles
     radius = roles["bore"].value / 2
     ratio = (roles["diameter"].value + roles["gauge"].value) / roles["bore"].value
     length = roles["to_mark"].value - roles["from_mark"].value
-    last = np.array([t.marks[-1].value - t.marks[0].value if t.marks else 0.0 for t in tubes])
-    first = np.array([t.marks[0].value if t.marks else 0.0 for t in tubes])
-    above = roles["from_mark"].value - first[cells.tube]
-    below = last[cells.tube] - (roles["to_mark"].value - first[cells.tube])
+    first, last = roles["first_mark"].value, roles["last_mark"].value
+    above = roles["from_mark"].value - first
+    below = (last - first) - (roles["to_mark"].value - first)
     surface = _distance(inputs, "surface_above") + above
     bottom = _distance(inputs, "bottom_below") + below
     if not ((np.minimum(surface, bottom) < END_EXCESS_REACH * radius) & (ratio < 1)).any():
@@ -101,11 +100,11 @@ def path_ends(
     )
 
 
-def _classical(inputs: Inputs, cells: Cells, tubes: Sequence[Tube]) -> Ends:
+def _classical(inputs: Inputs) -> Ends:
     """Return the end factor of 1907, one number for the whole path."""
     roles = inputs.roles
-    spans = np.array([t.marks[-1].value - t.marks[0].value if t.marks else 0.0 for t in tubes])
-    height = _distance(inputs, "surface_above") + spans[cells.tube]
+    span = roles["last_mark"].value - roles["first_mark"].value
+    height = _distance(inputs, "surface_above") + span
     height = height + _distance(inputs, "bottom_below")
     radius = (roles["diameter"].value + roles["gauge"].value) / 2
     factor = np.asarray(end_factor_classical(height_ratio=height / radius))

@@ -98,6 +98,9 @@ def gather(cells: Cells, bench: Bench, run_sets: Sequence[str], model: Estimate)
     of("release_offset", cells.tube, [tube.release_offset for tube in tubes])
     for role, marks in (("from_mark", cells.from_mark), ("to_mark", cells.to_mark)):
         roles[role] = _marks(register, cells.tube, marks, tubes)
+    n_marks = np.array([len(tube.marks) for tube in tubes], dtype=np.intp)
+    roles["first_mark"] = _marks(register, cells.tube, np.zeros(n, dtype=np.intp), tubes)
+    roles["last_mark"] = _marks(register, cells.tube, n_marks[cells.tube] - 1, tubes)
 
     of("diameter", cells.ball, [ball.diameter for ball in balls])
     of("gauge", cells.ball, [_correction(ball.gauge, bench.gauges) for ball in balls])

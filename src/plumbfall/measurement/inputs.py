@@ -6,7 +6,7 @@ whatever uses one entry shares its error (DESIGN: correlation follows identity).
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -18,6 +18,12 @@ __all__ = ["MODEL_INPUT", "Column", "Inputs", "cold_ball_density"]
 
 MODEL_INPUT = "methods.model_uncertainty"
 """Key path of the drag law's own relative uncertainty."""
+
+BY_CELL = (
+    "weighed", "together", "lot", "ball_measured_at", "tube_measured_at", "liquid_density_at",
+    "spread", "per_drop", "resolution", "per_reading", "slope_known", "temperature_known",
+)  # fmt: skip
+"""Arrays of :class:`Inputs` of shape (cells,), roles apart."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,6 +70,14 @@ class Inputs:
     model_declared: bool = False
     gravity_slopes: tuple[float, float] = (0.0, 0.0)
     individual: NDArray[np.bool_] = field(default_factory=lambda: np.zeros(0, dtype=bool))
+
+    def take(self, cells: NDArray[np.intp]) -> Inputs:
+        """Return the inputs of some of the cells, shape (taken,), in an order of their own."""
+        roles = {
+            role: Column(column.value[cells], column.entry[cells])
+            for role, column in self.roles.items()
+        }
+        return replace(self, roles=roles, **{name: getattr(self, name)[cells] for name in BY_CELL})
 
     @property
     def u(self) -> NDArray[np.float64]:

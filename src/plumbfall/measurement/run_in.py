@@ -8,17 +8,15 @@ its own size each time.
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.bench.records import Tube
 from plumbfall.measurement.balance import Balance, Codes, Numbers
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.inverse import Inverse
-from plumbfall.measurement.selection import Cells
 from plumbfall.physics.drag_map import DragMap
 from plumbfall.physics.start_up import (
     RUN_IN_DENSITY_RATIO_LIMITS,
@@ -67,14 +65,13 @@ class RunIn:
     unknown: NDArray[np.bool_]
 
 
-def releases(inputs: Inputs, cells: Cells, tubes: Sequence[Tube]) -> Release | None:
+def releases(inputs: Inputs) -> Release | None:
     """Return how far below the release each cell's marks are; ``None`` where none is given."""
     role = inputs.roles["release_above"]
     if not role.present:
         return None
-    top = np.array([tube.marks[0].value if tube.marks else np.nan for tube in tubes])[cells.tube]
     height = np.where(role.entry >= 0, role.value, np.nan)
-    first = height + inputs.roles["from_mark"].value - top
+    first = height + inputs.roles["from_mark"].value - inputs.roles["first_mark"].value
     return Release(
         first=first,
         last=first + inputs.roles["to_mark"].value - inputs.roles["from_mark"].value,

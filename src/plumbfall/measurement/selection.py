@@ -54,6 +54,10 @@ class Cells:
     def __len__(self) -> int:
         return len(self.run_set)
 
+    def take(self, at: Codes) -> Cells:
+        """Return some of the cells, shape (taken,), in an order of their own."""
+        return Cells(*(getattr(self, kind)[at] for kind in self.__slots__))
+
 
 @dataclass(frozen=True, slots=True)
 class Selection:

@@ -13,6 +13,7 @@ from plumbfall.results import (
     DropResult,
     Finding,
     Measured,
+    MonteCarloResult,
     Quantity,
     RunSetResult,
 )
@@ -51,8 +52,6 @@ def json_text(document: dict[str, Any]) -> str:
 
 
 def _run_set(result: RunSetResult) -> dict[str, Any]:
-    viscosity = _measured(result.viscosity)
-    linear = viscosity if viscosity and viscosity["method"] == "linear" else None
     return {
         "name": result.name,
         "status": result.status,
@@ -64,7 +63,7 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
         "liquid": result.liquid,
         "temperature": _quantity(result.temperature),
         "reference_temperature_K": _number(result.reference_temperature),
-        "viscosity": viscosity,
+        "viscosity": _measured(result.viscosity),
         "viscosity_at_reference": _measured(result.viscosity_at_reference),
         "kinematic_viscosity": _measured(result.kinematic_viscosity),
         "stokes_viscosity": _quantity(result.stokes_viscosity),
@@ -84,8 +83,8 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
             for correction in result.corrections
         ],
         "budget": [_budget_line(line) for line in result.budget],
-        "linear": linear,
-        "monte_carlo": None,
+        "linear": _measured(result.linear),
+        "monte_carlo": _monte_carlo(result.monte_carlo),
         "balls": [_ball(ball) for ball in result.balls],
         "drops": [_drop(drop) for drop in result.drops],
         "findings": [_finding(finding) for finding in result.findings],
@@ -106,6 +105,18 @@ def _measured(measured: Measured | None) -> dict[str, Any] | None:
         "low": _number(measured.low),
         "high": _number(measured.high),
         "method": measured.method,
+    }
+
+
+def _monte_carlo(drawn: MonteCarloResult | None) -> dict[str, Any] | None:
+    if drawn is None:
+        return None
+    return {
+        "low": _number(drawn.low),
+        "high": _number(drawn.high),
+        "standard_uncertainty": _number(drawn.standard_uncertainty),
+        "draws": int(drawn.draws),
+        "validated_linear": bool(drawn.validated_linear),
     }
 
 

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from plumbfall.report.rounding import NO_VALUE
 from plumbfall.report.scales import CELSIUS, Scale, scale_for, viscosity_scale
 from plumbfall.report.summary import basis, counted, is_apparent, percent, way
-from plumbfall.results import Measured, Quantity, RunSetResult
+from plumbfall.results import Measured, MonteCarloResult, Quantity, RunSetResult
 
 __all__ = ["Fact", "Headline", "TableView", "drop_place", "facts", "headline", "set_scale"]
 
@@ -92,6 +92,8 @@ def facts(result: RunSetResult, scale: Scale) -> list[Fact]:
     shown: list[Fact] = []
     if result.viscosity is not None:
         shown += _of_measured(result.viscosity, scale)
+    if result.linear is not None and result.monte_carlo is not None:
+        shown.append(_of_draws(result.linear, result.monte_carlo, scale))
     shown += _of_temperature(result)
     if result.viscosity_at_reference is not None:
         at = CELSIUS.fixed(result.reference_temperature, 2)
@@ -140,6 +142,20 @@ def _of_measured(measured: Measured, scale: Scale) -> list[Fact]:
         )
     shown.append(Fact("Way of propagation", measured.method, term=measured.method))
     return shown
+
+
+def _of_draws(linear: Measured, drawn: MonteCarloResult, scale: Scale) -> Fact:
+    """Say in one line how the linear bounds compare with those of the draws."""
+    place = scale.pair(linear.value, linear.expanded).place
+    bounds = [scale.bound(at, place) for at in (linear.low, linear.high)]
+    found = [
+        scale.bound(at, place) if math.isfinite(at) else "unlimited"
+        for at in (drawn.low, drawn.high)
+    ]
+    verdict = "agrees" if drawn.validated_linear else "does not agree"
+    text = f"linear {' to '.join(bounds)} {scale.unit} {verdict} with {' to '.join(found)}"
+    text += f" of {counted(drawn.draws, 'draw')}"
+    return Fact("Linear against Monte Carlo", text, scale.unit, "monte-carlo")
 
 
 def dof_text(dof: float) -> str:

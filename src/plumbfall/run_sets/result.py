@@ -27,6 +27,7 @@ from plumbfall.results import (
     RunSetResult,
 )
 from plumbfall.run_sets.budget import budget_lines
+from plumbfall.run_sets.drawn import Drawn
 from plumbfall.run_sets.drop_records import ball_results, drop_results
 from plumbfall.run_sets.jacobian import Jacobian
 from plumbfall.run_sets.outputs import Output, Outputs, SetConditions
@@ -75,6 +76,7 @@ def build_result(
     used: NDArray[np.intp],
     rows: NDArray[np.intp],
     findings: tuple[Finding, ...],
+    drawn: Drawn | None = None,
 ) -> RunSetResult:
     """Build the record of one run set.
 
@@ -90,6 +92,8 @@ def build_result(
         Rows of the timing table that belong to it, used or not.
     findings : tuple of Finding
         What was found in it.
+    drawn : Drawn, optional
+        What Monte Carlo says of it.
 
     Returns
     -------
@@ -100,6 +104,11 @@ def build_result(
     temperature = float(drops.set_temperature[run_set])
     cells = np.unique(all_sets.selection.cell[used])
     invalid = status_of(findings) == "invalid"
+
+    def quoted(quantity: str) -> Measured | None:
+        linear = _measured(all_sets.outputs, quantity, run_set)
+        return linear if drawn is None else drawn.quoted(quantity, linear)
+
     return RunSetResult(
         name=all_sets.selection.names[run_set],
         status=status_of(findings),
@@ -113,9 +122,9 @@ def build_result(
         if math.isnan(temperature)
         else Quantity(temperature, "K", _temperature_u(all_sets, cells)),
         reference_temperature=all_sets.bench.reference_temperature,
-        viscosity=_measured(all_sets.outputs, "viscosity", run_set),
-        viscosity_at_reference=_measured(all_sets.outputs, "viscosity_at_reference", run_set),
-        kinematic_viscosity=_measured(all_sets.outputs, "kinematic_viscosity", run_set),
+        viscosity=quoted("viscosity"),
+        viscosity_at_reference=quoted("viscosity_at_reference"),
+        kinematic_viscosity=quoted("kinematic_viscosity"),
         stokes_viscosity=_stokes(all_sets, used),
         liquid_density=float(all_sets.liquid.density[run_set]) if len(used) else None,
         reynolds=_largest(drops.reynolds[used]),
@@ -148,6 +157,8 @@ def build_result(
             findings,
         ),
         findings=findings,
+        linear=_measured(all_sets.outputs, "viscosity", run_set),
+        monte_carlo=None if drawn is None else drawn.record(),
     )
 
 
