@@ -137,17 +137,26 @@ def test_usage_errors_exit_with_2(capsys):
     assert "write 0.95 for 95 %" in capsys.readouterr().err
 
 
-def test_draws_are_taken_and_their_lack_is_said(capsys):
-    assert main(["reduce", str(CLEAN), "--draws", "1000", "--json"]) == 0
+def test_draws_are_made_where_asked_for(capsys):
+    assert main(["reduce", str(CLEAN), "--draws", "1000", "--seed", "4", "--json"]) == 0
     out, err = capsys.readouterr()
-    assert json.loads(out)["run_sets"][0]["monte_carlo"] is None
-    assert err.startswith("warning: this version has no Monte Carlo")
-    for draws in ("0", "auto"):
-        assert main(["reduce", str(CLEAN), "--draws", draws]) == 0
-        assert capsys.readouterr().err == ""
-    with pytest.raises(SystemExit):
-        main(["reduce", str(CLEAN), "--draws", "many"])
-    assert "write 200000, or auto" in capsys.readouterr().err
+    document = json.loads(out)
+    assert err == ""
+    assert document["seed"] == 4
+    assert document["run_sets"][0]["monte_carlo"]["draws"] == 1000
+    for draws in ([], ["--draws", "0"]):
+        assert main(["reduce", str(CLEAN), "--json", *draws]) == 0
+        out, err = capsys.readouterr()
+        assert err == ""
+        assert json.loads(out)["run_sets"][0]["monte_carlo"] is None
+    assert main(["reduce", str(CLEAN), "--draws", "auto", "--json"]) == 0
+    assert json.loads(capsys.readouterr().out)["run_sets"][0]["monte_carlo"]["draws"] >= 20_000
+    for wrong, said in ((["--draws", "many"], "write 200000, or auto"), (["--seed", "-1"], "seed")):
+        with pytest.raises(SystemExit):
+            main(["reduce", str(CLEAN), *wrong])
+        assert said in capsys.readouterr().err
+    assert main(["reduce", str(CLEAN), "--draws", "5"]) == 2
+    assert "too few" in capsys.readouterr().err
 
 
 def test_inspect_json_lists_what_is_wrong_with_the_bench_sheet(tmp_path, capsys):
