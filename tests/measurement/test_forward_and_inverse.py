@@ -95,3 +95,21 @@ def test_forward_and_inverse_agree_on_invented_benches(surface):
     assert felt["run-in"] >= 5
     assert min(numbers) < 0.01
     assert max(numbers) > 10
+
+
+def test_a_drop_without_a_solution_leaves_the_others_alone():
+    bench = {
+        "tube": {"A": {"bore": "50 mm", "distance": "200 mm"}},
+        "ball": {
+            "X": {"diameter": "6 mm", "density": "2500 kg/m3"},
+            "light": {"diameter": "6 mm", "density": "900 kg/m3"},
+        },
+        "liquid": {"oil": {"density": "970 kg/m3"}},
+        "methods": {"ends": "none"},
+    }
+    sound = pd.DataFrame({"set": "A", "ball": "X", "time [s]": [0.9, 1.2, 3.0]})
+    floating = pd.DataFrame({"set": "B", "ball": "light", "time [s]": [3.0]})
+    alone = pf.reduce(sound, bench)["A"].result
+    together = pf.reduce(pd.concat([sound, floating]), bench)["A"].result
+    assert max(drop.reynolds for drop in alone.drops) > 20
+    assert [drop.viscosity for drop in together.drops] == [drop.viscosity for drop in alone.drops]

@@ -132,6 +132,8 @@ def _newton(
         step = (log_factor - x - log_demand) / (1 - slope)
         beyond = x + step > top
         x = np.minimum(x + step, top)
-        if not np.abs(step, where=~beyond, out=np.zeros(shape)).max(initial=0.0) > tolerance:
+        # a drop without a solution is NaN from the start, and must not end the others' steps
+        size = np.abs(step, where=~beyond, out=np.zeros(shape))
+        if not np.fmax.reduce(size, axis=None, initial=0.0) > tolerance:
             break
     return x, beyond
