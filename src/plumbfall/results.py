@@ -68,7 +68,8 @@ class MonteCarloResult:
     ``low`` and ``high`` bound the probabilistically symmetric interval, infinite where too many
     draws have no viscosity, which ``undefined`` counts. ``standard_uncertainty`` is ``None`` where
     it does not exist. ``validated_linear`` says that the linear interval agrees with it at one
-    significant digit of the standard uncertainty (JCGM 101, 8).
+    significant digit of the standard uncertainty (JCGM 101, 8). ``stable`` says whether the draws
+    were enough for that, where they were to be; ``None`` where their number was given.
     """
 
     low: float
@@ -79,6 +80,7 @@ class MonteCarloResult:
     draws: int
     validated_linear: bool
     undefined: int = 0
+    stable: bool | None = None
 
 
 @dataclass(frozen=True, slots=True)

@@ -92,10 +92,7 @@ def test_slopes_of_the_model_are_the_linear_sensitivities(ends):
         both = np.stack([middle, middle], axis=1)
         both[place] += step, -step
         slope = (model(both)[0] @ [1.0, -1.0]) / (2 * step)
-        if estimate.name == "set.A.scatter":
-            expected = 1.0
-        else:
-            expected = row[names.index(estimate.name)]
+        expected = 1.0 if estimate.name == "set.A.scatter" else row[names.index(estimate.name)]
         largest = float(sets.outputs.of("viscosity").u[0])
         # to 2 % and, where hardly felt, to a thousandth of the whole uncertainty
         assert slope == pytest.approx(expected, rel=0.02, abs=1e-3 * largest / estimate.u), (
@@ -248,8 +245,10 @@ def test_every_drop_has_errors_of_its_own():
 
 def test_a_single_drop_is_drawn_by_what_its_instruments_declare():
     bench = bench_dict(
-        timer__T1__per_drop="0.1 s", timer__T1__resolution="0.2 s", thermometer__P1__per_reading="1 K"
-    )  # fmt: skip
+        timer__T1__per_drop="0.1 s",
+        timer__T1__resolution="0.2 s",
+        thermometer__P1__per_reading="1 K",
+    )
     result = pf.reduce(drops_table({"B1": [15.05]}), bench, draws=DRAWS)["A"].result
     shares = {line.input: line.share for line in result.budget}
     own = ("timer.T1.per_drop", "timer.T1.resolution", "thermometer.P1.per_reading")
@@ -277,6 +276,7 @@ def test_auto_draws_until_the_bounds_stand():
     bench = bench_dict(scatter={"relative": "0.30 %", "dof": 200})
     result = pf.reduce(drops_table({"B1": [14.91], "B2": [9.78]}), bench, draws="auto")["A"].result
     assert result.monte_carlo.draws % 10_000 == 0
+    assert result.monte_carlo.stable
     assert result.monte_carlo.validated_linear
 
 
@@ -297,7 +297,7 @@ def report_text(report: pf.Report) -> str:
     return plain_text(report)
 
 
-def test_json_text_and_page_show_both():
+def test_json_text_and_page_show_both(tmp_path):
     report = pf.reduce(drops_table({"nylon": [16.0]}), LIGHT, draws=20_000, seed=5)
     document = json.loads(report.to_json())
     assert list(validator().iter_errors(document)) == []
@@ -313,3 +313,7 @@ def test_json_text_and_page_show_both():
     assert "Linear against Monte Carlo" in text
     assert "20000 draws" in " ".join(text.split())
     assert "does not agree" in " ".join(text.split())
+    report.to_html(tmp_path / "report.html")
+    page = (tmp_path / "report.html").read_text("utf-8")
+    assert "Linear against Monte Carlo" in page
+    assert "linear-not-validated" in page

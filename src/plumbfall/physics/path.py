@@ -76,6 +76,9 @@ def path_excess(
     start, whole = distance / radius, length / radius
     near = np.minimum(start, END_EXCESS_REACH)
     far = np.minimum(start + whole, END_EXCESS_REACH)
+    felt = (far > near) | ~((ratio >= 0.0) & (ratio < 1.0) & (whole > 0.0))
+    if not felt.all():  # nothing is felt of an end out of reach, and nothing need be worked out
+        return _where_felt(ratio, distance, length, radius, end, felt)
     # equal steps of ln(gap): near contact the excess goes as the gap's inverse
     gap = np.maximum(near - ratio, GAP)
     half = np.log(np.maximum(far - ratio, GAP) / gap) / 2
@@ -92,6 +95,31 @@ def path_excess(
     reach = np.where(within, start, 0.0)  # an end out of reach may be infinitely far
     by_bore = mean - (at_far * (reach + whole) - at_near * reach) / whole
     return PathExcess(mean, by_ratio, by_bore, by_distance, at_far)
+
+
+def _where_felt(
+    ratio: Numbers,
+    distance: Numbers,
+    length: Numbers,
+    radius: Numbers,
+    end: Literal["solid", "free"],
+    felt: NDArray[np.bool_],
+) -> PathExcess:
+    """Average over the paths of which some may be within reach; all is 0 on the others."""
+    found = np.zeros((5, *felt.shape))
+    if felt.any():
+        near, space, way, bore = (
+            np.broadcast_to(part, felt.shape)[felt] for part in (ratio, distance, length, radius)
+        )
+        there = path_excess(near, space, way, bore, end)
+        found[:, felt] = (
+            there.mean,
+            there.by_ratio,
+            there.by_bore,
+            there.by_distance,
+            there.at_far_mark,
+        )
+    return PathExcess(*found)
 
 
 def _excess(

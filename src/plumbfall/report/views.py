@@ -155,6 +155,8 @@ def _of_draws(linear: Measured, drawn: MonteCarloResult, scale: Scale) -> Fact:
     verdict = "agrees" if drawn.validated_linear else "does not agree"
     text = f"linear {' to '.join(bounds)} {scale.unit} {verdict} with {' to '.join(found)}"
     text += f" of {counted(drawn.draws, 'draw')}"
+    if drawn.stable is False:
+        text += ", too few for bounds that stand"
     return Fact("Linear against Monte Carlo", text, scale.unit, "monte-carlo")
 
 

@@ -71,6 +71,7 @@ class Drawn:
             draws=self.found.draws,
             validated_linear=self.validations["viscosity"].validated,
             undefined=output.undefined,
+            stable=self.found.converged,
         )
 
 
