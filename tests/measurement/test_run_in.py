@@ -142,3 +142,13 @@ def test_most_a_start_beyond_the_table_may_come_to(ratio, reynolds, density_rati
     most = start_beyond_table(first, first + 40.0, ball, reynolds * one)
     assert (most > computed).all()
     assert (most < 2.5 * computed + 1e-3 * 40 / (reynolds / 2)).all()
+
+
+@pytest.mark.parametrize("release", ["0 mm", "0.0(5) mm"])
+def test_a_release_at_the_first_mark_has_an_uncertainty(release):
+    """The delay's slope is infinite there; the budget must not be lost with it."""
+    result = reduced(fall(0.1, 0.0), tube={"release_above": release})
+    assert 0 < result.viscosity.u < result.viscosity.value
+    assert sum(line.share for line in result.budget) == pytest.approx(1.0)
+    named = "tube.A.release_above" in [line.input for line in result.budget]
+    assert named == (release != "0 mm")

@@ -7,7 +7,7 @@ from hypothesis import strategies as st
 
 from plumbfall.flow.start_creeping import CreepingStart
 from plumbfall.flow.start_inertial import InertialStart
-from plumbfall.physics import run_in_delay, run_in_delay_slope, tube_drag_factor
+from plumbfall.physics import run_in_delay, run_in_delay_and_slope, tube_drag_factor
 from plumbfall.physics.start_up import (
     RUN_IN_DENSITY_RATIO_LIMITS,
     RUN_IN_HIGHEST_REYNOLDS,
@@ -207,5 +207,5 @@ def test_slope_is_that_of_the_delay(depth):
     }
     step = 1e-5 * depth
     up, down = (run_in_delay(depth=depth + sign * step, **start) for sign in (1, -1))
-    slope = run_in_delay_slope(depth=depth, **start)
+    _, slope = run_in_delay_and_slope(depth=depth, **start)
     assert slope == pytest.approx((up - down) / (2 * step), rel=1e-6, abs=1e-12)

@@ -25,7 +25,7 @@ from plumbfall.physics.start_up import (
     RUN_IN_HIGHEST_REYNOLDS,
     RUN_IN_RATIO_LIMITS,
     run_in_delay,
-    run_in_delay_slope,
+    run_in_delay_and_slope,
 )
 
 __all__ = ["Release", "RunIn", "releases", "run_in", "start_beyond_table"]
@@ -36,6 +36,11 @@ SETTLED = 1.5
 26.37 is the square of the first zero of the Bessel function J2; inertia only makes it quicker.
 """
 
+LEAST_DEPTH = 0.01
+"""Ball diameters below the release, at least, where the effect of its height is read.
+
+The slope of the delay is infinite at the point of release itself.
+"""
 
 MATTERS = 5e-4
 """Part of the time from which on a start that is not in the table is said to be unknown."""
@@ -101,11 +106,13 @@ def run_in(released: Release, cell: Codes, forces: Balance, found: Inverse) -> R
         "viscosity": found.viscosity[at],
         "ball_density": part(forces.mass / forces.volume),
     }
-    early, late = (np.asarray(run_in_delay(depth=y, **ball)) for y in (first[at], last[at]))
-    slopes = (np.asarray(run_in_delay_slope(depth=y, **ball)) for y in (first[at], last[at]))
-    early_slope, late_slope = slopes
+    depths = np.stack([first[at], last[at]])
+    (early, late), (early_slope, late_slope) = run_in_delay_and_slope(depth=depths, **ball)
+    if (first[at] < LEAST_DEPTH * ball["ball_diameter"]).any():
+        least = np.maximum(first[at], LEAST_DEPTH * ball["ball_diameter"])
+        _, early_slope = run_in_delay_and_slope(depth=least, **ball)
     unknown = np.isnan(late - early)
-    bias, by_release, error = np.zeros(shape), np.zeros(shape), np.zeros(shape)
+    bias, by_release = np.zeros(shape), np.zeros(shape)
     bias[at] = np.where(unknown, 0.0, late - early)
     by_release[at] = np.where(unknown, 0.0, late_slope - early_slope)
     relative = np.abs(bias) / (forces.time + bias)

@@ -35,7 +35,7 @@ _NAMES_OF = {
         "run_in_distance",
         "run_in_guard_distance",
     ),
-    "start_up": ("run_in_delay", "run_in_delay_slope"),
+    "start_up": ("run_in_delay", "run_in_delay_and_slope"),
     "stokes": (
         "drag_coefficient",
         "reynolds_number",

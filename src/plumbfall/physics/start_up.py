@@ -19,7 +19,7 @@ __all__ = [
     "RUN_IN_HIGHEST_REYNOLDS",
     "RUN_IN_RATIO_LIMITS",
     "run_in_delay",
-    "run_in_delay_slope",
+    "run_in_delay_and_slope",
 ]
 
 Array = NDArray[np.float64]
@@ -224,7 +224,7 @@ def run_in_delay(
     return float(delay) if np.ndim(delay) == 0 else delay
 
 
-def run_in_delay_slope(
+def run_in_delay_and_slope(
     *,
     depth: Numeric,
     ball_diameter: Numeric,
@@ -233,8 +233,8 @@ def run_in_delay_slope(
     liquid_density: Numeric,
     viscosity: Numeric,
     ball_density: Numeric,
-) -> Numeric:
-    r"""Growth of the run-in's delay with the depth: 1/v(y) less 1/v.
+) -> tuple[Numeric, Numeric]:
+    r"""Delay of a ball released from rest, and its growth with the depth: 1/v(y) less 1/v.
 
     .. math:: \frac{d}{dy}\left[t(y) - \frac{y}{v}\right]
         = \frac{d^2}{4 \nu}\, T\, e^{-G}\, \frac{G}{y}\, \frac{d \ln G}{d \ln Z}
@@ -258,8 +258,10 @@ def run_in_delay_slope(
 
     Returns
     -------
+    float or array [s]
+        Delay, that of :func:`run_in_delay`.
     float or array [s/m]
-        Slope of the delay, falling to 0; NaN outside the range.
+        Its slope, falling from infinity at the point of release to 0; NaN outside the range.
 
     Valid range
     -----------
@@ -267,7 +269,7 @@ def run_in_delay_slope(
 
     Notes
     -----
-    The derivative of :func:`run_in_delay`, analytic.
+    The slope is analytic. Both come from one look-up, which depths of one ball share.
 
     References
     ----------
@@ -277,15 +279,15 @@ def run_in_delay_slope(
     --------
     >>> ball = {"ball_diameter": 3e-3, "tube_bore": 40e-3, "fall_speed": 0.1889}
     >>> liquid = {"liquid_density": 1200.0, "viscosity": 0.1}
-    >>> slope = run_in_delay_slope(depth=10e-3, **ball, **liquid, ball_density=7800.0)
+    >>> _, slope = run_in_delay_and_slope(depth=10e-3, **ball, **liquid, ball_density=7800.0)
     >>> f"{slope:.3f}"
     '0.495'
     """
-    _, slope = _delay_and_slope(
+    delay, slope = _delay_and_slope(
         depth,
         (ball_diameter, tube_bore, fall_speed, liquid_density, viscosity, ball_density),
     )
-    return float(slope) if np.ndim(slope) == 0 else slope
+    return (float(delay), float(slope)) if np.ndim(delay) == 0 else (delay, slope)
 
 
 def _delay_and_slope(depth: Numeric, given: tuple[Numeric, ...]) -> tuple[Array, Array]:
@@ -313,6 +315,8 @@ def _delay_and_slope(depth: Numeric, given: tuple[Numeric, ...]) -> tuple[Array,
         grown = np.exp(shape)
         delay: Array = -lost * np.expm1(-grown)
         slope: Array = lost * np.exp(-grown) * grown * by_depth / np.asarray(depth, float)
+        # as in free fall, where a time goes as the root of the depth
+        slope = np.where((np.asarray(depth, float) == 0.0) & ~np.isnan(delay), np.inf, slope)
     return delay, slope
 
 
