@@ -182,13 +182,13 @@ def _reduce(options: argparse.Namespace) -> int:
 
     from plumbfall.errors import PlumbfallWarning
     from plumbfall.report.text import show
-    from plumbfall.workflow import find_bench, reduce
+    from plumbfall.workflow import reduce
 
     with warnings.catch_warnings(record=True) as said:
         warnings.simplefilter("always", PlumbfallWarning)
         report = reduce(
             options.timings,
-            options.bench or find_bench(options.timings),
+            options.bench,
             draws=options.draws,
             seed=options.seed,
             coverage=options.coverage,

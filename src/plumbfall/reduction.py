@@ -255,9 +255,6 @@ def reduce_numbers(timings: Timings, bench: Bench, coverage: float = 0.95) -> Se
 
 
 def _data(sets: SetColumns, limits: Limits) -> RunData:
-    viscosity = sets.outputs.of("viscosity")
-    with np.errstate(invalid="ignore", divide="ignore"):
-        relative_u = viscosity.u / viscosity.value
     return RunData(
         bench=sets.bench,
         timings=sets.timings,
@@ -268,7 +265,6 @@ def _data(sets: SetColumns, limits: Limits) -> RunData:
         scatter=sets.scatter,
         jacobian=sets.jacobian,
         law=sets.law,
-        relative_u=relative_u,
         limits=limits,
         ends=sets.ends,
         unstated=unstated_uncertainties(sets.bench),

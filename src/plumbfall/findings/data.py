@@ -32,8 +32,7 @@ Found = tuple[int, Finding]
 class RunData:
     """Everything known once the drops are reduced and the uncertainties propagated.
 
-    ``relative_u`` is each run set's relative standard uncertainty, shape (run sets,); ``ends``
-    what the tubes' ends add to each cell's path, ``None`` where nothing is added.
+    ``ends`` is what the tubes' ends add to each cell's path, ``None`` where nothing is added.
     """
 
     bench: Bench
@@ -45,7 +44,6 @@ class RunData:
     scatter: Repeatability
     jacobian: Jacobian
     law: DragLaw
-    relative_u: NDArray[np.float64]
     limits: Limits
     ends: Ends | None = None
     unstated: tuple[str, ...] = ()
@@ -81,11 +79,14 @@ class RunData:
         return tuple(self.bench.liquids.values())
 
     @cached_property
-    def by_set(self) -> tuple[NDArray[np.intp], ...]:
-        """Places of the used drops of each run set, in their order."""
-        order = np.argsort(self.selection.run_set, kind="stable")
-        counts = np.bincount(self.selection.run_set, minlength=len(self.names))
-        return tuple(np.split(order, np.cumsum(counts)[:-1]))
+    def temperature_range(self) -> NDArray[np.float64]:
+        """Range of the drops' temperatures by run set, NaN where unknown, shape (run sets,)."""
+        n = len(self.names)
+        low, high = np.full(n, np.inf), np.full(n, -np.inf)
+        with np.errstate(invalid="ignore"):
+            np.minimum.at(low, self.selection.run_set, self.columns.temperature)
+            np.maximum.at(high, self.selection.run_set, self.columns.temperature)
+        return np.where(np.isfinite(high), high - low, np.nan)
 
     def flagged(self, flag: NDArray[np.bool_]) -> Iterator[tuple[int, NDArray[np.intp]]]:
         """Run sets with flagged drops, and the places of these drops."""

@@ -19,21 +19,11 @@ Mineral oils 6e-4 to 8e-4, silicone fluids 9e-4, glycerol 5e-4: from memory.
 """
 
 
-def _ranges(data: RunData) -> np.ndarray:
-    """Range of the drops' temperatures by run set, NaN where unknown."""
-    n = len(data.names)
-    low, high = np.full(n, np.inf), np.full(n, -np.inf)
-    with np.errstate(invalid="ignore"):
-        np.minimum.at(low, data.selection.run_set, data.columns.temperature)
-        np.maximum.at(high, data.selection.run_set, data.columns.temperature)
-    return np.where(np.isfinite(high), high - low, np.nan)
-
-
 def slope_unknown(data: RunData) -> Iterator[Found]:
     """Find liquids without a temperature slope, which bounds and reduction would need."""
     known = np.zeros(len(data.names), bool)
     known[data.selection.cells.run_set[data.inputs.slope_known]] = True
-    ranges = _ranges(data)
+    ranges = data.temperature_range
     asked = data.bench.reference_temperature is not None
     liquid_of = np.zeros(len(data.names), dtype=np.intp)
     liquid_of[data.selection.cells.run_set] = data.selection.cells.liquid
@@ -86,7 +76,7 @@ def slope_sign(data: RunData) -> Iterator[Found]:
 
 def temperature_spread(data: RunData) -> Iterator[Found]:
     """Find sets whose drops were made at widely differing temperatures."""
-    ranges = _ranges(data)
+    ranges = data.temperature_range
     slope = np.zeros(len(data.names))
     slope[data.selection.cells.run_set] = data.inputs.roles["slope"].value
     for run_set in np.flatnonzero(ranges > data.limits.temperature_spread):
@@ -139,7 +129,7 @@ def density_temperature(data: RunData) -> Iterator[Found]:
 
 def _temperature_missing(data: RunData) -> Iterator[Found]:
     """Find sets without temperature whose liquid is said to change with it."""
-    lost = np.isnan(_ranges(data))[data.selection.cells.run_set] & data.inputs.slope_known
+    lost = np.isnan(data.temperature_range)[data.selection.cells.run_set] & data.inputs.slope_known
     for run_set in np.unique(data.selection.cells.run_set[lost]):
         asked = data.bench.reference_temperature is not None
         yield (

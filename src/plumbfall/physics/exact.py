@@ -1,4 +1,4 @@
-"""Look-ups of the exact creeping-flow results: wall factor, off-axis coefficient, end excess.
+"""Look-ups of the exact creeping-flow results: wall factor and off-axis coefficient.
 
 The numbers are computed by ``plumbfall.flow`` and ship as tables. Each look-up returns the value
 and its derivatives, taken from one smooth function, so that they agree with each other.
@@ -13,24 +13,14 @@ import numpy as np
 from numpy.polynomial import chebyshev
 from numpy.typing import NDArray
 
-from plumbfall.physics.exact_ends import (
-    END_EXCESS_LEAST_GAP,
-    END_EXCESS_RATIO_LIMITS,
-    END_EXCESS_REACH,
-    end_excess_table,
-)
 from plumbfall.physics.numeric import Numeric
 from plumbfall.physics.piecewise import Piecewise
 from plumbfall.physics.tables import shipped_table
 
 __all__ = [
-    "END_EXCESS_LEAST_GAP",
-    "END_EXCESS_RATIO_LIMITS",
-    "END_EXCESS_REACH",
     "OFF_AXIS_OFFSET_LIMITS",
     "WALL_FACTOR_RATIO_LIMITS",
     "creeping_wall_factor",
-    "end_excess_table",
     "off_axis_coefficient",
 ]
 

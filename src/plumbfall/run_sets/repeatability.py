@@ -45,7 +45,6 @@ class Repeatability:
     basis: NDArray[np.intp]
     floored: NDArray[np.bool_]
     value_mean: Numbers
-    drop_sd: Numbers
 
 
 def repeatability(
@@ -109,5 +108,4 @@ def repeatability(
         basis=basis,
         floored=floored,
         value_mean=value_mean,
-        drop_sd=drops.sd,
     )
