@@ -106,11 +106,11 @@ def run_in(released: Release, cell: Codes, forces: Balance, found: Inverse) -> R
         "viscosity": found.viscosity[at],
         "ball_density": part(forces.mass / forces.volume),
     }
-    depths = np.stack([first[at], last[at]])
-    (early, late), (early_slope, late_slope) = run_in_delay_and_slope(depth=depths, **ball)
+    found_at = run_in_delay_and_slope(depth=np.stack([first[at], last[at]]), **ball)
+    (early, late), (early_slope, late_slope) = (np.asarray(part) for part in found_at)
     if (first[at] < LEAST_DEPTH * ball["ball_diameter"]).any():
         least = np.maximum(first[at], LEAST_DEPTH * ball["ball_diameter"])
-        _, early_slope = run_in_delay_and_slope(depth=least, **ball)
+        early_slope = np.asarray(run_in_delay_and_slope(depth=least, **ball)[1])
     unknown = np.isnan(late - early)
     bias, by_release = np.zeros(shape), np.zeros(shape)
     bias[at] = np.where(unknown, 0.0, late - early)
