@@ -4,11 +4,11 @@ import pytest
 from plumbfall.flow.ball_in_tube import BallInTube
 from plumbfall.flow.end_excess import end_excess
 from plumbfall.flow.finite_tube import starting_order
-from plumbfall.physics.exact import (
+from plumbfall.physics.exact import creeping_wall_factor
+from plumbfall.physics.exact_ends import (
     END_EXCESS_LEAST_GAP,
     END_EXCESS_RATIO_LIMITS,
     END_EXCESS_REACH,
-    creeping_wall_factor,
     end_excess_table,
 )
 
