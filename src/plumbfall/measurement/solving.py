@@ -99,13 +99,13 @@ def solve(
         log_beside = (beside.log_factor if beside is not None else 0.0) + log_extra
         found = invert(forces, drag, log_beside, shift)
         start = None
-        for _ in range(MOST_STARTS if released is not None else 0):
-            assert released is not None  # as the range is not empty
-            before, start = start, run_in(released, cell, forces, found)
-            if start is None or _settled(before, start, forces):
-                break
-            forces = balance(inputs, cell, clock, temperature, end_factor, start.bias)
-            found = invert(forces, drag, log_beside, shift)
+        if released is not None:
+            for _ in range(MOST_STARTS):
+                before, start = start, run_in(released, cell, forces, found)
+                if start is None or _settled(before, start, forces):
+                    break
+                forces = balance(inputs, cell, clock, temperature, end_factor, start.bias)
+                found = invert(forces, drag, log_beside, shift)
     return Solved(forces, drag, shift, end_factor, beside, start, found)
 
 
