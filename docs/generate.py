@@ -19,7 +19,7 @@ from typing import Any
 from plumbfall.bench.common_keys import LEFT_OUT, Equipment
 from plumbfall.bench.schema import Sheet
 from plumbfall.bench.usual import USUAL
-from plumbfall.cli import build_parser
+from plumbfall.cli.program import build_parser
 from plumbfall.findings.limits import Limits
 from plumbfall.flow.tables import read_table, tables_directory
 from plumbfall.physics.laws import DEFAULTS, KINDS, laws_of

@@ -4,6 +4,6 @@ from __future__ import annotations
 
 import sys
 
-from plumbfall.cli import main
+from plumbfall.cli.program import main
 
 sys.exit(main())

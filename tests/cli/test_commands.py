@@ -10,7 +10,7 @@ from pathlib import Path
 
 import pytest
 
-from plumbfall.cli import main
+from plumbfall.cli.program import main
 
 SAMPLES = Path(__file__).parents[2] / "sample_runs"
 CLEAN = SAMPLES / "damping_fluid_clean" / "drops.csv"

@@ -11,7 +11,7 @@ from collections import Counter
 import pytest
 
 import plumbfall.published.selftest as module
-from plumbfall.cli import build_parser, main
+from plumbfall.cli.program import build_parser, main
 from plumbfall.published.figure import (
     DEFINITION,
     FROM_MEMORY,

@@ -21,7 +21,8 @@ import plumbfall as pf
 from plumbfall.bench.common_keys import Keys
 from plumbfall.bench.notation import read_quantity
 from plumbfall.bench.schema import Sheet, json_schema
-from plumbfall.cli import BAD_INPUT, DONE, INVALID, build_parser
+from plumbfall.cli.exit_codes import BAD_INPUT, DONE, INVALID
+from plumbfall.cli.program import build_parser
 from plumbfall.findings.limits import Limits
 from plumbfall.results import SEVERITIES
 from plumbfall.timings import collect

@@ -1,0 +1,80 @@
+"""The command ``reduce``."""
+
+from __future__ import annotations
+
+import argparse
+
+from plumbfall.cli.arguments import add_inputs, draws, probability, seed
+from plumbfall.cli.commands import Commands
+from plumbfall.cli.exit_codes import DONE, INVALID
+from plumbfall.cli.output import say, standard_output
+
+__all__ = ["add_reduce"]
+
+
+def add_reduce(commands: Commands) -> None:
+    """Add the command to the parser."""
+    reduce = commands.add_parser(
+        "reduce",
+        help="viscosity with bounds for each run set",
+        description="Reduce timed drops to a viscosity with confidence bounds for each run set.",
+        epilog="Exit code: 0 every set valid, 1 a set invalid, 2 bad input (nothing is written).",
+    )
+    add_inputs(reduce, timings="+")
+    reduce.add_argument(
+        "--out",
+        metavar="DIR",
+        help="write report.html, report.json, run_sets.csv and drops.csv there, all or none",
+    )
+    reduce.add_argument(
+        "--coverage", type=probability, metavar="P", help="coverage probability (default 0.95)"
+    )
+    reduce.add_argument(
+        "--draws",
+        type=draws,
+        metavar="N|auto",
+        help="Monte Carlo draws, such as 200000, or as many as it takes (default 0: linear only)",
+    )
+    reduce.add_argument(
+        "--seed",
+        type=seed,
+        default=0,
+        metavar="N",
+        help="seed of the draws, recorded in the report (default 0)",
+    )
+    reduce.add_argument(
+        "--strict", action="store_true", help="exit with 1 also where a set has warnings"
+    )
+    reduce.set_defaults(run=_run)
+
+
+def _run(options: argparse.Namespace) -> int:
+    import warnings
+
+    from plumbfall.errors import PlumbfallWarning
+    from plumbfall.report.text import show
+    from plumbfall.workflow import reduce
+
+    with warnings.catch_warnings(record=True) as said:
+        warnings.simplefilter("always", PlumbfallWarning)
+        report = reduce(
+            options.timings,
+            options.bench,
+            draws=options.draws,
+            seed=options.seed,
+            coverage=options.coverage,
+            encoding=options.encoding,
+        )
+    for warning in said:
+        say(f"warning: {warning.message}")
+    statuses = set(report.table()["status"])
+    failing = {"invalid", "valid-with-warnings"} if options.strict else {"invalid"}
+    if options.out:
+        report.write(options.out)
+        say(f"written to {options.out}: report.html, report.json, run_sets.csv, drops.csv")
+    with standard_output() as output:
+        if options.json:
+            output.write(report.to_json())
+        else:
+            show(report, output)
+    return INVALID if statuses & failing else DONE
