@@ -20,6 +20,8 @@ class Limits:
         Leave out drops beyond Grubbs' 1 % limit, under the rule ``grubbs-1-percent``.
     outlier_level, straggler_level
         Two-sided significance of an outlier and of a straggler (ISO 5725-2, 7.3.4).
+    warning_level
+        Part of clean sets that all other statistical warnings together may raise; they share it.
     too_few_drops
         Fewer drops than this are noted (common practice, no source).
     many_excluded
@@ -48,6 +50,7 @@ class Limits:
     exclude_outliers: bool = False
     outlier_level: float = 0.01
     straggler_level: float = 0.05
+    warning_level: float = 0.03
     too_few_drops: float = 5
     many_excluded: float = 0.20
     temperature_agreement: float = 0.1
@@ -63,7 +66,7 @@ class Limits:
     density_effect: float = 5e-4
 
 
-_PROBABILITIES = ("outlier_level", "straggler_level", "many_excluded")
+_PROBABILITIES = ("outlier_level", "straggler_level", "warning_level", "many_excluded")
 
 
 def limits_from(overrides: Mapping[str, float | bool], path: str = "") -> Limits:
