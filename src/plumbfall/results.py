@@ -15,6 +15,7 @@ __all__ = [
     "Correction",
     "DropResult",
     "Finding",
+    "Histogram",
     "Measured",
     "MonteCarloResult",
     "Quantity",
@@ -62,6 +63,17 @@ class Measured:
 
 
 @dataclass(frozen=True, slots=True)
+class Histogram:
+    """How many draws fell into each of equal bins between ``low`` and ``high``, and outside."""
+
+    low: float
+    high: float
+    counts: tuple[int, ...]
+    below: int = 0
+    above: int = 0
+
+
+@dataclass(frozen=True, slots=True)
 class MonteCarloResult:
     """What draws of the inputs say of a run set's viscosity, in Pa.s (JCGM 101).
 
@@ -70,6 +82,7 @@ class MonteCarloResult:
     it does not exist. ``validated_linear`` says that the linear interval agrees with it at one
     significant digit of the standard uncertainty (JCGM 101, 8). ``stable`` says whether the draws
     were enough for that, where they were to be; ``None`` where their number was given.
+    ``histogram`` is ``None`` where the interval has no bounds or no width.
     """
 
     low: float
@@ -81,6 +94,7 @@ class MonteCarloResult:
     validated_linear: bool
     undefined: int = 0
     stable: bool | None = None
+    histogram: Histogram | None = None
 
 
 @dataclass(frozen=True, slots=True)

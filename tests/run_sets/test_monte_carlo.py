@@ -303,7 +303,7 @@ def test_json_text_and_page_show_both(tmp_path):
     assert list(validator().iter_errors(document)) == []
     run_set = document["run_sets"][0]
     assert set(run_set["monte_carlo"]) == {
-        "low", "high", "standard_uncertainty", "draws", "validated_linear",
+        "low", "high", "standard_uncertainty", "draws", "validated_linear", "histogram",
     }  # fmt: skip
     assert run_set["monte_carlo"]["draws"] == 20_000
     assert run_set["linear"]["method"] == "linear"

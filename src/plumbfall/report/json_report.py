@@ -12,6 +12,7 @@ from plumbfall.results import (
     BudgetLine,
     DropResult,
     Finding,
+    Histogram,
     Measured,
     MonteCarloResult,
     Quantity,
@@ -117,6 +118,19 @@ def _monte_carlo(drawn: MonteCarloResult | None) -> dict[str, Any] | None:
         "standard_uncertainty": _number(drawn.standard_uncertainty),
         "draws": int(drawn.draws),
         "validated_linear": bool(drawn.validated_linear),
+        "histogram": _histogram(drawn.histogram),
+    }
+
+
+def _histogram(counted: Histogram | None) -> dict[str, Any] | None:
+    if counted is None:
+        return None
+    return {
+        "low": _number(counted.low),
+        "high": _number(counted.high),
+        "counts": list(counted.counts),
+        "below": counted.below,
+        "above": counted.above,
     }
 
 

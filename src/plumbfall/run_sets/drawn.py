@@ -72,6 +72,7 @@ class Drawn:
             validated_linear=self.validations["viscosity"].validated,
             undefined=output.undefined,
             stable=self.found.converged,
+            histogram=output.histogram,
         )
 
 

@@ -9,6 +9,8 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from plumbfall.results import Histogram
+from plumbfall.uncertainty.histogram import histogram
 from plumbfall.uncertainty.intervals import shortest_interval, symmetric_interval
 
 __all__ = ["MonteCarlo", "MonteCarloOutput", "summarise"]
@@ -30,6 +32,7 @@ class MonteCarloOutput:
     shortest_low: float
     shortest_high: float
     undefined: int
+    histogram: Histogram | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -41,7 +44,8 @@ class MonteCarlo:
     of a t distribution of 2 dof or fewer enters, no mean at 1 or fewer, and neither where the
     model had no value for some draws, which ``undefined`` counts. ``converged`` says whether the
     adaptive procedure ended by itself; ``None`` where the number of draws was given. ``values``
-    holds the draws themselves in order, shape (outputs, draws), where they were to be kept.
+    holds the draws themselves in order, shape (outputs, draws), where they were to be kept;
+    ``histograms`` count them about the symmetric interval of each output.
     """
 
     draws: int
@@ -57,6 +61,7 @@ class MonteCarlo:
     undefined: NDArray[np.intp]
     converged: bool | None = None
     values: Numbers | None = None
+    histograms: tuple[Histogram | None, ...] = ()
 
     @property
     def correlation(self) -> Numbers:
@@ -75,6 +80,7 @@ class MonteCarlo:
             shortest_low=float(self.shortest_low[place]),
             shortest_high=float(self.shortest_high[place]),
             undefined=int(self.undefined[place]),
+            histogram=self.histograms[place] if self.histograms else None,
         )
 
 
@@ -135,12 +141,13 @@ def summarise(
     covariance[~has_u, :] = np.nan
     covariance[:, ~has_u] = np.nan
     mean[~has_mean] = np.nan
-    symmetric, shortest = [], []
+    symmetric, shortest, histograms = [], [], []
     for row in values:
         ascending = row.copy() if keep else row
         ascending.sort()
         symmetric.append(symmetric_interval(ascending, coverage))
         shortest.append(shortest_interval(ascending, coverage))
+        histograms.append(histogram(ascending, *symmetric[-1]))
     low, high = np.array(symmetric).T
     shortest_low, shortest_high = np.array(shortest).T
     return MonteCarlo(
@@ -157,4 +164,5 @@ def summarise(
         undefined=undefined,
         converged=converged,
         values=values if keep else None,
+        histograms=tuple(histograms),
     )
