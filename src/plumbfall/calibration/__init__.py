@@ -1,0 +1,1 @@
+"""What holds a bench to known liquids: certified values, tube constants, checks, charts."""
