@@ -16,6 +16,7 @@ if TYPE_CHECKING:
     from plumbfall.bench.records import Bench
     from plumbfall.errors import InputError, PlumbfallError, PlumbfallWarning
     from plumbfall.estimate import Estimate
+    from plumbfall.planning.simulation import simulate
     from plumbfall.report.report import Report
     from plumbfall.timings.reader import read_timings
     from plumbfall.timings.records import Timings
@@ -34,6 +35,7 @@ __all__ = [
     "read_bench",
     "read_timings",
     "reduce",
+    "simulate",
 ]
 
 _HOME = {
@@ -47,6 +49,7 @@ _HOME = {
     "read_bench": "plumbfall.bench.reader",
     "read_timings": "plumbfall.timings.reader",
     "reduce": "plumbfall.workflow",
+    "simulate": "plumbfall.planning.simulation",
 }
 
 

@@ -41,6 +41,7 @@ SUPPORT = {
     "ranges",
     "slopes",
     "tables",
+    "terminal",
 }
 MODULES = sorted(module.name for module in pkgutil.iter_modules(physics.__path__))
 

@@ -16,12 +16,10 @@ from plumbfall.physics.start_up import (
     RUN_IN_RATIO_LIMITS,
     run_in_delay,
 )
+from plumbfall.physics.terminal import terminal_log_reynolds
 from plumbfall.physics.weight import effective_weight
 
 __all__ = ["fall_time", "terminal_speed"]
-
-TOLERANCE = 1e-14
-MOST_STEPS = 60
 
 
 def terminal_speed(
@@ -89,20 +87,12 @@ def terminal_speed(
         raise PhysicsRangeError("a ball that is not denser than the liquid does not sink")
     law = DragLaw()
     drag = law.at(d / bore)
-    creeping = np.log(w * rho / (3 * np.pi * eta**2))
-    top = float(np.log(drag.max_reynolds))
-    x = np.minimum(creeping - np.log(drag.wall), top)
-    for _ in range(MOST_STEPS):
-        log_factor, slope = drag.evaluate(x)
-        step = (creeping - log_factor - x) / (1 + slope)
-        if (x + step > top + 1e-9).any() and (x >= top).any():
-            raise PhysicsRangeError(
-                f"the ball would fall at a Reynolds number above {drag.max_reynolds:g}, the limit "
-                f"of the drag law '{law.together}'"
-            )
-        x = np.minimum(x + step, top)
-        if np.abs(step).max(initial=0.0) < TOLERANCE * np.maximum(1.0, np.abs(x)).max(initial=1.0):
-            break
+    x, beyond = terminal_log_reynolds(drag, np.log(w * rho / (3 * np.pi * eta**2)))
+    if beyond.any():
+        raise PhysicsRangeError(
+            f"the ball would fall at a Reynolds number above {drag.max_reynolds:g}, the limit "
+            f"of the drag law '{law.together}'"
+        )
     speed: NDArray[np.float64] = np.exp(x) * eta / (rho * d)
     return speed
 
