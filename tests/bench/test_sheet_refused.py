@@ -306,7 +306,7 @@ CROSS = [
     (
         {"tube/C": {"kind": "calibrated"}},
         'tube.C: a calibrated tube has no constant; add constant = "NAME" with [constant.NAME], '
-        'or tube = "C" to one',
+        'or tube = "C" to one (a file that calibrate has yet to write need not be there)',
     ),
     (
         {"tube/A/constant": "K", "constant": {"K": {"value": "1e-8 m2/s2"}}},

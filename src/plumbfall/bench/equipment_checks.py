@@ -26,7 +26,8 @@ def tube_problems(sheet: Sheet, bench: Bench, tube: Tube, *, whole: bool) -> Ite
         if whole and not tube.constant and not named:
             yield Problem(
                 "a calibrated tube has no constant",
-                f'add constant = "NAME" with [constant.NAME], or tube = "{tube.name}" to one',
+                f'add constant = "NAME" with [constant.NAME], or tube = "{tube.name}" to one '
+                "(a file that calibrate has yet to write need not be there)",
                 key=path,
             )
     else:

@@ -30,7 +30,9 @@ def default_gravity(data: RunData) -> Iterator[Found]:
         f"{100 * GRAVITY_RANGE:.2f} % off, and as much of the viscosity",
         remedy="add gravity, or latitude and elevation, to [site]",
     )
-    for run_set in range(len(data.names)):
+    weighed = np.ones(len(data.names), dtype=bool)
+    weighed[data.selection.cells.run_set[data.inputs.calibrated]] = False  # gravity is in K
+    for run_set in np.flatnonzero(weighed).tolist():
         yield run_set, finding
 
 

@@ -173,11 +173,13 @@ def _tilted(data: RunData, among: np.ndarray) -> Iterator[Found]:
 
 
 def _of_tubes(data: RunData, key: str) -> np.ndarray:
-    """One estimate's value of every tube, NaN where the tube does not give it."""
-    estimates = [getattr(tube, key) for tube in data.tubes]
+    """One estimate's value of every tube, NaN where it is not given or a constant stands in."""
+    estimates = [None if tube.kind == "calibrated" else getattr(tube, key) for tube in data.tubes]
     return np.array([np.nan if one is None else one.value for one in estimates])
 
 
 def _tubes(data: RunData) -> Iterator[tuple[int, Tube]]:
+    """Tubes whose geometry is looked at, by run set."""
     for run_set, code in data.pairs("tube"):
-        yield int(run_set), data.tubes[code]
+        if data.tubes[code].kind != "calibrated":
+            yield int(run_set), data.tubes[code]

@@ -5,9 +5,13 @@ Blocks keep the working arrays in the processor's cache and memory flat in the n
 
 from __future__ import annotations
 
-import numpy as np
+from collections.abc import Iterator
 
-from plumbfall.measurement.balance import Numbers, spread
+import numpy as np
+from numpy.typing import NDArray
+
+from plumbfall.measurement.balance import Codes, Numbers, balance, spread
+from plumbfall.measurement.calibrated import by_constant
 from plumbfall.measurement.columns import DropColumns, empty_columns
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
@@ -72,8 +76,10 @@ def compute_drops(
     sums = empty_sums(len(selection.cells))
     in_cells = set_temperature[selection.cells.run_set]
     cell_ratio = cell_ratios(inputs, in_cells)
-    for start in range(0, n, BLOCK):
-        block = slice(start, min(start + BLOCK, n))
+    calibrated, others = _by_kind_of_tube(inputs.calibrated, selection.cell)
+    for block in _blocks(calibrated):
+        _compute_calibrated(block, selection, inputs, offset, weights.weight, out, sums)
+    for block in _blocks(others):
         _compute_block(
             block,
             selection,
@@ -90,8 +96,72 @@ def compute_drops(
     return out, sums
 
 
+Places = slice | Codes
+"""Drops of a block: a slice where all drops are of one kind, which saves copies."""
+
+
+def _by_kind_of_tube(calibrated: NDArray[np.bool_], cell: Codes) -> tuple[Places, Places]:
+    """Return the drops in calibrated tubes, and the others."""
+    every, none = slice(0, len(cell)), slice(0, 0)
+    if not calibrated.any():
+        return none, every
+    here = calibrated[cell]
+    return (every, none) if here.all() else (np.flatnonzero(here), np.flatnonzero(~here))
+
+
+def _blocks(places: Places) -> Iterator[Places]:
+    if isinstance(places, slice):
+        for start in range(places.start, places.stop, BLOCK):
+            yield slice(start, min(start + BLOCK, places.stop))
+        return
+    for start in range(0, len(places), BLOCK):
+        yield places[start : start + BLOCK]
+
+
+def _compute_calibrated(
+    block: Places,
+    selection: Selection,
+    inputs: Inputs,
+    offset: Numbers,
+    weight: Numbers,
+    out: DropColumns,
+    sums: Sums,
+) -> None:
+    """Fill the columns of a block of drops in calibrated tubes, and add it to the sums."""
+    cell, clock = selection.cell[block], selection.time[block]
+    forces = balance(inputs, cell, clock, out.temperature[block])
+    found = by_constant(inputs, cell, forces)
+    out.viscosity[block] = found.viscosity
+    out.at_set[block] = found.viscosity * np.exp(
+        spread(inputs.roles["slope"].value, cell) * offset[block]
+    )
+    out.diameter[block] = forces.diameter
+    for unknown in (
+        out.stokes, out.reynolds, out.fall_speed, out.diameter_ratio, out.wall, out.drag_factor,
+        out.shear_stress,
+    ):  # fmt: skip
+        unknown[block] = np.nan
+    out.model_bound[block] = 0.0
+    out.floating[block] = found.floating
+    out.no_root[block] = found.no_time
+    out.too_fast[block] = out.too_wide[block] = False
+    none = np.zeros(1)
+    with np.errstate(invalid="ignore", divide="ignore"):
+        add_block(
+            sums,
+            inputs,
+            cell,
+            clock,
+            forces,
+            DropSlopes(none, none, none, calibrated=True),
+            weight[block] * out.at_set[block],
+            offset[block],
+            ~np.isnan(selection.temperature[block]),
+        )
+
+
 def _compute_block(
-    block: slice,
+    block: Places,
     selection: Selection,
     inputs: Inputs,
     law: DragLaw,

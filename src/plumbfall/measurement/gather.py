@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from plumbfall.bench.records import Balance, Ball, Bench, Gauge, Tube
 from plumbfall.errors import InputError, Problem
 from plumbfall.estimate import Estimate
+from plumbfall.measurement.constants import ConstantsInUse, enter_constants
 from plumbfall.measurement.inputs import Column, Inputs
 from plumbfall.measurement.selection import Cells
 from plumbfall.physics.gravity import (
@@ -74,9 +75,9 @@ def gather(cells: Cells, bench: Bench, run_sets: Sequence[str], model: Estimate)
     Raises
     ------
     InputError
-        Where a tube lacks the geometry its drops need.
+        Where a tube lacks the geometry or the constant its drops need.
     """
-    tubes, balls = list(bench.tubes.values()), list(bench.balls.values())
+    tubes, balls = [_of_geometry(t) for t in bench.tubes.values()], list(bench.balls.values())
     liquids, timers = list(bench.liquids.values()), list(bench.timers.values())
     thermometers = list(bench.thermometers.values())
     _check_tubes([tubes[i] for i in np.unique(cells.tube)], bench)
@@ -89,7 +90,7 @@ def gather(cells: Cells, bench: Bench, run_sets: Sequence[str], model: Estimate)
         roles[role] = _column(register, codes, estimates)
 
     slopes = _gravity(bench, register, roles, n)
-    of("bore", cells.tube, [tube.bore for tube in tubes])
+    roles["bore"] = _column(register, cells.tube, [tube.bore for tube in tubes], 1.0)
     of("tilt", cells.tube, [tube.tilt for tube in tubes])
     of("tube_expansion", cells.tube, [tube.expansion for tube in tubes])
     of("release_above", cells.tube, [tube.release_above for tube in tubes])
@@ -97,10 +98,10 @@ def gather(cells: Cells, bench: Bench, run_sets: Sequence[str], model: Estimate)
     of("bottom_below", cells.tube, [tube.bottom_below for tube in tubes])
     of("release_offset", cells.tube, [tube.release_offset for tube in tubes])
     for role, marks in (("from_mark", cells.from_mark), ("to_mark", cells.to_mark)):
-        roles[role] = _marks(register, cells.tube, marks, tubes)
+        roles[role] = _marks(register, cells.tube, marks, tubes, float(role == "to_mark"))
     n_marks = np.array([len(tube.marks) for tube in tubes], dtype=np.intp)
     roles["first_mark"] = _marks(register, cells.tube, np.zeros(n, dtype=np.intp), tubes)
-    roles["last_mark"] = _marks(register, cells.tube, n_marks[cells.tube] - 1, tubes)
+    roles["last_mark"] = _marks(register, cells.tube, n_marks[cells.tube] - 1, tubes, 1.0)
 
     of("diameter", cells.ball, [ball.diameter for ball in balls])
     of("gauge", cells.ball, [_correction(ball.gauge, bench.gauges) for ball in balls])
@@ -118,6 +119,7 @@ def gather(cells: Cells, bench: Bench, run_sets: Sequence[str], model: Estimate)
     of("thermometer", cells.thermometer, [t.correction for t in thermometers])
     _set_temperatures(bench, register, roles, cells, run_sets)
     roles["model"] = Column(np.ones(n), np.full(n, register.add(model), dtype=np.intp))
+    constants = _constants(cells, bench, register, roles)
 
     def number(
         codes: NDArray[np.intp], records: Sequence[object], read: Callable[..., float | None]
@@ -145,10 +147,41 @@ def gather(cells: Cells, bench: Bench, run_sets: Sequence[str], model: Estimate)
         per_reading=sd(cells.thermometer, [t.per_reading for t in thermometers]),
         slope_known=roles["slope"].entry >= 0,
         temperature_known=roles["temperature"].entry >= 0,
+        constant_of=constants.place,
+        constants=constants.used,
         model_declared=bench.methods.model_uncertainty is not None,
         gravity_slopes=slopes,
-        individual=_individual(register.estimates, balls),
+        individual=_individual(register.estimates, balls, constants),
     )
+
+
+def _of_geometry(tube: Tube) -> Tube:
+    """Return a tube as the force balance has it; a calibrated one stands without geometry."""
+    if tube.kind != "calibrated":
+        return tube
+    return Tube(name=tube.name, kind=tube.kind)
+
+
+def _constants(
+    cells: Cells, bench: Bench, register: _Register, roles: dict[str, Column]
+) -> ConstantsInUse:
+    """Constants of the cells in calibrated tubes, which gravity and law then have no part in."""
+    tubes, balls = list(bench.tubes.values()), list(bench.balls)
+    calibrated = np.array([tube.kind == "calibrated" for tube in tubes])[cells.tube]
+    pairs: dict[tuple[str, str], int] = {}
+    place = np.full(len(cells), -1, dtype=np.intp)
+    for cell in np.flatnonzero(calibrated).tolist():
+        pair = tubes[cells.tube[cell]].name, balls[cells.ball[cell]]
+        place[cell] = pairs.setdefault(pair, len(pairs))
+    known = {estimate.name: estimate for estimate in register.estimates}
+    constants = enter_constants(
+        bench, {at: pair for pair, at in pairs.items()}, place, register.add, known
+    )
+    roles["constant"] = Column(constants.value, constants.own_entry)
+    for role in ("gravity", "latitude", "elevation"):
+        column = roles[role]
+        roles[role] = Column(column.value, np.where(calibrated, -1, column.entry))
+    return constants
 
 
 def _gravity(
@@ -204,11 +237,17 @@ def _set_temperatures(
 
 
 def _marks(
-    register: _Register, tube: NDArray[np.intp], mark: NDArray[np.intp], tubes: Sequence[Tube]
+    register: _Register,
+    tube: NDArray[np.intp],
+    mark: NDArray[np.intp],
+    tubes: Sequence[Tube],
+    neutral: float = 0.0,
 ) -> Column:
-    starts = np.cumsum([0] + [len(t.marks) for t in tubes])
+    n_marks = np.array([len(t.marks) for t in tubes], dtype=np.intp)
+    starts = np.cumsum([0, *n_marks])
     flat = [estimate for t in tubes for estimate in t.marks]
-    return _column(register, (starts[tube] + mark).astype(np.intp), flat)
+    place = np.where(n_marks[tube] > 0, starts[tube] + mark, -1)
+    return _column(register, place.astype(np.intp), flat, neutral)
 
 
 def _correction(
@@ -217,9 +256,28 @@ def _correction(
     return None if name is None else instruments[name].correction
 
 
-def _individual(estimates: Sequence[Estimate], balls: Sequence[Ball]) -> NDArray[np.bool_]:
-    """Entries whose error one ball has to itself; a lot's are its mean's, so shared."""
+def _individual(
+    estimates: Sequence[Estimate], balls: Sequence[Ball], constants: ConstantsInUse
+) -> NDArray[np.bool_]:
+    """Entries whose error one ball has to itself; a lot's are its mean's, so shared.
+
+    What a ball's constant was found with, and its scatter then, are the ball's own too.
+    """
+    lots = {ball.name for ball in balls if ball.lot}
     own = {
+        name
+        for constant in constants.used
+        if constant.chosen.stored is not None and constant.chosen.ball not in lots
+        for name in (
+            constant.chosen.own.name,
+            *(
+                estimates[entry].name
+                for entry in constant.entries
+                if estimates[entry].name.startswith("ball.")
+            ),
+        )
+    }
+    own |= {
         estimate.name
         for ball in balls
         if not ball.lot
@@ -232,16 +290,7 @@ def _individual(estimates: Sequence[Estimate], balls: Sequence[Ball]) -> NDArray
 def _check_tubes(tubes: Sequence[Tube], bench: Bench) -> None:
     problems = []
     for tube in tubes:
-        if tube.kind == "calibrated":
-            problems.append(
-                Problem(
-                    "a calibrated tube cannot be reduced by this version, which has no constants",
-                    'describe the tube\'s bore and marks and use kind = "vertical"',
-                    path=bench.path,
-                    key=f"tube.{tube.name}.kind",
-                )
-            )
-        elif tube.bore is None or len(tube.marks) < 2:
+        if tube.kind != "calibrated" and (tube.bore is None or len(tube.marks) < 2):
             missing = "bore" if tube.bore is None else "distance"
             problems.append(
                 Problem(

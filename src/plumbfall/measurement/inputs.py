@@ -12,6 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.estimate import Estimate
+from plumbfall.measurement.constants import ConstantInUse
 from plumbfall.physics.weight import sphere_volume
 
 __all__ = ["MODEL_INPUT", "Column", "Inputs", "cold_ball_density"]
@@ -22,6 +23,7 @@ MODEL_INPUT = "methods.model_uncertainty"
 BY_CELL = (
     "weighed", "together", "lot", "ball_measured_at", "tube_measured_at", "liquid_density_at",
     "spread", "per_drop", "resolution", "per_reading", "slope_known", "temperature_known",
+    "constant_of",
 )  # fmt: skip
 """Arrays of :class:`Inputs` of shape (cells,), roles apart."""
 
@@ -50,7 +52,8 @@ class Inputs:
     ``weighed`` says which cells know their ball's mass (instead of its density), ``together``
     how many balls were weighed at once; reference temperatures are in kelvin; ``model_declared``
     says that the drag law's uncertainty is the bench sheet's own, not the law's; ``individual``
-    marks the entries that belong to one ball (not to a lot or a material).
+    marks the entries that belong to one ball (not to a lot or a material). ``constant_of`` is each
+    cell's place in ``constants``, -1 where the tube is not calibrated.
     """
 
     estimates: tuple[Estimate, ...]
@@ -67,6 +70,8 @@ class Inputs:
     per_reading: NDArray[np.float64]
     slope_known: NDArray[np.bool_]
     temperature_known: NDArray[np.bool_]
+    constant_of: NDArray[np.intp]
+    constants: tuple[ConstantInUse, ...] = ()
     model_declared: bool = False
     gravity_slopes: tuple[float, float] = (0.0, 0.0)
     individual: NDArray[np.bool_] = field(default_factory=lambda: np.zeros(0, dtype=bool))
@@ -78,6 +83,16 @@ class Inputs:
             for role, column in self.roles.items()
         }
         return replace(self, roles=roles, **{name: getattr(self, name)[cells] for name in BY_CELL})
+
+    @property
+    def calibrated(self) -> NDArray[np.bool_]:
+        """Whether each cell's tube has a constant instead of a geometry, shape (cells,)."""
+        return self.constant_of >= 0
+
+    def constants_of(self, cells: NDArray[np.intp]) -> list[int]:
+        """Return the places of the tube constants that cells have."""
+        places = np.unique(self.constant_of[cells])
+        return [int(place) for place in places[places >= 0]]
 
     @property
     def u(self) -> NDArray[np.float64]:

@@ -117,6 +117,9 @@ def select(timings: Timings, bench: Bench) -> Selection:
     last = n_marks[codes["tube"]] - 1
     to_mark = np.where(to_mark < 0, last, to_mark)
     _check_marks(table, row, from_mark, to_mark, last)
+    calibrated = np.array([tube.kind == "calibrated" for tube in bench.tubes.values()])
+    _check_calibrated(table, row, calibrated, codes["tube"], from_mark, to_mark, last)
+    _check_kinds_of_tube(table, row, calibrated[codes["tube"]], run_set, names)
 
     cell, cells = _cells(run_set, codes, from_mark, to_mark)
     return Selection(
@@ -274,6 +277,52 @@ def _check_marks(
             path=str(table["file"].iloc[int(row[at])]),
             line=int(table["line"].iloc[int(row[at])]),
             remedy="add the mark to the tube's marks in the bench sheet, or correct the heading",
+        )
+
+
+def _check_calibrated(
+    table: pd.DataFrame,
+    row: Codes,
+    calibrated: NDArray[np.bool_],
+    tube: Codes,
+    from_mark: Codes,
+    to_mark: Codes,
+    last: Codes,
+) -> None:
+    """Refuse drops timed over a part of a calibrated tube: its constant holds for the whole."""
+    for code in np.unique(tube[calibrated[tube]]):
+        here = np.flatnonzero(tube == code)
+        whole = last[here[0]] if last[here[0]] > 0 else to_mark[here].max()
+        part = here[(from_mark[here] != 0) | (to_mark[here] != whole)]
+        if len(part):
+            raise InputError(
+                "the drop was not timed from the first to the last mark, for which alone the "
+                "constant of its calibrated tube holds",
+                path=str(table["file"].iloc[int(row[part[0]])]),
+                line=int(table["line"].iloc[int(row[part[0]])]),
+                remedy="fill in both readings, or mark the drop void with a reason",
+            )
+
+
+def _check_kinds_of_tube(
+    table: pd.DataFrame,
+    row: Codes,
+    calibrated: NDArray[np.bool_],
+    run_set: Codes,
+    names: Sequence[str],
+) -> None:
+    """Refuse run sets with drops in a calibrated tube and in one with a geometry."""
+    own = np.zeros(len(names), dtype=bool)
+    own[run_set[::-1]] = calibrated[::-1]  # the first drop's, being written last
+    other = np.flatnonzero(calibrated != own[run_set])
+    if len(other):
+        at = int(other[0])
+        raise InputError(
+            f"run set '{names[run_set[at]]}' has drops in a calibrated tube and, here, in a tube "
+            "of the other kind",
+            path=str(table["file"].iloc[int(row[at])]),
+            line=int(table["line"].iloc[int(row[at])]),
+            remedy="give the drops in each tube a run set of their own",
         )
 
 

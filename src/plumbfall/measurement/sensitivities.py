@@ -5,6 +5,10 @@ balance is, E standing for 1/(1 - s),
 
     dln eta = E [ dln W - (1+w+s) dln d - (1+s) dln v + w dln D - s dln rho_f ]
 
+and in a calibrated tube, t being the time,
+
+    dln eta = dln K + dln W - 3 dln d + dln t
+
 from which the chain rule leads to what was written on the bench sheet. Every sensitivity here is
 a weighted sum over the drops of a cell, because all drops of a cell read the same entries.
 """
@@ -34,7 +38,8 @@ class DropSlopes:
     ``ratio_slope`` is w, ``reynolds_slope`` s, ``model_bound`` the law's own relative half-width.
     ``beside`` is what being off the axis adds, ``None`` where no offset is given; ``ends`` what
     the tube's ends add to each cell's path, ``None`` where they are out of reach; ``start`` what
-    the run-in takes, a given number but for the height of the release.
+    the run-in takes, a given number but for the height of the release. ``calibrated`` says that a
+    tube constant stands for all that: then the slopes are 0.
     """
 
     ratio_slope: Numbers
@@ -43,6 +48,7 @@ class DropSlopes:
     beside: OffAxis | None = None
     ends: Ends | None = None
     start: RunIn | None = None
+    calibrated: bool = False
 
 
 @dataclass(slots=True)
@@ -67,7 +73,7 @@ FIRST = (
     "gravity", "latitude", "elevation", "tilt", "bore", "tube_expansion", "from_mark", "to_mark",
     "diameter", "gauge", "ball_density", "mass", "balance", "ball_expansion", "liquid_density",
     "liquid_expansion", "slope", "bias", "rate", "thermometer", "temperature", "release_offset",
-    "surface_above", "bottom_below", "release_above", "model",
+    "surface_above", "bottom_below", "release_above", "constant", "model",
 )  # fmt: skip
 
 
@@ -141,6 +147,9 @@ def add_block(
     a_liquid = a_weight * -s
     a_speed = a_liquid - a_weight
     a_diameter = a_speed - a_bore
+    if slopes.calibrated:  # not weight over diameter, but net mass over volume
+        a_diameter = -3 * a_weight
+        add("constant", lambda: pull / take("constant"))
     if (beside := slopes.beside) is not None:
         # the bore also scales the distance from the axis
         a_bore = a_bore + a_weight * take("release_offset") * beside.by_offset
@@ -214,9 +223,10 @@ def add_block(
     )
     add("thermometer", lambda: by_temperature)
     add("temperature", lambda: np.where(own_reading, 0.0, by_temperature))
-    by_model = -a_weight if inputs.model_declared else -a_weight * slopes.model_bound
-    sums.first["model"] += total(by_model)
-    sums.model_plain += total(-a_weight)
+    if not slopes.calibrated:  # a tube constant has no drag law
+        by_model = -a_weight if inputs.model_declared else -a_weight * slopes.model_bound
+        sums.first["model"] += total(by_model)
+        sums.model_plain += total(-a_weight)
 
     sums.timing += total((by_time * (1 + take("rate"))) ** 2)
     sums.reading += total(np.where(own_reading, by_temperature**2, 0.0))

@@ -10,6 +10,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from plumbfall.measurement.balance import Balance, Codes, Numbers, balance, spread
+from plumbfall.measurement.calibrated import by_constant
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.inverse import Inverse, invert
@@ -17,7 +18,7 @@ from plumbfall.measurement.off_axis import OffAxis, off_axis
 from plumbfall.measurement.run_in import Release, RunIn, run_in
 from plumbfall.physics.drag import Bound, DragLaw
 
-__all__ = ["Solved", "cell_ratios", "solve"]
+__all__ = ["Solved", "cell_ratios", "solve", "viscosities"]
 
 MOST_STARTS, TOLERANCE = 30, 1e-12
 """Repetitions of the run-in, and the relative change of the time that ends them."""
@@ -107,6 +108,28 @@ def solve(
                 forces = balance(inputs, cell, clock, temperature, end_factor, start.bias)
                 found = invert(forces, drag, log_beside, shift)
     return Solved(forces, drag, shift, end_factor, beside, start, found)
+
+
+def viscosities(
+    inputs: Inputs,
+    law: DragLaw,
+    ends: Ends | None,
+    released: Release | None,
+    cell: Codes,
+    clock: Numbers,
+    temperature: Numbers,
+    cell_ratio: Numbers,
+    log_extra: Numbers | float = 0.0,
+) -> Numbers:
+    """Return the viscosities of a block of drops, NaN where there is none, shape (drops,) [Pa.s].
+
+    Parameters are those of :func:`solve`. All drops are in calibrated tubes, whose constants then
+    stand for drag, ends and run-in, or none is.
+    """
+    if inputs.calibrated[cell[0]]:
+        return by_constant(inputs, cell, balance(inputs, cell, clock, temperature)).viscosity
+    solved = solve(inputs, law, ends, released, cell, clock, temperature, cell_ratio, log_extra)
+    return solved.found.viscosity
 
 
 def _settled(before: RunIn | None, now: RunIn, forces: Balance) -> bool:

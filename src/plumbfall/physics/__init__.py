@@ -53,6 +53,7 @@ _NAMES_OF = {
         "walther_kinematic_viscosity",
     ),
     "thermal": ("expanded_length", "expanded_solid_density", "liquid_density"),
+    "tube_constants": ("constant_viscosity",),
     "weight": (
         "effective_weight",
         "effective_weight_of_mass",

@@ -47,7 +47,12 @@ def drawn_inputs(sets: SetColumns, run_set: int, used: Codes) -> DrawnInputs:
     basis = scatter.basis[run_set]
     rows = np.full(len(inputs.estimates), -1, dtype=np.intp)
     drawn: list[Estimate] = []
-    in_use = np.unique([column.entry[cell] for column in inputs.roles.values()])
+    in_use = np.unique(
+        np.concatenate(
+            [column.entry[cell] for column in inputs.roles.values()]
+            + [inputs.constants[place].entries for place in inputs.constants_of(cell)]
+        )
+    )
     for entry in in_use[in_use >= 0].tolist():
         estimate = inputs.estimates[entry]
         contained = basis == OF_VALUES and inputs.individual[entry]

@@ -6,6 +6,7 @@ its clock readings or its fresh balls add. The same list of columns serves every
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from dataclasses import dataclass
 
 import numpy as np
@@ -80,6 +81,16 @@ def own_variances(selection: Selection, inputs: Inputs, sums: Sums) -> OwnColumn
     )
 
 
+def _through_constants(
+    inputs: Inputs, sums: Sums
+) -> Iterator[tuple[Numbers, NDArray[np.intp], int]]:
+    """Yield what each input of a tube constant does to the results through the constant."""
+    for place, constant in enumerate(inputs.constants):
+        cells = np.flatnonzero(inputs.constant_of == place)
+        for entry, slope in zip(constant.entries.tolist(), constant.slopes.tolist(), strict=True):
+            yield sums.first["constant"] * slope, cells, entry
+
+
 def build_jacobian(
     selection: Selection,
     inputs: Inputs,
@@ -103,6 +114,12 @@ def build_jacobian(
         rows.append(cell_set[here])
         columns.append(entry[here])
         values.append(sum_[here])
+
+    for sum_, cells, shared in _through_constants(inputs, sums):
+        felt = cells[~(contained[cell_set[cells]] & inputs.individual[shared])]
+        rows.append(cell_set[felt])
+        columns.append(np.full(len(felt), shared, dtype=np.intp))
+        values.append(sum_[felt])
 
     u, dof = [inputs.u], [inputs.dof]
     squared: list[int] = []

@@ -17,7 +17,7 @@ from plumbfall.measurement.balance import corrected_temperature
 from plumbfall.measurement.ends import Ends, path_ends
 from plumbfall.measurement.inputs import Column, Inputs
 from plumbfall.measurement.run_in import releases
-from plumbfall.measurement.solving import cell_ratios, solve
+from plumbfall.measurement.solving import cell_ratios, viscosities
 from plumbfall.physics.gravity import normal_gravity
 from plumbfall.physics.laws import DEFAULTS
 from plumbfall.physics.thermal import liquid_density
@@ -35,7 +35,7 @@ Codes = NDArray[np.intp]
 AT_A_TIME = 16_384
 """Drops times draws that are solved at a time: they stay in the processor's cache."""
 
-POSITIVE = ("bore", "liquid_density")
+POSITIVE = ("bore", "liquid_density", "constant")
 """Roles that have no meaning at zero or below."""
 
 
@@ -150,7 +150,7 @@ class SetModel:
         temperature = corrected_temperature(inputs, cell, reading)
         at_set = np.full(len(cells), self._set_temperature)
         factor = drawn[rows.row_of_entry[sets.inputs.roles["model"].entry[self._cells[0]]]] - 1.0
-        found = solve(
+        found = viscosities(
             inputs,
             sets.law,
             ends,
@@ -160,10 +160,10 @@ class SetModel:
             temperature,
             cell_ratios(inputs, at_set),
             np.log1p(self._bound[:, None] * factor).ravel(),
-        ).found
+        )
         slope = inputs.roles["slope"].value
         to_set = np.nan_to_num(self._set_temperature - temperature, nan=0.0)
-        viscosity = (found.viscosity * np.exp(slope[cell] * to_set)).reshape(every)
+        viscosity = (found * np.exp(slope[cell] * to_set)).reshape(every)
         # summed row by row, not as a matrix product, whose rounding depends on the number of draws
         mean = (self._weight[:, None] * viscosity).sum(axis=0)
         if rows.scatter >= 0:
@@ -199,12 +199,26 @@ class SetModel:
         for role, column in self._base.roles.items():
             if ((column.entry >= 0) & (rows[column.entry] >= 0)).any():
                 roles[role] = Column(of(role).ravel(), repeated.roles[role].entry)
+        if places := self._base.constants_of(np.arange(len(self._cells))):
+            constant = of("constant")
+            for place in places:
+                here = self._base.constant_of == place
+                constant[here] += self._shared_with_constant(drawn, place)
+            roles["constant"] = Column(constant.ravel(), repeated.roles["constant"].entry)
         if (size := self.inputs.size).max(initial=-1) >= 0:
             fresh = roles["diameter"].value.reshape(-1, n) + _own(drawn, size)
             roles["diameter"] = Column(fresh.ravel(), repeated.roles["diameter"].entry)
         if self._base.roles["latitude"].present:
             roles["gravity"] = Column(self._gravity(drawn), repeated.roles["gravity"].entry)
         return replace(repeated, roles=roles)
+
+    def _shared_with_constant(self, drawn: Numbers, place: int) -> Numbers:
+        """Return what the draws of its inputs add to a tube constant, shape (draws,)."""
+        constant, shared = self._base.constants[place], np.zeros(drawn.shape[1])
+        for entry, slope in zip(constant.entries.tolist(), constant.slopes.tolist(), strict=True):
+            if (row := self.inputs.row_of_entry[entry]) >= 0:
+                shared += slope * (drawn[row] - self._nominal[row])
+        return shared
 
     def _gravity(self, drawn: Numbers) -> Numbers:
         """Gravity by the draws of latitude and elevation, which the roles do not hold."""

@@ -217,8 +217,8 @@ def _stokes(all_sets: SetColumns, used: NDArray[np.intp]) -> Quantity | None:
 
 
 def _corrections(all_sets: SetColumns, used: NDArray[np.intp]) -> tuple[Correction, ...]:
-    if not len(used):
-        return ()
+    if not len(used) or all_sets.inputs.calibrated[all_sets.selection.cell[used[0]]]:
+        return ()  # a tube constant stands for them all
     law, drops = all_sets.law, all_sets.columns
     wall = float(drops.wall[used].mean())
     total = float(drops.drag_factor[used].mean())
