@@ -50,9 +50,10 @@ def constant_viscosity(
 
     Examples
     --------
-    >>> f"{constant_viscosity(
+    >>> viscosity = constant_viscosity(
     ...     tube_constant=1.0e-8, ball_density=2400.0, liquid_density=1000.0, fall_time=70.0
-    ... ):.3e}"
+    ... )
+    >>> f"{viscosity:.3e}"
     '9.800e-04'
     """
     return tube_constant * (ball_density - liquid_density) * fall_time
