@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import datetime as dt
+
 import numpy as np
 import pandas as pd
 import pytest
@@ -161,9 +163,9 @@ def test_a_table_s_default_set_and_named_index(folder):
         ),
         ({"time [s]": []}, "<table>: the table is empty; it needs one row for each drop"),
         (
-            {"time [s]": pd.to_timedelta([12], unit="s")},
-            "<table>:1:1: '0 days 00:00:12' is not a time; type seconds such as 12.84, or minutes"
-            " and seconds such as 1:03.15",
+            {"time [ms]": pd.to_timedelta([12], unit="s")},
+            "<table>:1:1: '12 s' has another unit than its heading; write all cells of a column in"
+            " the unit of its heading",
         ),
     ],
 )
@@ -177,3 +179,13 @@ def test_a_dict_of_columns_is_a_table():
     pd.testing.assert_frame_equal(read_timings(columns).table, read_timings(frame).table)
     with pytest.raises(TypeError, match="a source of timings is a path or a DataFrame, not 5"):
         read_timings(5)
+
+
+def test_a_column_of_durations_needs_no_unit():
+    durations = pd.to_timedelta(["12.84 s", "63.15 s", None])
+    for heading in ("time", "time [s]"):
+        table = read_timings(pd.DataFrame({heading: durations})).table
+        assert table["time_s"].tolist()[:2] == [12.84, 63.15]
+        assert table["status"].tolist() == ["used", "used", "excluded"]
+    mixed = pd.DataFrame({"time": [dt.timedelta(seconds=12.84), dt.time(0, 1, 3, 150_000)]})
+    assert read_timings(mixed).table["time_s"].tolist() == [12.84, 63.15]

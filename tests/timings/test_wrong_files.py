@@ -57,10 +57,14 @@ BYTES = {
         ],
     ),
     "stray bytes": (
-        b"drop,time [s],note\r\n1,12.84,25\xb0\r\n2,12.84,\xb5\r\n",
+        b"drop,time [s],note\r\n1,12.84,25\xc2\xb0\r\n2,12.84,\xb5\r\n",
+        [f"t.csv:3:9: byte 0xb5 at place 9 of the line is not utf-8 text; {_UTF8}"],
+    ),
+    "a byte that no encoding has": (
+        b"drop,time [s],note\r\n1,12.84,25\x81\r\n2,12.84,\x8d\r\n",
         [
-            f"t.csv:2:11: byte 0xb0 at place 11 of the line is not utf-8 text; {_UTF8}",
-            f"t.csv:3:9: byte 0xb5 at place 9 of the line is not utf-8 text; {_UTF8}",
+            f"t.csv:2:11: byte 0x81 at place 11 of the line is not utf-8 text; {_UTF8}",
+            f"t.csv:3:9: byte 0x8d at place 9 of the line is not utf-8 text; {_UTF8}",
         ],
     ),
     "half of a character": (

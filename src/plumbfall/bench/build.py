@@ -161,6 +161,8 @@ def _timings(keys: choice_keys.TimingsKeys) -> records.TimingHints:
         encoding=keys.encoding,
         header_row=keys.header_row,
         sheet=keys.sheet,
+        thousands=keys.thousands,
+        transposed=keys.transposed,
     )
 
 

@@ -90,6 +90,20 @@ class TimingsKeys(Keys):
         fields.text,
         doc("sheet of a workbook that holds the drops", example="Drops", left_out="the first"),
     ] = None
+    thousands: Annotated[
+        str | None,
+        fields.choice((",", ".", " ", "'")),
+        doc("mark that parts thousands in the file's numbers", example=",", left_out="none"),
+    ] = None
+    transposed: Annotated[
+        bool,
+        fields.flag,
+        doc(
+            "true where a drop is a column and the headings stand one below the other",
+            example=True,
+            left_out="false",
+        ),
+    ] = False
 
 
 def _read_drag(written: object) -> str:

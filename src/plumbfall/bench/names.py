@@ -56,6 +56,7 @@ COLUMNS = (
     "started",
     "status",
     "note",
+    "total",
     "time",
     "mark",
     "interval",

@@ -260,6 +260,8 @@ class TimingHints:
     encoding: str | None = None
     header_row: int | None = None
     sheet: str | None = None
+    thousands: str | None = None
+    transposed: bool = False
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -1,28 +1,37 @@
-"""Whether a file writes its decimals with a point or a comma."""
+"""Whether a file writes its decimals with a point or a comma, and what parts its thousands."""
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
+from plumbfall.timings.cell_units import part_unit
+from plumbfall.timings.clocks import read_clock
 from plumbfall.timings.columns import Column
-from plumbfall.timings.notices import quoted
-from plumbfall.timings.values import Fault, is_thousands, looks_like_number, read_clock
+from plumbfall.timings.faults import Fault
+from plumbfall.timings.notices import Notices, quoted
+from plumbfall.timings.values import is_thousands, looks_like_number
 
 __all__ = ["Decimal", "find_decimal"]
 
 _DECLARE = 'decimal = "," under [timings] in the bench sheet'
+_SPACES = re.compile(r"[\s\u00a0\u2009\u202f]")
 
 
 @dataclass(frozen=True, slots=True)
 class Decimal:
-    """The decimal mark, and what to say of a cell with a comma where that is not certain."""
+    """The decimal mark, and what to say of a cell with a comma where that is not certain.
+
+    ``thousands`` is what parts thousands where the user declared it, else empty.
+    """
 
     mark: str
     uncertain: str = ""
     remedy: str = ""
+    thousands: str = ""
 
     def fault(self, text: str) -> Fault | None:
         """Return what is wrong with a cell whose comma may mean two things."""
@@ -30,27 +39,77 @@ class Decimal:
             return Fault(f"{quoted(text)} {self.uncertain}", self.remedy)
         return None
 
+    def ungrouped(self, text: str) -> str | Fault:
+        """Return a number without the marks that part its thousands.
 
-def find_decimal(columns: Iterable[Column], delimiter: str, declared: str | None) -> Decimal:
+        Examples
+        --------
+        >>> Decimal(".", thousands=",").ungrouped("1,234.5")
+        '1234.5'
+        """
+        if not self.thousands:
+            return text
+        plain = _SPACES.sub(" ", text) if self.thousands == " " else text.replace("’", "'")
+        if self.thousands not in plain:
+            return text
+        part, mark = re.escape(self.thousands), re.escape(self.mark)
+        if re.fullmatch(rf"[+-]?[0-9]{{1,3}}(?:{part}[0-9]{{3}})+(?:{mark}[0-9]*)?", plain):
+            return plain.replace(self.thousands, "")
+        name = "a space" if self.thousands == " " else quoted(self.thousands)
+        return Fault(
+            f"{quoted(text)} has {name}, which is declared to part thousands, in another place",
+            "write three digits after it, or correct thousands under [timings] in the bench sheet",
+        )
+
+
+def find_decimal(
+    columns: Iterable[tuple[Column, str]],
+    delimiter: str,
+    declared: str | None,
+    thousands: str | None,
+    notices: Notices,
+) -> Decimal:
     """Return the decimal mark of a file from all its columns of numbers together.
 
     A comma is taken as the decimal mark where the delimiter is another character, no number of
-    the file has a point, and at least one comma cannot part thousands.
+    the file has a point, and at least one comma cannot part thousands. ``columns`` come with what
+    they hold, ``a time`` or ``a temperature``. What is declared holds; a mark that is declared to
+    part thousands leaves the other one for decimals.
     """
     if declared in (".", ","):
-        return Decimal(declared)
+        if thousands == declared:
+            notices.error(
+                f"{quoted(declared)} is declared both as decimal mark and to part thousands",
+                "correct decimal or thousands under [timings] in the bench sheet",
+                key="timings.thousands",
+            )
+            thousands = None
+        return Decimal(declared, thousands=thousands or "")
+    if thousands in (".", ","):
+        return Decimal("," if thousands == "." else ".", thousands=thousands)
+    found = _found(columns, delimiter, thousands or "")
+    if found.uncertain:
+        notices.offer("decimal", '","')
+    return replace(found, thousands=thousands or "")
+
+
+def _found(columns: Iterable[tuple[Column, str]], delimiter: str, thousands: str) -> Decimal:
     points = False
     commas: list[str] = []
-    for column in columns:
+    for column, what in columns:
         numbers = column.numbers(".")
         points |= numbers.fractional
         rest = np.flatnonzero(~numbers.clean)
         if rest.size:
             for text in column.distinct(rest)[1]:
-                if looks_like_number(text) and read_clock(text) is None:
-                    points |= "." in text
-                    if "," in text:
-                        commas.append(text)
+                parted = part_unit(text, what)
+                number = parted[0] if parted else text
+                if thousands:
+                    number = _SPACES.sub(" ", number).replace("’", "'").replace(thousands, "")
+                if looks_like_number(number) and read_clock(text) is None:
+                    points |= "." in number
+                    if "," in number:
+                        commas.append(number)
     if not commas:
         return Decimal(".")
     if delimiter == ",":
@@ -66,12 +125,13 @@ def find_decimal(columns: Iterable[Column], delimiter: str, declared: str | None
             f"write all numbers with a point, or all with a comma and set {_DECLARE}",
         )
     if all(map(is_thousands, commas)):
-        thousands = commas[0].replace(",", "")
+        whole = commas[0].replace(",", "")
         return Decimal(
             ".",
-            f"may mean {commas[0].replace(',', '.')} or {thousands}"
+            f"may mean {commas[0].replace(',', '.')} or {whole}"
             if len(set(commas)) == 1
             else "may have a decimal comma or a comma that parts thousands",
-            f"set {_DECLARE} if it is a decimal comma, otherwise write the number without it",
+            f'set {_DECLARE} if it is a decimal comma, thousands = "," there if it parts thousands,'
+            " or write the number without it",
         )
     return Decimal(",")

@@ -57,11 +57,15 @@ def read_drops(
     rows = grid.lines.size
     fields = layout.fields
     temperature_heading = fields.get("temperature")
-    measured = [*layout.times, *([temperature_heading] if temperature_heading else [])]
+    measured = [(heading, "a time") for heading in layout.times]
+    if temperature_heading:
+        measured.append((temperature_heading, "a temperature"))
     decimal = find_decimal(
-        [grid.columns[heading.column - 1] for heading in measured],
+        [(grid.columns[heading.column - 1], what) for heading, what in measured],
         grid.delimiter,
         grid.decimal or hints.decimal,
+        hints.thousands,
+        notices,
     )
     status = np.zeros(rows, dtype=np.int64)
     if heading := fields.get("status"):

@@ -13,6 +13,7 @@ import numpy as np
 
 from plumbfall.timings.grid import LONGEST_LINE
 from plumbfall.timings.notices import Notices, quoted
+from plumbfall.timings.windows_text import as_windows_1252
 
 __all__ = ["LARGEST_FILE", "RawFile", "decode", "expand", "load"]
 
@@ -108,8 +109,8 @@ def load(path: str, notices: Notices) -> RawFile | None:
 def decode(raw: RawFile, encoding: str | None, notices: Notices) -> tuple[bytes, str] | None:
     """Return the text as UTF-8 with line feeds, and the encoding it was found in.
 
-    ``encoding`` is what the user declared; otherwise a byte order mark or UTF-8. ``None``, and
-    an error in the notices, where the bytes are no text.
+    ``encoding`` is what the user declared; otherwise a byte order mark, UTF-8, or Windows-1252,
+    which is listed. ``None``, and an error in the notices, where the bytes are no text.
     """
     data = raw.data
     marked = next((name for mark, name in _MARKS if data.startswith(mark)), None)
@@ -134,8 +135,11 @@ def decode(raw: RawFile, encoding: str | None, notices: Notices) -> tuple[bytes,
         )
         return None
     except UnicodeError:
-        _note_stray_bytes(data, found, notices)
-        return None
+        western = None if marked or encoding else as_windows_1252(data, notices)
+        if western is None:
+            _note_stray_bytes(data, found, notices)
+            return None
+        text, found = western, "cp1252"
     if b"\0" in text:
         notices.error("the file is a binary file, not text", _AS_CSV)
         return None

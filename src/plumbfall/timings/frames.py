@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime as dt
 import hashlib
 from collections.abc import Hashable
 
@@ -49,6 +50,8 @@ def _heading(name: Hashable) -> str:
 def _column(values: pd.Series) -> Column:
     if pd.api.types.is_bool_dtype(values.dtype):
         return TextColumn([str(value) for value in values])
+    if pd.api.types.is_timedelta64_dtype(values.dtype):
+        return TextColumn([_text(value) for value in values])
     if pd.api.types.is_integer_dtype(values.dtype) or pd.api.types.is_float_dtype(values.dtype):
         return FloatColumn(values.to_numpy(dtype=float, na_value=np.nan))
     return TextColumn([_text(value) for value in values])
@@ -61,6 +64,8 @@ def _text(value: object) -> str:
         return ""
     if isinstance(value, (float, np.floating)):
         return FloatColumn(np.array([value], dtype=float)).text(0)
+    if isinstance(value, dt.timedelta):
+        return f"{FloatColumn(np.array([value.total_seconds()])).text(0)} s"
     if isinstance(value, pd.Timestamp):
         return value.isoformat()
     return str(value)

@@ -10,8 +10,10 @@ import pandas as pd
 
 from plumbfall.errors import nearest_name
 from plumbfall.timings.columns import Column, Integers, rows_of
+from plumbfall.timings.faults import Fault
+from plumbfall.timings.moments import read_moment
 from plumbfall.timings.notices import Notices, quoted
-from plumbfall.timings.values import Fault, is_missing, read_moment
+from plumbfall.timings.values import is_missing
 
 __all__ = ["LONGEST_NAME", "Labels", "read_labels", "read_status"]
 

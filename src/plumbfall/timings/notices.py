@@ -25,6 +25,7 @@ class Notices:
         self._problems: list[Problem] = []
         self._repairs: list[Repair] = []
         self._errors = 0
+        self.offers: dict[str, str] = {}
         self._more_problems = 0
         self._more_repairs = 0
 
@@ -51,6 +52,13 @@ class Notices:
             return
         place = self.path if path is None else path
         self._problems.append(Problem(message, remedy, place, line, column, key, severity=severity))
+
+    def offer(self, key: str, value: str) -> None:
+        """Offer a line for ``[timings]`` that would settle what is ambiguous.
+
+        ``value`` is as TOML writes it; what was offered first for a key stays.
+        """
+        self.offers.setdefault(key, value)
 
     def repair(
         self,

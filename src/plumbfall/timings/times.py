@@ -9,11 +9,14 @@ from dataclasses import dataclass, field
 import numpy as np
 from numpy.typing import NDArray
 
+from plumbfall.timings.cell_units import part_unit, read_with_unit
+from plumbfall.timings.clocks import read_clock
 from plumbfall.timings.columns import Column, Integers, rows_of
 from plumbfall.timings.decimals import Decimal
+from plumbfall.timings.faults import Fault
 from plumbfall.timings.notices import quoted
 from plumbfall.timings.units import Unit
-from plumbfall.timings.values import Fault, is_missing, read_clock, read_number
+from plumbfall.timings.values import is_missing, read_number
 
 __all__ = ["FallTimes", "Parsed", "from_intervals", "from_marks", "parse_column"]
 
@@ -87,8 +90,7 @@ def parse_column(
             if reading is not None and unit is not None and text.count(":") == 1:
                 reading = _in_hours(text, unit) or reading
             if reading is None:
-                reading = decimal.fault(text) or read_number(text, decimal.mark, what)
-                plain[code] = not isinstance(reading, Fault)
+                reading, plain[code] = _number(text, unit, decimal, what)
             if isinstance(reading, Fault):
                 wrong[code] = reading
             else:
@@ -107,6 +109,21 @@ def parse_column(
         if clock and whole.any() and (whole == clocks).all():
             hours = rest[whole[codes]]
     return Parsed(values, missing, bad, faults, plain_row, hours if hours.size > 1 else None)
+
+
+def _number(
+    text: str, unit: Unit | None, decimal: Decimal, what: str
+) -> tuple[float | Fault, bool]:
+    """Read a number, and say whether it is a plain one that still needs the heading's unit."""
+    parted = part_unit(text, what)
+    number = parted[0] if parted else text
+    plain = decimal.fault(number) or decimal.ungrouped(number)
+    if isinstance(plain, Fault):
+        return plain, False
+    if parted:
+        return read_with_unit(plain, parted[1], unit, decimal.mark, what, text), False
+    reading = read_number(plain, decimal.mark, what)
+    return reading, not isinstance(reading, Fault)
 
 
 def _in_hours(text: str, unit: Unit) -> Fault | None:

@@ -7,11 +7,12 @@ from collections.abc import Iterator
 
 import numpy as np
 
+from plumbfall.timings.clocks import read_clock
 from plumbfall.timings.columns import TextColumn
 from plumbfall.timings.comments import note_comments
 from plumbfall.timings.grid import WIDEST, Grid
 from plumbfall.timings.notices import Notices, quoted
-from plumbfall.timings.values import looks_like_number, read_clock
+from plumbfall.timings.values import looks_like_number
 
 __all__ = ["cut_any"]
 

@@ -17,7 +17,19 @@ __all__ = ["Unit", "temperature_unit", "time_unit"]
 
 # time [mm:ss], time [h:mm:ss.ff], time [min:s]
 _CLOCK = re.compile(r"(?:h{1,2}:)?(?:m{1,2}|min):(?:s{1,2}|sec)(?:[.,][a-z0]+)?")
-_DEGREES = re.compile(r"(?:deg(?:rees?)?|[°º˚])[\s_.]*([cfk])", re.IGNORECASE)
+# Â° is what a degree sign looks like after a wrong decoding, and ᵒ or o what is typed for one
+_DEGREES = re.compile(
+    r"(?:(?:deg(?:rees?)?|grad|gr|Â?[°º˚])[\s_.]*(?:(?P<sign>[cfk])|(?P<name>celsius|fahrenheit))"
+    r"|(?-i:[ᵒoO](?P<raised>[CF]))|(?P<word>centigrade|celsius|fahrenheit|kelvin))\.?",
+    re.IGNORECASE,
+)
+_SECONDS = {
+    **dict.fromkeys(("sek", "sekunde", "sekunden", "secs", "seconde", "secondes"), "s"),
+    **dict.fromkeys(("segundo", "segundos", "secondo", "secondi"), "s"),
+    **dict.fromkeys(("minute", "minuten", "minutos", "minuti"), "min"),
+    **dict.fromkeys(("stunde", "stunden", "heure", "heures", "std"), "h"),
+    **dict.fromkeys(("µs", "μs", "us"), "us"),
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,7 +67,10 @@ def time_unit(text: str) -> Unit | None:
     """
     if _CLOCK.fullmatch(text.strip().casefold()):
         return Unit(ExactUnit(Fraction(1), Fraction(0)), clock=True)
-    return _unit("time", text, text.casefold(), text.casefold().rstrip("."))
+    folded = text.strip().casefold().rstrip(".")
+    if _SECONDS.get(folded) == "us":
+        return Unit(ExactUnit(Fraction(1, 1_000_000), Fraction(0)))
+    return _unit("time", text, text.casefold(), folded, _SECONDS.get(folded, ""))
 
 
 @lru_cache(maxsize=512)
@@ -68,7 +83,8 @@ def temperature_unit(text: str) -> Unit | None:
     (273.15, None)
     """
     if found := _DEGREES.fullmatch(text.strip()):
-        letter = found[1].upper()
+        written = found["sign"] or found["name"] or found["raised"] or found["word"]
+        letter = written[0].upper()
         return _unit("temperature", "K" if letter == "K" else f"deg{letter}")
     return _unit("temperature", text, text.upper(), text.casefold())
 

@@ -1,28 +1,43 @@
-"""What a cell's text means as a time, a temperature or a moment, and what is wrong with it."""
+"""What a cell's text means as a plain number, and what is wrong with it."""
 
 from __future__ import annotations
 
-import datetime as dt
 import math
 import re
-from dataclasses import dataclass
 
+from plumbfall.timings.clocks import read_clock
+from plumbfall.timings.faults import Fault
 from plumbfall.timings.notices import quoted
 from plumbfall.timings.units import temperature_unit, time_unit
 
 __all__ = [
     "MISSING",
-    "Fault",
     "is_missing",
     "is_thousands",
     "looks_like_number",
-    "read_clock",
-    "read_moment",
     "read_number",
+    "with_plain_minus",
 ]
 
 MISSING = frozenset(
-    {"", "-", "--", "–", "—", "/", "?", "n/a", "#n/a", "na", "n.a.", "nan", "<na>", "none", "null"}
+    {
+        "",
+        "-",
+        "--",
+        "−",
+        "–",
+        "—",
+        "/",
+        "?",
+        "n/a",
+        "#n/a",
+        "na",
+        "n.a.",
+        "nan",
+        "<na>",
+        "none",
+        "null",
+    }
     | {"nil", "missing", "void"}
 )
 """Spellings, in lower case, of a value that was not taken."""
@@ -31,7 +46,6 @@ _NUMBER = re.compile(r"[+-]?(?:[0-9]+(?:[.,][0-9]*)?|[.,][0-9]+)")
 # as programs print it; a stray e among digits does not look like this
 _SCIENTIFIC = re.compile(r"[+-]?[0-9][.,][0-9]+[eE][+-][0-9]{2,3}")
 _THOUSANDS = re.compile(r"[+-]?[1-9][0-9]{0,2},[0-9]{3}")
-_CLOCK = re.compile(r"(?:([0-9]{1,3}):)?([0-9]{1,4}):([0-9]{2})(?:[.,]([0-9]+))?")
 _MONTH = "jan|feb|mar|apr|may|jun|jul|aug|sep|oct|nov|dec|mai|okt|dez"
 _DATE = re.compile(
     r"[0-9]{4}-[0-9]{1,2}-[0-9]{1,2}(?:[T ].*)?"
@@ -40,26 +54,19 @@ _DATE = re.compile(
     rf"|(?:{_MONTH})[a-z]*[-. /]*[0-9]{{1,4}}",
     re.IGNORECASE,
 )
-_IN_CELL = re.compile(r"([+-]?[0-9][0-9.,:]*)\s*([A-Za-z°µ%][A-Za-z°/. ]*)")
+_IN_CELL = re.compile(r"([+-]?[0-9][0-9.,:]*)\s*([A-Za-z°µ%][^0-9]*)")
+_MINUSES = str.maketrans(dict.fromkeys("−–‒﹣－", "-"))
 _LETTERS = str.maketrans({"O": "0", "o": "0", "l": "1", "I": "1", "|": "1"})
-_MOMENT = re.compile(
-    r"([0-9]{4}-[0-9]{2}-[0-9]{2})"
-    r"(?:[T ]([0-9]{2}:[0-9]{2}(?::[0-9]{2}(?:[.,][0-9]+)?)?)\s*(Z|[+-][0-9]{2}:?[0-9]{2})?)?"
-)
-_TIME_OF_DAY = re.compile(r"([0-9]{1,2})(:[0-9]{2}(?::[0-9]{2}(?:\.[0-9]+)?)?)")
-
-
-@dataclass(frozen=True, slots=True)
-class Fault:
-    """What is wrong with a cell, and what to do about it."""
-
-    message: str
-    remedy: str
 
 
 def is_missing(text: str) -> bool:
     """Say whether a cell holds no value, by being empty or by a usual spelling."""
     return text.casefold() in MISSING
+
+
+def with_plain_minus(text: str) -> str:
+    """Return a text with the minus signs and dashes of typesetters as plain ones."""
+    return text if text.isascii() else text.translate(_MINUSES)
 
 
 def is_thousands(text: str) -> bool:
@@ -69,29 +76,7 @@ def is_thousands(text: str) -> bool:
 
 def looks_like_number(text: str) -> bool:
     """Say whether a cell is a plain number with any decimal mark or with several."""
-    return re.fullmatch(r"[+-]?[0-9][0-9.,]*", text.replace("−", "-")) is not None
-
-
-def read_clock(text: str) -> float | Fault | None:
-    """Read ``mm:ss.ff`` or ``h:mm:ss.ff`` as seconds; ``None`` where a cell is neither.
-
-    Examples
-    --------
-    >>> read_clock("1:03.15"), read_clock("1:02:03"), read_clock("12.84")
-    (63.15, 3723.0, None)
-    """
-    found = _CLOCK.fullmatch(text)
-    if not found:
-        return None
-    hours, minutes, seconds, fraction = found.groups()
-    for name, field, checked in (("seconds", seconds, True), ("minutes", minutes, bool(hours))):
-        if checked and int(field) >= 60:
-            return Fault(
-                f"{quoted(text)} has {field} {name}, and there are fewer than 60",
-                "write minutes and seconds as 1:03.15; hundredths of a second go after a point",
-            )
-    whole = int(hours or 0) * 3600 + int(minutes) * 60 + int(seconds)
-    return float(f"{whole}.{fraction or 0}")
+    return re.fullmatch(r"[+-]?[0-9][0-9.,]*", with_plain_minus(text)) is not None
 
 
 def read_number(text: str, decimal: str, what: str) -> float | Fault:
@@ -99,7 +84,7 @@ def read_number(text: str, decimal: str, what: str) -> float | Fault:
 
     ``what`` is the name of what is expected, such as ``a time``.
     """
-    plain = text.replace("−", "-")
+    plain = with_plain_minus(text)
     other = "," if decimal == "." else "."
     if (_NUMBER.fullmatch(plain) or _SCIENTIFIC.fullmatch(plain)) and other not in plain:
         value = float(plain.replace(decimal, "."))
@@ -127,7 +112,7 @@ def _explain(text: str, decimal: str, what: str) -> Fault:
             f"{shown} is a unit where {what} is expected", "write the unit in the heading, as [s]"
         )
     mended = text.translate(_LETTERS)
-    if mended != text and (_NUMBER.fullmatch(mended) or _CLOCK.fullmatch(mended)):
+    if mended != text and (_NUMBER.fullmatch(mended) or isinstance(read_clock(mended), float)):
         return Fault(f"{shown} has a letter among its digits", f"type {mended} if that is meant")
     if looks_like_number(text) and text.count(".") + text.count(",") > 1:
         return Fault(f"{shown} has more than one decimal mark", "type it with one only")
@@ -153,31 +138,3 @@ def _explain(text: str, decimal: str, what: str) -> Fault:
     if re.search(r"[0-9]\s+[0-9]", text):
         return Fault(f"{shown} has a space among its digits", wanted)
     return Fault(f"{shown} is not {what}", wanted)
-
-
-def read_moment(text: str) -> str | Fault:
-    """Return a moment as ISO 8601 text: a date, a date and time, or a time of day.
-
-    Examples
-    --------
-    >>> read_moment("2026-03-02 09:15"), read_moment("9:15:30")
-    ('2026-03-02T09:15', '09:15:30')
-    """
-    if is_missing(text):
-        return ""
-    try:
-        if found := _MOMENT.fullmatch(text):
-            date, time, zone = found.groups()
-            iso = date + (f"T{time.replace(',', '.')}" if time else "") + (zone or "")
-            dt.datetime.fromisoformat(iso)
-            return iso
-        if found := _TIME_OF_DAY.fullmatch(text):
-            iso = found[1].zfill(2) + found[2]
-            dt.time.fromisoformat(iso)
-            return iso
-    except ValueError:
-        pass
-    return Fault(
-        f"{quoted(text)} is not a moment",
-        "write 2026-03-02T09:15:30 or 09:15:30 (year, month, day)",
-    )
