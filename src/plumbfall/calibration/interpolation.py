@@ -11,6 +11,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.errors import InputError
+from plumbfall.physics.ranges import check_range
 from plumbfall.physics.temperature_laws import (
     andrade_slope,
     andrade_viscosity,
@@ -19,7 +20,6 @@ from plumbfall.physics.temperature_laws import (
     walther_ordinate,
     walther_viscosity_of_ordinate,
 )
-from plumbfall.physics.ranges import check_range
 
 __all__ = ["Interpolated", "by_andrade", "by_vogel", "by_walther"]
 
@@ -168,7 +168,7 @@ def by_vogel(temperatures: Numbers, viscosities: Numbers, temperature: float) ->
     design = np.column_stack([offsets, logs, np.ones_like(offsets)])
     a, c, rest = np.linalg.lstsq(design, logs * offsets, rcond=None)[0]
     b = rest + a * c
-    sensitivity = np.zeros((3, len(logs)))
+    sensitivity: Numbers = np.zeros((3, len(logs)))
     for _ in range(STEPS):
         distance = offsets - c
         if not (np.isfinite([a, b, c]).all() and (distance > 0).all() and b > 0):
@@ -184,7 +184,7 @@ def by_vogel(temperatures: Numbers, viscosities: Numbers, temperature: float) ->
             break
     distance = offsets - c
     residuals = logs - a - b / distance
-    bend = np.zeros((3, 3))  # second derivatives of the law, weighed by what the fit left
+    bend: Numbers = np.zeros((3, 3))  # second derivatives of the law, weighed by what the fit left
     bend[1, 2] = bend[2, 1] = residuals @ distance**-2
     bend[2, 2] = residuals @ (2 * b / distance**3)
     sensitivity = np.linalg.solve(np.eye(3) - sensitivity @ sensitivity.T @ bend, sensitivity)
