@@ -177,7 +177,7 @@ def by_vogel(temperatures: Numbers, viscosities: Numbers, temperature: float) ->
                 remedy="compare each temperature and viscosity with the certificate",
             )
         fitted = np.column_stack([np.ones_like(offsets), 1.0 / distance, b / distance**2])
-        sensitivity = np.linalg.pinv(fitted)
+        sensitivity = np.asarray(np.linalg.pinv(fitted), dtype=float)
         step = sensitivity @ (logs - a - b / distance)
         a, b, c = np.array([a, b, c]) + step
         if np.abs(fitted @ step).max() < 1e-13:
@@ -187,7 +187,8 @@ def by_vogel(temperatures: Numbers, viscosities: Numbers, temperature: float) ->
     bend: Numbers = np.zeros((3, 3))  # second derivatives of the law, weighed by what the fit left
     bend[1, 2] = bend[2, 1] = residuals @ distance**-2
     bend[2, 2] = residuals @ (2 * b / distance**3)
-    sensitivity = np.linalg.solve(np.eye(3) - sensitivity @ sensitivity.T @ bend, sensitivity)
+    bent = np.eye(3) - sensitivity @ sensitivity.T @ bend
+    sensitivity = np.asarray(np.linalg.solve(bent, sensitivity), dtype=float)
     distance = temperature - middle - c
     here = np.array([1.0, 1.0 / distance, b / distance**2])
     return Interpolated(

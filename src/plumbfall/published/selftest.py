@@ -12,7 +12,9 @@ from plumbfall.published import (
     flow_spheres,
     liquid_solutions,
     liquid_water,
+    statistics_charts,
     statistics_data,
+    statistics_decisions,
     statistics_tables,
     uncertainty_correlated,
     uncertainty_gum,
@@ -33,6 +35,8 @@ FIGURES: tuple[Figure, ...] = (
     *uncertainty_correlated.FIGURES,
     *statistics_tables.FIGURES,
     *statistics_data.FIGURES,
+    *statistics_decisions.FIGURES,
+    *statistics_charts.FIGURES,
     *liquid_water.FIGURES,
     *liquid_solutions.FIGURES,
 )
