@@ -1,10 +1,14 @@
 from __future__ import annotations
 
+import math
+
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
+from scipy.special import j0
 
 from plumbfall import physics
+from plumbfall.physics.thermal import equilibration_time
 
 kelvins = st.floats(min_value=270.0, max_value=370.0)
 
@@ -51,3 +55,19 @@ def test_nothing_changes_at_the_reference_temperature(law, temperature):
         reference_temperature=temperature,
     )
     assert same == 123.0
+
+
+@pytest.mark.parametrize(("radius", "minutes"), [(10e-3, 3), (20e-3, 12), (30e-3, 27)])
+def test_equilibration_time_constants_of_a_cylinder(radius, minutes):
+    # R2/(5.783 alpha), 5.783 the square of the first zero of J0: Carslaw and Jaeger, Conduction of
+    # Heat in Solids, 2nd edition, chapter 7 (from memory); the minutes are for 9.6e-8 m2/s
+    found = equilibration_time(tube_bore=2 * radius, thermal_diffusivity=9.6e-8)
+    assert found / 60 == pytest.approx(minutes, abs=0.5)
+
+
+def test_the_first_mode_of_a_cylinder_solves_the_equation_of_conduction():
+    # exp(-t/tau) J0(j r/R) obeys dT/dt = alpha (T'' + T'/r), and vanishes at the wall
+    radius, alpha = 0.02, 9.5e-8
+    tau = equilibration_time(tube_bore=2 * radius, thermal_diffusivity=alpha)
+    wave = 1 / math.sqrt(alpha * tau)
+    assert j0(wave * radius) == pytest.approx(0.0, abs=1e-12)

@@ -52,7 +52,13 @@ _NAMES_OF = {
         "walther_coefficients",
         "walther_kinematic_viscosity",
     ),
-    "thermal": ("expanded_length", "expanded_solid_density", "liquid_density"),
+    "thermal": (
+        "THERMAL_DIFFUSIVITY",
+        "equilibration_time",
+        "expanded_length",
+        "expanded_solid_density",
+        "liquid_density",
+    ),
     "tube_constants": ("constant_viscosity",),
     "weight": (
         "effective_weight",

@@ -5,10 +5,62 @@ from __future__ import annotations
 from plumbfall.physics.numeric import Numeric
 
 __all__ = [
+    "THERMAL_DIFFUSIVITY",
+    "equilibration_time",
     "expanded_length",
     "expanded_solid_density",
     "liquid_density",
 ]
+
+THERMAL_DIFFUSIVITY = 9.5e-8
+"""Thermal diffusivity of a liquid that balls are dropped in, where nothing better is known [m2/s].
+
+Glycerol 0.95e-7; mineral oils 0.8e-7, silicone fluids 1.0e-7, water 1.4e-7 (from memory).
+"""
+
+_FIRST_ZERO_J0 = 2.404825557695773
+
+
+def equilibration_time(
+    *, tube_bore: Numeric, thermal_diffusivity: Numeric = THERMAL_DIFFUSIVITY
+) -> Numeric:
+    r"""Time constant with which the liquid on the axis of a tube takes the bath's temperature.
+
+    .. math:: \tau = \frac{R^2}{j_{0,1}^2\, \alpha} = \frac{R^2}{5.783\, \alpha}
+
+    Parameters
+    ----------
+    tube_bore : float or array, shape (..., drops) [m]
+        Bore, 2R.
+    thermal_diffusivity : float or array, shape (..., drops) [m2/s]
+        Thermal diffusivity of the liquid.
+
+    Returns
+    -------
+    float or array [s]
+        Time in which the difference falls to 1/e of itself.
+
+    Valid range
+    -----------
+    A long tube whose wall is held at the bath's temperature; liquid at rest. Stirring and
+    convection make it quicker, a thick glass wall slower.
+
+    Notes
+    -----
+    The slowest of the modes of conduction in a cylinder. The difference on the axis is
+    1.602 exp(-t/tau) of the first one once the others have died: from 5 K to 0.01 K in 6.7 of them.
+
+    References
+    ----------
+    [CarslawJaeger1959]
+
+    Examples
+    --------
+    >>> value = equilibration_time(tube_bore=40e-3)
+    >>> f"{value / 60:.0f}"
+    '12'
+    """
+    return (0.5 * tube_bore) ** 2 / (_FIRST_ZERO_J0**2 * thermal_diffusivity)
 
 
 def expanded_length(
