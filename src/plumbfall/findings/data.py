@@ -15,10 +15,12 @@ from plumbfall.measurement.columns import DropColumns
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
+from plumbfall.measurement.sensitivities import Sums
 from plumbfall.measurement.values import Weights
 from plumbfall.physics.drag import DragLaw
 from plumbfall.results import Finding
 from plumbfall.run_sets.jacobian import Jacobian
+from plumbfall.run_sets.outputs import Outputs
 from plumbfall.run_sets.repeatability import Repeatability
 from plumbfall.timings.records import Timings
 
@@ -40,9 +42,11 @@ class RunData:
     selection: Selection
     inputs: Inputs
     columns: DropColumns
+    sums: Sums
     weights: Weights
     scatter: Repeatability
     jacobian: Jacobian
+    outputs: Outputs
     law: DragLaw
     limits: Limits
     ends: Ends | None = None
