@@ -1,4 +1,4 @@
-"""How many drops, of how many balls, and what was left out."""
+"""How many drops, of how many balls, and whether what was left out has a reason."""
 
 from __future__ import annotations
 
@@ -10,7 +10,7 @@ from plumbfall.findings.data import Found, RunData
 from plumbfall.results import Finding
 from plumbfall.run_sets.repeatability import KNOWN
 
-__all__ = ["many_excluded", "nothing_left", "reused_balls", "too_few_drops", "void_without_reason"]
+__all__ = ["nothing_left", "reused_balls", "too_few_drops", "void_without_reason"]
 
 
 def nothing_left(data: RunData) -> Iterator[Found]:
@@ -71,27 +71,6 @@ def reused_balls(data: RunData) -> Iterator[Found]:
                 f"result is the mean of {n_balls} ball mean{'s' if n_balls > 1 else ''}, and "
                 "counts as many values",
                 remedy="if every row was a fresh ball of one lot, write lot = true for the ball",
-            ),
-        )
-
-
-def many_excluded(data: RunData) -> Iterator[Found]:
-    """Find sets of which much was left out: a choice is not a measurement."""
-    n_sets = len(data.names)
-    read = np.bincount(data.row_set, minlength=n_sets)
-    out = read - data.weights.n_drops
-    with np.errstate(invalid="ignore"):
-        share = out / read
-    for run_set in np.flatnonzero(share > data.limits.many_excluded):
-        yield (
-            int(run_set),
-            Finding(
-                code="many-excluded",
-                severity="warning",
-                statistic=float(share[run_set]),
-                message=f"{out[run_set]} of {read[run_set]} drops "
-                f"({100 * share[run_set]:.0f} %) are void or excluded",
-                remedy="find out why so many drops fail, and repeat the run set",
             ),
         )
 

@@ -45,6 +45,15 @@ class Limits:
         expansion is not given.
     density_effect
         Least effect on the viscosity, as a ratio, before that is warned of.
+    excluded_effect
+        Largest part of the expanded uncertainty by which what was left out may move the result.
+    timing_effect
+        Largest standard uncertainty of the result by its timing alone, relative to it: one drop
+        of 20 s by stopwatch (Am. J. Phys. 87, 110, 2019).
+    best_uncertainty
+        Least relative standard uncertainty to be believed: BIPM key comparison CCM.V-K1.
+    stopwatch_share
+        Least uncertainty to be believed of a stopwatch, over that of usual timing by hand.
     """
 
     exclude_outliers: bool = False
@@ -64,6 +73,10 @@ class Limits:
     liquid_density_high: float = 3500.0
     density_temperature: float = 0.5
     density_effect: float = 5e-4
+    excluded_effect: float = 1 / 3
+    timing_effect: float = 0.005
+    best_uncertainty: float = 4e-4
+    stopwatch_share: float = 0.5
 
 
 _PROBABILITIES = ("outlier_level", "straggler_level", "warning_level", "many_excluded")

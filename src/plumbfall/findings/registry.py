@@ -2,15 +2,17 @@
 
 from __future__ import annotations
 
+from plumbfall.findings.claims import uncertainty_implausible
 from plumbfall.findings.counts import (
-    many_excluded,
     nothing_left,
     reused_balls,
     too_few_drops,
     void_without_reason,
 )
 from plumbfall.findings.data import Detector, RunData
+from plumbfall.findings.dates import calibration_overdue, reference_expired
 from plumbfall.findings.densities import density_implausible, radius_as_diameter
+from plumbfall.findings.diameters import nominal_diameter
 from plumbfall.findings.gaps import default_gravity, missing_uncertainty
 from plumbfall.findings.geometry import (
     end_near,
@@ -18,6 +20,7 @@ from plumbfall.findings.geometry import (
     off_axis_suspected,
     run_in_short,
 )
+from plumbfall.findings.left_out import many_excluded
 from plumbfall.findings.outliers import outlier
 from plumbfall.findings.solvability import (
     ball_not_denser,
@@ -32,6 +35,7 @@ from plumbfall.findings.temperatures import (
     slope_unknown,
     temperature_spread,
 )
+from plumbfall.findings.timing import fall_time_short
 from plumbfall.results import SEVERITIES, Finding
 
 __all__ = ["DETECTORS", "find"]
@@ -53,10 +57,15 @@ DETECTORS: tuple[Detector, ...] = (
     density_temperature,
     slope_sign,
     slope_unknown,
+    fall_time_short,
     many_excluded,
     void_without_reason,
+    calibration_overdue,
+    reference_expired,
+    uncertainty_implausible,
     too_few_drops,
     reused_balls,
+    nominal_diameter,
     geometry_unknown,
     missing_uncertainty,
     default_gravity,
