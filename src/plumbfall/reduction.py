@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import dataclasses
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping
 from dataclasses import dataclass, field
 from functools import cached_property
 from typing import TYPE_CHECKING
@@ -22,19 +22,23 @@ from plumbfall.measurement.balance import corrected_temperature
 from plumbfall.measurement.drops import compute_drops
 from plumbfall.measurement.ends import path_ends
 from plumbfall.measurement.gather import gather
+from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.law import drag_law, model_estimate
 from plumbfall.measurement.run_in import releases
 from plumbfall.measurement.selection import check_temperatures, select
 from plumbfall.measurement.values import value_weights
 from plumbfall.physics.laws import DEFAULTS
-from plumbfall.results import Finding, RunSetResult
+from plumbfall.results import Finding, RunSetResult, TemperatureFitResult
 from plumbfall.run_sets.drawn import Drawn
+from plumbfall.run_sets.fitted_slopes import SetValues, fit_slopes
 from plumbfall.run_sets.jacobian import build_jacobian, own_variances
 from plumbfall.run_sets.monte_carlo import draw_run_set
 from plumbfall.run_sets.outputs import compute_outputs, conditions
 from plumbfall.run_sets.repeatability import repeatability
 from plumbfall.run_sets.result import SetColumns, build_result, status_of
 from plumbfall.run_sets.table import summary_table
+from plumbfall.run_sets.temperature_fit import TemperatureFit
+from plumbfall.run_sets.temperature_fit_result import fit_result
 from plumbfall.timings.records import Timings
 
 if TYPE_CHECKING:
@@ -120,6 +124,14 @@ class Reduction:
         return correlation
 
     @cached_property
+    def temperature_fits(self) -> tuple[TemperatureFitResult, ...]:
+        """Temperature laws fitted to the run sets, one a liquid; empty where none was asked for."""
+        return tuple(
+            fit_result(fit, self.sets.jacobian, self.names, self.bench, self.coverage)
+            for fit in self.sets.fits
+        )
+
+    @cached_property
     def _place(self) -> dict[str, int]:
         return {name: place for place, name in enumerate(self.names)}
 
@@ -191,6 +203,11 @@ def reduce_drops(
         rows = reduced.selection.row[found.drop[beyond]]
         reduced = reduce_numbers(_exclude(reduced.timings, rows), bench, probability)
     findings = find(_data(reduced, limits))
+    not_fitted: frozenset[int] = frozenset()
+    while spoilt := _invalid_but_fitted(reduced, findings) - not_fitted:
+        not_fitted |= spoilt
+        reduced = reduce_numbers(reduced.timings, bench, probability, not_fitted)
+        findings = find(_data(reduced, limits))
     drawn = _drawn(reduced, findings, draws, seed) if draws else {}
     for place, of_set in drawn.items():
         note = linear_not_validated(reduced.outputs, of_set, place)
@@ -203,6 +220,14 @@ def reduce_drops(
         inputs=inputs,
         drawn=drawn,
     )
+
+
+def _invalid_but_fitted(
+    sets: SetColumns, findings: tuple[tuple[Finding, ...], ...]
+) -> frozenset[int]:
+    """Run sets that a fitted temperature law was made from, though their data are invalid."""
+    fitted = {place for fit in sets.fits for place in fit.sets.tolist()}
+    return frozenset(place for place in fitted if status_of(findings[place]) == "invalid")
 
 
 def _drawn(
@@ -218,8 +243,13 @@ def _drawn(
     }
 
 
-def reduce_numbers(timings: Timings, bench: Bench, coverage: float = 0.95) -> SetColumns:
-    """Compute every run set's numbers, in columns, without looking for findings."""
+def reduce_numbers(
+    timings: Timings, bench: Bench, coverage: float = 0.95, not_fitted: Collection[int] = ()
+) -> SetColumns:
+    """Compute every run set's numbers, in columns, without looking for findings.
+
+    ``not_fitted`` are run sets that a fit of the temperature slope leaves out.
+    """
     law = drag_law(bench)
     selection = select(timings, bench)
     inputs = gather(selection.cells, bench, selection.names, model_estimate(bench))
@@ -234,23 +264,34 @@ def reduce_numbers(timings: Timings, bench: Bench, coverage: float = 0.95) -> Se
         bench.methods.ends or DEFAULTS["ends"],
     )
     released = None if bench.methods.run_in == "none" else releases(inputs)
-    columns, sums = compute_drops(selection, inputs, weights, law, readings, ends, released)
-    own = own_variances(selection, inputs, sums)
-    scatter = repeatability(selection, columns, weights, np.sqrt(own.resolution), bench.scatter)
-    jacobian = build_jacobian(selection, inputs, sums, own, scatter)
-    liquid = conditions(selection, inputs, columns)
+
+    def values_by(inputs: Inputs) -> SetValues:
+        columns, sums = compute_drops(selection, inputs, weights, law, readings, ends, released)
+        own = own_variances(selection, inputs, sums)
+        scatter = repeatability(selection, columns, weights, np.sqrt(own.resolution), bench.scatter)
+        return SetValues(
+            columns, sums, scatter, build_jacobian(selection, inputs, sums, own, scatter)
+        )
+
+    if bench.methods.slope is None:
+        fits: tuple[TemperatureFit, ...] = ()
+        values = values_by(inputs)
+    else:
+        inputs, values, fits = fit_slopes(bench, selection, inputs, values_by, not_fitted)
+    liquid = conditions(selection, inputs, values.columns)
     outputs = compute_outputs(
-        jacobian,
-        scatter.mean,
+        values.jacobian,
+        values.scatter.mean,
         liquid,
         inputs,
-        columns.set_temperature,
+        values.columns.set_temperature,
         bench.reference_temperature,
         coverage,
+        fits,
     )
     return SetColumns(
-        bench, timings, selection, inputs, columns, sums, weights, scatter, jacobian, liquid,
-        outputs, law, ends,
+        bench, timings, selection, inputs, values.columns, values.sums, weights, values.scatter,
+        values.jacobian, liquid, outputs, law, ends, fits,
     )  # fmt: skip
 
 
@@ -269,6 +310,7 @@ def _data(sets: SetColumns, limits: Limits) -> RunData:
         law=sets.law,
         limits=limits,
         ends=sets.ends,
+        fits=sets.fits,
         unstated=unstated_uncertainties(sets.bench),
     )
 

@@ -20,6 +20,7 @@ __all__ = [
     "MonteCarloResult",
     "Quantity",
     "RunSetResult",
+    "TemperatureFitResult",
 ]
 
 SEVERITIES = ("error", "warning", "note")
@@ -189,6 +190,35 @@ class Finding:
     p_value: float | None = None
     effect: float | None = None
     detectable: float | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class TemperatureFitResult:
+    """A temperature law fitted to the run sets of one liquid.
+
+    ``law`` is its name in the bench sheet, ``equation`` in words; ``parameters`` pairs names with
+    values, ``covariance`` is theirs, in the products of their units. ``sets`` were fitted, at
+    ``temperatures`` in kelvin; ``residuals`` are ln(measured/fitted) and ``slopes`` the fitted d
+    ln(viscosity)/dT there, 1/K. ``chi_squared`` is ``None`` where the sets have no errors of their
+    own. ``viscosity_at_reference`` is the curve's own value, from all sets together.
+    """
+
+    liquid: str
+    law: str
+    title: str
+    equation: str
+    source: str
+    parameters: tuple[tuple[str, Quantity], ...]
+    covariance: tuple[tuple[float, ...], ...]
+    sets: tuple[str, ...]
+    temperatures: tuple[float, ...]
+    residuals: tuple[float, ...]
+    slopes: tuple[float, ...]
+    chi_squared: float | None
+    dof: int
+    p_value: float | None
+    reference_temperature: float | None
+    viscosity_at_reference: Measured | None
 
 
 @dataclass(frozen=True, slots=True)

@@ -39,6 +39,7 @@ from plumbfall.results import (
     Measured,
     Quantity,
     RunSetResult,
+    TemperatureFitResult,
 )
 from plumbfall.timings.records import COLUMNS, Repair, TimingFile, Timings
 
@@ -310,6 +311,7 @@ class InventedReduction:
     coverage: float = 0.95
     seed: int = 0
     findings: tuple[Finding, ...] = ()
+    temperature_fits: tuple[TemperatureFitResult, ...] = ()
 
     @property
     def names(self) -> tuple[str, ...]:

@@ -22,6 +22,7 @@ from plumbfall.results import Finding
 from plumbfall.run_sets.jacobian import Jacobian
 from plumbfall.run_sets.outputs import Outputs
 from plumbfall.run_sets.repeatability import Repeatability
+from plumbfall.run_sets.temperature_fit import TemperatureFit
 from plumbfall.timings.records import Timings
 
 __all__ = ["Detector", "Found", "RunData"]
@@ -34,7 +35,8 @@ Found = tuple[int, Finding]
 class RunData:
     """Everything known once the drops are reduced and the uncertainties propagated.
 
-    ``ends`` is what the tubes' ends add to each cell's path, ``None`` where nothing is added.
+    ``ends`` is what the tubes' ends add to each cell's path, ``None`` where nothing is added;
+    ``fits`` are the temperature laws fitted to the run sets, where that is asked for.
     """
 
     bench: Bench
@@ -51,6 +53,7 @@ class RunData:
     limits: Limits
     ends: Ends | None = None
     unstated: tuple[str, ...] = ()
+    fits: tuple[TemperatureFit, ...] = ()
 
     @property
     def names(self) -> tuple[str, ...]:

@@ -30,6 +30,9 @@ class Limits:
         Largest range of temperature in a set that needs no slope.
     temperature_spread
         Largest range of temperature in a set before it is warned of (common practice, no source).
+    slope_extrapolation
+        Largest distance of the reference temperature from those a law was fitted to (common
+        practice, no source).
     model_bound
         Largest half-width of the drag law itself before the Reynolds number is warned of.
     end_clearance
@@ -64,6 +67,7 @@ class Limits:
     many_excluded: float = 0.20
     temperature_agreement: float = 0.1
     temperature_spread: float = 1.0
+    slope_extrapolation: float = 2.0
     model_bound: float = 0.01
     end_clearance: float = 1.0
     run_in: float = 2e-3

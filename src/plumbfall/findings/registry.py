@@ -31,6 +31,7 @@ from plumbfall.findings.solvability import (
 )
 from plumbfall.findings.temperatures import (
     density_temperature,
+    fitted_slope,
     slope_sign,
     slope_unknown,
     temperature_spread,
@@ -56,6 +57,7 @@ DETECTORS: tuple[Detector, ...] = (
     temperature_spread,
     density_temperature,
     slope_sign,
+    fitted_slope,
     slope_unknown,
     fall_time_short,
     many_excluded,

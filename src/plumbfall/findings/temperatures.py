@@ -7,10 +7,18 @@ from collections.abc import Iterator
 import numpy as np
 
 from plumbfall.findings.data import Found, RunData
+from plumbfall.findings.significance import level_of_each
 from plumbfall.measurement.inputs import cold_ball_density
 from plumbfall.results import Finding
+from plumbfall.run_sets.temperature_fit import TemperatureFit
 
-__all__ = ["density_temperature", "slope_sign", "slope_unknown", "temperature_spread"]
+__all__ = [
+    "density_temperature",
+    "fitted_slope",
+    "slope_sign",
+    "slope_unknown",
+    "temperature_spread",
+]
 
 USUAL_EXPANSION = 7e-4
 """Volumetric expansion of common liquids, 1/K, to judge what an unknown one may cost.
@@ -36,6 +44,11 @@ def slope_unknown(data: RunData) -> Iterator[Found]:
             remedy = "add a temperature column to the timing file, or temperature to the run set"
         else:
             message = f"liquid {liquid} has no viscosity_slope: the bounds leave out temperature"
+            if data.bench.methods.slope is not None:
+                message = (
+                    f"the slope of liquid {liquid} cannot be fitted, its run sets being at too "
+                    "few temperatures: the bounds leave out temperature"
+                )
             if not small:
                 message += f", and drops {span:.2f} K apart are averaged as they are"
             if asked:
@@ -51,6 +64,55 @@ def slope_unknown(data: RunData) -> Iterator[Found]:
                 remedy=remedy,
             ),
         )
+
+
+def fitted_slope(data: RunData) -> Iterator[Found]:
+    """Find run sets that the law fitted to them does not describe, or not where it is asked to."""
+    for fit in data.fits:
+        if fit.p_value < level_of_each(data.limits):
+            yield from _misfit(data, fit)
+        reference = data.bench.reference_temperature
+        if reference is None:
+            continue
+        low, high = fit.fitted_range
+        beyond = max(low - reference, reference - high)
+        if beyond > data.limits.slope_extrapolation:
+            for run_set in fit.members.tolist():
+                yield (
+                    run_set,
+                    Finding(
+                        code="slope-unknown",
+                        severity="warning",
+                        statistic=beyond,
+                        message=f"the reference temperature lies {beyond:.1f} K outside the "
+                        f"temperatures that {fit.law.title} was fitted to, where its bounds do not "
+                        "hold what they promise",
+                        remedy="add a run set beyond the reference temperature",
+                    ),
+                )
+
+
+def _misfit(data: RunData, fit: TemperatureFit) -> Iterator[Found]:
+    worst = int(np.argmax(np.abs(fit.found.residuals)))
+    effect = float(fit.found.residuals[worst])
+    name = data.names[fit.sets[worst]]
+    yield from (
+        (
+            run_set,
+            Finding(
+                code="slope-unknown",
+                severity="warning",
+                statistic=fit.chi_squared,
+                p_value=fit.p_value,
+                effect=effect,
+                message=f"the run sets of {fit.liquid} do not follow {fit.law.title}: set "
+                f"'{name}' lies {100 * effect:.2g} % off it, more than their uncertainties allow",
+                remedy=('try slope = "vogel", which bends, ' if fit.law.name == "andrade" else "")
+                + "and check that set's temperature, ball and liquid",
+            ),
+        )
+        for run_set in fit.sets.tolist()
+    )
 
 
 def slope_sign(data: RunData) -> Iterator[Found]:

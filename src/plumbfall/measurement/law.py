@@ -6,7 +6,7 @@ import math
 from dataclasses import replace
 
 from plumbfall.bench.records import Bench
-from plumbfall.errors import InputError, Problem
+from plumbfall.errors import InputError
 from plumbfall.estimate import Estimate
 from plumbfall.measurement.inputs import MODEL_INPUT
 from plumbfall.physics.drag import DragLaw
@@ -37,7 +37,6 @@ def drag_law(bench: Bench) -> DragLaw:
     InputError
         For a word that names no law, and for two words of one part.
     """
-    _check_choices(bench)
     chosen: dict[str, str] = {}
     for word in (bench.methods.drag or "").split():
         part = next((part for part in PARTS if word in laws_of(part)), None)
@@ -70,22 +69,3 @@ def model_estimate(bench: Bench) -> Estimate:
     if declared is not None:
         return Estimate(1.0, declared.value, "normal", math.inf, MODEL_INPUT, "1", declared.text)
     return Estimate(1.0, 1 / math.sqrt(3), "rectangular", math.inf, MODEL_INPUT, "1")
-
-
-def _check_choices(bench: Bench) -> None:
-    """Refuse what the bench sheet may name but this version cannot do; never pass it over."""
-    unable = {
-        "slope": (bench.methods.slope, "no fit of the slope", "give the liquid's viscosity_slope"),
-    }
-    problems = [
-        Problem(
-            f"'{choice}' is not available: this version has {what}",
-            f"drop the key, and {instead}",
-            path=bench.path,
-            key=f"methods.{key}",
-        )
-        for key, (choice, what, instead) in unable.items()
-        if choice not in (None, "none")
-    ]
-    if problems:
-        raise InputError(problems)

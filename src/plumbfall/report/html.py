@@ -15,6 +15,7 @@ from plumbfall.report.observed import observed, reading_remarks
 from plumbfall.report.page_sets import overview, set_page
 from plumbfall.report.scales import pretty_unit
 from plumbfall.report.summary import counted, visible
+from plumbfall.report.temperature_fit_view import fit_facts, fit_heading
 from plumbfall.report.words import CAUTIONS, NOT_SUPPLIED, STATEMENTS, Explainer
 
 if TYPE_CHECKING:
@@ -44,6 +45,10 @@ def page(report: Report) -> str:
             for index, view in enumerate(report, 1)
         ],
         several=several,
+        fits=[
+            (fit_heading(fit), fit_facts(fit, report.bench.viscosity_unit))
+            for fit in report.temperature_fits
+        ],
         identification=identification(report.bench),
         conditions=bench_conditions(report.bench),
         equipment=equipment_view(report.bench),

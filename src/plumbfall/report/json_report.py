@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 import math
+from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
 
 from plumbfall._version import __version__
@@ -17,6 +18,7 @@ from plumbfall.results import (
     MonteCarloResult,
     Quantity,
     RunSetResult,
+    TemperatureFitResult,
 )
 
 if TYPE_CHECKING:
@@ -43,6 +45,7 @@ def report_document(report: Report) -> dict[str, Any]:
             "sets": list(report.names),
             "matrix": [[_number(cell) for cell in row] for row in report.correlation().tolist()],
         },
+        "temperature_fit": _temperature_fit(report.temperature_fits),
         "findings": [_finding(finding) for finding in report.findings],
     }
 
@@ -156,6 +159,43 @@ def _budget_line(line: BudgetLine) -> dict[str, Any]:
         "contribution": _number(line.contribution),
         "share": _number(line.share),
         "scope": line.scope,
+    }
+
+
+def _temperature_fit(fits: Sequence[TemperatureFitResult]) -> dict[str, Any] | None:
+    if not fits:
+        return None
+    return {
+        "law": fits[0].law,
+        "equation": fits[0].equation,
+        "source": fits[0].source,
+        "liquids": [
+            {
+                "liquid": fit.liquid,
+                "parameters": [
+                    {"name": name, **(_quantity(parameter) or {})}
+                    for name, parameter in fit.parameters
+                ],
+                "covariance": [[_number(cell) for cell in row] for row in fit.covariance],
+                "chi_squared": _number(fit.chi_squared),
+                "dof": int(fit.dof),
+                "p_value": _number(fit.p_value),
+                "reference_temperature_K": _number(fit.reference_temperature),
+                "viscosity_at_reference": _measured(fit.viscosity_at_reference),
+                "run_sets": [
+                    {
+                        "name": name,
+                        "temperature_K": _number(temperature),
+                        "residual": _number(residual),
+                        "slope_1_K": _number(slope),
+                    }
+                    for name, temperature, residual, slope in zip(
+                        fit.sets, fit.temperatures, fit.residuals, fit.slopes, strict=True
+                    )
+                ],
+            }
+            for fit in fits
+        ],
     }
 
 

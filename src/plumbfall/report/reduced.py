@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from typing import TYPE_CHECKING, Protocol
 
-from plumbfall.results import Finding, RunSetResult
+from plumbfall.results import Finding, RunSetResult, TemperatureFitResult
 
 if TYPE_CHECKING:
     import numpy as np
@@ -52,6 +52,10 @@ class Reduced(Protocol):
     @property
     def findings(self) -> tuple[Finding, ...]:
         """Findings that concern more than one run set."""
+
+    @property
+    def temperature_fits(self) -> tuple[TemperatureFitResult, ...]:
+        """Temperature laws fitted to the run sets, one a liquid."""
 
     def run_set(self, name: str) -> RunSetResult:
         """Return one run set; ``name`` is one of :attr:`names`."""

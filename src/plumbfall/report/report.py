@@ -14,7 +14,7 @@ from plumbfall.errors import InputError, Problem, nearest_name
 from plumbfall.report.reduced import Reduced
 from plumbfall.report.run_set import RunSetView
 from plumbfall.report.summary import summary_line, visible
-from plumbfall.results import Finding
+from plumbfall.results import Finding, TemperatureFitResult
 
 if TYPE_CHECKING:
     import numpy as np
@@ -87,6 +87,11 @@ class Report:
     def findings(self) -> tuple[Finding, ...]:
         """Findings that concern more than one run set."""
         return self.reduced.findings
+
+    @property
+    def temperature_fits(self) -> tuple[TemperatureFitResult, ...]:
+        """Temperature laws fitted to the run sets, one a liquid; empty without ``slope``."""
+        return self.reduced.temperature_fits
 
     def __len__(self) -> int:
         return len(self.names)

@@ -12,7 +12,8 @@ from plumbfall.report.observed import reading_remarks
 from plumbfall.report.scales import Scale
 from plumbfall.report.set_tables import finding_evidence, why_not_used
 from plumbfall.report.summary import counted, visible
-from plumbfall.report.views import facts, set_scale
+from plumbfall.report.temperature_fit_view import fit_facts, fit_heading
+from plumbfall.report.views import Fact, facts, set_scale
 from plumbfall.report.words import Explainer
 from plumbfall.results import Finding, RunSetResult
 
@@ -93,6 +94,10 @@ def _lines(report: Report) -> Iterator[str]:
     if not few:
         yield ""
         yield from _wrapped("", "Sets that are valid are told in full by --out DIR.")
+    for fit in report.temperature_fits:
+        yield from _wrapped("", visible(fit_heading(fit)))
+        yield from _of_facts(fit_facts(fit, report.bench.viscosity_unit), explain)
+        yield ""
     yield from _of_findings(report.findings)
     rows = report.rows
     yield from _wrapped(
@@ -108,10 +113,7 @@ def _lines(report: Report) -> Iterator[str]:
 def _of_set(result: RunSetResult, unit: str | None, explain: Explainer) -> Iterator[str]:
     scale = set_scale(result, unit)
     yield from _of_findings(result.findings)
-    for fact in facts(result, scale):
-        text = f"{fact.text} {fact.unit}" if fact.unit not in fact.text else fact.text
-        why = explain(fact.term)
-        yield from _wrapped(f"  {fact.label:<36}", visible(f"{text}  ({why})" if why else text))
+    yield from _of_facts(facts(result, scale), explain)
     for drop in result.drops:
         if not drop.used:
             reason = ": ".join(filter(None, (why_not_used(drop), drop.note)))
@@ -119,6 +121,13 @@ def _of_set(result: RunSetResult, unit: str | None, explain: Explainer) -> Itera
             yield from _wrapped("  not used  ", visible(f"drop {drop.drop}, {where}, {reason}"))
     yield from _of_corrections(result, explain)
     yield from _of_budget(result, scale, explain)
+
+
+def _of_facts(shown: Iterable[Fact], explain: Explainer) -> Iterator[str]:
+    for fact in shown:
+        text = f"{fact.text} {fact.unit}" if fact.unit not in fact.text else fact.text
+        why = explain(fact.term)
+        yield from _wrapped(f"  {fact.label:<36}", visible(f"{text}  ({why})" if why else text))
 
 
 def _of_corrections(result: RunSetResult, explain: Explainer) -> Iterator[str]:

@@ -37,6 +37,10 @@ TERMS = {
     "for each ball; drop: one for each drop",
     "apparent viscosity": "it changes with the shear rate, so it holds at the stated one only",
     "p-value": "how often sound data would show at least as much",
+    "temperature law": "how viscosity falls as the liquid warms; its parameters are fitted to the "
+    "run sets by generalised least squares, with all that the sets' errors share",
+    "chi-squared": "squared distances of the run sets from the law in units of their uncertainty; "
+    "about the degrees of freedom where the law holds",
     "linear": "propagation of uncertainty by the GUM, JCGM 100",
     "monte-carlo": "propagation of distributions by JCGM 101",
 }

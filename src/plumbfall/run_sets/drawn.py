@@ -42,7 +42,7 @@ class Drawn:
 
         The standard uncertainty is the linear one where the draws have none.
         """
-        if linear is None or not self.replaces(quantity):
+        if linear is None or quantity not in self.validations or not self.replaces(quantity):
             return linear
         output = self.output(quantity)
         u = output.standard_uncertainty

@@ -57,6 +57,11 @@ class Jacobian:
         place = column - self.n_inputs
         return int(self.squared[place]) if place < len(self.squared) else -1
 
+    def own_columns(self, kind: str) -> NDArray[np.intp]:
+        """Columns of one kind of the run sets' own errors, shape (run sets,)."""
+        first = self.n_inputs + len(self.squared) + OWN_KINDS.index(kind) * self.n_sets
+        return first + np.arange(self.n_sets)
+
     def own_kind(self, column: int) -> str:
         """Say what a run set's own column stands for."""
         place = column - self.n_inputs - len(self.squared)

@@ -101,6 +101,8 @@ class SetModel:
             quantity
             for quantity in QUANTITIES
             if np.isfinite(sets.outputs.of(quantity).value[run_set])
+            # a fitted slope has the errors of all sets, which the draws of one do not hold
+            and not (quantity == "viscosity_at_reference" and sets.slope_fitted(run_set))
         )
         selection, liquid = sets.selection, sets.liquid
         self._sets = sets

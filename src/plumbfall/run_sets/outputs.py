@@ -5,6 +5,8 @@ All three are rows of one stacked Jacobian, so that their joint covariance comes
 
 from __future__ import annotations
 
+import math
+from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -18,6 +20,7 @@ from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.physics.thermal import liquid_density
 from plumbfall.run_sets.jacobian import Jacobian
+from plumbfall.run_sets.temperature_fit import TemperatureFit
 from plumbfall.uncertainty.coverage import coverage_factor
 from plumbfall.uncertainty.linear import Propagation, propagate
 
@@ -142,6 +145,7 @@ def compute_outputs(
     set_temperature: Numbers,
     reference_temperature: float | None,
     coverage: float,
+    fits: Sequence[TemperatureFit] = (),
 ) -> Outputs:
     """Stack the outputs of every run set and propagate the inputs' uncertainties to them.
 
@@ -161,6 +165,8 @@ def compute_outputs(
         Where the second output holds; NaN results without it.
     coverage : float
         Coverage probability of the intervals.
+    fits : sequence of TemperatureFit
+        Fitted temperature laws; they carry their liquids' sets to the reference temperature.
 
     Returns
     -------
@@ -170,7 +176,9 @@ def compute_outputs(
     n = jacobian.n_sets
     reference = np.nan if reference_temperature is None else reference_temperature
     distance = np.where(liquid.slope_known, reference - set_temperature, np.nan)
-    to_reference = np.exp(liquid.slope * distance)
+    log_ratio = liquid.slope * distance
+    by_fit = _carried_by_fits(fits, jacobian, viscosity, set_temperature, reference, log_ratio)
+    to_reference = np.exp(log_ratio)
     values = np.concatenate([viscosity, viscosity * to_reference, viscosity / liquid.density])
 
     def entries(role: str, amounts: Numbers) -> sparse.csr_array:
@@ -183,7 +191,7 @@ def compute_outputs(
     # A row that does not exist must be NaN in its result, but 0 in the sparse sums.
     scale = np.nan_to_num(to_reference, nan=0.0)
     at_reference = sparse.diags_array(scale) @ (
-        jacobian.matrix + entries("slope", viscosity * np.nan_to_num(distance, nan=0.0))
+        jacobian.matrix + entries("slope", viscosity * np.nan_to_num(distance, nan=0.0)) + by_fit
     )
     by_expansion = viscosity * liquid.offset / (1 + liquid.expansion * liquid.offset)
     kinematic = sparse.diags_array(np.nan_to_num(1 / liquid.density, nan=0.0)) @ (
@@ -194,3 +202,29 @@ def compute_outputs(
     stacked = sparse.vstack([jacobian.matrix, at_reference, kinematic], format="csr")
     propagation = propagate(sensitivities=stacked, u=jacobian.u, dof=jacobian.dof)
     return Outputs(values=values, propagation=propagation, coverage=coverage, n_sets=n)
+
+
+def _carried_by_fits(
+    fits: Sequence[TemperatureFit],
+    jacobian: Jacobian,
+    viscosity: Numbers,
+    set_temperature: Numbers,
+    reference: float,
+    log_ratio: Numbers,
+) -> sparse.csr_array:
+    """Return what the fitted laws add to the rows at the reference temperature, before their scale.
+
+    ``log_ratio`` is filled with the laws' own, where a law was fitted.
+    """
+    added = sparse.csr_array(jacobian.matrix.shape)
+    if math.isnan(reference):
+        return added
+    for fit in fits:
+        there, by_there = fit.log_viscosity(np.array([reference]))
+        here, by_here = fit.log_viscosity(set_temperature[fit.members])
+        log_ratio[fit.members] = there - here
+        place = (np.ones(len(fit.members)), (fit.members, np.arange(len(fit.members))))
+        spread = sparse.csr_array(place, shape=(jacobian.n_sets, len(fit.members)))
+        moved = viscosity[fit.members, None] * (by_there - by_here)
+        added = added + spread @ (sparse.csr_array(np.nan_to_num(moved)) @ fit.rows)
+    return sparse.csr_array(added)

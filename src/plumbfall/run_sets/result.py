@@ -32,6 +32,7 @@ from plumbfall.run_sets.drop_records import ball_results, drop_results
 from plumbfall.run_sets.jacobian import Jacobian
 from plumbfall.run_sets.outputs import Output, Outputs, SetConditions
 from plumbfall.run_sets.repeatability import Repeatability
+from plumbfall.run_sets.temperature_fit import TemperatureFit
 from plumbfall.timings.records import Timings
 
 __all__ = ["SetColumns", "build_result", "status_of"]
@@ -60,6 +61,11 @@ class SetColumns:
     outputs: Outputs
     law: DragLaw
     ends: Ends | None
+    fits: tuple[TemperatureFit, ...] = ()
+
+    def slope_fitted(self, run_set: int) -> bool:
+        """Whether a run set's temperature slope was fitted to the run sets themselves."""
+        return any(run_set in fit.members for fit in self.fits)
 
 
 def status_of(findings: tuple[Finding, ...]) -> str:
