@@ -42,4 +42,4 @@ def test_a_detectable_effect_is_found_as_often_as_it_says():
     for dof in (5, 8, 20):
         effect = float(detectable(standard_error=1.0, dof=dof, level=0.0025))
         limit = stats.t.isf(0.00125, dof)
-        assert stats.nct.sf(limit, dof, effect) == pytest.approx(0.80, abs=0.06)
+        assert stats.nct.sf(limit, dof, effect) == pytest.approx(0.80, abs=1e-4)

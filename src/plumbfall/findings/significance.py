@@ -11,7 +11,7 @@ from __future__ import annotations
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
-from scipy.special import fdtrc, stdtr, stdtrit
+from scipy.special import fdtrc, nctdtrinc, stdtr, stdtrit
 
 from plumbfall.findings.limits import Limits
 
@@ -86,8 +86,12 @@ def detectable(
     Returns
     -------
     array
-        (t of the level + t of the power) x standard error, in the unit of the effect; the usual
-        approximation to the noncentral t, a few percent low at five degrees of freedom.
+        The noncentrality that gives the power times the standard error, in the unit of the
+        effect; NaN where there are no degrees of freedom. Some 10 us each.
+
+    References
+    ----------
+    Power of the two-sided t-test by the noncentral t distribution (any text on sample sizes).
 
     Examples
     --------
@@ -97,7 +101,7 @@ def detectable(
     3.2
     """
     dof = np.asarray(dof, dtype=float)
-    able = np.where(dof > 0, dof, np.nan)
-    reach = stdtrit(able, 1 - level / 2) + stdtrit(able, power)
+    able = np.where(dof > 0, np.minimum(dof, 1e7), np.nan)
+    reach = nctdtrinc(able, 1 - power, stdtrit(able, 1 - level / 2))
     result: NDArray[np.float64] = reach * np.asarray(standard_error, dtype=float)
     return result
