@@ -16,7 +16,6 @@ from plumbfall.errors import InputError
 from plumbfall.findings.data import RunData
 from plumbfall.findings.limits import Limits, limits_from
 from plumbfall.findings.linearity import linear_not_validated
-from plumbfall.findings.outliers import suspects
 from plumbfall.findings.registry import find
 from plumbfall.measurement.balance import corrected_temperature
 from plumbfall.measurement.drops import compute_drops
@@ -196,7 +195,7 @@ def reduce_drops(
     limits = limits_from(bench.limits, bench.path)
     reduced = reduce_numbers(timings, bench, probability)
     while limits.exclude_outliers:
-        found = suspects(_data(reduced, limits))
+        found = _data(reduced, limits).suspects
         beyond = found.p_value < limits.outlier_level
         if not beyond.any():
             break

@@ -10,7 +10,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.bench.records import Ball, Bench, Liquid, Tube
+from plumbfall.findings.ball_fits import BallFits, ball_fits
+from plumbfall.findings.ball_means import BallMeans, ball_means
+from plumbfall.findings.drop_errors import DropErrors, drop_errors
 from plumbfall.findings.limits import Limits
+from plumbfall.findings.residuals import Residuals, residuals
+from plumbfall.findings.significance import level_of_each
+from plumbfall.findings.suspects import Pairs, Suspects, pairs, suspects
 from plumbfall.measurement.columns import DropColumns
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
@@ -26,6 +32,12 @@ from plumbfall.run_sets.temperature_fit import TemperatureFit
 from plumbfall.timings.records import Timings
 
 __all__ = ["Detector", "Found", "RunData"]
+
+APART = 0.05
+"""Significance from which on balls are taken to disagree, where drops are compared with others.
+
+No warning comes of it: the drops of such a set are then compared within each ball alone.
+"""
 
 Found = tuple[int, Finding]
 """A run set's place in ``RunData.names``, and what was found in it."""
@@ -84,6 +96,68 @@ class RunData:
     def liquids(self) -> tuple[Liquid, ...]:
         """Liquids in the order their codes count."""
         return tuple(self.bench.liquids.values())
+
+    @property
+    def level(self) -> float:
+        """Significance that each statistical test warns at."""
+        return level_of_each(self.limits)
+
+    @cached_property
+    def errors(self) -> DropErrors:
+        """What each drop's own error is made of."""
+        return drop_errors(
+            self.selection,
+            self.inputs,
+            self.columns,
+            self.sums,
+            self.weights.weight,
+            self.bench.scatter,
+        )
+
+    @cached_property
+    def balls_of_sets(self) -> BallMeans:
+        """Ball means, and how far the bench sheet allows them to differ."""
+        return ball_means(
+            self.selection,
+            self.inputs,
+            self.columns,
+            self.sums,
+            self.weights.weight,
+            self.errors,
+        )
+
+    @cached_property
+    def ball_fits(self) -> BallFits:
+        """Whether the balls of each set agree, and whether they follow size or shear."""
+        return ball_fits(self.balls_of_sets, len(self.names))
+
+    @cached_property
+    def residuals(self) -> Residuals:
+        """What is left of each drop once its set's mean, and its ball, are taken off."""
+        fits = self.ball_fits
+        return residuals(
+            self.selection.run_set, self.errors, fits.group_variance, fits.p_value < APART
+        )
+
+    @cached_property
+    def suspects(self) -> Suspects:
+        """Each run set's farthest drop, and how likely it is one of the others."""
+        return suspects(self.residuals)
+
+    @cached_property
+    def suspect_pairs(self) -> Pairs:
+        """Each run set's two farthest drops on one side."""
+        return pairs(self.residuals, self.suspects)
+
+    @cached_property
+    def order(self) -> NDArray[np.float64]:
+        """Place of each used drop in its run set, by drop number, from 0, shape (drops,)."""
+        run_set = self.selection.run_set
+        sorted_ = np.lexsort((self.selection.row, self.drop_numbers, run_set))
+        starts = np.cumsum(self.weights.n_drops) - self.weights.n_drops
+        place = np.empty(len(run_set))
+        place[sorted_] = np.arange(len(run_set)) - starts[run_set[sorted_]]
+        return place
 
     @cached_property
     def temperature_range(self) -> NDArray[np.float64]:

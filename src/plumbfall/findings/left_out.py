@@ -9,7 +9,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.findings.data import Found, RunData
-from plumbfall.findings.outliers import FEWEST, grubbs_p_value
+from plumbfall.findings.grubbs import grubbs_p_value
+from plumbfall.findings.suspects import FEWEST
 from plumbfall.results import Finding
 from plumbfall.uncertainty.type_a import group_scatter
 

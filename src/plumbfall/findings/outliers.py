@@ -1,139 +1,140 @@
-"""Grubbs' test on the drops of every run set at once."""
+"""Outliers and stragglers in the trade's words; no drop is left out because of one."""
 
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 
 import numpy as np
-from numpy.typing import ArrayLike, NDArray
-from scipy.special import stdtr, stdtrit
+from numpy.typing import NDArray
 
 from plumbfall.findings.data import Found, RunData
+from plumbfall.findings.grubbs import grubbs_critical
+from plumbfall.findings.hints import transposed
+from plumbfall.findings.significance import detectable
 from plumbfall.results import Finding
-from plumbfall.uncertainty.type_a import group_scatter
 
-__all__ = ["Suspects", "grubbs_critical", "grubbs_p_value", "outlier", "suspects"]
-
-FEWEST = 4
-"""With three drops no outlier can be told: the largest possible statistic is the limit."""
-
-
-def grubbs_critical(*, n: ArrayLike, level: float) -> NDArray[np.float64]:
-    """Critical value of Grubbs' two-sided test for one outlier.
-
-    Parameters
-    ----------
-    n : array of int
-        Number of values, at least 3.
-    level : float
-        Significance, such as 0.05 or 0.01.
-
-    Returns
-    -------
-    array
-        Largest |x - mean|/s to be expected.
-
-    References
-    ----------
-    Grubbs 1950, Ann. Math. Stat. 21, 27; ISO 5725-2, table 5 (which is two-sided).
-
-    Examples
-    --------
-    >>> f"{grubbs_critical(n=10, level=0.05):.3f}"
-    '2.290'
-    """
-    n = np.asarray(n, dtype=float)
-    t = stdtrit(n - 2, 1 - level / (2 * n))
-    critical: NDArray[np.float64] = (n - 1) / np.sqrt(n) * np.sqrt(t**2 / (n - 2 + t**2))
-    return critical
-
-
-def grubbs_p_value(*, statistic: ArrayLike, n: ArrayLike) -> NDArray[np.float64]:
-    """Two-sided probability of a Grubbs statistic as large, by Bonferroni's bound."""
-    g, n = np.asarray(statistic, dtype=float), np.asarray(n, dtype=float)
-    share = np.minimum(g**2 * n / (n - 1) ** 2, 1.0)
-    with np.errstate(divide="ignore"):
-        t = np.sqrt(share * (n - 2) / (1 - share))
-    p_value: NDArray[np.float64] = np.minimum(2 * n * stdtr(n - 2, -t), 1.0)
-    return p_value
-
-
-@dataclass(frozen=True, slots=True)
-class Suspects:
-    """The drop farthest from its run set's mean, arrays of shape (run sets,).
-
-    ``drop`` is its place among the used drops; ``statistic`` is Grubbs'; ``p_value`` is 1 where
-    nothing can be tested.
-    """
-
-    drop: NDArray[np.intp]
-    statistic: NDArray[np.float64]
-    p_value: NDArray[np.float64]
-    n: NDArray[np.intp]
-
-
-def suspects(data: RunData) -> Suspects:
-    """Find each run set's farthest drop, in ln of the viscosity at the set's temperature."""
-    run_set, n_sets = data.selection.run_set, len(data.names)
-    with np.errstate(invalid="ignore", divide="ignore"):
-        log_viscosity = np.log(data.columns.at_set)
-    groups = group_scatter(log_viscosity, run_set, n_sets)
-    distance = np.abs(log_viscosity - groups.mean[run_set])
-    farthest = np.zeros(n_sets)
-    with np.errstate(invalid="ignore"):
-        np.maximum.at(farthest, run_set, distance)  # NaN stays, and then nothing is tested
-    drop = np.zeros(n_sets, dtype=np.intp)
-    at_farthest = np.flatnonzero(distance == farthest[run_set])
-    drop[run_set[at_farthest]] = at_farthest
-    with np.errstate(invalid="ignore", divide="ignore"):
-        statistic = farthest / groups.sd
-    testable = (groups.n >= FEWEST) & (groups.sd > 0)
-    p_value = np.ones(n_sets)
-    p_value[testable] = grubbs_p_value(statistic=statistic[testable], n=groups.n[testable])
-    return Suspects(drop=drop, statistic=statistic, p_value=p_value, n=groups.n)
+__all__ = ["outlier", "outlier_pair", "straggler"]
 
 
 def outlier(data: RunData) -> Iterator[Found]:
     """Find the one drop that does not belong with the others; it is kept, and named."""
-    found = suspects(data)
-    for run_set in np.flatnonzero(found.p_value < data.limits.outlier_level):
-        drop = found.drop[run_set]
-        n = int(found.n[run_set])
-        weight = data.weights.weight[drop]
+    for run_set in np.flatnonzero(data.suspects.p_value < data.limits.outlier_level):
+        yield _single(data, int(run_set), "outlier", data.limits.outlier_level)
+
+
+def outlier_pair(data: RunData) -> Iterator[Found]:
+    """Find two drops on the same side, each of which hides the other from the test of one.
+
+    ISO 5725-2, 7.3.4: tried where no single drop is an outlier.
+    """
+    for run_set in np.flatnonzero(_in_pair(data)):
+        places = data.suspect_pairs.drops[run_set]
+        places = places[np.argsort(data.order[places])]
+        first, second = data.numbers(places)
         mean = data.scatter.mean[run_set]
-        own = data.columns.at_set[drop]
-        value = data.weights.value[drop]
-        mates = int(data.weights.value_drops[value])
-        if mates > 1:  # the ball's other drops make its mean
-            without = mean - weight * (own - _mean_of_mates(data, drop))
-        else:
-            values = int(data.weights.n_values[run_set])
-            without = mean + (mean - own) / max(values - 1, 1)
-        effect = float(without / mean - 1)
-        number = data.numbers(np.array([drop]))[0]
-        level = f"{100 * data.limits.outlier_level:g} %"
-        critical = float(grubbs_critical(n=n, level=data.limits.outlier_level))
+        apart = 100 * (data.columns.at_set[places] / mean - 1)
+        effect = _without(data, int(run_set), places)
+        hints = "".join(dict.fromkeys(transposed(data, int(place)) for place in places))
         yield (
             int(run_set),
             Finding(
                 code="outlier",
                 severity="warning",
-                drops=(number,),
-                statistic=float(found.statistic[run_set]),
-                p_value=float(found.p_value[run_set]),
+                drops=(first, second),
+                statistic=float(data.suspect_pairs.statistic[run_set]),
+                p_value=float(data.suspect_pairs.p_value[run_set]),
                 effect=effect,
-                message=f"drop {number} ({data.selection.time[drop]:.2f} s) is "
-                f"{100 * abs(own / mean - 1):.1f} % {'above' if own > mean else 'below'} the mean "
-                f"(Grubbs {found.statistic[run_set]:.2f}, {level} limit {critical:.2f} for {n} "
-                f"drops); it is kept; without it the viscosity would be {100 * abs(effect):.2f} % "
-                f"{'higher' if effect > 0 else 'lower'}",
-                remedy="look for a bubble, a wrong ball, or a mistimed mark; if there was one, "
-                "mark the drop void and note the reason",
+                detectable=_detectable(data, int(run_set), int(places[0])),
+                message=f"drops {first} and {second} are {abs(apart[0]):.1f} and "
+                f"{abs(apart[1]):.1f} % {'above' if apart[0] > 0 else 'below'} the mean and do not "
+                f"belong with the others (Grubbs' test for two, "
+                f"{data.suspect_pairs.statistic[run_set]:.4f} of the squares remain without them); "
+                f"they are kept; {_cost(effect, 'them')}{hints}",
+                remedy="look for bubbles, a wrong ball, or mistimed marks; if there were any, mark "
+                "the drops void and note the reason",
             ),
         )
 
 
-def _mean_of_mates(data: RunData, drop: int) -> float:
-    mates = np.flatnonzero(data.weights.value == data.weights.value[drop])
-    return float(data.columns.at_set[mates[mates != drop]].mean())
+def straggler(data: RunData) -> Iterator[Found]:
+    """Note the drop that lies between the 5 % and the 1 % limit (ISO 5725-2, 7.3.3)."""
+    p_value, limits = data.suspects.p_value, data.limits
+    between = (p_value >= limits.outlier_level) & (p_value < limits.straggler_level)
+    for run_set in np.flatnonzero(between & ~_in_pair(data)):
+        yield _single(data, int(run_set), "straggler", limits.straggler_level)
+
+
+def _single(data: RunData, run_set: int, code: str, level: float) -> Found:
+    found = data.suspects
+    drop, n = int(found.drop[run_set]), int(found.n[run_set])
+    mean, own = data.scatter.mean[run_set], data.columns.at_set[drop]
+    effect = _without(data, run_set, np.array([drop]))
+    number = data.numbers(np.array([drop]))[0]
+    critical = float(grubbs_critical(n=n, level=level))
+    counted = f"{n} drops" if n == data.weights.n_drops[run_set] else f"{n} values"
+    beyond = code == "outlier"
+    return (
+        run_set,
+        Finding(
+            code=code,
+            severity="warning" if beyond else "note",
+            drops=(number,),
+            statistic=float(found.statistic[run_set]),
+            p_value=float(found.p_value[run_set]),
+            effect=effect,
+            detectable=_detectable(data, run_set, drop),
+            message=f"drop {number} ({data.selection.time[drop]:.2f} s) is "
+            f"{100 * abs(own / mean - 1):.1f} % {'above' if own > mean else 'below'} the mean "
+            f"(Grubbs {found.statistic[run_set]:.2f}, {100 * level:g} % limit {critical:.2f} for "
+            f"{counted}); it is kept{_mate(data, drop)}; {_cost(effect)}{transposed(data, drop)}",
+            remedy="look for a bubble, a wrong ball, or a mistimed mark; if there was one, "
+            "mark the drop void and note the reason"
+            if beyond
+            else "keep it, unless something was seen to go wrong with it: one good run set in "
+            "twenty has such a drop",
+        ),
+    )
+
+
+def _in_pair(data: RunData) -> NDArray[np.bool_]:
+    """Whether two drops are outliers together where none is alone."""
+    level = data.limits.outlier_level
+    found: NDArray[np.bool_] = (data.suspects.p_value >= level) & (
+        data.suspect_pairs.p_value < level
+    )
+    return found
+
+
+def _mate(data: RunData, drop: int) -> str:
+    """Say that of a ball's two drops either may be the bad one, where only they are compared."""
+    group = data.errors.group
+    if not data.residuals.by_ball[data.selection.run_set[drop]]:
+        return ""
+    mates = np.flatnonzero(group == group[drop])
+    if len(mates) != 2:
+        return ""
+    (other,) = data.numbers(mates[mates != drop])
+    return f" (it may as well be drop {other}, the only other one of this ball)"
+
+
+def _detectable(data: RunData, run_set: int, drop: int) -> float:
+    """Smallest distance from the others at which this drop would have been told, as a ratio."""
+    n = int(data.suspects.n[run_set])
+    left = data.residuals
+    rest = left.squares[run_set] - left.left[drop] ** 2 / left.diagonal[drop]
+    error = np.sqrt(rest / max(n - 2, 1) / left.diagonal[drop])
+    return float(detectable(standard_error=error, dof=n - 2, level=data.limits.outlier_level / n))
+
+
+def _cost(effect: float, what: str = "it") -> str:
+    way = "higher" if effect > 0 else "lower"
+    return f"without {what} the viscosity would be {100 * abs(effect):.2f} % {way}"
+
+
+def _without(data: RunData, run_set: int, drops: NDArray[np.intp]) -> float:
+    """Relative change of the set's viscosity when drops are left out."""
+    kept = np.flatnonzero(data.selection.run_set == run_set)
+    kept = kept[~np.isin(kept, drops)]
+    _, value = np.unique(data.weights.value[kept], return_inverse=True)
+    means = np.bincount(value, weights=data.columns.at_set[kept]) / np.bincount(value)
+    return float(means.mean() / data.scatter.mean[run_set] - 1)

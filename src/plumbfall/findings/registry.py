@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from plumbfall.findings.balls import balls_disagree, diameter_ratio_trend, shear_dependence
 from plumbfall.findings.claims import uncertainty_implausible
 from plumbfall.findings.counts import (
     nothing_left,
@@ -21,7 +22,7 @@ from plumbfall.findings.geometry import (
     run_in_short,
 )
 from plumbfall.findings.left_out import many_excluded
-from plumbfall.findings.outliers import outlier
+from plumbfall.findings.outliers import outlier, outlier_pair, straggler
 from plumbfall.findings.solvability import (
     ball_not_denser,
     diameter_ratio_high,
@@ -50,6 +51,10 @@ DETECTORS: tuple[Detector, ...] = (
     radius_as_diameter,
     density_implausible,
     outlier,
+    outlier_pair,
+    balls_disagree,
+    shear_dependence,
+    diameter_ratio_trend,
     reynolds_uncertain,
     run_in_short,
     end_near,
@@ -65,6 +70,7 @@ DETECTORS: tuple[Detector, ...] = (
     calibration_overdue,
     reference_expired,
     uncertainty_implausible,
+    straggler,
     too_few_drops,
     reused_balls,
     nominal_diameter,

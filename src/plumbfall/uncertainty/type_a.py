@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-__all__ = ["GroupScatter", "Means", "group_scatter", "means_of_series"]
+__all__ = ["GroupScatter", "Means", "group_scatter", "group_sums", "means_of_series"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -20,6 +20,13 @@ class GroupScatter:
     n: NDArray[np.intp]
     mean: NDArray[np.float64]
     sd: NDArray[np.float64]
+
+
+def group_sums(
+    values: NDArray[np.float64] | NDArray[np.bool_], group: NDArray[np.intp], n_groups: int
+) -> NDArray[np.float64]:
+    """Sum of every group's values, shape (groups,)."""
+    return np.asarray(np.bincount(group, weights=values, minlength=n_groups), dtype=float)
 
 
 def group_scatter(

@@ -1,0 +1,176 @@
+"""Whether the balls of a run set agree, and if not, whether they follow their size or the shear.
+
+Generalised least squares of the ball means under their declared covariance. With exact balls and
+nothing shared the statistic is the F of the one-way analysis of variance by ball.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from plumbfall.findings.ball_means import BallMeans, Batch
+from plumbfall.findings.significance import f_p_value, t_p_value
+
+__all__ = ["BallFits", "Trend", "ball_fits"]
+
+Numbers = NDArray[np.float64]
+
+FEWEST_BALLS = 3
+"""Fewer balls than this show a difference, never a trend."""
+
+LEAST_CONTRAST = 0.05
+"""Balls whose sizes (or shear at one size) differ by less show no trend: 5 %."""
+
+
+@dataclass(frozen=True, slots=True)
+class Trend:
+    """Change of ln(viscosity) from the lowest to the highest value of a covariate, (run sets,).
+
+    ``rest_p_value`` says whether the balls agree once the trend is taken off: where they do not, a
+    single bad ball is likelier than a trend. NaN, and ``p_value`` 1, where the balls do not tell.
+    """
+
+    value: Numbers
+    error: Numbers
+    p_value: Numbers
+    rest_p_value: Numbers
+
+
+@dataclass(frozen=True, slots=True)
+class BallFits:
+    """What the ball means of every run set say, arrays of shape (run sets,) unless said.
+
+    ``f`` and ``p_value`` say whether the balls agree, with ``dof`` and ``scatter_dof`` degrees of
+    freedom. ``size`` is the trend with the diameter ratio alone; ``shear`` the trend with shear
+    stress and ``wall`` that with the diameter ratio where each can be told from the other
+    (``separable``). ``group_variance``, of shape (groups,), is how far the declared errors set each
+    ball apart from the others of its set, ``apart`` how far it is.
+    """
+
+    f: Numbers
+    p_value: Numbers
+    dof: NDArray[np.intp]
+    scatter_dof: Numbers
+    size: Trend
+    shear: Trend
+    wall: Trend
+    separable: NDArray[np.bool_]
+    group_variance: Numbers
+    apart: Numbers
+
+
+def ball_fits(balls: BallMeans, n_sets: int) -> BallFits:
+    """Fit the ball means of every run set.
+
+    Parameters
+    ----------
+    balls : BallMeans
+        Ball means and what is declared of them.
+    n_sets : int
+        How many run sets there are.
+
+    Returns
+    -------
+    BallFits
+        In columns over the run sets.
+    """
+
+    def blank(value: float) -> Numbers:
+        return np.full(n_sets, value)
+
+    def trend() -> Trend:
+        return Trend(blank(np.nan), blank(np.nan), blank(1.0), blank(1.0))
+
+    fits = BallFits(
+        f=blank(np.nan),
+        p_value=blank(1.0),
+        dof=np.zeros(n_sets, dtype=np.intp),
+        scatter_dof=blank(0.0),
+        size=trend(),
+        shear=trend(),
+        wall=trend(),
+        separable=np.zeros(n_sets, dtype=bool),
+        group_variance=np.zeros(len(balls.value)),
+        apart=np.zeros(len(balls.value)),
+    )
+    for batch in balls.batches():
+        _fit(fits, balls, batch)
+    return fits
+
+
+def _fit(fits: BallFits, balls: BallMeans, batch: Batch) -> None:
+    at, k = batch.run_set, batch.value.shape[1]
+    declared = batch.covariance.copy()
+    declared[:, np.arange(k), np.arange(k)] -= batch.scatter
+    centre = np.eye(k) - 1 / k
+    apart = np.diagonal(centre @ declared @ centre, axis1=1, axis2=2)
+    fits.group_variance[batch.groups] = np.maximum(apart, 0.0)
+    fits.apart[batch.groups] = (batch.value * k / (k - 1)) if k > 1 else batch.value
+    of_scatter = (1 - 1 / k) * batch.scatter.sum(axis=1)
+    with np.errstate(invalid="ignore", divide="ignore"):
+        # Welch and Satterthwaite: what the bench sheet declares is taken as known
+        dof = batch.scatter_dof * ((of_scatter + apart.sum(axis=1)) / of_scatter) ** 2
+    fits.dof[at] = k - 1
+    fits.scatter_dof[at] = dof
+    inverse: Numbers = np.asarray(np.linalg.inv(batch.covariance), dtype=float)
+    ones = np.ones_like(batch.value)
+    rest = _squares(inverse, batch.value, [ones])[0]
+    fits.f[at] = rest / (k - 1)
+    fits.p_value[at] = f_p_value(f=fits.f[at], dof=k - 1, dof_within=dof)
+    if k < FEWEST_BALLS:
+        return
+    with np.errstate(invalid="ignore", divide="ignore"):
+        size = np.log(balls.diameter_ratio[batch.groups])
+        shear = np.log(balls.shear_stress[batch.groups])
+    sized = np.ptp(size, axis=1) >= LEAST_CONTRAST
+    size = size - size.mean(axis=1, keepdims=True)
+    shear = shear - shear.mean(axis=1, keepdims=True)
+    with np.errstate(invalid="ignore", divide="ignore"):
+        along = np.where(sized, (size * shear).sum(axis=1) / (size**2).sum(axis=1), 0.0)
+    sheared = np.ptp(shear - along[:, None] * size, axis=1) >= LEAST_CONTRAST
+    both = sized & sheared & (k > FEWEST_BALLS)
+    fits.separable[at] = both | (sheared & ~sized)
+    for trend, covariate, known, where in (
+        (fits.size, size, [ones], sized),
+        (fits.shear, shear, [ones, size], both),
+        (fits.shear, shear, [ones], sheared & ~sized),
+        (fits.wall, size, [ones, shear], both),
+    ):
+        part = np.flatnonzero(where)
+        if not len(part):
+            continue
+        rest, value, error = _squares(
+            inverse[part], batch.value[part], [column[part] for column in known], covariate[part]
+        )
+        span, left = np.ptp(covariate[part], axis=1), k - len(known) - 1
+        trend.value[at[part]], trend.error[at[part]] = value * span, error * span
+        trend.p_value[at[part]] = t_p_value(t=value / error, dof=dof[part])
+        trend.rest_p_value[at[part]] = f_p_value(f=rest / left, dof=left, dof_within=dof[part])
+
+
+def _squares(
+    inverse: Numbers, value: Numbers, known: list[Numbers], covariate: Numbers | None = None
+) -> tuple[Numbers, Numbers, Numbers]:
+    """Weighted squares that are left, and the last covariate's slope with its standard error.
+
+    Covariates are taken off one after another, each cleared of those before it; shapes (sets, k)
+    and (sets, k, k).
+    """
+
+    def product(a: Numbers, b: Numbers) -> Numbers:
+        return np.asarray(np.einsum("si,sij,sj->s", a, inverse, b))
+
+    basis: list[Numbers] = []
+    rest, slope, error = value, np.full(len(value), np.nan), np.full(len(value), np.nan)
+    for column in [*known, *([covariate] if covariate is not None else [])]:
+        for earlier in basis:
+            share = product(column, earlier) / product(earlier, earlier)
+            column = column - share[:, None] * earlier
+        basis.append(column)
+        weight = product(column, column)
+        slope, error = product(column, rest) / weight, 1 / np.sqrt(weight)
+        rest = rest - slope[:, None] * column
+    return product(rest, rest), slope, error
