@@ -19,7 +19,7 @@ __all__ = ["outlier", "outlier_pair", "straggler"]
 def outlier(data: RunData) -> Iterator[Found]:
     """Find the one drop that does not belong with the others; it is kept, and named."""
     for run_set in np.flatnonzero(data.suspects.p_value < data.limits.outlier_level):
-        yield _single(data, int(run_set), "outlier", data.limits.outlier_level)
+        yield int(run_set), _single(data, int(run_set), data.limits.outlier_level)
 
 
 def outlier_pair(data: RunData) -> Iterator[Found]:
@@ -61,10 +61,26 @@ def straggler(data: RunData) -> Iterator[Found]:
     p_value, limits = data.suspects.p_value, data.limits
     between = (p_value >= limits.outlier_level) & (p_value < limits.straggler_level)
     for run_set in np.flatnonzero(between & ~_in_pair(data)):
-        yield _single(data, int(run_set), "straggler", limits.straggler_level)
+        found = _single(data, int(run_set), limits.straggler_level)
+        yield (
+            int(run_set),
+            Finding(
+                code="straggler",
+                severity="note",
+                drops=found.drops,
+                statistic=found.statistic,
+                p_value=found.p_value,
+                effect=found.effect,
+                detectable=found.detectable,
+                message=found.message,
+                remedy="keep it, unless something was seen to go wrong with it: one good run set "
+                "in twenty has such a drop",
+            ),
+        )
 
 
-def _single(data: RunData, run_set: int, code: str, level: float) -> Found:
+def _single(data: RunData, run_set: int, level: float) -> Finding:
+    """Return the finding of one outlier, its drop being beyond the limit of a level."""
     found = data.suspects
     drop, n = int(found.drop[run_set]), int(found.n[run_set])
     mean, own = data.scatter.mean[run_set], data.columns.at_set[drop]
@@ -72,27 +88,20 @@ def _single(data: RunData, run_set: int, code: str, level: float) -> Found:
     number = data.numbers(np.array([drop]))[0]
     critical = float(grubbs_critical(n=n, level=level))
     counted = f"{n} drops" if n == data.weights.n_drops[run_set] else f"{n} values"
-    beyond = code == "outlier"
-    return (
-        run_set,
-        Finding(
-            code=code,
-            severity="warning" if beyond else "note",
-            drops=(number,),
-            statistic=float(found.statistic[run_set]),
-            p_value=float(found.p_value[run_set]),
-            effect=effect,
-            detectable=_detectable(data, run_set, drop),
-            message=f"drop {number} ({data.selection.time[drop]:.2f} s) is "
-            f"{100 * abs(own / mean - 1):.1f} % {'above' if own > mean else 'below'} the mean "
-            f"(Grubbs {found.statistic[run_set]:.2f}, {100 * level:g} % limit {critical:.2f} for "
-            f"{counted}); it is kept{_mate(data, drop)}; {_cost(effect)}{transposed(data, drop)}",
-            remedy="look for a bubble, a wrong ball, or a mistimed mark; if there was one, "
-            "mark the drop void and note the reason"
-            if beyond
-            else "keep it, unless something was seen to go wrong with it: one good run set in "
-            "twenty has such a drop",
-        ),
+    return Finding(
+        code="outlier",
+        severity="warning",
+        drops=(number,),
+        statistic=float(found.statistic[run_set]),
+        p_value=float(found.p_value[run_set]),
+        effect=effect,
+        detectable=_detectable(data, run_set, drop),
+        message=f"drop {number} ({data.selection.time[drop]:.2f} s) is "
+        f"{100 * abs(own / mean - 1):.1f} % {'above' if own > mean else 'below'} the mean "
+        f"(Grubbs {found.statistic[run_set]:.2f}, {100 * level:g} % limit {critical:.2f} for "
+        f"{counted}); it is kept{_mate(data, drop)}; {_cost(effect)}{transposed(data, drop)}",
+        remedy="look for a bubble, a wrong ball, or a mistimed mark; if there was one, "
+        "mark the drop void and note the reason",
     )
 
 
