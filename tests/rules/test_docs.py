@@ -30,7 +30,8 @@ from support.documents import DOCS, FENCE, ROOT, TEXTS, blocks, number, table_he
 
 GENERATED = re.compile(r"<!-- begin .*?<!-- end \w+ -->", re.S)
 
-# Every code that a report may hold, by the description of its JSON.
+# Every code that a report may hold, by the description of its JSON; the last is an addition to it,
+# for drops between Grubbs' 5 % and 1 % limits.
 CODES = {
     "reynolds-high", "diameter-ratio-high", "no-solution", "ball-not-denser", "run-in-short",
     "end-near", "geometry-unknown", "off-axis-suspected", "too-few-drops", "outlier",
@@ -43,6 +44,7 @@ CODES = {
     "intervals-disagree", "duplicate-rows", "many-excluded", "void-without-reason",
     "linear-not-validated", "constant-outside-domain", "calibration-overdue",
     "reference-expired", "reference-not-independent", "uncertainty-implausible",
+    "straggler",
 }  # fmt: skip
 
 
