@@ -14,7 +14,8 @@ from jsonschema import Draft202012Validator
 
 import plumbfall as pf
 from plumbfall.reduction import Reduction, reduce_drops
-from plumbfall.run_sets.monte_carlo import SetModel, draw_run_set
+from plumbfall.run_sets.monte_carlo import draw_run_set
+from plumbfall.run_sets.set_model import SetModel
 from support.benches import bench_dict, drops_table
 
 SAMPLES = Path(__file__).parents[2] / "sample_runs"
