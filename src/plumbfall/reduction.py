@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 import dataclasses
-from collections.abc import Collection, Mapping
+from collections.abc import Callable, Collection, Mapping
 from dataclasses import dataclass, field
 from functools import cached_property
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TypeAlias
 
 import numpy as np
 
@@ -39,12 +39,16 @@ from plumbfall.run_sets.table import summary_table
 from plumbfall.run_sets.temperature_fit import TemperatureFit
 from plumbfall.run_sets.temperature_fit_result import fit_result
 from plumbfall.timings.records import Timings
+from plumbfall.uncertainty.draw_pool import DrawPool
 
 if TYPE_CHECKING:
     import pandas as pd
     from numpy.typing import NDArray
 
-__all__ = ["Reduction", "reduce_drops", "reduce_numbers"]
+__all__ = ["Progress", "Reduction", "reduce_drops", "reduce_numbers"]
+
+Progress: TypeAlias = Callable[[int, int], None]
+"""Told how many run sets are done, and of how many."""
 
 OUTLIER_RULE = "grubbs-1-percent"
 
@@ -155,6 +159,7 @@ def reduce_drops(
     draws: int | str = 0,
     seed: int = 0,
     inputs: tuple[tuple[str, str], ...] = (),
+    progress: Progress | None = None,
 ) -> Reduction:
     """Reduce timed drops to viscosities with bounds.
 
@@ -172,6 +177,8 @@ def reduce_drops(
         Of the draws; recorded in the report.
     inputs : tuple of (path, sha256)
         The input files, recorded in the report.
+    progress : callable, optional
+        Called with the run sets drawn so far and how many there are.
 
     Returns
     -------
@@ -207,7 +214,7 @@ def reduce_drops(
         not_fitted |= spoilt
         reduced = reduce_numbers(reduced.timings, bench, probability, not_fitted)
         findings = find(_data(reduced, limits))
-    drawn = _drawn(reduced, findings, draws, seed) if draws else {}
+    drawn = _drawn(reduced, findings, draws, seed, progress) if draws else {}
     for place, of_set in drawn.items():
         note = linear_not_validated(reduced.outputs, of_set, place)
         findings = (*findings[:place], findings[place] + note, *findings[place + 1 :])
@@ -230,16 +237,27 @@ def _invalid_but_fitted(
 
 
 def _drawn(
-    sets: SetColumns, findings: tuple[tuple[Finding, ...], ...], draws: int | str, seed: int
+    sets: SetColumns,
+    findings: tuple[tuple[Finding, ...], ...],
+    draws: int | str,
+    seed: int,
+    progress: Progress | None,
 ) -> dict[int, Drawn]:
     """Draw every run set that has a viscosity and is not invalid."""
     used = _grouped(sets.selection.run_set, len(sets.selection.names))
     has_value = np.isfinite(sets.outputs.of("viscosity").value)
-    return {
-        place: draw_run_set(sets, place, used[place], draws=draws, seed=seed)
+    places = [
+        place
         for place in np.flatnonzero(has_value).tolist()
         if status_of(findings[place]) != "invalid"
-    }
+    ]
+    pool = DrawPool(draws=draws, seed=seed) if isinstance(draws, int) else None
+    drawn = {}
+    for done, place in enumerate(places, start=1):
+        drawn[place] = draw_run_set(sets, place, used[place], draws=draws, seed=seed, pool=pool)
+        if progress is not None:
+            progress(done, len(places))
+    return drawn
 
 
 def reduce_numbers(

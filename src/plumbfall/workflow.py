@@ -13,10 +13,11 @@ import pandas as pd
 from plumbfall.bench.reader import read_bench
 from plumbfall.bench.records import Bench
 from plumbfall.errors import InputError
-from plumbfall.reduction import reduce_drops
+from plumbfall.reduction import Progress, reduce_drops
 from plumbfall.report.report import Report
 from plumbfall.timings.reader import collect, read_timings
 from plumbfall.timings.records import Timings
+from plumbfall.uncertainty.monte_carlo import DRAWS
 
 __all__ = ["BenchSource", "TimingSource", "find_bench", "inspect_inputs", "reduce"]
 
@@ -53,10 +54,11 @@ def reduce(
     timings: TimingSource,
     bench: BenchSource | None = None,
     *,
-    draws: int | str | None = None,
+    draws: int | str = DRAWS,
     seed: int = 0,
     coverage: float | None = None,
     encoding: str | None = None,
+    progress: Progress | None = None,
 ) -> Report:
     """Reduce timed drops to viscosities with confidence bounds.
 
@@ -66,16 +68,17 @@ def reduce(
         Timed drops, one row a drop.
     bench : path, dict or Bench, optional
         The bench sheet; ``bench.toml`` beside the timing file where not given.
-    draws : int or "auto", optional
-        Monte Carlo draws of every run set, such as 200,000, or as many as it takes to validate
-        the linear bounds; none where not given. Where the linear bounds are not validated those
-        of Monte Carlo are quoted.
+    draws : int or "auto"
+        Monte Carlo draws of every run set, or as many as it takes to validate the linear bounds;
+        0 for none. Where the linear bounds are not validated those of Monte Carlo are quoted.
     seed : int
         Seed of the draws, not below zero; recorded in the report.
     coverage : float, optional
         Coverage probability of the bounds; that of the bench sheet (default 0.95) where not given.
     encoding : str, optional
         Encoding of the timing files where they are not UTF-8.
+    progress : callable, optional
+        Called with the run sets drawn so far and how many there are.
 
     Returns
     -------
@@ -102,13 +105,14 @@ def reduce(
             draws=_checked_draws(draws),
             seed=seed,
             inputs=tuple(inputs),
+            progress=progress,
         )
     )
 
 
-def _checked_draws(draws: int | str | None) -> int | str:
-    if draws is None or draws == "auto":
-        return draws or 0
+def _checked_draws(draws: int | str) -> int | str:
+    if draws == "auto":
+        return draws
     if isinstance(draws, bool) or not isinstance(draws, Integral) or draws < 0:
         raise InputError(
             f"draws = {draws!r} is no number of draws",

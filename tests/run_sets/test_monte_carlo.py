@@ -9,6 +9,7 @@ from importlib.resources import files
 from pathlib import Path
 
 import numpy as np
+import pandas as pd
 import pytest
 from jsonschema import Draft202012Validator
 
@@ -213,16 +214,32 @@ def test_the_size_of_the_blocks_changes_nothing():
     np.testing.assert_allclose(found[0].u, found[1].u, rtol=1e-7)
 
 
-def test_nothing_is_drawn_where_nothing_is_asked_for():
+def test_draws_are_made_unless_none_are_asked_for():
     table, bench = drops_table(TIMES), bench_dict()
     default, none = pf.reduce(table, bench), pf.reduce(table, bench, draws=0)
-    assert default["A"].result.monte_carlo is None
-    assert default.to_json() == none.to_json()
+    assert default["A"].result.monte_carlo.draws == 200_000
+    assert none["A"].result.monte_carlo is None
+    assert {run_set["monte_carlo"] for run_set in none.to_dict()["run_sets"]} == {None}
+
+
+def test_run_sets_share_draws_and_are_as_if_drawn_alone():
+    """Names decide the streams, so that what a set says does not depend on its company."""
+    both = pd.concat([drops_table(TIMES), drops_table(TIMES, set="B")])
+    report = pf.reduce(both, bench_dict(), draws=20_000)
+    alone = pf.reduce(drops_table(TIMES, set="B"), bench_dict(), draws=20_000)
+    assert report["B"].result.monte_carlo == alone["B"].result.monte_carlo
+
+
+def test_progress_is_told():
+    said = []
+    both = pd.concat([drops_table(TIMES), drops_table(TIMES, set="B")])
+    pf.reduce(both, bench_dict(), draws=2_000, progress=lambda *where: said.append(where))
+    assert said == [(1, 2), (2, 2)]
 
 
 def test_draws_leave_the_linear_result_alone():
     table, bench = drops_table(TIMES), bench_dict()
-    linear, drawn = pf.reduce(table, bench), pf.reduce(table, bench, draws=5_000)
+    linear, drawn = (pf.reduce(table, bench, draws=draws) for draws in (0, 5_000))
     assert drawn["A"].result.linear == linear["A"].result.viscosity
     assert drawn["A"].result.budget == linear["A"].result.budget
 

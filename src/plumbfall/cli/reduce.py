@@ -8,6 +8,7 @@ from plumbfall.cli.arguments import add_inputs, draws, probability, seed
 from plumbfall.cli.commands import Commands
 from plumbfall.cli.exit_codes import DONE, INVALID
 from plumbfall.cli.output import say, standard_output
+from plumbfall.cli.progress import progress_bar
 
 __all__ = ["add_reduce"]
 
@@ -33,7 +34,8 @@ def add_reduce(commands: Commands) -> None:
         "--draws",
         type=draws,
         metavar="N|auto",
-        help="Monte Carlo draws, such as 200000, or as many as it takes (default 0: linear only)",
+        help="Monte Carlo draws of each run set (default 200000; 0: linear bounds only), or auto "
+        "for as many as it takes to validate the linear bounds",
     )
     reduce.add_argument(
         "--seed",
@@ -55,12 +57,14 @@ def _run(options: argparse.Namespace) -> int:
     from plumbfall.report.text import show
     from plumbfall.workflow import reduce
 
-    with warnings.catch_warnings(record=True) as said:
+    asked = {} if options.draws is None else {"draws": options.draws}
+    with warnings.catch_warnings(record=True) as said, progress_bar("run sets") as progress:
         warnings.simplefilter("always", PlumbfallWarning)
         report = reduce(
             options.timings,
             options.bench,
-            draws=options.draws,
+            **asked,
+            progress=progress,
             seed=options.seed,
             coverage=options.coverage,
             encoding=options.encoding,

@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from plumbfall.run_sets.drawn import Drawn, compare
 from plumbfall.run_sets.result import SetColumns
 from plumbfall.run_sets.set_model import SetModel
+from plumbfall.uncertainty.draw_pool import DrawPool
 from plumbfall.uncertainty.local_expansion import LocalExpansion, expand
 from plumbfall.uncertainty.monte_carlo import run_monte_carlo
 
@@ -29,6 +30,7 @@ def draw_run_set(
     draws: int | str,
     seed: int,
     block: int | None = None,
+    pool: DrawPool | None = None,
 ) -> Drawn:
     """Propagate distributions to the results of one run set.
 
@@ -46,6 +48,8 @@ def draw_run_set(
         Not below zero. Run sets with one seed share the draws of what they share.
     block : int, optional
         Draws made at a time; it changes memory and speed, not the result.
+    pool : DrawPool, optional
+        Draws that run sets share, of this seed and number of draws.
 
     Returns
     -------
@@ -68,6 +72,7 @@ def draw_run_set(
         coverage=sets.outputs.coverage,
         tolerance_part=0.2,
         block=block,
+        pool=pool,
     )
     return compare(found, model.quantities, sets.outputs, run_set)
 

@@ -10,7 +10,8 @@ from numpy.typing import ArrayLike, NDArray
 
 from plumbfall.errors import InputError, Problem
 from plumbfall.estimate import Estimate
-from plumbfall.uncertainty.distributions import open_stream, problems_of, tail_dof
+from plumbfall.uncertainty.distributions import Stream, open_stream, problems_of, tail_dof
+from plumbfall.uncertainty.draw_pool import DrawPool, Replay
 
 __all__ = ["JointDraws", "lower_factor"]
 
@@ -31,6 +32,8 @@ class JointDraws:
         Not below zero.
     correlation : array, shape (inputs, inputs), optional
         Correlation coefficients; only normal inputs of infinite dof may be correlated.
+    pool : DrawPool, optional
+        Of the same seed: where draws come from that other propagations have made.
 
     Raises
     ------
@@ -39,7 +42,12 @@ class JointDraws:
     """
 
     def __init__(
-        self, inputs: Sequence[Estimate], *, seed: int, correlation: ArrayLike | None = None
+        self,
+        inputs: Sequence[Estimate],
+        *,
+        seed: int,
+        correlation: ArrayLike | None = None,
+        pool: DrawPool | None = None,
     ) -> None:
         self.inputs = tuple(inputs)
         if not self.inputs:
@@ -53,10 +61,15 @@ class JointDraws:
         if problems:
             raise InputError(problems)
         self._correlated, self._factor = _correlated(self.inputs, correlation)
-        self._streams = [
-            open_stream(estimate, seed=int(seed), place=place)
-            for place, estimate in enumerate(self.inputs)
-        ]
+        self._streams: list[Stream | Replay] = []
+        self._deviates: dict[int, Stream] = {}
+        for place, estimate in enumerate(self.inputs):
+            if pool is not None and place not in self._correlated:
+                self._streams.append(pool.stream(estimate, place))
+                continue
+            stream = open_stream(estimate, seed=int(seed), place=place)
+            self._streams.append(stream)
+            self._deviates[place] = stream
 
     def heavy(self, dof: float) -> list[int]:
         """Places of the inputs drawn from a t distribution of no more than so many dof."""
@@ -68,7 +81,7 @@ class JointDraws:
         for i in alone:
             self._streams[i].fill(out[i])
         for i in self._correlated:
-            self._streams[i].standardised(out[i])
+            self._deviates[i].standardised(out[i])
         # from the last row up, in place: a row is made of itself and of those above it. Summed
         # row by row, not as a matrix product, whose rounding depends on the number of draws.
         for row in reversed(range(len(self._correlated))):

@@ -14,6 +14,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from plumbfall.errors import InputError
 from plumbfall.estimate import Estimate
+from plumbfall.uncertainty.draw_pool import DrawPool
 from plumbfall.uncertainty.intervals import interval_ranks
 from plumbfall.uncertainty.joint_draws import JointDraws
 from plumbfall.uncertainty.monte_carlo_result import MonteCarlo, summarise
@@ -51,6 +52,7 @@ def run_monte_carlo(
     tolerance_part: float = 1.0,
     most_draws: int = MOST_DRAWS,
     keep: bool = False,
+    pool: DrawPool | None = None,
 ) -> MonteCarlo:
     """Propagate the inputs' distributions through a model.
 
@@ -80,6 +82,8 @@ def run_monte_carlo(
         Where the adaptive procedure gives up.
     keep : bool
         Keep all draws of the outputs, in order.
+    pool : DrawPool, optional
+        Draws that several propagations of one seed and number of draws share, to save time.
 
     Returns
     -------
@@ -103,7 +107,7 @@ def run_monte_carlo(
         raise InputError(
             f"tolerance_part = {tolerance_part} is not above 0 and up to 1", remedy="write 0.2"
         )
-    source = JointDraws(inputs, seed=seed, correlation=correlation)
+    source = JointDraws(inputs, seed=seed, correlation=correlation, pool=pool)
     n_inputs = len(source.inputs)
     size = max(BLOCK_VALUES // n_inputs, 1_000) if block is None else _whole(block, "block")
     has_mean, has_u = _moments(model, source, seed, correlation)
