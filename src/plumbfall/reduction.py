@@ -298,7 +298,7 @@ def reduce_numbers(
     liquid = conditions(selection, inputs, values.columns)
     outputs = compute_outputs(
         values.jacobian,
-        values.scatter.mean,
+        values.scatter,
         liquid,
         inputs,
         values.columns.set_temperature,

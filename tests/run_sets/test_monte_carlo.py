@@ -224,15 +224,15 @@ def test_draws_are_made_unless_none_are_asked_for():
 
 def test_run_sets_share_draws_and_are_as_if_drawn_alone():
     """Names decide the streams, so that what a set says does not depend on its company."""
-    both = pd.concat([drops_table(TIMES), drops_table(TIMES, set="B")])
+    both = pd.concat([drops_table(TIMES), drops_table(TIMES, run_set="B")])
     report = pf.reduce(both, bench_dict(), draws=20_000)
-    alone = pf.reduce(drops_table(TIMES, set="B"), bench_dict(), draws=20_000)
+    alone = pf.reduce(drops_table(TIMES, run_set="B"), bench_dict(), draws=20_000)
     assert report["B"].result.monte_carlo == alone["B"].result.monte_carlo
 
 
 def test_progress_is_told():
     said = []
-    both = pd.concat([drops_table(TIMES), drops_table(TIMES, set="B")])
+    both = pd.concat([drops_table(TIMES), drops_table(TIMES, run_set="B")])
     pf.reduce(both, bench_dict(), draws=2_000, progress=lambda *where: said.append(where))
     assert said == [(1, 2), (2, 2)]
 

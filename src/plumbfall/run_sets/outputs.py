@@ -20,8 +20,10 @@ from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.physics.thermal import liquid_density
 from plumbfall.run_sets.jacobian import Jacobian
+from plumbfall.run_sets.repeatability import Repeatability
 from plumbfall.run_sets.temperature_fit import TemperatureFit
 from plumbfall.uncertainty.coverage import coverage_factor
+from plumbfall.uncertainty.few_values import dof_with_few_values
 from plumbfall.uncertainty.linear import Propagation, propagate
 
 __all__ = ["QUANTITIES", "Output", "Outputs", "SetConditions", "compute_outputs", "conditions"]
@@ -71,12 +73,18 @@ class Output:
 
 @dataclass(frozen=True)
 class Outputs:
-    """All quantities of all run sets, and the propagation they share."""
+    """All quantities of all run sets, and the propagation they share.
+
+    ``scatter_u`` is what a set's own scatter adds to each value, ``scatter_dof`` its degrees of
+    freedom, both of the shape of ``values``.
+    """
 
     values: Numbers
     propagation: Propagation
     coverage: float
     n_sets: int
+    scatter_u: Numbers
+    scatter_dof: Numbers
 
     def of(self, quantity: str) -> Output:
         """Return one quantity in columns."""
@@ -93,7 +101,14 @@ class Outputs:
 
     @cached_property
     def _columns(self) -> dict[str, Output]:
-        u, dof = self.propagation.u, self.propagation.effective_dof
+        u = self.propagation.u
+        dof = dof_with_few_values(
+            u=u,
+            dof=self.propagation.effective_dof,
+            scatter_u=self.scatter_u,
+            scatter_dof=self.scatter_dof,
+            probability=self.coverage,
+        )
         factor = coverage_factor(dof=dof, probability=self.coverage)
         factor = np.where(np.isfinite(self.values), factor, np.nan)
         return {
@@ -139,7 +154,7 @@ def conditions(selection: Selection, inputs: Inputs, columns: DropColumns) -> Se
 
 def compute_outputs(
     jacobian: Jacobian,
-    viscosity: Numbers,
+    scatter: Repeatability,
     liquid: SetConditions,
     inputs: Inputs,
     set_temperature: Numbers,
@@ -153,8 +168,8 @@ def compute_outputs(
     ----------
     jacobian : Jacobian
         Sensitivities of the viscosities.
-    viscosity : array, shape (run sets,) [Pa.s]
-        Each set's value at its own temperature.
+    scatter : Repeatability
+        Each set's viscosity at its own temperature, and its scatter.
     liquid : SetConditions
         Density and temperature slope by run set.
     inputs : Inputs
@@ -173,7 +188,7 @@ def compute_outputs(
     Outputs
         Values with uncertainties; NaN where there is none.
     """
-    n = jacobian.n_sets
+    n, viscosity = jacobian.n_sets, scatter.mean
     reference = np.nan if reference_temperature is None else reference_temperature
     distance = np.where(liquid.slope_known, reference - set_temperature, np.nan)
     log_ratio = liquid.slope * distance
@@ -201,7 +216,17 @@ def compute_outputs(
     )
     stacked = sparse.vstack([jacobian.matrix, at_reference, kinematic], format="csr")
     propagation = propagate(sensitivities=stacked, u=jacobian.u, dof=jacobian.dof)
-    return Outputs(values=values, propagation=propagation, coverage=coverage, n_sets=n)
+    fitted = np.isin(np.arange(n), [place for fit in fits for place in fit.members])
+    # a fitted law mixes the scatters of its sets, so that none is of few values only
+    own = np.concatenate([np.ones(n), np.where(fitted, 0.0, scale), 1 / liquid.density])
+    return Outputs(
+        values=values,
+        propagation=propagation,
+        coverage=coverage,
+        n_sets=n,
+        scatter_u=own * np.tile(scatter.u, len(QUANTITIES)),
+        scatter_dof=np.tile(scatter.dof, len(QUANTITIES)),
+    )
 
 
 def _carried_by_fits(
