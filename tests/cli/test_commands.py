@@ -144,11 +144,19 @@ def test_draws_are_made_where_asked_for(capsys):
     assert err == ""
     assert document["seed"] == 4
     assert document["run_sets"][0]["monte_carlo"]["draws"] == 1000
-    for draws in ([], ["--draws", "0"]):
-        assert main(["reduce", str(CLEAN), "--json", *draws]) == 0
-        out, err = capsys.readouterr()
-        assert err == ""
-        assert json.loads(out)["run_sets"][0]["monte_carlo"] is None
+    assert main(["reduce", str(CLEAN), "--json", "--draws", "0"]) == 0
+    out, err = capsys.readouterr()
+    assert err == ""
+    assert json.loads(out)["run_sets"][0]["monte_carlo"] is None
+
+
+def test_draws_are_made_by_default_as_the_help_says(capsys):
+    assert main(["reduce", str(CLEAN), "--json"]) == 0
+    document = json.loads(capsys.readouterr().out)
+    assert document["run_sets"][0]["monte_carlo"]["draws"] == 200_000
+    with pytest.raises(SystemExit):
+        main(["reduce", "--help"])
+    assert "default 200000" in " ".join(capsys.readouterr().out.split())
     assert main(["reduce", str(CLEAN), "--draws", "auto", "--json"]) == 0
     assert json.loads(capsys.readouterr().out)["run_sets"][0]["monte_carlo"]["draws"] >= 20_000
     for wrong, said in ((["--draws", "many"], "write 200000, or auto"), (["--seed", "-1"], "seed")):

@@ -156,7 +156,11 @@ def test_the_commented_sheet_and_the_first_timing_file_give_a_valid_result(tmp_p
     assert row["status"] == "valid"
     assert (row["n_drops"], row["n_balls"]) == (5, 4)
     assert row["reference_temperature_degC"] == 25
-    assert {finding.code for finding in report["tank 3"].findings} == {"reused-balls"}
+    assert {finding.severity for finding in report["tank 3"].findings} == {"note"}
+    assert {finding.code for finding in report["tank 3"].findings} == {
+        "reused-balls",
+        "linear-not-validated",
+    }
 
 
 # --- timing files -------------------------------------------------------------------------------
