@@ -12,6 +12,7 @@ __all__ = [
     "SEVERITIES",
     "BallResult",
     "BudgetLine",
+    "Conformity",
     "Correction",
     "DropResult",
     "Finding",
@@ -174,6 +175,21 @@ class DropResult:
 
 
 @dataclass(frozen=True, slots=True)
+class Conformity:
+    """What a liquid's specification says of a viscosity; it never judges the data.
+
+    ``probability`` is that of lying within the limits, ``None`` where nothing could be judged, and
+    ``rule`` then says why. ``decision`` is ``conforms``, ``does-not-conform`` or ``undecided``;
+    ``limits`` are those of the bench sheet, as written there.
+    """
+
+    probability: float | None
+    rule: str
+    decision: str
+    limits: str
+
+
+@dataclass(frozen=True, slots=True)
 class Finding:
     """What a careful colleague would have noticed, and what to do about it.
 
@@ -228,7 +244,8 @@ class RunSetResult:
     ``viscosity`` is ``None`` where none can be had; ``viscosity_at_reference`` is ``None``
     without a temperature slope or a reference temperature. ``reynolds``, ``diameter_ratio``,
     ``shear_rate`` and ``shear_stress`` are the largest of the set. ``linear`` is the viscosity as
-    the law of propagation gives it; ``monte_carlo`` is ``None`` where nothing was drawn.
+    the law of propagation gives it; ``monte_carlo`` is ``None`` where nothing was drawn, and
+    ``conformity`` without a specification.
     """
 
     name: str
@@ -257,6 +274,7 @@ class RunSetResult:
     findings: tuple[Finding, ...]
     linear: Measured | None = None
     monte_carlo: MonteCarloResult | None = None
+    conformity: Conformity | None = None
 
     @property
     def interval(self) -> tuple[float, float]:

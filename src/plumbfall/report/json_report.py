@@ -11,6 +11,7 @@ from plumbfall._version import __version__
 from plumbfall.results import (
     BallResult,
     BudgetLine,
+    Conformity,
     DropResult,
     Finding,
     Histogram,
@@ -71,7 +72,7 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
         "viscosity_at_reference": _measured(result.viscosity_at_reference),
         "kinematic_viscosity": _measured(result.kinematic_viscosity),
         "stokes_viscosity": _quantity(result.stokes_viscosity),
-        "conformity": None,
+        "conformity": _conformity(result.conformity),
         "liquid_density_kg_m3": _number(result.liquid_density),
         "reynolds": _number(result.reynolds),
         "diameter_ratio": _number(result.diameter_ratio),
@@ -109,6 +110,17 @@ def _measured(measured: Measured | None) -> dict[str, Any] | None:
         "low": _number(measured.low),
         "high": _number(measured.high),
         "method": measured.method,
+    }
+
+
+def _conformity(judged: Conformity | None) -> dict[str, Any] | None:
+    if judged is None:
+        return None
+    return {
+        "probability": _number(judged.probability),
+        "rule": judged.rule,
+        "decision": judged.decision,
+        "limits": judged.limits,
     }
 
 

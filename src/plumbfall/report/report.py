@@ -10,6 +10,7 @@ from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
 
+from plumbfall.calibration.conformity import conformity
 from plumbfall.errors import InputError, Problem, nearest_name
 from plumbfall.report.reduced import Reduced
 from plumbfall.report.run_set import RunSetView
@@ -115,8 +116,12 @@ class Report:
             )
         if name not in self._views:
             result = self.reduced.run_set(name)
-            summary = summary_line(result, self.bench.viscosity_unit)
-            self._views[name] = RunSetView(self, dataclasses.replace(result, summary=summary))
+            result = dataclasses.replace(
+                result,
+                summary=summary_line(result, self.bench.viscosity_unit),
+                conformity=conformity(result, self.bench.liquids.get(result.liquid)),
+            )
+            self._views[name] = RunSetView(self, result)
         return self._views[name]
 
     def __repr__(self) -> str:

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from plumbfall.report.rounding import NO_VALUE
 from plumbfall.report.scales import CELSIUS, Scale, scale_for, viscosity_scale
 from plumbfall.report.summary import basis, counted, is_apparent, percent, way
-from plumbfall.results import Measured, MonteCarloResult, Quantity, RunSetResult
+from plumbfall.results import Conformity, Measured, MonteCarloResult, Quantity, RunSetResult
 
 __all__ = ["Fact", "Headline", "TableView", "drop_place", "facts", "headline", "set_scale"]
 
@@ -98,6 +98,8 @@ def facts(result: RunSetResult, scale: Scale) -> list[Fact]:
     if result.viscosity_at_reference is not None:
         at = CELSIUS.fixed(result.reference_temperature, 2)
         shown.append(_interval(f"Viscosity at {at} degC", result.viscosity_at_reference, scale))
+    if result.conformity is not None:
+        shown.append(_of_conformity(result.conformity))
     if result.kinematic_viscosity is not None:
         measured = result.kinematic_viscosity
         where = scale_for(measured.unit, measured.value)
@@ -142,6 +144,13 @@ def _of_measured(measured: Measured, scale: Scale) -> list[Fact]:
         )
     shown.append(Fact("Way of propagation", measured.method, term=measured.method))
     return shown
+
+
+def _of_conformity(judged: Conformity) -> Fact:
+    text = f"{judged.decision.replace('-', ' ')} with {judged.limits}"
+    if judged.probability is not None:
+        text += f", probability {Scale('%', 100.0).fixed(judged.probability, 1)} %"
+    return Fact("Conformity of the product", f"{text}; {judged.rule}")
 
 
 def _of_draws(linear: Measured, drawn: MonteCarloResult, scale: Scale) -> Fact:
