@@ -63,9 +63,7 @@ def test_the_slope_brings_the_value_to_the_limits_and_its_error_with_it():
 
 
 def test_without_a_slope_limits_hold_at_their_temperature_alone():
-    found, _ = judged(
-        limits(low="900 mPa.s"), temperature=27.0, liquid__oil__viscosity_slope=None
-    )
+    found, _ = judged(limits(low="900 mPa.s"), temperature=27.0, liquid__oil__viscosity_slope=None)
     assert (found["decision"], found["probability"]) == ("undecided", None)
     assert "27.03 degC" in found["rule"]
     assert "viscosity_slope" in found["rule"]
