@@ -31,6 +31,7 @@ from plumbfall.results import Finding, RunSetResult, TemperatureFitResult
 from plumbfall.run_sets.drawn import Drawn
 from plumbfall.run_sets.fitted_slopes import SetValues, fit_slopes
 from plumbfall.run_sets.jacobian import build_jacobian, own_variances
+from plumbfall.run_sets.joint import Joint, joint_results
 from plumbfall.run_sets.monte_carlo import draw_run_set
 from plumbfall.run_sets.outputs import compute_outputs, conditions
 from plumbfall.run_sets.repeatability import repeatability
@@ -125,6 +126,11 @@ class Reduction:
             correlation: NDArray[np.float64] = covariance / np.outer(u, u)
         np.fill_diagonal(correlation, np.where(np.isnan(u), np.nan, 1.0))
         return correlation
+
+    @cached_property
+    def joint(self) -> Joint:
+        """All quantities of all run sets with what each input contributes to each."""
+        return joint_results(self.sets.outputs, self.sets.jacobian, self.sets.inputs, self.names)
 
     @cached_property
     def temperature_fits(self) -> tuple[TemperatureFitResult, ...]:

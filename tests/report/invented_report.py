@@ -15,6 +15,7 @@ from typing import Any
 
 import numpy as np
 import pandas as pd
+from scipy import sparse
 
 from plumbfall.bench.records import (
     Ball,
@@ -41,6 +42,7 @@ from plumbfall.results import (
     RunSetResult,
     TemperatureFitResult,
 )
+from plumbfall.run_sets.joint import Joint, Label
 from plumbfall.timings.records import COLUMNS, Repair, TimingFile, Timings
 
 HOSTILE_NAMES = ("<script>alert(1)</script>", "=cmd()", "../../x", "n" * 300)
@@ -359,6 +361,17 @@ class InventedReduction:
         u = np.array([r.viscosity.u if r.viscosity else math.nan for r in self.sets])
         return self.correlation() * np.outer(u, u)
 
+    @cached_property
+    def joint(self) -> Joint:
+        have = [i for i, result in enumerate(self.sets) if result.viscosity]
+        covariance = self.covariance()[np.ix_(have, have)]
+        return Joint(
+            labels=tuple(Label(self.sets[i].name, "viscosity", "Pa.s") for i in have),
+            values=np.array([self.sets[i].viscosity.value for i in have]),
+            inputs=tuple(f"part {i}" for i in range(len(have))),
+            contributions=sparse.csr_array(_root(covariance)),
+        )
+
     def correlation(self) -> np.ndarray:
         size = len(self.sets)
         matrix = np.full((size, size), self.correlated) + (1 - self.correlated) * np.eye(size)
@@ -366,6 +379,11 @@ class InventedReduction:
             if result.viscosity is None:
                 matrix[index, :] = matrix[:, index] = math.nan
         return matrix
+
+
+def _root(covariance: np.ndarray) -> np.ndarray:
+    values, vectors = np.linalg.eigh(covariance)
+    return vectors * np.sqrt(np.maximum(values, 0.0))
 
 
 def _row(result: RunSetResult) -> dict[str, Any]:

@@ -36,7 +36,8 @@ def test_documents_are_as_the_schema_says(made) -> None:
 def test_names_of_the_interface(document: dict) -> None:
     assert document["schema"] == "plumbfall/report/1"
     assert list(document) == [
-        "schema", "software", "inputs", "seed", "rows", "run_sets", "correlation", "findings",
+        "schema", "software", "inputs", "seed", "rows", "run_sets", "correlation",
+        "covariance", "temperature_fit", "findings",
     ]  # fmt: skip
     assert {
         "name", "status", "summary", "n_drops", "n_balls", "temperature", "viscosity",

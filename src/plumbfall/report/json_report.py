@@ -21,13 +21,18 @@ from plumbfall.results import (
     RunSetResult,
     TemperatureFitResult,
 )
+from plumbfall.uncertainty.coverage import joint_coverage_factor
 
 if TYPE_CHECKING:
     from plumbfall.report.report import Report
+    from plumbfall.run_sets.joint import Joint
 
 __all__ = ["SCHEMA", "json_text", "report_document"]
 
 SCHEMA = "plumbfall/report/1"
+
+LARGEST_MATRIX = 120
+"""Results whose covariance is written out; of more of them the contributions alone give it."""
 
 
 def report_document(report: Report) -> dict[str, Any]:
@@ -46,6 +51,7 @@ def report_document(report: Report) -> dict[str, Any]:
             "sets": list(report.names),
             "matrix": [[_number(cell) for cell in row] for row in report.correlation().tolist()],
         },
+        "covariance": _covariance(report.reduced.joint, report.coverage),
         "temperature_fit": _temperature_fit(report.temperature_fits),
         "findings": [_finding(finding) for finding in report.findings],
     }
@@ -171,6 +177,23 @@ def _budget_line(line: BudgetLine) -> dict[str, Any]:
         "contribution": _number(line.contribution),
         "share": _number(line.share),
         "scope": line.scope,
+    }
+
+
+def _covariance(joint: Joint, coverage: float) -> dict[str, Any]:
+    """Say what all results share; the whole matrix only where it is not huge."""
+    n = len(joint.labels)
+    return {
+        "labels": [
+            {"run_set": label.run_set, "quantity": label.quantity, "unit": label.unit}
+            for label in joint.labels
+        ],
+        "pair_coverage_factor": joint_coverage_factor(outputs=2, probability=coverage),
+        "matrix": joint.covariance.tolist() if n <= LARGEST_MATRIX else None,
+        "contributions": [
+            {joint.inputs[column]: number for column, number in joint.row(place).items()}
+            for place in range(n)
+        ],
     }
 
 

@@ -13,6 +13,7 @@ if TYPE_CHECKING:
     from numpy.typing import NDArray
 
     from plumbfall.bench.records import Bench
+    from plumbfall.run_sets.joint import Joint
     from plumbfall.timings.records import Timings
 
 __all__ = ["Reduced"]
@@ -56,6 +57,10 @@ class Reduced(Protocol):
     @property
     def temperature_fits(self) -> tuple[TemperatureFitResult, ...]:
         """Temperature laws fitted to the run sets, one a liquid."""
+
+    @property
+    def joint(self) -> Joint:
+        """All quantities of all run sets with what each input contributes to each."""
 
     def run_set(self, name: str) -> RunSetResult:
         """Return one run set; ``name`` is one of :attr:`names`."""

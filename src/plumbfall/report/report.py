@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import dataclasses
 import os
-import warnings
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from functools import cached_property
@@ -26,6 +25,7 @@ if TYPE_CHECKING:
     from uncertainties import UFloat
 
     from plumbfall.bench.records import Bench
+    from plumbfall.report.correlated import CorrelatedNumbers
     from plumbfall.timings.records import Timings
 
 __all__ = ["Reduced", "Report", "UnknownRunSetError"]
@@ -145,23 +145,25 @@ class Report:
     @cached_property
     def viscosities(self) -> Mapping[str, UFloat]:
         """Every set's viscosity in Pa.s as correlated ufloats; NaN where there is none."""
-        import numpy as np
-        from uncertainties import correlated_values, ufloat
+        return {name: self.numbers.number(name, "viscosity") for name in self.names}
 
-        values = self.reduced.summary_table()["viscosity_mPa_s"].to_numpy(dtype=float) / 1e3
-        covariance = np.asarray(self.reduced.covariance(), dtype=float)
-        have = np.flatnonzero(np.isfinite(values) & np.isfinite(np.diag(covariance)))
-        with warnings.catch_warnings():
-            # Exact or fully correlated sets leave variables of zero spread, which is no mistake.
-            warnings.filterwarnings("ignore", message=".*std_dev==0.*")
-            numbers = {}
-            if len(have):  # the library cannot correlate nothing
-                known = correlated_values(values[have].tolist(), covariance[np.ix_(have, have)])
-                numbers = dict(zip(have.tolist(), known, strict=True))
-            return {
-                name: numbers.get(index, ufloat(float("nan"), float("nan")))
-                for index, name in enumerate(self.names)
-            }
+    @cached_property
+    def numbers(self) -> CorrelatedNumbers:
+        """All quantities of all sets as ufloats of one family; see :class:`RunSetView`."""
+        from plumbfall.report.correlated import CorrelatedNumbers
+
+        return CorrelatedNumbers(self.reduced.joint)
+
+    def joint_covariance(self) -> pd.DataFrame:
+        """Return the covariance of all quantities of all sets, SI units (JCGM 102).
+
+        Rows and columns are pairs of set and quantity; a quantity without a value is missing.
+        """
+        import pandas as pd
+
+        joint = self.reduced.joint
+        labels = pd.MultiIndex.from_tuples(list(joint.places), names=["set", "quantity"])
+        return pd.DataFrame(joint.covariance, index=labels, columns=labels)
 
     def to_dict(self) -> dict[str, Any]:
         """Return the document of the schema ``plumbfall/report/1``: SI units, full precision."""

@@ -43,7 +43,17 @@ class RunSetView:
     @property
     def viscosity(self) -> UFloat:
         """Viscosity in Pa.s, correlated with that of the report's other sets; NaN without one."""
-        return self.report.viscosities[self.name]
+        return self.report.numbers.number(self.name, "viscosity")
+
+    @property
+    def kinematic_viscosity(self) -> UFloat:
+        """Kinematic viscosity in m2/s, correlated with all other results of the report."""
+        return self.report.numbers.number(self.name, "kinematic_viscosity")
+
+    @property
+    def viscosity_at_reference(self) -> UFloat:
+        """Viscosity in Pa.s at the reference temperature, correlated likewise; NaN without one."""
+        return self.report.numbers.number(self.name, "viscosity_at_reference")
 
     @property
     def interval(self) -> tuple[float, float]:

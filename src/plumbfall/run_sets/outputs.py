@@ -26,10 +26,25 @@ from plumbfall.uncertainty.coverage import coverage_factor
 from plumbfall.uncertainty.few_values import dof_with_few_values
 from plumbfall.uncertainty.linear import Propagation, propagate
 
-__all__ = ["QUANTITIES", "Output", "Outputs", "SetConditions", "compute_outputs", "conditions"]
+__all__ = [
+    "QUANTITIES",
+    "UNITS",
+    "Output",
+    "Outputs",
+    "SetConditions",
+    "compute_outputs",
+    "conditions",
+]
 
 QUANTITIES = ("viscosity", "viscosity_at_reference", "kinematic_viscosity")
 """Outputs of a run set, in the order of their rows."""
+
+UNITS = {
+    "viscosity": "Pa.s",
+    "viscosity_at_reference": "Pa.s",
+    "kinematic_viscosity": "m2/s",
+}
+"""SI units of the outputs."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -30,18 +30,12 @@ from plumbfall.run_sets.budget import budget_lines
 from plumbfall.run_sets.drawn import Drawn
 from plumbfall.run_sets.drop_records import ball_results, drop_results
 from plumbfall.run_sets.jacobian import Jacobian
-from plumbfall.run_sets.outputs import Output, Outputs, SetConditions
+from plumbfall.run_sets.outputs import UNITS, Output, Outputs, SetConditions
 from plumbfall.run_sets.repeatability import Repeatability
 from plumbfall.run_sets.temperature_fit import TemperatureFit
 from plumbfall.timings.records import Timings
 
 __all__ = ["SetColumns", "build_result", "status_of"]
-
-UNITS = {
-    "viscosity": "Pa.s",
-    "viscosity_at_reference": "Pa.s",
-    "kinematic_viscosity": "m2/s",
-}
 
 
 @dataclass(frozen=True)

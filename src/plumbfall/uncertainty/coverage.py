@@ -4,9 +4,9 @@ from __future__ import annotations
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
-from scipy.special import ndtri, stdtrit
+from scipy.special import chdtri, ndtri, stdtrit
 
-__all__ = ["coverage_factor", "effective_dof"]
+__all__ = ["coverage_factor", "effective_dof", "joint_coverage_factor"]
 
 
 def effective_dof(*, u: ArrayLike, contributions_fourth: ArrayLike) -> NDArray[np.float64]:
@@ -62,3 +62,30 @@ def coverage_factor(*, dof: ArrayLike, probability: float) -> NDArray[np.float64
     finite = np.where(np.isfinite(dof), dof, 1.0)
     factor: NDArray[np.float64] = np.where(np.isfinite(dof), stdtrit(finite, tail), ndtri(tail))
     return factor
+
+
+def joint_coverage_factor(*, outputs: int, probability: float) -> float:
+    """Factor of the ellipse that holds several normal results together.
+
+    Parameters
+    ----------
+    outputs : int
+        How many results there are.
+    probability : float [1]
+        Coverage probability, between 0 and 1.
+
+    Returns
+    -------
+    float [1]
+        k of the region d' V^-1 d <= k^2, V being the covariance and d the distance from the values.
+
+    References
+    ----------
+    JCGM 102:2011, 6.5.2.
+
+    Examples
+    --------
+    >>> f"{joint_coverage_factor(outputs=2, probability=0.95):.3f}"
+    '2.448'
+    """
+    return float(np.sqrt(chdtri(outputs, 1 - probability)))
