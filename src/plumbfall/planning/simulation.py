@@ -21,6 +21,7 @@ from plumbfall.bench.records import Bench
 from plumbfall.errors import InputError, PhysicsRangeError
 from plumbfall.measurement.balance import Numbers
 from plumbfall.planning.arrangement import Arrangement, arrange
+from plumbfall.planning.conditions import kelvin, nominal_temperature
 from plumbfall.planning.forward import Fall
 from plumbfall.planning.invented_drops import extra_scatter, fall_all, read_clock, with_lots
 from plumbfall.planning.simulated import Simulated
@@ -29,10 +30,7 @@ from plumbfall.planning.truth import draw_entries, drops_generator, with_entries
 if TYPE_CHECKING:
     import pandas as pd
 
-__all__ = ["set_temperature", "simulate", "simulate_sets"]
-
-ROOM_TEMPERATURE = 293.15
-"""Where nothing says how warm the liquid is [K] (ISO 1)."""
+__all__ = ["simulate", "simulate_sets"]
 
 
 def simulate(
@@ -161,7 +159,8 @@ def simulate_sets(
     def of_sets(role: str) -> Numbers:
         return np.asarray(true.roles[role].value[:sets])
 
-    at = set_temperature(bench, plan) if temperature is None else _kelvin(temperature)
+    codes = (int(plan.cells.liquid[0]), int(plan.cells.thermometer[0]))
+    at = nominal_temperature(bench, run_set, *codes) if temperature is None else kelvin(temperature)
     read = True
     if temperatures is not None:
         of_drops = _per_drop(temperatures, drops, "temperatures")
@@ -203,18 +202,6 @@ def simulate_sets(
     )
 
 
-def set_temperature(bench: Bench, plan: Arrangement) -> float:
-    """Return the temperature [K] that a run set is meant for, as far as the bench sheet says."""
-    inputs = plan.inputs
-    if inputs.temperature_known.any():
-        warm = inputs.roles["temperature"].value[0] + inputs.roles["thermometer"].value[0]
-        return float(warm)
-    if bench.reference_temperature is not None:
-        return bench.reference_temperature
-    density_at = float(inputs.liquid_density_at[0])
-    return ROOM_TEMPERATURE if np.isnan(density_at) else density_at
-
-
 def _viscosities(viscosity: ArrayLike | str, drops: int, intervals: int) -> Numbers:
     """Return the true viscosity by interval and drop, shape (intervals or 1, drops)."""
     if isinstance(viscosity, str):
@@ -240,12 +227,6 @@ def _per_drop(values: ArrayLike, drops: int, name: str) -> Numbers:
             remedy=f"give one number, or {drops} of them",
         )
     return np.array(np.broadcast_to(array, (drops,)))
-
-
-def _kelvin(temperature: float | str) -> float:
-    if isinstance(temperature, str):
-        return float(read_quantity(temperature, "temperature").value)
-    return float(temperature)
 
 
 def _check(seed: int, bench_seed: int | None, sets: int, scatter: float | None) -> None:

@@ -1,0 +1,187 @@
+"""A plan: every ball and tube, over the viscosities expected, judged and ranked."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from numpy.typing import NDArray
+
+from plumbfall.bench.records import Bench
+from plumbfall.errors import InputError, nearest_name
+from plumbfall.findings.limits import Limits, limits_from
+from plumbfall.measurement.balance import Numbers
+from plumbfall.planning.combination import Combination, build_combinations
+from plumbfall.planning.conditions import Conditions
+from plumbfall.planning.evaluation import Evaluation, evaluate
+from plumbfall.planning.prediction import Prediction
+from plumbfall.planning.wanted import Wanted
+from plumbfall.planning.windows import Window, usable_windows
+from plumbfall.results import Finding
+
+__all__ = ["Plan", "make_plan"]
+
+SHEET = frozenset(
+    {
+        "geometry-unknown", "slope-unknown", "density-temperature", "nominal-diameter",
+        "missing-uncertainty", "default-gravity", "unit-slip-suspected", "calibration-overdue",
+        "uncertainty-implausible",
+    }
+)  # fmt: skip
+"""Findings of the bench sheet that hold for the whole plan."""
+
+
+@dataclass(frozen=True)
+class Plan:
+    """Planned drops of every ball and tube; records are built when they are looked at."""
+
+    wanted: Wanted
+    limits: Limits
+    evaluation: Evaluation
+    prediction: Prediction
+    needed: NDArray[np.intp]
+    planned: NDArray[np.intp]
+    expanded: Numbers
+
+    @property
+    def bench(self) -> Bench:
+        """The bench sheet."""
+        return self.evaluation.conditions.bench
+
+    @property
+    def conditions(self) -> Conditions:
+        """What all drops have in common."""
+        return self.evaluation.conditions
+
+    @cached_property
+    def combinations(self) -> tuple[Combination, ...]:
+        """Every combination, the best ball and tube first, by viscosity within."""
+        every = build_combinations(
+            self.wanted, self.evaluation, self.prediction, self.needed, self.planned, self.expanded
+        )
+        groups: dict[tuple[str, str], list[Combination]] = {}
+        for one in every:
+            groups.setdefault((one.tube, one.ball), []).append(one)
+
+        def rank(group: list[Combination]) -> tuple[int, int, float]:
+            bounds = [one.relative_expanded_uncertainty for one in group]
+            worst = max(math.inf if bound is None else bound for bound in bounds)
+            fails = sum(not one.suitable for one in group)
+            misses = sum(not self.reaches(one) for one in group)
+            return fails, misses, worst
+
+        ranked = sorted(groups.values(), key=rank)
+        return tuple(one for group in ranked for one in group)
+
+    @property
+    def suitable(self) -> bool:
+        """Whether any ball and tube will do at every viscosity."""
+        fails = {(one.tube, one.ball) for one in self.combinations if not one.suitable}
+        return any((one.tube, one.ball) not in fails for one in self.combinations)
+
+    @property
+    def best(self) -> tuple[Combination, ...]:
+        """The best ball and tube, at every viscosity."""
+        first = self.combinations[0]
+        return tuple(
+            one for one in self.combinations if (one.tube, one.ball) == (first.tube, first.ball)
+        )
+
+    @cached_property
+    def findings(self) -> tuple[Finding, ...]:
+        """What the reduction will say of the bench sheet whatever the ball, each once."""
+        found: dict[tuple[str, str], Finding] = {}
+        for place in range(len(self.evaluation.solved)):
+            for finding in self.evaluation.found(place):
+                if finding.code in SHEET:
+                    found.setdefault((finding.code, finding.message), finding)
+        return tuple(found.values())
+
+    @cached_property
+    def windows(self) -> tuple[Window, ...]:
+        """The usable window of every ball and tube, ranked as the combinations."""
+        ranked = list(dict.fromkeys((one.tube, one.ball) for one in self.combinations))
+        tubes, balls = list(self.bench.tubes), list(self.bench.balls)
+        return usable_windows(
+            self.conditions,
+            self.wanted,
+            np.array([tubes.index(tube) for tube, _ in ranked], dtype=np.intp),
+            np.array([balls.index(ball) for _, ball in ranked], dtype=np.intp),
+            fewest_drops(self.limits),
+        )
+
+    def reaches(self, one: Combination) -> bool:
+        """Whether a combination reaches the target, or has bounds where there is none."""
+        if self.wanted.target is None:
+            return one.relative_expanded_uncertainty is not None
+        return one.drops_needed is not None
+
+
+def make_plan(
+    conditions: Conditions,
+    wanted: Wanted,
+    *,
+    tubes: Sequence[str] | None = None,
+    balls: Sequence[str] | None = None,
+) -> Plan:
+    """Plan drops of some (by default all) balls in some (by default all) tubes.
+
+    Raises
+    ------
+    InputError
+        Where there is nothing to plan with, or a name is not on the bench sheet.
+    """
+    bench = conditions.bench
+    limits = limits_from(bench.limits, bench.path)
+    tube_codes = _codes(bench, "tube", list(bench.tubes), tubes)
+    ball_codes = _codes(bench, "ball", list(bench.balls), balls)
+    eta = np.array(wanted.viscosities)
+    tube, ball, which = (
+        part.ravel() for part in np.meshgrid(tube_codes, ball_codes, np.arange(len(eta)),
+                                             indexing="ij")
+    )  # fmt: skip
+    evaluation = evaluate(conditions, tube, ball, eta[which])
+    prediction = Prediction(evaluation, wanted.coverage)
+    n = len(evaluation.solved)
+    needed = np.zeros(n, dtype=np.intp)
+    if wanted.target is not None:
+        needed = prediction.drops_needed(wanted.target, fewest_drops(limits), wanted.most_drops)
+    planned = np.maximum(needed, wanted.drops)
+    return Plan(
+        wanted=wanted,
+        limits=limits,
+        evaluation=evaluation,
+        prediction=prediction,
+        needed=needed,
+        planned=planned,
+        expanded=prediction.expanded(planned),
+    )
+
+
+def fewest_drops(limits: Limits) -> int:
+    """Return the least number of drops of a run set that is not noted as too short."""
+    return max(math.ceil(limits.too_few_drops), 1)
+
+
+def _codes(
+    bench: Bench, kind: str, known: list[str], names: Sequence[str] | None
+) -> NDArray[np.intp]:
+    if not known:
+        raise InputError(
+            f"no {kind} is described",
+            path=bench.path,
+            remedy=f"add a [{kind}.NAME] section to the bench sheet",
+        )
+    for name in names or ():
+        if name not in known:
+            near = nearest_name(name, known)
+            raise InputError(
+                f"{kind} '{name}' is not on the bench sheet",
+                path=bench.path,
+                remedy=f"did you mean '{near}'?" if near else f"known: {', '.join(known)}",
+            )
+    chosen = known if names is None else names
+    return np.array([known.index(name) for name in chosen], dtype=np.intp)
