@@ -30,10 +30,11 @@ from plumbfall.physics.laws import DEFAULTS
 from plumbfall.results import Finding, RunSetResult, TemperatureFitResult
 from plumbfall.run_sets.drawn import Drawn
 from plumbfall.run_sets.fitted_slopes import SetValues, fit_slopes
-from plumbfall.run_sets.jacobian import build_jacobian, own_variances
+from plumbfall.run_sets.jacobian import build_jacobian
 from plumbfall.run_sets.joint import Joint, joint_results
 from plumbfall.run_sets.monte_carlo import draw_run_set
 from plumbfall.run_sets.outputs import compute_outputs, conditions
+from plumbfall.run_sets.own_errors import own_errors
 from plumbfall.run_sets.repeatability import repeatability
 from plumbfall.run_sets.result import SetColumns, build_result, status_of
 from plumbfall.run_sets.table import summary_table
@@ -290,8 +291,8 @@ def reduce_numbers(
 
     def values_by(inputs: Inputs) -> SetValues:
         columns, sums = compute_drops(selection, inputs, weights, law, readings, ends, released)
-        own = own_variances(selection, inputs, sums)
-        scatter = repeatability(selection, columns, weights, np.sqrt(own.resolution), bench.scatter)
+        own = own_errors(selection, inputs, sums)
+        scatter = repeatability(selection, columns, weights, own, bench.scatter)
         return SetValues(
             columns, sums, scatter, build_jacobian(selection, inputs, sums, own, scatter)
         )

@@ -76,7 +76,8 @@ def test_at_the_estimates_the_model_is_the_reduction():
 @pytest.mark.parametrize("ends", ["table", "classical", "none"])
 def test_slopes_of_the_model_are_the_linear_sensitivities(ends):
     """Everything drawn moves the model as the closed sensitivities say: nothing is left out."""
-    table = drops_table({"B1": [15.0], "B4": [4.0]}, temperature=24.3)
+    last = 4.19 if ends == "classical" else 4.135  # as the known repeatability wants it
+    table = drops_table({"B1": [15.0], "B4": [last]}, temperature=24.3)
     bench = close_bench(methods={"ends": ends}, scatter={"relative": "0.3 %", "dof": 200})
     reduction = reduced(table, bench)
     sets = reduction.sets

@@ -70,8 +70,35 @@ def test_known_repeatability_stands_in_for_short_sets_only():
     value = short["A"].result.viscosity.value
     assert line.contribution == pytest.approx(0.003 * value / math.sqrt(2), rel=1e-9)
     assert line.dof == 24
-    long = pf.reduce(drops_table({"B1": [15.05, 15.06, 15.04, 15.09]}), bench)
-    assert "scatter.relative" not in budget(long)
+    five = drops_table({"B1": [15.05, 15.06, 15.04, 15.09, 15.02]})
+    assert "scatter.relative" in budget(pf.reduce(five, bench))
+    six = drops_table({"B1": [15.05, 15.06, 15.04, 15.09, 15.02, 15.07]})
+    assert "scatter.relative" not in budget(pf.reduce(six, bench))
+
+
+def test_a_known_repeatability_gives_way_to_what_contradicts_it():
+    """15.0 and 15.3 s differ by 2 %: with 0.3 % known, 4.7 of its standard deviations."""
+    bench = bench_dict(scatter={"relative": "0.30 %", "dof": 24})
+    lines = budget(pf.reduce(drops_table({"B1": [15.0, 15.3]}), bench))
+    assert "scatter.relative" not in lines
+    assert lines["set.A.scatter"].dof == 1
+    near = budget(pf.reduce(drops_table({"B1": [15.0, 15.1]}), bench))
+    assert "scatter.relative" in near
+
+
+def test_balls_may_differ_by_their_own_errors_beside_a_known_repeatability():
+    """1 % of a diameter is some 2 % of viscosity, which two balls' means then may be apart."""
+    known = {"relative": "0.30 %", "dof": 24}
+    times = {"B1": [15.0], "B2": [10.0]}  # 1.7 % apart
+    precise = budget(pf.reduce(drops_table(times), bench_dict(scatter=known)))
+    assert "scatter.relative" not in precise
+    rough = bench_dict(scatter=known)
+    for name in ("B1", "B2"):
+        nominal = str(rough["ball"][name]["diameter"]).partition("(")[0]
+        rough["ball"][name]["diameter"] = {"value": float(nominal), "unit": "mm", "u": 0.02}
+    lines = budget(pf.reduce(drops_table(times), rough))
+    assert "scatter.relative" in lines
+    assert "ball.B1.diameter" in lines
 
 
 def test_resolution_is_the_floor_of_equal_times():

@@ -17,22 +17,13 @@ from plumbfall.measurement.balance import Numbers
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import Sums
+from plumbfall.run_sets.own_errors import OwnErrors
 from plumbfall.run_sets.repeatability import DECLARED, KNOWN, OF_VALUES, Repeatability
 
-__all__ = ["Jacobian", "OwnColumns", "build_jacobian", "own_variances"]
+__all__ = ["Jacobian", "build_jacobian"]
 
 OWN_KINDS = ("scatter", "per_drop", "resolution", "per_reading", "spread")
 """Errors of one run set alone, in the order of their columns."""
-
-
-@dataclass(frozen=True, slots=True)
-class OwnColumns:
-    """Variances of each run set's mean from errors that every drop has to itself, (run sets,)."""
-
-    per_drop: Numbers
-    resolution: Numbers
-    per_reading: Numbers
-    spread: Numbers
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,24 +59,6 @@ class Jacobian:
         return OWN_KINDS[place // self.n_sets]
 
 
-def own_variances(selection: Selection, inputs: Inputs, sums: Sums) -> OwnColumns:
-    """Variances that the instruments' declared repeatabilities give each run set's mean.
-
-    A clock reading's resolution d is rectangular, u = d/sqrt(12), and an interval has two.
-    """
-    cell_set, n_sets = selection.cells.run_set, len(selection.names)
-
-    def by_set(per_cell: Numbers) -> Numbers:
-        return np.asarray(np.bincount(cell_set, weights=per_cell, minlength=n_sets), dtype=float)
-
-    return OwnColumns(
-        per_drop=by_set(sums.timing * inputs.per_drop**2),
-        resolution=by_set(sums.timing * inputs.resolution**2 / 6),
-        per_reading=by_set(sums.reading * inputs.per_reading**2),
-        spread=by_set(sums.lot * inputs.spread**2),
-    )
-
-
 def _through_constants(
     inputs: Inputs, sums: Sums
 ) -> Iterator[tuple[Numbers, NDArray[np.intp], int]]:
@@ -100,7 +73,7 @@ def build_jacobian(
     selection: Selection,
     inputs: Inputs,
     sums: Sums,
-    own: OwnColumns,
+    own: OwnErrors,
     scatter: Repeatability,
 ) -> Jacobian:
     """Stack the sums over cells into one sparse Jacobian.
