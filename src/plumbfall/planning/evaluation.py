@@ -27,7 +27,7 @@ from plumbfall.planning.conditions import Conditions
 from plumbfall.planning.forward import Fall, fall
 from plumbfall.reduction import Reduction, reduce_drops
 from plumbfall.results import Finding
-from plumbfall.run_sets.jacobian import OwnColumns, own_variances
+from plumbfall.run_sets.own_errors import OwnErrors, own_errors
 from plumbfall.timings.records import COLUMNS, Timings
 from plumbfall.uncertainty.linear import Propagation, propagate
 
@@ -53,7 +53,7 @@ class Evaluation:
     solved: NDArray[np.intp]
     reduction: Reduction | None
     shared: Propagation
-    own: OwnColumns
+    own: OwnErrors
     columns: tuple[str, ...]
 
     def found(self, place: int) -> tuple[Finding, ...]:
@@ -93,7 +93,7 @@ def evaluate(conditions: Conditions, tube: Codes, ball: Codes, viscosity: Number
         shared = propagate(sensitivities=np.zeros((0, 0)), u=none)
         return Evaluation(
             conditions, tube, ball, viscosity, law, inputs, fallen, solved, None, shared,
-            OwnColumns(none, none, none, none), (),
+            OwnErrors(*[none] * len(OwnErrors.__slots__)), (),
         )  # fmt: skip
     timings = _timings(conditions, cells, inputs, fallen, names, solved)
     reduction = reduce_drops(timings, bench, draws=0)
@@ -101,7 +101,7 @@ def evaluate(conditions: Conditions, tube: Codes, ball: Codes, viscosity: Number
     jacobian, eta = sets.jacobian, sets.scatter.mean
     entries = jacobian.n_inputs + len(jacobian.squared)
     relative = sparse.diags_array(1 / eta) @ jacobian.matrix[:, :entries]
-    own = own_variances(sets.selection, sets.inputs, sets.sums)
+    own = own_errors(sets.selection, sets.inputs, sets.sums)
     return Evaluation(
         conditions=conditions,
         tube=tube,
@@ -115,7 +115,7 @@ def evaluate(conditions: Conditions, tube: Codes, ball: Codes, viscosity: Number
         shared=propagate(
             sensitivities=relative, u=jacobian.u[:entries], dof=jacobian.dof[:entries]
         ),
-        own=OwnColumns(*(getattr(own, kind) / eta**2 for kind in OwnColumns.__slots__)),
+        own=OwnErrors(*(getattr(own, kind) / eta**2 for kind in OwnErrors.__slots__)),
         columns=tuple(
             sets.inputs.estimates[jacobian.input_of(column)].name for column in range(entries)
         ),
