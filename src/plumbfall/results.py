@@ -150,7 +150,9 @@ class DropResult:
     ``viscosity`` is at the drop's own temperature and ``viscosity_at_set`` brought to the set's;
     both ``None`` where the drop was not used or has no solution. ``residual`` is the drop's
     viscosity (brought to the set's temperature) over the set's value, less 1. ``wall``,
-    ``inertia`` and ``end`` are factors of the drag.
+    ``inertia`` and ``end`` are factors of the drag. ``interval_ratios`` are the mean speed between
+    successive marks over the drop's, NaN where a mark was not read, and empty with fewer than
+    three marks.
     """
 
     file: str
@@ -172,6 +174,8 @@ class DropResult:
     status: str
     note: str
     findings: tuple[str, ...] = ()
+    diameter_ratio: float | None = None
+    interval_ratios: tuple[float, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

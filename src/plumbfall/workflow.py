@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime as dt
 import os
 from collections.abc import Iterable, Mapping
 from numbers import Integral
@@ -59,6 +60,7 @@ def reduce(
     coverage: float | None = None,
     encoding: str | None = None,
     progress: Progress | None = None,
+    date: dt.date | str | None = None,
 ) -> Report:
     """Reduce timed drops to viscosities with confidence bounds.
 
@@ -79,6 +81,8 @@ def reduce(
         Encoding of the timing files where they are not UTF-8.
     progress : callable, optional
         Called with the run sets drawn so far and how many there are.
+    date : date or str, optional
+        Day that the report bears, such as ``2026-03-02``; it is never taken from the clock.
 
     Returns
     -------
@@ -106,8 +110,20 @@ def reduce(
             seed=seed,
             inputs=tuple(inputs),
             progress=progress,
-        )
+        ),
+        date=_checked_date(date),
     )
+
+
+def _checked_date(date: dt.date | str | None) -> dt.date | None:
+    if date is None:
+        return None
+    try:
+        return dt.date.fromisoformat(str(date))
+    except ValueError:
+        raise InputError(
+            f"{date!r} is no day", key="date", remedy='write it as "2026-03-02"'
+        ) from None
 
 
 def _checked_draws(draws: int | str) -> int | str:

@@ -46,6 +46,17 @@ def test_out_writes_four_files_whole(tmp_path, capsys):
     assert os.listdir(tmp_path) == ["report"]
 
 
+def test_the_report_bears_the_day_that_is_given_and_no_other(tmp_path, capsys):
+    assert main(["reduce", str(CLEAN), "--draws", "0", "--json", "--date", "2026-03-04"]) == 0
+    assert json.loads(capsys.readouterr().out)["date"] == "2026-03-04"
+    assert main(["reduce", str(CLEAN), "--draws", "0", "--json"]) == 0
+    assert json.loads(capsys.readouterr().out)["date"] is None
+    with pytest.raises(SystemExit) as usage:
+        main(["reduce", str(CLEAN), "--date", "4 March"])
+    assert usage.value.code == 2
+    assert "'4 March' is no day; write it as 2026-03-02" in capsys.readouterr().err
+
+
 def test_an_invalid_set_exits_with_1_and_still_reports(tmp_path, capsys):
     out = tmp_path / "report"
     assert main(["reduce", str(INVALID), "--out", str(out)]) == 1

@@ -37,7 +37,9 @@ from plumbfall.results import (
     Correction,
     DropResult,
     Finding,
+    Histogram,
     Measured,
+    MonteCarloResult,
     Quantity,
     RunSetResult,
     TemperatureFitResult,
@@ -201,8 +203,28 @@ def warned_set(name: str) -> RunSetResult:
         ),
         Finding("missing-uncertainty", "note", "tube.A.tilt has no uncertainty", "state one"),
     )
+    drops = tuple(
+        replace(drop, interval_ratios=(0.99 + 0.001 * drop.drop, 1.01 - 0.001 * drop.drop))
+        if drop.used
+        else drop
+        for drop in drops
+    )
+    counts = (1, 40, 900, 6000, 20_000, 49_000, 60_000, 41_000, 16_000, 5000, 1900, 140)
+    drawn = MonteCarloResult(
+        low=1.1793,
+        high=1.2301,
+        shortest_low=1.1781,
+        shortest_high=1.2288,
+        standard_uncertainty=0.0123,
+        draws=200_000,
+        validated_linear=True,
+        undefined=12,
+        histogram=Histogram(1.154, 1.255, counts, below=2, above=5),
+    )
     return replace(
         made,
+        linear=measured(1.2021, 0.0123),
+        monte_carlo=drawn,
         status="valid-with-warnings",
         n_drops=6,
         drops=drops,

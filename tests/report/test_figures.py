@@ -4,6 +4,7 @@ import re
 from dataclasses import replace
 
 import matplotlib as mpl
+import numpy as np
 import pytest
 from matplotlib.axes import Axes
 from matplotlib.colors import to_hex
@@ -12,10 +13,15 @@ from matplotlib.figure import Figure
 from plumbfall.errors import InputError
 from plumbfall.report import Report
 from plumbfall.report.budget_figure import draw_budget
+from plumbfall.report.draws_figure import draw_draws
 from plumbfall.report.drops_figure import draw_drops
-from plumbfall.report.figures import page_figure
+from plumbfall.report.figures import KINDS, page_figure
 from plumbfall.report.house_style import COLOURS
+from plumbfall.report.intervals_figure import draw_intervals
+from plumbfall.report.map_figure import draw_map
+from plumbfall.report.residuals_figure import AGAINST, draw_residuals, residuals_vary
 from plumbfall.report.svg import inline_svg
+from plumbfall.results import RunSetResult
 from report.invented_report import (
     InventedReduction,
     drop,
@@ -33,6 +39,14 @@ def axes() -> Axes:
 
 def lines(ax: Axes) -> dict[str, object]:
     return {line.get_label(): line for line in ax.get_lines()}
+
+
+def bar_names(ax: Axes) -> list[str]:
+    return [text.get_text() for text in ax.texts if text.get_position()[0] < 0]
+
+
+def drawn(kind: str, result: RunSetResult) -> Figure:
+    return page_figure(lambda ax: KINDS[kind](result, ax, None))
 
 
 def test_drops_stand_in_order_in_the_unit_of_the_set() -> None:
@@ -55,16 +69,16 @@ def test_each_ball_has_a_symbol_of_its_own() -> None:
 
 def test_scatter_and_uncertainty_are_told_apart_without_colour() -> None:
     result = valid_set("A")
-    drawn = lines(draw_drops(result, axes()))
-    spread = drawn["single drops: mean ± 2 standard deviations"]
-    bounds = drawn["the result's bounds, 95 %"]
+    found = lines(draw_drops(result, axes()))
+    spread = found["spread of single drops"]
+    bounds = found["bounds of the result, 95 %"]
     assert spread.get_linestyle() != bounds.get_linestyle()
     assert bounds.get_ydata()[0] == pytest.approx(result.viscosity.low * 1e3)
 
 
 def test_drops_not_used_are_crosses_on_the_axis() -> None:
-    drawn = lines(draw_drops(warned_set("A"), axes()))["not used"]
-    assert list(drawn.get_xdata()) == [7, 8]
+    found = lines(draw_drops(warned_set("A"), axes()))["not used"]
+    assert list(found.get_xdata()) == [7, 8]
 
 
 def test_a_tick_names_the_drop_not_its_place() -> None:
@@ -99,7 +113,7 @@ def test_budget_bars_are_shares_told_apart_by_hatch() -> None:
         ("xxx", COLOURS["plum"]),
     }
     assert sum(bar.get_width() for bar in ax.patches) == pytest.approx(100.0)
-    assert next(text.get_text() for text in ax.get_yticklabels()) == "timer.watch.per_drop"
+    assert bar_names(ax)[0] == "timer.watch.per_drop"
 
 
 def test_a_long_budget_sums_the_rest_by_scope() -> None:
@@ -110,7 +124,7 @@ def test_a_long_budget_sums_the_rest_by_scope() -> None:
         for n in range(30)
     )
     ax = draw_budget(replace(made, budget=many), axes())
-    labels = [text.get_text() for text in ax.get_yticklabels()]
+    labels = bar_names(ax)
     assert labels[-2:] == ["10 more, shared", "10 more, ball"]
     assert sum(bar.get_width() for bar in ax.patches) == pytest.approx(100.0)
 
@@ -118,21 +132,21 @@ def test_a_long_budget_sums_the_rest_by_scope() -> None:
 @pytest.mark.filterwarnings("error")
 def test_names_are_never_formulas() -> None:
     for result in hostile_sets().sets:
-        for kind in ("drops", "budget"):
-            svg = inline_svg(page_figure(kind, result, None), "p", "t", "d")
+        for kind in KINDS:
+            svg = inline_svg(drawn(kind, result), "p", "t", "d")
             assert "onerror" not in svg
     named = replace(valid_set("A"), drops=tuple(
         replace(d, ball=r"$\nonsense{$ <b> 球") for d in valid_set("A").drops
     ))  # fmt: skip
-    svg = inline_svg(page_figure("drops", named, None), "p", "t", "d")
+    svg = inline_svg(drawn("drops", named), "p", "t", "d")
     assert r"$\nonsense{$" in svg
     assert "&lt;b&gt;" in svg
 
 
 def test_svg_is_the_same_each_time_and_keeps_to_itself() -> None:
-    first = inline_svg(page_figure("drops", valid_set("A"), None), "one", "t", "d")
-    again = inline_svg(page_figure("drops", valid_set("A"), None), "one", "t", "d")
-    other = inline_svg(page_figure("drops", valid_set("A"), None), "two", "t", "d")
+    first = inline_svg(drawn("drops", valid_set("A")), "one", "t", "d")
+    again = inline_svg(drawn("drops", valid_set("A")), "one", "t", "d")
+    other = inline_svg(drawn("drops", valid_set("A")), "two", "t", "d")
     assert first == again
     assert not set(re.findall(r'id="([^"]*)"', first)) & set(re.findall(r'id="([^"]*)"', other))
     assert "<style" not in first
@@ -145,18 +159,16 @@ def test_text_that_looks_like_markup_is_left_alone() -> None:
     made = replace(valid_set("A"), drops=tuple(
         replace(d, ball='x style="fill: red"') for d in valid_set("A").drops
     ))  # fmt: skip
-    assert 'ball x style="fill: red"<' in inline_svg(
-        page_figure("drops", made, None), "p", "t", "d"
-    )
+    assert "ball x style=&quot;fill: red&quot;<" in inline_svg(drawn("drops", made), "p", "t", "d")
 
 
 def test_the_readers_settings_are_left_alone() -> None:
     before = dict(mpl.rcParams)
     with mpl.rc_context({"font.size": 31.0, "text.usetex": False}):
-        first = inline_svg(page_figure("budget", valid_set("A"), None), "p", "t", "d")
+        first = inline_svg(drawn("budget", valid_set("A")), "p", "t", "d")
         assert mpl.rcParams["font.size"] == 31.0
     assert dict(mpl.rcParams) == before
-    assert first == inline_svg(page_figure("budget", valid_set("A"), None), "p", "t", "d")
+    assert first == inline_svg(drawn("budget", valid_set("A")), "p", "t", "d")
 
 
 class TestPlot:
@@ -184,7 +196,10 @@ class TestPlot:
         ("arguments", "message"),
         [
             ({"kind": "drop"}, "no figure of kind 'drop'; did you mean 'drops'"),
-            ({"kind": "zzz"}, "write 'drops' or 'budget'"),
+            (
+                {"kind": "zzz"},
+                "write one of 'drops', 'budget', 'draws', 'intervals', 'residuals', 'map'",
+            ),
             ({"run_set": "batch 18"}, "did you mean 'batch 118'"),
             ({"ax": Figure().add_subplot()}, "one place for several run sets; say which"),
         ],
@@ -209,3 +224,104 @@ def test_pyplot_is_not_imported() -> None:
         "sys.exit(before or 'matplotlib.pyplot' in sys.modules)"
     )
     assert subprocess.run([sys.executable, "-c", code], check=False).returncode == 0
+
+
+class TestDraws:
+    def test_bins_are_shares_of_all_draws(self) -> None:
+        ax = draw_draws(warned_set("A"), axes())
+        (steps,) = ax.patches
+        values, edges, _ = steps.get_data()
+        counts = warned_set("A").monte_carlo.histogram.counts
+        assert values == pytest.approx([count / 2000 for count in counts])  # percent of 200,000
+        assert (edges[0], edges[-1]) == pytest.approx((1.154, 1.255))
+
+    def test_both_bounds_are_told_apart_without_colour(self) -> None:
+        found = lines(draw_draws(warned_set("A"), axes()))
+        drawn_bounds, linear = found["Monte Carlo bounds, 95 %"], found["linear bounds, 95 %"]
+        assert list(drawn_bounds.get_xdata()) == pytest.approx([1.1793, 1.2301])
+        assert list(linear.get_xdata()) == pytest.approx([1.1775, 1.2267])
+        assert drawn_bounds.get_linestyle() != linear.get_linestyle()
+
+    def test_without_draws_it_says_so(self) -> None:
+        ax = draw_draws(valid_set("A"), axes())
+        assert [text.get_text() for text in ax.texts] == ["no draws to show"]
+
+
+class TestResiduals:
+    @pytest.mark.parametrize("against", list(AGAINST))
+    def test_each_drop_stands_where_it_was(self, against: str) -> None:
+        varied = tuple(
+            replace(d, diameter_ratio=0.03 + 0.01 * d.drop, reynolds=0.1 * d.drop)
+            for d in valid_set("A").drops
+        )
+        ax = draw_residuals(replace(valid_set("A"), drops=varied), axes(), against)
+        found = sorted(tuple(point) for group in ax.collections for point in group.get_offsets())
+        across = {
+            "temperature": lambda d: d.temperature - 273.15,
+            "diameter_ratio": lambda d: d.diameter_ratio,
+            "reynolds": lambda d: d.reynolds,
+        }[against]
+        expected = sorted((across(d), 100 * d.residual) for d in varied)
+        assert [value for point in found for value in point] == pytest.approx(
+            [value for point in expected for value in point]
+        )
+
+    def test_what_does_not_vary_is_not_drawn(self) -> None:
+        assert residuals_vary(valid_set("A"), "temperature")
+        assert not residuals_vary(valid_set("A"), "reynolds")
+        assert not residuals_vary(valid_set("A"), "diameter_ratio")
+
+    def test_panels_side_by_side_or_one_alone(self) -> None:
+        report = Report(three_sets())
+        assert len(report["batch 118"].plot("residuals").axes) == 3
+        assert len(report["batch 118"].plot("residuals", against="reynolds").axes) == 1
+        ax = axes()
+        assert report["batch 118"].plot("residuals", ax=ax, against="temperature") is ax
+        with pytest.raises(InputError, match=r'several panels; say which with against="temper'):
+            report["batch 118"].plot("residuals", ax=ax)
+        with pytest.raises(InputError, match="did you mean 'reynolds'"):
+            report["batch 118"].plot("residuals", against="reynold")
+
+
+def test_intervals_show_each_speed_over_the_drops_own() -> None:
+    ax = draw_intervals(warned_set("A"), axes())
+    heights = sorted(point[1] for group in ax.collections for point in group.get_offsets())
+    expected = [ratio for d in warned_set("A").drops for ratio in d.interval_ratios]
+    assert heights == pytest.approx(sorted(expected))
+    assert [text.get_text() for text in ax.get_xticklabels()] == ["1 to 2", "2 to 3"]
+    means = [line.get_ydata()[0] for line in ax.get_lines() if line.get_linewidth() == 2]
+    assert means == pytest.approx([0.9935, 1.0065])
+
+
+class TestMap:
+    def test_lines_are_those_of_the_exact_wall_factor(self) -> None:
+        # Haberman and Sayre 1958, table of wall factors for a sphere on the axis of a long tube,
+        # Reynolds number 0: 1.263 at diameter ratio 0.1 (from memory)
+        ax = draw_map((), axes())
+        (lines_drawn,) = [one for one in ax.collections if hasattr(one, "levels")]
+        at = {
+            level: path.vertices
+            for level, path in zip(lines_drawn.levels, lines_drawn.get_paths(), strict=True)
+        }
+        below = at[1.2][np.argmin(at[1.2][:, 0]), 1]
+        above = at[1.3][np.argmin(at[1.3][:, 0]), 1]
+        assert below < 0.1 < above
+        share = (1.263 - 1.2) / (1.3 - 1.2)
+        assert below + share * (above - below) == pytest.approx(0.1, rel=0.01)
+
+    def test_sets_stand_at_their_largest_ball_and_reynolds_number(self) -> None:
+        sets = [valid_set("A"), replace(valid_set("B"), reynolds=4.0), invalid_set("C")]
+        ax = draw_map(sets, axes())
+        points = [tuple(p) for group in ax.collections[1:] for p in group.get_offsets()]
+        assert points == [(0.036, 0.04), (4.0, 0.04)]
+        _, labels = ax.get_legend_handles_labels()
+        assert labels == ["A", "B"]
+
+    def test_many_sets_share_one_symbol(self) -> None:
+        ax = draw_map([valid_set(f"set {n}") for n in range(40)], axes())
+        assert ax.get_legend_handles_labels()[1] == ["40 run sets"]
+
+    def test_all_sets_in_one_place(self) -> None:
+        ax = axes()
+        assert Report(three_sets()).plot("map", ax=ax) is ax
+        assert isinstance(Report(three_sets()).plot("map"), Figure)

@@ -36,7 +36,7 @@ def test_documents_are_as_the_schema_says(made) -> None:
 def test_names_of_the_interface(document: dict) -> None:
     assert document["schema"] == "plumbfall/report/1"
     assert list(document) == [
-        "schema", "software", "inputs", "seed", "rows", "run_sets", "correlation",
+        "schema", "software", "inputs", "seed", "date", "rows", "run_sets", "correlation",
         "covariance", "temperature_fit", "findings",
     ]  # fmt: skip
     assert {
@@ -75,7 +75,8 @@ def test_monte_carlo_has_no_factor_and_is_not_called_linear(document: dict) -> N
     second = document["run_sets"][1]
     assert second["viscosity"]["method"] == "monte-carlo"
     assert second["viscosity"]["coverage_factor"] is None
-    assert second["linear"] is None
+    assert second["linear"]["method"] == "linear"
+    assert second["monte_carlo"]["histogram"]["counts"][0] == 1
 
 
 def test_nan_and_infinity_never_reach_the_text() -> None:

@@ -1,6 +1,7 @@
 from __future__ import annotations
 
 import base64
+import datetime as dt
 import hashlib
 import itertools
 import re
@@ -20,6 +21,7 @@ from report.invented_report import (
     hostile_sets,
     three_sets,
     valid_set,
+    warned_set,
 )
 
 VOID = {"meta", "br", "hr", "img", "link", "input", "path", "use", "rect", "image"}
@@ -119,8 +121,9 @@ class TestSelfContained:
             assert name in ids
 
     def test_a_hundred_sets_would_stay_under_five_megabytes(self, html: str) -> None:
-        one = len(Report(InventedReduction((valid_set("A"),))).to_html())
-        two = len(Report(InventedReduction((valid_set("A"), valid_set("B")))).to_html())
+        some = tuple(warned_set(name) for name in "AB")  # with every kind of figure
+        one = len(Report(InventedReduction(some[:1])).to_html())
+        two = len(Report(InventedReduction(some)).to_html())
         assert one + 99 * (two - one) < 5_000_000
 
 
@@ -138,13 +141,15 @@ class TestAccessible:
 
     def test_drawings_are_described(self, page: Page) -> None:
         drawings = page.all("svg")
-        assert len(drawings) == 5  # drops and budget twice, drops of the set without viscosity
+        # 1: drops, budget, residuals against temperature; 2: these, draws and intervals;
+        # 3: drops of the set without viscosity; and the map
+        assert len(drawings) == 3 + 5 + 1 + 1
         assert all(drawing["role"] == "img" for drawing in drawings)
         assert len(page.all("desc")) == len(drawings)
         assert len(page.all("figcaption")) == len(drawings)
 
     def test_scrolling_regions_are_reached_by_keyboard(self, page: Page) -> None:
-        regions = [a for a in page.all("div") if a.get("class") == "scroll"]
+        regions = [a for a in page.all("div") if (a.get("class") or "").startswith("scroll")]
         assert regions
         assert all(a["tabindex"] == "0" and a["role"] == "region" for a in regions)
 
@@ -152,15 +157,40 @@ class TestAccessible:
 class TestContent:
     def test_verdict_and_value_come_first(self, page: Page) -> None:
         text = page.shown
-        start = text.index("Run set batch 118")
+        start = text.index("Run set batch 118 851.3")
         assert text[start - 7 : start].strip() == "Valid"
         value = "851.3 ± 4.2 mPa·s Viscosity at 25.00 °C, between 847.1 and 855.5 mPa·s"
         assert text[start:].startswith(f"Run set batch 118 {value} with 95 %")
 
-    def test_the_overview_links_to_each_set(self, page: Page) -> None:
+    def test_contents_and_overview_link_to_each_set_and_back(self, page: Page) -> None:
         links = [a["href"] for a in page.all("a")]
-        assert links.count("#set-1") == links.count("#set-2") == links.count("#set-3") == 1
-        assert links.count("#overview") == 3
+        assert links.count("#set-1") == 2  # contents and overview
+        assert links.count("#set-2") == links.count("#set-3") == 3  # and the set before
+        assert links.count("#overview") == 1 + 3
+        assert {"#who", "#how", "#data", "#say", "#care"} <= set(links)
+
+    def test_linear_and_monte_carlo_stand_side_by_side(self, page: Page) -> None:
+        # bounds 1.1775 to 1.2267 and 1.1793 to 1.2301 Pa.s: 0.0018 and 0.0034 apart, where half a
+        # unit of the first digit of u = 0.0123 is 0.005 (JCGM 101:2008, 7.9.2 and 8)
+        text = page.shown
+        start = text.index("Linear against Monte Carlo: the viscosity's bounds by both ways")
+        found = text[start : text.index("seed", start)]
+        assert "linear (GUM) 1.1775 1.2267 0.0123 61" in found
+        assert "Monte Carlo, 200000 draws 1.1793 1.2301 0.0123 – quoted" in found
+        assert "apart by 0.0018 0.0034 0.0050 Pa·s allowed – the linear bounds hold" in found
+        assert "12 draws had no viscosity and count as outside the bounds." in found
+
+    def test_rows_in_no_result_are_listed_with_their_reason(self, page: Page) -> None:
+        text = page.shown
+        start = text.index("Rows that are in no result")
+        assert "batch 119 8 d invented.csv:9 – excluded no-time" in text[start:]
+        alone = Page(Report(InventedReduction((valid_set("A"),))).to_html()).shown
+        assert "Every row was used; none is left out of the results." in alone
+
+    def test_the_date_is_the_one_given(self) -> None:
+        reduced = InventedReduction((valid_set("A"),))
+        assert "Date: not supplied" in Page(Report(reduced).to_html()).shown
+        assert "Date: 2026-03-02" in Page(Report(reduced, date=dt.date(2026, 3, 2)).to_html()).shown
 
     def test_one_set_has_no_overview(self) -> None:
         assert "Overview" not in Page(Report(InventedReduction((valid_set("A"),))).to_html()).shown

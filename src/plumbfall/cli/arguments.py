@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import argparse
+import datetime as dt
 
-__all__ = ["add_inputs", "add_json", "draws", "probability", "seed"]
+__all__ = ["add_inputs", "add_json", "day", "draws", "probability", "seed"]
 
 
 def add_inputs(parser: argparse.ArgumentParser, timings: str) -> None:
@@ -40,6 +41,14 @@ def seed(text: str) -> int:
     if not text.isdecimal():
         raise argparse.ArgumentTypeError(f"{text!r} is no seed; write a whole number from 0 up")
     return int(text)
+
+
+def day(text: str) -> dt.date:
+    """Read a day as ISO 8601 has it."""
+    try:
+        return dt.date.fromisoformat(text)
+    except ValueError:
+        raise argparse.ArgumentTypeError(f"{text!r} is no day; write it as 2026-03-02") from None
 
 
 def draws(text: str) -> int | str:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import argparse
 
-from plumbfall.cli.arguments import add_inputs, draws, probability, seed
+from plumbfall.cli.arguments import add_inputs, day, draws, probability, seed
 from plumbfall.cli.commands import Commands
 from plumbfall.cli.exit_codes import DONE, INVALID
 from plumbfall.cli.output import say, standard_output
@@ -45,6 +45,12 @@ def add_reduce(commands: Commands) -> None:
         help="seed of the draws, recorded in the report (default 0)",
     )
     reduce.add_argument(
+        "--date",
+        type=day,
+        metavar="DAY",
+        help="day that the report bears, such as 2026-03-02; it is never taken from the clock",
+    )
+    reduce.add_argument(
         "--strict", action="store_true", help="exit with 1 also where a set has warnings"
     )
     reduce.set_defaults(run=_run)
@@ -68,6 +74,7 @@ def _run(options: argparse.Namespace) -> int:
             seed=options.seed,
             coverage=options.coverage,
             encoding=options.encoding,
+            date=options.date,
         )
     for warning in said:
         say(f"warning: {warning.message}")

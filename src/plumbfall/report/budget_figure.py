@@ -10,7 +10,7 @@ from plumbfall.results import RunSetResult
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
-__all__ = ["draw_budget"]
+__all__ = ["draw_budget", "label_width"]
 
 SCOPES = {
     "shared": ("petrol", "", "shared by all drops"),
@@ -34,6 +34,7 @@ def draw_budget(result: RunSetResult, ax: Axes, viscosity_unit: str | None = Non
         The same as given.
     """
     bars = _bars(result)
+    top = max([10.0, *(112.0 * share for _, share, _ in bars)])
     with house_style():
         for scope, (colour, hatch, label) in SCOPES.items():
             places = [place for place, bar in enumerate(bars) if bar[2] == scope]
@@ -48,22 +49,21 @@ def draw_budget(result: RunSetResult, ax: Axes, viscosity_unit: str | None = Non
                     linewidth=0,
                     label=label,
                 )
-        for place, (_, share, _) in enumerate(bars):
-            ax.annotate(
-                f"{100.0 * share:.1f}",
-                (100.0 * share, place),
-                xytext=(3, 0),
-                textcoords="offset points",
-                va="center",
-                fontsize=8,
-            )
-        ax.set_yticks(range(len(bars)), [name for name, _, _ in bars], parse_math=False)
-        ax.tick_params(axis="y", length=0)
+        for place, (name, share, _) in enumerate(bars):
+            ax.text(share * 100.0 + 0.012 * top, place, f"{100.0 * share:.1f}", va="center", size=8)
+            ax.text(-0.012 * top, place, name, ha="right", va="center")
+        ax.set_yticks([])
         ax.invert_yaxis()
-        ax.set_xlabel("Share of the squared standard uncertainty / %")
-        ax.set_xlim(0.0, max([10.0, *(112.0 * share for _, share, _ in bars)]))
-        legend_below(ax)
+        ax.locator_params(axis="x", nbins=6)
+        ax.set_xlabel("Share of the squared uncertainty / %", loc="right")
+        ax.set_xlim(0.0, top)
+        legend_below(ax, at_right=True)
     return ax
+
+
+def label_width(result: RunSetResult) -> float:
+    """Return how much room the names of the bars need, in points."""
+    return 10.0 + 5.1 * max((len(name) for name, _, _ in _bars(result)), default=0)
 
 
 def _bars(result: RunSetResult) -> list[tuple[str, float, str]]:

@@ -7,7 +7,8 @@ from collections.abc import Sequence
 from functools import partial
 from typing import TYPE_CHECKING
 
-from plumbfall.report.house_style import COLOURS, house_style, legend_below, short_name
+from plumbfall.report.ball_symbols import scatter_drops
+from plumbfall.report.house_style import COLOURS, house_style, legend_below
 from plumbfall.report.scales import pretty_unit
 from plumbfall.report.summary import percent
 from plumbfall.report.views import set_scale
@@ -17,13 +18,6 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
 __all__ = ["draw_drops"]
-
-MANY_POINTS = 2000
-"""Above so many points a scatter is drawn as pixels."""
-
-MOST_BALLS = 8
-
-_SYMBOLS = "osD^vP<>"
 
 
 def draw_drops(result: RunSetResult, ax: Axes, viscosity_unit: str | None = None) -> Axes:
@@ -60,9 +54,9 @@ def draw_drops(result: RunSetResult, ax: Axes, viscosity_unit: str | None = None
     with house_style():
         if result.viscosity is not None and with_values:
             _draw_bands(result, ax, scale.factor)
-        shown = [(n, d, y) for n, d in enumerate(result.drops, 1) if (y := height(d)) is not None]
-        _draw_points(shown, ax)
-        absent = [n for n, drop in enumerate(result.drops, 1) if height(drop) is None]
+        drops = list(enumerate(result.drops, 1))
+        scatter_drops(ax, [(n, y, drop) for n, drop in drops if (y := height(drop)) is not None])
+        absent = [n for n, drop in drops if height(drop) is None]
         if absent:
             ax.plot(
                 absent,
@@ -77,6 +71,7 @@ def draw_drops(result: RunSetResult, ax: Axes, viscosity_unit: str | None = None
         ax.set_ylabel(f"Viscosity / {unit}" if with_values else "Fall time / s")
         ax.set_xlabel("Drop, in order")
         ax.xaxis.set_major_locator(MaxNLocator(integer=True))
+        ax.locator_params(axis="y", nbins=5)
         ax.xaxis.set_major_formatter(FuncFormatter(partial(_drop_number, result.drops)))
         ax.set_xlim(0.4, max(len(result.drops), 1) + 0.6)
         legend_below(ax)
@@ -100,38 +95,12 @@ def _draw_bands(result: RunSetResult, ax: Axes, factor: float) -> None:
         edges = [(centre - spread) * factor, (centre + spread) * factor]
         ax.axhspan(*edges, color=COLOURS["amber"], alpha=0.13, lw=0, zorder=0)
         for number, edge in enumerate(edges):
-            label = "single drops: mean ± 2 standard deviations" if number == 0 else None
+            label = "spread of single drops" if number == 0 else None
             ax.axhline(edge, color=COLOURS["amber"], lw=1, ls=(0, (4, 3)), zorder=1, label=label)
     bounds = [measured.low * factor, measured.high * factor]
     ax.axhspan(*bounds, color=COLOURS["petrol"], alpha=0.2, lw=0, zorder=0)
     coverage = percent(measured.coverage_probability)
     for number, bound in enumerate(bounds):
-        label = f"the result's bounds, {coverage}" if number == 0 else None
+        label = f"bounds of the result, {coverage}" if number == 0 else None
         ax.axhline(bound, color=COLOURS["petrol"], lw=1, zorder=1, label=label)
     ax.axhline(measured.value * factor, color=COLOURS["petrol"], lw=2, zorder=1, label="the result")
-
-
-def _draw_points(shown: Sequence[tuple[int, DropResult, float]], ax: Axes) -> None:
-    balls = list(dict.fromkeys(drop.ball for _, drop, _ in shown))
-    pixels = len(shown) > MANY_POINTS
-    size = 4.0 if pixels else 30.0
-    if len(balls) > MOST_BALLS:
-        groups = [("drops", "o", shown)]
-    else:
-        groups = [
-            (f"ball {short_name(ball, 24)}" if ball else "drops", _SYMBOLS[index],
-             [point for point in shown if point[1].ball == ball])
-            for index, ball in enumerate(balls)
-        ]  # fmt: skip
-    for label, symbol, points in groups:
-        ax.scatter(
-            [number for number, _, _ in points],
-            [value for _, _, value in points],
-            s=size,
-            marker=symbol,
-            facecolor=COLOURS["ink"],
-            edgecolor="none",
-            zorder=3,
-            label=label,
-            rasterized=pixels,
-        )

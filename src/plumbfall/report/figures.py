@@ -5,106 +5,152 @@ Matplotlib is imported when something is drawn; pyplot never.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
-from typing import TYPE_CHECKING
+from collections.abc import Callable, Mapping, Sequence
+from typing import TYPE_CHECKING, TypeAlias
 
 from plumbfall.errors import InputError, nearest_name
 from plumbfall.report.budget_figure import draw_budget
+from plumbfall.report.draws_figure import draw_draws
 from plumbfall.report.drops_figure import draw_drops
 from plumbfall.report.house_style import house_style, short_name
+from plumbfall.report.intervals_figure import draw_intervals
+from plumbfall.report.map_figure import draw_map
+from plumbfall.report.residuals_figure import AGAINST, draw_residuals
 from plumbfall.results import RunSetResult
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
-__all__ = [
-    "KINDS",
-    "draw",
-    "new_figure",
-    "page_figure",
-]
+__all__ = ["KINDS", "PLOTS", "draw", "new_figure", "page_figure"]
 
-KINDS: dict[str, Callable[[RunSetResult, Axes, str | None], Axes]] = {
+Draw: TypeAlias = "Callable[[RunSetResult, Axes, str | None], Axes]"
+
+
+def _residuals(against: str) -> Draw:
+    def draw_against(result: RunSetResult, ax: Axes, _unit: str | None) -> Axes:
+        return draw_residuals(result, ax, against)
+
+    return draw_against
+
+
+KINDS: dict[str, Draw] = {
     "drops": draw_drops,
     "budget": draw_budget,
+    "draws": draw_draws,
+    "intervals": draw_intervals,
+    **{f"residuals-{name}": _residuals(name) for name in AGAINST},
 }
-"""Every kind of figure by name."""
+"""Every kind of figure of one run set by name."""
+
+PLOTS = (*(kind for kind in KINDS if "-" not in kind), "residuals", "map")
+"""What may be asked for: ``residuals`` is all three side by side unless one is named."""
 
 MOST_PANELS = 12
 SIZE = (4.9, 3.3)
 
 _POINTS = 72.0  # of an inch
-_PANEL_HEIGHT = 150.0  # points
 
 
 def draw(
-    kind: str, results: Sequence[RunSetResult], viscosity_unit: str | None, ax: Axes | None
+    kind: str,
+    results: Sequence[RunSetResult],
+    viscosity_unit: str | None,
+    ax: Axes | None,
+    against: str | None = None,
 ) -> Figure | Axes:
     """Draw a kind of figure for one or several run sets.
 
     Returns
     -------
     Figure or Axes
-        The Axes that were given, else a new Figure with one panel a run set.
+        The Axes that were given, else a new Figure with one panel a run set; the map shows all
+        sets in one.
 
     Raises
     ------
     InputError
-        If the kind is unknown, there is nothing to draw, one place is given for several sets, or
-        there are too many sets for one figure.
+        If the kind is unknown, there is nothing to draw, one place is given for several sets or
+        panels, or there are too many sets for one figure.
     """
-    if kind not in KINDS:
-        near = nearest_name(kind, KINDS)
-        known = " or ".join(map(repr, KINDS))
-        remedy = f"did you mean {near!r}?" if near else f"write {known}"
-        raise InputError(f"there is no figure of kind {kind!r}", remedy=remedy)
+    _refuse_unknown("figure of kind", kind, PLOTS)
+    if against is not None:
+        _refuse_unknown("axis for residuals named", against, AGAINST)
+    if kind == "map":
+        if ax is not None:
+            return draw_map(results, ax)
+        figure = new_figure()
+        draw_map(results, figure.add_subplot())
+        return figure
+    kinds = [kind]
+    if kind == "residuals":
+        kinds = [f"residuals-{name}" for name in AGAINST if against in (None, name)]
     if ax is not None and len(results) != 1:
         raise InputError("one place for several run sets", remedy="say which with run_set=")
+    if ax is not None and len(kinds) != 1:
+        raise InputError(
+            "one place for several panels", remedy='say which with against="temperature"'
+        )
     if not 1 <= len(results) <= MOST_PANELS:
         raise InputError(
             f"{len(results)} run sets do not fit into one figure",
             remedy=f"say which with run_set= (at most {MOST_PANELS} at once)",
         )
     if ax is not None:
-        return KINDS[kind](results[0], ax, viscosity_unit)
-    figure = new_figure(len(results))
-    for index, result in enumerate(results):
-        with house_style():
-            panel = figure.add_subplot(len(results), 1, index + 1)
-        KINDS[kind](result, panel, viscosity_unit)
-        panel.set_title(short_name(result.name, 60), loc="left", parse_math=False)
+        return KINDS[kinds[0]](results[0], ax, viscosity_unit)
+    figure = new_figure(len(results), len(kinds))
+    for row, result in enumerate(results):
+        for column, one in enumerate(kinds):
+            with house_style():
+                place = row * len(kinds) + column + 1
+                panel = figure.add_subplot(len(results), len(kinds), place)
+            KINDS[one](result, panel, viscosity_unit)
+            if column == 0:
+                panel.set_title(short_name(result.name, 60), loc="left", parse_math=False)
     return figure
 
 
-def new_figure(panels: int = 1) -> Figure:
+def _refuse_unknown(what: str, name: str, known: Sequence[str] | Mapping[str, object]) -> None:
+    if name in known:
+        return
+    near = nearest_name(name, known)
+    listed = ", ".join(map(repr, known))
+    remedy = f"did you mean {near!r}?" if near else f"write one of {listed}"
+    raise InputError(f"there is no {what} {name!r}", remedy=remedy)
+
+
+def new_figure(panels: int = 1, columns: int = 1) -> Figure:
     """Return an empty figure in the house's size, outside pyplot."""
     from matplotlib.figure import Figure
 
-    return Figure(figsize=(SIZE[0], SIZE[1] * panels), layout="constrained")
+    return Figure(figsize=(SIZE[0] * columns, SIZE[1] * panels), layout="constrained")
 
 
-def page_figure(kind: str, result: RunSetResult, viscosity_unit: str | None) -> Figure:
-    """Return a figure of one set for a page, its margins taken from the length of its labels.
+def page_figure(
+    draw_into: Callable[[Axes], object],
+    *,
+    left: float = 50.0,
+    width: float = 4.1,
+    panel_height: float = 140.0,
+) -> Figure:
+    """Return a figure for a page, its margins fixed but for the rows of the legend.
 
     Matplotlib's own layout measures every text several times, which a page of a hundred run sets
-    cannot wait for.
+    cannot wait for. ``left`` and ``panel_height`` are in points, ``width`` is in inches.
     """
     from matplotlib.figure import Figure
 
-    figure = Figure(figsize=SIZE)
     with house_style():
+        figure = Figure(figsize=(width, SIZE[1]))
         ax = figure.add_axes((0.2, 0.3, 0.7, 0.6))
-        KINDS[kind](result, ax, viscosity_unit)
-        labels = [text.get_text() for text in ax.get_yticklabels()]
-        longest = max((len(label) for label in labels), default=0)
-    width = SIZE[0] * _POINTS
-    left = longest * 5.1 + (10.0 if kind == "budget" else 26.0)
-    legend_rows = (len(ax.get_legend_handles_labels()[1]) + 1) // 2
-    bottom = 42.0 + 11.5 * legend_rows
-    height = bottom + _PANEL_HEIGHT + 8.0
-    figure.set_size_inches(SIZE[0], height / _POINTS)
+        draw_into(ax)
+    across = width * _POINTS
+    legend = ax.get_legend()
+    legend_rows = 0 if legend is None else (len(legend.get_texts()) + 1) // 2
+    bottom = 34.0 + (8.0 + 11.5 * legend_rows if legend_rows else 0.0)
+    height = bottom + panel_height + 8.0
+    figure.set_size_inches(width, height / _POINTS)
     ax.set_position(
-        (left / width, bottom / height, 1.0 - (left + 8.0) / width, _PANEL_HEIGHT / height)
+        (left / across, bottom / height, 1.0 - (left + 8.0) / across, panel_height / height)
     )
     return figure

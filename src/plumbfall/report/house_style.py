@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from contextlib import contextmanager
+from contextvars import ContextVar
 from typing import TYPE_CHECKING, Any
 
 from plumbfall.report.summary import visible
@@ -23,12 +24,20 @@ COLOURS = {
 }
 """Told apart by colour-blind readers and, with hatches and shapes, in monochrome."""
 
+_entered: ContextVar[bool] = ContextVar("house style entered", default=False)
+
 
 @contextmanager
 def house_style() -> Iterator[None]:
-    """Draw in the house's style, whatever the reader's own settings are."""
+    """Draw in the house's style, whatever the reader's own settings are.
+
+    Within another ``with house_style()`` it costs nothing: a page of many drawings enters it once.
+    """
     import matplotlib as mpl
 
+    if _entered.get():
+        yield
+        return
     ink, muted = COLOURS["ink"], COLOURS["muted"]
     style: dict[Any, Any] = {
         "font.family": ["DejaVu Sans"],
@@ -51,20 +60,26 @@ def house_style() -> Iterator[None]:
         "legend.frameon": False,
         "legend.fontsize": 8.0,
         "hatch.linewidth": 0.6,
+        "svg.fonttype": "none",
+        "svg.hashsalt": "plumbfall",
     }
-    with mpl.rc_context(style):
-        yield
+    token = _entered.set(True)
+    try:
+        with mpl.rc_context(style):
+            yield
+    finally:
+        _entered.reset(token)
 
 
-def legend_below(ax: Axes) -> None:
+def legend_below(ax: Axes, *, at_right: bool = False) -> None:
     """Put the legend under the axes; names in it are never taken for formulas."""
     handles, labels = ax.get_legend_handles_labels()
     if handles:
         legend = ax.legend(
             handles,
             labels,
-            loc="upper left",
-            bbox_to_anchor=(-0.02, -0.19),
+            loc="upper right" if at_right else "upper left",
+            bbox_to_anchor=(1.02 if at_right else -0.02, -0.19),
             ncols=2,
             handlelength=1.6,
             columnspacing=1.2,

@@ -10,10 +10,13 @@ from typing import TYPE_CHECKING, Any
 
 from plumbfall._version import __version__
 from plumbfall.report.equipment import bench_conditions, equipment_view, identification
+from plumbfall.report.house_style import house_style
 from plumbfall.report.json_report import json_text, report_document
-from plumbfall.report.observed import observed, reading_remarks
+from plumbfall.report.observed import observed
+from plumbfall.report.page_pictures import map_picture
 from plumbfall.report.page_sets import overview, set_page
 from plumbfall.report.scales import pretty_unit
+from plumbfall.report.set_tables import unused_view
 from plumbfall.report.summary import counted, visible
 from plumbfall.report.temperature_fit_view import fit_facts, fit_heading
 from plumbfall.report.words import CAUTIONS, NOT_SUPPLIED, STATEMENTS, Explainer
@@ -25,25 +28,48 @@ if TYPE_CHECKING:
 
 __all__ = ["page", "report_identity", "template"]
 
+PARTS = (
+    ("who", "Laboratory, report and sample"),
+    ("how", "Bench and equipment"),
+    ("data", "Data this report stands on"),
+    ("say", "Statements"),
+    ("care", "Cautions"),
+)
+"""The parts that follow the run sets: the anchor and the heading of each."""
+
+_RUNNING_FOOT = (
+    '@page {{ @bottom-left {{ content: "Run-set report {identity}"; font-size: 8pt; }} }}\n'
+)
+
 
 def page(report: Report) -> str:
     """Return the report as a page of HTML, the same byte for byte for the same report."""
-    style = _read("page.css")
+    identity = report_identity(report)
+    style = _read("page.css") + _RUNNING_FOOT.format(identity=identity)
     digest = base64.b64encode(hashlib.sha256(style.encode("utf-8")).digest()).decode("ascii")
     seen = observed(report.timings)
     several = len(report) > 1
+    results = [view.result for view in report]
+    with house_style():
+        sets = [
+            set_page(result, index, report.bench, seen.get(result.name))
+            for index, result in enumerate(results, 1)
+        ]
+        where = map_picture(results)
+    if where is not None and not several:
+        sets[0].pictures.append(where)
     return template("page.html.j2").render(
         style=_markup(style),
         style_hash=digest,
         title=report.bench.title or "Viscosity by falling ball",
-        identity=report_identity(report),
+        identity=identity,
         version=__version__,
         number=report.bench.report.get("number") or NOT_SUPPLIED,
         overview=overview(report) if several else None,
-        sets=[
-            set_page(view.result, index, report.bench, seen.get(view.name))
-            for index, view in enumerate(report, 1)
-        ],
+        map=where,
+        sets=sets,
+        parts=PARTS,
+        date=str(report.date or NOT_SUPPLIED),
         several=several,
         fits=[
             (fit_heading(fit), fit_facts(fit, report.bench.viscosity_unit))
@@ -54,7 +80,7 @@ def page(report: Report) -> str:
         equipment=equipment_view(report.bench),
         report=report,
         rows_sum=rows_sum(report),
-        remarks=reading_remarks(report.timings),
+        unused=unused_view(results),
         statements=STATEMENTS,
         cautions=CAUTIONS,
         explain=Explainer(),

@@ -45,6 +45,7 @@ def report_document(report: Report) -> dict[str, Any]:
         "software": {"version": __version__},
         "inputs": [{"path": path, "sha256": sha256} for path, sha256 in report.inputs],
         "seed": int(report.seed),
+        "date": None if report.date is None else report.date.isoformat(),
         "rows": {name: int(report.rows[name]) for name in ("read", "used", "void", "excluded")},
         "run_sets": [_run_set(view.result) for view in report],
         "correlation": {

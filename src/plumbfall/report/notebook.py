@@ -5,7 +5,8 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from plumbfall.report.html import rows_sum, template
-from plumbfall.report.page_sets import overview_row, pictures
+from plumbfall.report.page_pictures import pictures
+from plumbfall.report.page_sets import overview_row
 from plumbfall.report.summary import counted, percent
 
 if TYPE_CHECKING:

@@ -4,10 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
-from plumbfall.report.figures import page_figure
 from plumbfall.report.observed import Observed
+from plumbfall.report.page_pictures import Picture, pictures, residual_pictures
 from plumbfall.report.scales import CELSIUS
 from plumbfall.report.set_tables import (
     ball_view,
@@ -16,8 +16,16 @@ from plumbfall.report.set_tables import (
     drop_view,
     finding_evidence,
 )
-from plumbfall.report.svg import inline_svg
-from plumbfall.report.views import Fact, Headline, TableView, facts, headline, set_scale
+from plumbfall.report.views import (
+    BOTH_WAYS,
+    Fact,
+    Headline,
+    TableView,
+    facts,
+    headline,
+    set_scale,
+)
+from plumbfall.report.ways_table import ways_view
 from plumbfall.report.words import NOT_SUPPLIED, VERDICTS
 from plumbfall.results import Finding, RunSetResult
 
@@ -27,21 +35,11 @@ if TYPE_CHECKING:
 
 __all__ = [
     "OverviewRow",
-    "Picture",
     "SetPage",
     "overview",
     "overview_row",
-    "pictures",
     "set_page",
 ]
-
-
-@dataclass(frozen=True, slots=True)
-class Picture:
-    """A drawing as markup, with what is said below it."""
-
-    svg: Any
-    caption: str
 
 
 @dataclass(frozen=True, slots=True)
@@ -56,6 +54,7 @@ class SetPage:
     headline: Headline | None
     facts: list[Fact]
     findings: list[tuple[Finding, str]]
+    notes: list[tuple[Finding, str]]
     pictures: list[Picture]
     tables: list[TableView]
     conditions: list[Fact]
@@ -106,8 +105,12 @@ def set_page(result: RunSetResult, index: int, bench: Bench, seen: Observed | No
         tables.append(correction_view(result))
     if result.budget:
         tables.append(budget_view(result, scale))
+    if (both := ways_view(result, scale)) is not None:
+        tables.append(both)
     if seen is not None and seen.marks:
         tables.insert(1, _marks_view(result, seen.marks))
+    found = [(finding, finding_evidence(finding)) for finding in _by_weight(result.findings)]
+    both_ways = "" if both is None else BOTH_WAYS  # the table says it better
     return SetPage(
         anchor=_anchor(index),
         name=result.name,
@@ -115,9 +118,10 @@ def set_page(result: RunSetResult, index: int, bench: Bench, seen: Observed | No
         verdict=VERDICTS.get(result.status, result.status),
         apparent=any(finding.code == "shear-dependence" for finding in result.findings),
         headline=_headline(result, viscosity_unit),
-        facts=facts(result, scale),
-        findings=[(finding, finding_evidence(finding)) for finding in _by_weight(result.findings)],
-        pictures=pictures(result, index, viscosity_unit),
+        facts=[fact for fact in facts(result, scale) if fact.label != both_ways],
+        findings=[one for one in found if one[0].severity != "note"],
+        notes=[one for one in found if one[0].severity == "note"],
+        pictures=pictures(result, index, viscosity_unit) + residual_pictures(result, index),
         tables=tables,
         conditions=_conditions(result, bench, seen or Observed()),
     )
@@ -136,36 +140,6 @@ def _headline(result: RunSetResult, viscosity_unit: str | None) -> Headline | No
 def _by_weight(findings: tuple[Finding, ...]) -> list[Finding]:
     order = {"error": 0, "warning": 1, "note": 2}
     return sorted(findings, key=lambda finding: order.get(finding.severity, 3))
-
-
-def pictures(result: RunSetResult, index: int, viscosity_unit: str | None) -> list[Picture]:
-    """Return the drawings of a run set as far as there is something to draw."""
-    drawn = []
-    if result.drops:
-        what = "Drops in order, each at the set's temperature, with the spread of single drops "
-        what += "(dashed) and the bounds of the result (solid)."
-        if result.viscosity is None:
-            what = "Drops in order; the set has no viscosity to show bounds of."
-        drawn.append(_picture(result, index, viscosity_unit, "drops", what))
-    if result.budget:
-        what = "What the uncertainty is made of. More drops shrink only what belongs to one drop, "
-        what += "more balls also what belongs to one ball."
-        drawn.append(_picture(result, index, viscosity_unit, "budget", what))
-    return drawn
-
-
-def _picture(
-    result: RunSetResult, index: int, viscosity_unit: str | None, kind: str, caption: str
-) -> Picture:
-    import markupsafe
-
-    figure = page_figure(kind, result, viscosity_unit)
-    where = "The numbers are in the table of drops." if kind == "drops" else (
-        "The numbers are in the table of the uncertainty budget."
-    )  # fmt: skip
-    title = f"{kind.capitalize()} of run set {result.name[:60]}"
-    svg = inline_svg(figure, f"{_anchor(index)}-{kind}", title, f"{caption} {where}")
-    return Picture(markupsafe.Markup(svg), caption)  # inline_svg escapes what it is given
 
 
 def _marks_view(result: RunSetResult, marks: dict[tuple[str, int, int], str]) -> TableView:

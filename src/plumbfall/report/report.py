@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import dataclasses
+import datetime as dt
 import os
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
@@ -48,6 +49,8 @@ class Report:
     """
 
     reduced: Reduced
+    date: dt.date | None = None
+    """Day of the report as given; never taken from the clock."""
 
     @property
     def names(self) -> tuple[str, ...]:
@@ -214,18 +217,27 @@ class Report:
         write_folder(folder, files | self._csv_files())
 
     def plot(
-        self, kind: str = "drops", run_set: str | None = None, ax: Axes | None = None
+        self,
+        kind: str = "drops",
+        run_set: str | None = None,
+        ax: Axes | None = None,
+        *,
+        against: str | None = None,
     ) -> Figure | Axes:
-        """Draw the ``drops`` in order or the uncertainty ``budget``.
+        """Draw a figure of the report; save it with ``.savefig("name.png")``, ``.svg`` or ``.pdf``.
 
         Parameters
         ----------
         kind : str
-            ``drops`` or ``budget``.
+            ``drops`` in order with scatter and bounds, ``budget`` of the uncertainty, ``draws`` of
+            Monte Carlo, ``residuals`` against temperature, diameter ratio and Reynolds number,
+            ``intervals`` between three or more marks, or the ``map`` of the drag factor.
         run_set : str, optional
-            Name of the set; without it the sets are drawn one below the other.
+            Name of the set; without it the sets are drawn one below the other, on the map together.
         ax : Axes, optional
             Where to draw one set; without it a Figure is made.
+        against : str, optional
+            For residuals: ``temperature``, ``diameter_ratio`` or ``reynolds`` alone.
 
         Returns
         -------
@@ -235,12 +247,13 @@ class Report:
         Raises
         ------
         InputError
-            If the kind or the set is unknown, or if one place is given for several sets.
+            If the kind or the set is unknown, or if one place is given for several panels.
         """
         from plumbfall.report.figures import draw
 
         views = tuple(self) if run_set is None else (self[run_set],)
-        return draw(kind, [view.result for view in views], self.bench.viscosity_unit, ax)
+        results = [view.result for view in views]
+        return draw(kind, results, self.bench.viscosity_unit, ax, against)
 
     def text(self) -> str:
         """Return the report as plain text, 80 columns wide."""

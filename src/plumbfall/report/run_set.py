@@ -77,9 +77,11 @@ class RunSetView:
 
         return drops_table([self.result])
 
-    def plot(self, kind: str = "drops", ax: Axes | None = None) -> Figure | Axes:
-        """Draw the ``drops`` or the ``budget`` of this set; see :meth:`Report.plot`."""
-        return self.report.plot(kind, run_set=self.name, ax=ax)
+    def plot(
+        self, kind: str = "drops", ax: Axes | None = None, *, against: str | None = None
+    ) -> Figure | Axes:
+        """Draw a figure of this set; see :meth:`Report.plot` for the kinds."""
+        return self.report.plot(kind, run_set=self.name, ax=ax, against=against)
 
     def __repr__(self) -> str:
         return f"<run set: {self.summary}>"

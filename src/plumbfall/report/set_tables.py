@@ -9,6 +9,7 @@ from plumbfall.report.rounding import NO_VALUE
 from plumbfall.report.scales import CELSIUS, Scale, scale_for
 from plumbfall.report.summary import counted
 from plumbfall.report.views import TableView, dof_text, drop_place
+from plumbfall.report.words import NOT_SUPPLIED
 from plumbfall.results import BudgetLine, DropResult, Finding, RunSetResult
 
 __all__ = [
@@ -18,6 +19,7 @@ __all__ = [
     "correction_view",
     "drop_view",
     "finding_evidence",
+    "unused_view",
     "why_not_used",
 ]
 
@@ -100,6 +102,32 @@ def _remarks(drop: DropResult) -> str:
 def why_not_used(drop: DropResult) -> str:
     """Return ``void``, ``excluded``, or that a drop recorded as used has no viscosity."""
     return "no viscosity" if drop.status == "used" else drop.status
+
+
+def unused_view(results: Iterable[RunSetResult]) -> TableView:
+    """Return every row that is in no result, with the reason or the rule."""
+    rows = tuple(
+        (
+            result.name,
+            str(drop.drop),
+            drop.ball,
+            f"{os.path.basename(drop.file)}:{drop.line}" if drop.file else str(drop.line),
+            _as_recorded(drop.time),
+            why_not_used(drop),
+            drop.note or NOT_SUPPLIED,
+        )
+        for result in results
+        for drop in result.drops
+        if not drop.used
+    )
+    return TableView(
+        caption="Rows that are in no result",
+        headings=(
+            "Run set", "Drop", "Ball", "File and line", "Time / s", "Status", "Reason or rule",
+        ),
+        kinds="tnttntt",
+        rows=rows,
+    )  # fmt: skip
 
 
 def _mark(drop: DropResult, named: set[int]) -> str:

@@ -10,7 +10,18 @@ from plumbfall.report.scales import CELSIUS, Scale, scale_for, viscosity_scale
 from plumbfall.report.summary import basis, counted, is_apparent, percent, way
 from plumbfall.results import Conformity, Measured, MonteCarloResult, Quantity, RunSetResult
 
-__all__ = ["Fact", "Headline", "TableView", "drop_place", "facts", "headline", "set_scale"]
+__all__ = [
+    "BOTH_WAYS",
+    "Fact",
+    "Headline",
+    "TableView",
+    "drop_place",
+    "facts",
+    "headline",
+    "set_scale",
+]
+
+BOTH_WAYS = "Linear against Monte Carlo"
 
 
 @dataclass(frozen=True, slots=True)
@@ -166,7 +177,7 @@ def _of_draws(linear: Measured, drawn: MonteCarloResult, scale: Scale) -> Fact:
     text += f" of {counted(drawn.draws, 'draw')}"
     if drawn.stable is False:
         text += ", too few for bounds that stand"
-    return Fact("Linear against Monte Carlo", text, scale.unit, "monte-carlo")
+    return Fact(BOTH_WAYS, text, scale.unit, "monte-carlo")
 
 
 def dof_text(dof: float) -> str:

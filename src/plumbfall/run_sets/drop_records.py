@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 from typing import Any
 
 import numpy as np
@@ -68,10 +69,34 @@ def drop_results(
         *(table[name].tolist() for name in ("line", "drop", "time_s", "temperature_K")),
         strict=True,
     )
+    distances = [np.array([mark.value for mark in tube.marks]) for tube in bench.tubes.values()]
+    clocks = timings.marks_s
+
+    def intervals(row: int, at: int | None) -> tuple[float, ...]:
+        if clocks is None or at is None:
+            return ()
+        return _interval_ratios(distances[selection.cells.tube[selection.cell[at]]], clocks[row])
+
     return tuple(
-        _drop(row, place.get(row), record, columns, selection, ball_names, mean, codes)
+        replace(
+            _drop(row, place.get(row), record, columns, selection, ball_names, mean, codes),
+            interval_ratios=intervals(row, place.get(row)),
+        )
         for row, *record in recorded
     )
+
+
+def _interval_ratios(marks: NDArray[np.float64], clock: NDArray[np.float64]) -> tuple[float, ...]:
+    """Return the mean speed of each interval over that from the first to the last mark read."""
+    clock = clock[: len(marks)]
+    marks = marks[: len(clock)]
+    read = np.flatnonzero(np.isfinite(clock))
+    if len(read) < 3:
+        return ()
+    first, last = read[0], read[-1]
+    whole = (marks[last] - marks[first]) / (clock[last] - clock[first])
+    with np.errstate(divide="ignore", invalid="ignore"):
+        return tuple((np.diff(marks) / np.diff(clock) / whole).tolist())
 
 
 def _others(columns: DropColumns, at: int) -> float:
@@ -118,4 +143,5 @@ def _drop(
         status=status,
         note=note,
         findings=tuple(codes.get(drop, ())),
+        diameter_ratio=computed(columns.diameter_ratio),
     )
