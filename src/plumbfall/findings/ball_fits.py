@@ -12,7 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.findings.ball_means import BallMeans, Batch
-from plumbfall.findings.significance import f_p_value, t_p_value
+from plumbfall.findings.significance import FEW, f_p_value, t_p_value
 
 __all__ = ["BallFits", "Trend", "ball_fits"]
 
@@ -112,7 +112,8 @@ def _fit(fits: BallFits, balls: BallMeans, batch: Batch) -> None:
     of_scatter = (1 - 1 / k) * batch.scatter.sum(axis=1)
     with np.errstate(invalid="ignore", divide="ignore"):
         # Welch and Satterthwaite: what the bench sheet declares is taken as known
-        dof = batch.scatter_dof * ((of_scatter + apart.sum(axis=1)) / of_scatter) ** 2
+        more = ((of_scatter + apart.sum(axis=1)) / of_scatter) ** 2
+        dof = np.where(batch.scatter_dof >= FEW, batch.scatter_dof * more, batch.scatter_dof)
     fits.dof[at] = k - 1
     fits.scatter_dof[at] = dof
     inverse: Numbers = np.asarray(np.linalg.inv(batch.covariance), dtype=float)

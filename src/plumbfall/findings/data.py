@@ -17,6 +17,7 @@ from plumbfall.findings.limits import Limits
 from plumbfall.findings.residuals import Residuals, residuals
 from plumbfall.findings.significance import level_of_each
 from plumbfall.findings.suspects import Pairs, Suspects, pairs, suspects
+from plumbfall.findings.trends import Trends, Warmth, change_of, trends
 from plumbfall.measurement.columns import DropColumns
 from plumbfall.measurement.ends import Ends
 from plumbfall.measurement.inputs import Inputs
@@ -148,6 +149,44 @@ class RunData:
     def suspect_pairs(self) -> Pairs:
         """Each run set's two farthest drops on one side."""
         return pairs(self.residuals, self.suspects)
+
+    @cached_property
+    def warmth(self) -> Warmth:
+        """Temperatures of the drops, and what is known of them and of the liquids' slopes."""
+        n, cells = len(self.names), self.selection.cells
+        entry = self.inputs.roles["slope"].entry
+        u = np.append(self.inputs.u, 0.0)[entry]
+        reading, slope, slope_u = np.zeros(n), np.zeros(n), np.zeros(n)
+        for of_set, of_cell in (
+            (reading, self.inputs.per_reading),
+            (slope, self.inputs.roles["slope"].value),
+            (slope_u, u),
+        ):
+            of_set[cells.run_set] = of_cell
+        return Warmth(self.columns.temperature, reading, slope, slope_u)
+
+    @cached_property
+    def trends(self) -> Trends:
+        """Whether the drops of each set drift, and with what."""
+        return trends(self.residuals, self.order, self.warmth)
+
+    @cached_property
+    def temperature_change(self) -> NDArray[np.float64]:
+        """Change of the temperature about each drop, from drop to drop, shape (drops,) [K]."""
+        return change_of(self.columns.temperature, self.order, self.selection.run_set)
+
+    @cached_property
+    def settling(self) -> NDArray[np.bool_]:
+        """Whether the first drops approach the others as a bath settles, shape (run sets,).
+
+        Not by the first drop alone, and better than by a straight line.
+        """
+        found = self.trends
+        return np.asarray(
+            (found.settling_p_value < self.level)
+            & (found.settling_beside < APART)
+            & (found.settling.rest < found.drift.rest)
+        )
 
     @cached_property
     def order(self) -> NDArray[np.float64]:

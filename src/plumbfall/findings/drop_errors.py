@@ -37,8 +37,8 @@ class DropErrors:
     ``group_n`` of shape (groups,). ``declared`` and ``variance`` are of shape (drops,);
     ``within_sd`` and ``within_dof``, of shape (run sets,), are what drops of equal equipment say
     of their scatter; ``undeclared`` is how much variance they show beyond what is declared, and
-    ``scatter_dof`` how well the variances are known: infinite where drops scatter as declared, 0
-    where no drop is repeated, so that a bad drop and a bad ball are one.
+    ``scatter_dof`` how well the variances are known, 0 where no drop is repeated and the bench has
+    no known repeatability, so that a bad drop and a bad ball are one.
     """
 
     value: Numbers
@@ -131,7 +131,6 @@ def drop_errors(
         more = np.maximum(known.relative.value**2 - mean, 0.0)
         undeclared = np.where(within_dof > 0, undeclared, more)
     alone = 0.0 if known is None else known.dof
-    scatter_dof = np.where(undeclared > 0, within_dof, np.inf)
     variance = declared + undeclared[run_set]
     return DropErrors(
         value=value,
@@ -146,7 +145,7 @@ def drop_errors(
         within_sd=np.where(within_dof > 0, repeated.within_sd, np.nan),
         within_dof=within_dof,
         undeclared=undeclared,
-        scatter_dof=np.where(within_dof > 0, scatter_dof, alone),
+        scatter_dof=np.where(within_dof > 0, within_dof, alone),
     )
 
 

@@ -33,6 +33,9 @@ class Limits:
     slope_extrapolation
         Largest distance of the reference temperature from those a law was fitted to (common
         practice, no source).
+    equilibration_times
+        Time constants of the bore to wait after filling: five leave 1 % (common practice, no
+        source).
     model_bound
         Largest half-width of the drag law itself before the Reynolds number is warned of.
     end_clearance
@@ -68,6 +71,7 @@ class Limits:
     temperature_agreement: float = 0.1
     temperature_spread: float = 1.0
     slope_extrapolation: float = 2.0
+    equilibration_times: float = 5.0
     model_bound: float = 0.01
     end_clearance: float = 1.0
     run_in: float = 2e-3

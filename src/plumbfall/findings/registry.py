@@ -14,6 +14,8 @@ from plumbfall.findings.data import Detector, RunData
 from plumbfall.findings.dates import calibration_overdue, reference_expired
 from plumbfall.findings.densities import density_implausible, radius_as_diameter
 from plumbfall.findings.diameters import nominal_diameter
+from plumbfall.findings.drifts import temperature_lag, temperature_trend, time_trend
+from plumbfall.findings.equilibrium import first_drops_off, not_equilibrated
 from plumbfall.findings.gaps import default_gravity, missing_uncertainty
 from plumbfall.findings.geometry import (
     end_near,
@@ -52,6 +54,11 @@ DETECTORS: tuple[Detector, ...] = (
     density_implausible,
     outlier,
     outlier_pair,
+    not_equilibrated,
+    first_drops_off,
+    time_trend,
+    temperature_trend,
+    temperature_lag,
     balls_disagree,
     shear_dependence,
     diameter_ratio_trend,

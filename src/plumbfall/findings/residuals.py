@@ -22,17 +22,23 @@ Numbers = NDArray[np.float64]
 Codes = NDArray[np.intp]
 
 
+SEEN = 1e-9
+"""Part of a covariate's squares that must be left after the means for it to be seen at all."""
+
+
 @dataclass(frozen=True, slots=True)
 class Slope:
     """Change of ln(viscosity) with a covariate, arrays of shape (run sets,).
 
     ``value`` per unit of the covariate, its standard ``error`` and degrees of freedom; NaN and 0
-    where the set has too few drops, or the covariate does not change within it.
+    where the set has too few drops, or the covariate does not change within it. ``rest`` is the
+    weighted sum of squares that the covariate leaves, infinite there.
     """
 
     value: Numbers
     error: Numbers
     dof: NDArray[np.intp]
+    rest: Numbers
 
 
 @dataclass(frozen=True, slots=True)
@@ -77,7 +83,9 @@ class Residuals:
         mean = np.where(self.by_ball, 0.0, np.nan_to_num(mean))
         return np.asarray(taken - self.ones * mean[self.run_set])
 
-    def slope(self, covariate: Numbers, beside: Numbers | None = None) -> Slope:
+    def slope(
+        self, covariate: Numbers, beside: Numbers | None = None, of: Numbers | None = None
+    ) -> Slope:
         """Regress on a covariate of the drops; with ``beside``, next to a second one.
 
         Parameters
@@ -86,6 +94,8 @@ class Residuals:
             NaN makes a set's slope unknown.
         beside : array, shape (drops,), optional
             A further covariate whose effect is taken off first.
+        of : array, shape (drops,), optional
+            What is regressed; the drops' own values if not given.
 
         Returns
         -------
@@ -95,32 +105,38 @@ class Residuals:
         n = len(self.by_ball)
 
         def total(values: Numbers) -> Numbers:
-            return np.asarray(group_sums(values, self.run_set, n))
+            return group_sums(values, self.run_set, n)
 
-        y, left = self.errors.value, self.left
+        y, left, squares = self.errors.value, self.left, self.squares
+        if of is not None:
+            y = self._centred(of)
+            left = self.project(y)
+            squares = total(y * left)
         covariate = self._centred(covariate)
-        projected = self.project(covariate)
-        squares, dof = self.squares, self.dof - 1
+        projected, dof = self.project(covariate), self.dof - 1
         xx = total(covariate * projected)
         with np.errstate(invalid="ignore", divide="ignore"):
             if beside is not None:
                 beside = self._centred(beside)
                 other = self.project(beside)
                 zz = total(beside * other)
-                usable = zz > 1e-9 * total(beside**2 / self.errors.variance)
-                xz, zy = total(covariate * other), total(beside * left)
-                part = np.where(usable, xz / zz, 0.0)
-                squares = squares - np.where(usable, zy**2 / zz, 0.0)
+                usable = zz > SEEN * total(beside**2 / self.errors.variance)
+                part = np.where(usable, total(covariate * other) / zz, 0.0)
+                squares = squares - np.where(usable, total(beside * left) ** 2 / zz, 0.0)
                 dof = dof - usable
                 projected = projected - part[self.run_set] * other
-                xx = xx - part * xz
+                xx = total(covariate * projected)
             xy = total(projected * y)
-            seen = xx > 1e-9 * total(covariate**2 / self.errors.variance)
-            value = np.where(seen, xy / xx, np.nan)
-            dof = np.where(seen, np.maximum(dof, 0), 0)
-            scale = np.maximum(squares - xy**2 / xx, 0.0) / dof
-            error = np.where(dof > 0, np.sqrt(scale / xx), np.nan)
-        return Slope(value=value, error=error, dof=dof)
+            seen = (xx > SEEN * total(covariate**2 / self.errors.variance)) & (dof > 0)
+            rest = np.maximum(squares - xy**2 / xx, 0.0)
+            error = np.sqrt(rest / dof / xx)
+            value = xy / xx
+        return Slope(
+            value=np.where(seen, value, np.nan),
+            error=np.where(seen, error, np.nan),
+            dof=np.where(seen, dof, 0),
+            rest=np.where(seen, rest, np.inf),
+        )
 
     def _centred(self, covariate: Numbers) -> Numbers:
         n = len(self.by_ball)

@@ -15,7 +15,7 @@ from scipy.special import fdtrc, nctdtrinc, stdtr, stdtrit
 
 from plumbfall.findings.limits import Limits
 
-__all__ = ["POWER", "TESTS", "detectable", "f_p_value", "level_of_each", "t_p_value"]
+__all__ = ["FEW", "POWER", "TESTS", "detectable", "f_p_value", "level_of_each", "t_p_value"]
 
 TESTS = (
     "time-trend",
@@ -33,6 +33,12 @@ TESTS = (
     "slope-unknown",
 )
 """Tests that share ``warning_level``. A detector that judges by a p-value stands here once."""
+
+FEW = 4
+"""With fewer degrees of freedom the formula of Welch and Satterthwaite is not applied.
+
+It would trust a scatter that is small by chance.
+"""
 
 POWER = 0.80
 """A detectable effect is one that is found this often (common practice, no source)."""

@@ -1,0 +1,142 @@
+"""Drift through a run set, drops that follow the thermometer, and a lagging thermometer."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+import numpy as np
+from numpy.typing import NDArray
+
+from plumbfall.findings.data import Found, RunData
+from plumbfall.findings.significance import detectable
+from plumbfall.results import Finding
+from plumbfall.uncertainty.coverage import coverage_factor
+
+__all__ = ["temperature_lag", "temperature_trend", "time_trend"]
+
+TELLS = 0.05
+"""Significance by which one of two trends is preferred to the other; no warning comes of it."""
+
+
+def time_trend(data: RunData) -> Iterator[Found]:
+    """Find run sets whose viscosity rises or falls from drop to drop."""
+    trends = data.trends
+    shown = (trends.drift_p_value < data.level) & ~data.settling & ~_by_warmth(data)
+    for run_set in np.flatnonzero(shown):
+        steps = float(data.order[data.selection.run_set == run_set].max())
+        drift = float(trends.drift.value[run_set]) * steps
+        error = float(trends.drift_error[run_set]) * steps
+        dof = float(trends.drift.dof[run_set])
+        seen = float(detectable(standard_error=error, dof=dof, level=data.level))
+        half = float(coverage_factor(dof=dof, probability=0.95)) * error
+        bounds = data.outputs.of("viscosity")
+        part = abs(drift) * bounds.value[run_set] / bounds.expanded[run_set]
+        yield (
+            int(run_set),
+            Finding(
+                code="time-trend",
+                severity="warning",
+                statistic=drift / error,
+                p_value=float(trends.drift_p_value[run_set]),
+                effect=drift,
+                detectable=seen,
+                message=f"the viscosity {'rises' if drift > 0 else 'falls'} by "
+                f"{100 * abs(drift):.2f} % from the first drop to the last (95 % interval "
+                f"{100 * (drift - half):+.2f} to {100 * (drift + half):+.2f} %), {part:.1f} times "
+                "the expanded uncertainty",
+                remedy="look for evaporation, water taken up, settling or a bath that drifts; "
+                "repeat the run set with fresh liquid at a steady temperature",
+            ),
+        )
+
+
+def temperature_trend(data: RunData) -> Iterator[Found]:
+    """Find run sets whose drops follow their temperatures otherwise than the slope given says."""
+    trends = data.trends
+    for run_set in np.flatnonzero(_warming(data)):
+        rest, error = float(trends.warming[run_set]), float(trends.warming_error[run_set])
+        slope = float(data.warmth.slope[run_set])
+        span = float(data.temperature_range[run_set])
+        liquid = _liquid(data, int(run_set))
+        seen = detectable(
+            standard_error=error * span, dof=trends.warming_dof[run_set], level=data.level
+        )
+        drift = trends.drift_p_value[run_set] < data.level
+        also = "; that accounts for their drift in time too" if drift else ""
+        given = f"where {100 * slope:.2g} %/K is given" if slope else "and no slope is given"
+        yield (
+            int(run_set),
+            Finding(
+                code="temperature-trend",
+                severity="warning",
+                statistic=rest / error,
+                p_value=float(trends.warming_p_value[run_set]),
+                effect=rest * span,
+                detectable=float(seen),
+                message=f"the drops change by {100 * (slope + rest):.2g}({100 * error:.1g}) %/K "
+                f"with their temperatures {given}; over the {span:.2f} K of this set that leaves "
+                f"{100 * abs(rest) * span:.2f} % of viscosity uncorrected{also}",
+                remedy=f"check viscosity_slope of [liquid.{liquid}], and that the thermometer "
+                "stands in the liquid beside the balls' path"
+                if slope
+                else f"add viscosity_slope to [liquid.{liquid}], and keep the temperature steady",
+            ),
+        )
+
+
+def temperature_lag(data: RunData) -> Iterator[Found]:
+    """Find drops that follow the change of the temperature: the thermometer lags the liquid."""
+    trends = data.trends
+    lagging = (trends.lag_p_value < data.level) & ~_warming(data)
+    for run_set in np.flatnonzero(lagging):
+        value, error = float(trends.lag.value[run_set]), float(trends.lag.error[run_set])
+        slope = float(data.warmth.slope[run_set])
+        at = data.selection.run_set == run_set
+        change = np.ptp(data.temperature_change[at])
+        late = f", some {abs(value / slope):.1f} drops late" if slope else ""
+        yield (
+            int(run_set),
+            Finding(
+                code="temperature-trend",
+                severity="warning",
+                statistic=value / error,
+                p_value=float(trends.lag_p_value[run_set]),
+                effect=value * change,
+                detectable=float(
+                    detectable(
+                        standard_error=error * change,
+                        dof=trends.lag.dof[run_set],
+                        level=data.level,
+                    )
+                ),
+                message="the drops follow how fast the temperature changes and not how high it "
+                f"reads: the thermometer lags the liquid, or the liquid the bath{late}; that is "
+                f"{100 * abs(value) * change:.2f} % of viscosity within this set",
+                remedy="put the thermometer into the liquid beside the balls' path, and wait until "
+                "it is steady before dropping",
+            ),
+        )
+
+
+def _warming(data: RunData) -> NDArray[np.bool_]:
+    """Whether drops follow temperature, and not the time that goes with it."""
+    trends = data.trends
+    by_time = (
+        (trends.drift_p_value < data.level)
+        & (trends.drift_beside < TELLS)
+        & (trends.warming_beside >= TELLS)
+    )
+    found: NDArray[np.bool_] = (trends.warming_p_value < data.level) & ~by_time
+    return found
+
+
+def _by_warmth(data: RunData) -> NDArray[np.bool_]:
+    """Whether temperature accounts for the drift."""
+    found: NDArray[np.bool_] = _warming(data) & (data.trends.drift_beside >= TELLS)
+    return found
+
+
+def _liquid(data: RunData, run_set: int) -> str:
+    cells = data.selection.cells
+    first = np.flatnonzero(cells.run_set == run_set)[0]
+    return str(data.liquids[cells.liquid[first]].name)
