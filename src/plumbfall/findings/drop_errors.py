@@ -27,6 +27,10 @@ Numbers = NDArray[np.float64]
 Codes = NDArray[np.intp]
 
 
+DECIMALS = 9
+"""Differences of viscosity below 1e-9 are rounding, and no finding is made of them."""
+
+
 @dataclass(frozen=True, slots=True)
 class DropErrors:
     """Logarithms of the drops' viscosities and their variances, relative, shape (drops,).
@@ -105,6 +109,7 @@ def drop_errors(
     value = np.where(whole, value, 0.0)
     n_drops = np.bincount(run_set, minlength=n_sets)
     value = value - _means(value, run_set, n_sets)[run_set]  # an offset costs no digits
+    value = np.asarray(np.round(value, DECIMALS), dtype=float)
     pair = selection.cells.run_set * (selection.cells.ball.max(initial=0) + 1)
     pair = pair + selection.cells.ball
     _, first, of_cell = np.unique(pair, return_index=True, return_inverse=True)

@@ -98,7 +98,7 @@ def trends(residuals: Residuals, order: Numbers, warmth: Warmth) -> Trends:
     along = residuals.slope(order, of=temperature).value
     by_slope = warmth.slope_u * np.nan_to_num(along)  # drift that an error of the slope makes
     drift_error, drift_dof = _with_known(drift.error, drift.dof, by_slope)
-    by_t = t_p_value(t=drift.value / drift_error, dof=drift_dof)
+    by_t = _t(drift.value, drift_error, drift_dof)
     by_rank = mann_kendall(errors.value, order, errors.group, errors.group_set, n)
     # ranks know nothing of the slope's error: they count only where that is the smaller part
     by_rank = np.where(np.abs(by_slope) < 0.3 * drift.error, by_rank, 1.0)
@@ -131,8 +131,8 @@ def trends(residuals: Residuals, order: Numbers, warmth: Warmth) -> Trends:
         warming=warming,
         warming_error=warming_error,
         warming_dof=warming_dof,
-        warming_p_value=t_p_value(t=warming / warming_error, dof=warming_dof),
-        warming_beside=t_p_value(t=beside.value / beside_error, dof=beside_dof),
+        warming_p_value=_t(warming, warming_error, warming_dof),
+        warming_beside=_t(beside.value, beside_error, beside_dof),
         lag=lag,
         lag_p_value=np.where(moves, _p_value(lag), 1.0),
         settling=settling,
@@ -153,8 +153,12 @@ def _with_known(error: Numbers, dof: NDArray[np.intp], known: Numbers) -> tuple[
 
 
 def _p_value(slope: Slope) -> Numbers:
+    return _t(slope.value, slope.error, slope.dof)
+
+
+def _t(value: Numbers, error: Numbers, dof: Numbers | NDArray[np.intp]) -> Numbers:
     with np.errstate(invalid="ignore", divide="ignore"):
-        return t_p_value(t=slope.value / slope.error, dof=slope.dof)
+        return t_p_value(t=value / error, dof=dof)
 
 
 def _variance(values: Numbers, run_set: Codes, n: int) -> Numbers:
