@@ -17,6 +17,7 @@ __all__ = [
     "DropResult",
     "Finding",
     "Histogram",
+    "Improvement",
     "Measured",
     "MonteCarloResult",
     "Quantity",
@@ -128,6 +129,25 @@ class BudgetLine:
     contribution: float
     share: float
     scope: str
+
+
+@dataclass(frozen=True, slots=True)
+class Improvement:
+    """What change of one input alone would halve a run set's expanded uncertainty.
+
+    ``what`` is ``standard uncertainty``, ``drops`` or ``balls``; it is ``now`` and must become
+    ``needed``, ``None`` where that input alone cannot do it. Of several inputs together it is the
+    ``factor`` by which all their contributions must shrink. ``remaining`` is the part of the
+    expanded uncertainty that would be left without the input's error (it may exceed 1, where few
+    degrees of freedom of other inputs then count in full).
+    """
+
+    input: str
+    what: str
+    unit: str
+    now: float
+    needed: float | None
+    remaining: float
 
 
 @dataclass(frozen=True, slots=True)
@@ -279,6 +299,7 @@ class RunSetResult:
     linear: Measured | None = None
     monte_carlo: MonteCarloResult | None = None
     conformity: Conformity | None = None
+    improvements: tuple[Improvement, ...] = ()
 
     @property
     def interval(self) -> tuple[float, float]:

@@ -15,6 +15,7 @@ from plumbfall.results import (
     DropResult,
     Finding,
     Histogram,
+    Improvement,
     Measured,
     MonteCarloResult,
     Quantity,
@@ -95,6 +96,7 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
             for correction in result.corrections
         ],
         "budget": [_budget_line(line) for line in result.budget],
+        "halving": [_improvement(one) for one in result.improvements],
         "linear": _measured(result.linear),
         "monte_carlo": _monte_carlo(result.monte_carlo),
         "balls": [_ball(ball) for ball in result.balls],
@@ -232,6 +234,17 @@ def _temperature_fit(fits: Sequence[TemperatureFitResult]) -> dict[str, Any] | N
             }
             for fit in fits
         ],
+    }
+
+
+def _improvement(one: Improvement) -> dict[str, Any]:
+    return {
+        "input": one.input,
+        "what": one.what,
+        "unit": one.unit,
+        "now": _number(one.now),
+        "needed": _number(one.needed),
+        "remaining": _number(one.remaining),
     }
 
 

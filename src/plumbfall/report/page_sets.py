@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from plumbfall.report.improvement_view import halving_view
 from plumbfall.report.observed import Observed
 from plumbfall.report.page_pictures import Picture, pictures, residual_pictures
 from plumbfall.report.scales import CELSIUS
@@ -105,6 +106,8 @@ def set_page(result: RunSetResult, index: int, bench: Bench, seen: Observed | No
         tables.append(correction_view(result))
     if result.budget:
         tables.append(budget_view(result, scale))
+    if result.improvements:
+        tables.append(halving_view(result.improvements))
     if (both := ways_view(result, scale)) is not None:
         tables.append(both)
     if seen is not None and seen.marks:

@@ -71,6 +71,12 @@ class RunSetView:
 
         return budget_table(self.result)
 
+    def halving(self) -> pd.DataFrame:
+        """Return what change of each dominant input alone would halve the expanded uncertainty."""
+        from plumbfall.report.tables import halving_table
+
+        return halving_table(self.result)
+
     def drops(self) -> pd.DataFrame:
         """Return the drops, void and excluded ones included, units in the column names."""
         from plumbfall.report.tables import drops_table

@@ -10,7 +10,7 @@ from plumbfall.results import RunSetResult
 if TYPE_CHECKING:
     import pandas as pd
 
-__all__ = ["budget_table", "csv_text", "drops_table"]
+__all__ = ["budget_table", "csv_text", "drops_table", "halving_table"]
 
 FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\n")
 """What a spreadsheet takes for the start of a formula (common practice, no source)."""
@@ -75,6 +75,20 @@ def budget_table(result: RunSetResult) -> pd.DataFrame:
         for line in result.budget
     ]
     return pd.DataFrame(rows, columns=list(_BUDGET_COLUMNS))
+
+
+def halving_table(result: RunSetResult) -> pd.DataFrame:
+    """Return what would halve the expanded uncertainty, one row a dominant input, in SI units.
+
+    ``what`` (a standard uncertainty, or a number of drops or balls) is ``now`` and must become
+    ``needed``; NaN where that input alone cannot do it. ``remaining`` is the part of the expanded
+    uncertainty left without the input's error.
+    """
+    import pandas as pd
+
+    names = ("input", "what", "unit", "now", "needed", "remaining")
+    rows = [tuple(getattr(one, name) for name in names) for one in result.improvements]
+    return pd.DataFrame(rows, columns=list(names)).astype({"now": float, "needed": float})
 
 
 def drops_table(results: Iterable[RunSetResult]) -> pd.DataFrame:

@@ -8,6 +8,7 @@ from collections.abc import Iterable, Iterator, Sequence
 from typing import TYPE_CHECKING, TextIO
 
 from plumbfall._version import __version__
+from plumbfall.report.improvement_view import HALVING, halving_lines
 from plumbfall.report.observed import reading_remarks
 from plumbfall.report.scales import Scale
 from plumbfall.report.set_tables import finding_evidence, why_not_used
@@ -121,6 +122,7 @@ def _of_set(result: RunSetResult, unit: str | None, explain: Explainer) -> Itera
             yield from _wrapped("  not used  ", visible(f"drop {drop.drop}, {where}, {reason}"))
     yield from _of_corrections(result, explain)
     yield from _of_budget(result, scale, explain)
+    yield from _of_halving(result)
 
 
 def _of_facts(shown: Iterable[Fact], explain: Explainer) -> Iterator[str]:
@@ -158,6 +160,14 @@ def _of_budget(result: RunSetResult, scale: Scale, explain: Explainer) -> Iterat
     if rest := lines[TOP_INPUTS:]:
         share = Scale("%", 100.0).fixed(sum(line.share for line in rest), 1)
         yield from _wrapped(f"    {counted(len(rest), 'smaller input'):<30}", f"{share:>5} %")
+
+
+def _of_halving(result: RunSetResult) -> Iterator[str]:
+    if not result.improvements:
+        return
+    yield from _wrapped("  ", HALVING)
+    for name, told in halving_lines(result.improvements):
+        yield from _wrapped(f"    {visible(name):<30}", told)
 
 
 def _of_findings(findings: Sequence[Finding]) -> Iterator[str]:

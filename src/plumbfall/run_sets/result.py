@@ -9,6 +9,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from plumbfall.bench.keys import key_path
 from plumbfall.bench.records import Bench
 from plumbfall.measurement.columns import DropColumns
 from plumbfall.measurement.ends import Ends
@@ -29,6 +30,7 @@ from plumbfall.results import (
 from plumbfall.run_sets.budget import budget_lines
 from plumbfall.run_sets.drawn import Drawn
 from plumbfall.run_sets.drop_records import ball_results, drop_results
+from plumbfall.run_sets.improvements import improvements
 from plumbfall.run_sets.jacobian import Jacobian
 from plumbfall.run_sets.outputs import UNITS, Output, Outputs, SetConditions
 from plumbfall.run_sets.repeatability import Repeatability
@@ -105,6 +107,17 @@ def build_result(
     cells = np.unique(all_sets.selection.cell[used])
     invalid = status_of(findings) == "invalid"
 
+    n_balls = _count_balls(all_sets, cells, used)
+    budget = budget_lines(
+        all_sets.jacobian,
+        all_sets.inputs,
+        all_sets.sums,
+        all_sets.selection,
+        all_sets.scatter,
+        all_sets.bench,
+        run_set,
+    )
+
     def quoted(quantity: str) -> Measured | None:
         linear = _measured(all_sets.outputs, quantity, run_set)
         return linear if drawn is None else drawn.quoted(quantity, linear)
@@ -114,7 +127,7 @@ def build_result(
         status=status_of(findings),
         summary="",
         n_drops=len(used),
-        n_balls=_count_balls(all_sets, cells, used),
+        n_balls=n_balls,
         n_read=len(rows),
         tube=_names(all_sets.bench.tubes, all_sets.selection.cells.tube[cells]),
         liquid=_names(all_sets.bench.liquids, all_sets.selection.cells.liquid[cells]),
@@ -136,14 +149,13 @@ def build_result(
         ),
         shear_stress=_largest(drops.shear_stress[used]),
         corrections=() if invalid else _corrections(all_sets, used),
-        budget=budget_lines(
-            all_sets.jacobian,
-            all_sets.inputs,
-            all_sets.sums,
-            all_sets.selection,
-            all_sets.scatter,
-            all_sets.bench,
-            run_set,
+        budget=budget,
+        improvements=improvements(
+            budget,
+            n_drops=len(used),
+            n_balls=n_balls,
+            coverage=all_sets.outputs.coverage,
+            own=key_path("set", all_sets.selection.names[run_set], "scatter"),
         ),
         balls=ball_results(all_sets.bench, all_sets.selection, all_sets.columns, used),
         drops=drop_results(
