@@ -76,7 +76,9 @@ def improvements(
     return tuple(found)
 
 
-def _of_all(names: set[str], budget: Sequence[BudgetLine], coverage: float, own: str) -> Improvement:
+def _of_all(
+    names: set[str], budget: Sequence[BudgetLine], coverage: float, own: str
+) -> Improvement:
     """Say to what part all dominant contributions must shrink together."""
     now = _expanded(budget, coverage, own)
 
@@ -107,7 +109,9 @@ def _expanded(budget: Sequence[BudgetLine], coverage: float, own: str) -> float:
     return float(coverage_factor(dof=effective, probability=coverage)) * u
 
 
-def _of_input(line: BudgetLine, budget: Sequence[BudgetLine], coverage: float, own: str) -> Improvement:
+def _of_input(
+    line: BudgetLine, budget: Sequence[BudgetLine], coverage: float, own: str
+) -> Improvement:
     now = _expanded(budget, coverage, own)
 
     def left(factor: float) -> float:
