@@ -230,7 +230,7 @@ def test_the_bench_sheet_says_what_the_headings_do_not(tmp_path):
     assert timings.table["temperature_K"].tolist() == [298.15]
     assert timings.table["line"].tolist() == [4]
     assert [(r.line, r.what) for r in timings.repairs] == [
-        (1, "lines above the headings in line 3 are not read")
+        (1, "lines above the headings in line 3 are not read: 'Protokoll 7'")
     ]
     assert [(c.heading, c.meaning, c.unit) for c in timings.files[0].columns] == [
         ("Prüfer", "operator", ""),

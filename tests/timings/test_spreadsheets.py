@@ -6,6 +6,7 @@ import zipfile
 
 import pytest
 
+from plumbfall.bench.records import Bench, TimingHints
 from plumbfall.timings import collect, read_timings
 from timings.workbooks import Broken, Styled, write_workbook
 
@@ -88,13 +89,27 @@ def test_workbooks_that_cannot_be_read_are_refused(tmp_path, monkeypatch):
     assert "c.xlsx: the workbook cannot be read" in str(collect("c.xlsx").problems[0])
 
 
-def test_headings_further_down_are_pointed_out(tmp_path, monkeypatch):
+def test_headings_further_down_are_found(tmp_path, monkeypatch):
     monkeypatch.chdir(tmp_path)
-    write_workbook(tmp_path / "a.xlsx", {"S": [["Lab 7"], [], ["drop", "time [s]"], [1, 12.84]]})
-    assert [str(problem) for problem in collect("a.xlsx").problems][-1] == (
-        "a.xlsx:3: line 3 reads like the headings, but line 1 is the first with text; set"
-        " header_row = 3 under [timings] in the bench sheet, or delete the lines above"
-    )
+    rows = [["Lab 7"], [], ["drop", "time"], ["", "s"], [1, 12.84], ["mean", 12.84]]
+    write_workbook(tmp_path / "a.xlsx", {"S": rows})
+    timings = read_timings("a.xlsx")
+    assert timings.table[["line", "time_s"]].values.tolist() == [[5, 12.84]]
+    assert [(one.line, one.what) for one in timings.repairs] == [
+        (1, "lines above the headings in line 3 are not read: 'Lab 7'"),
+        (4, "units are taken from this row: time in s"),
+        (6, "'mean' is no drop; the row is left out"),
+    ]
+
+
+def test_a_transposed_sheet_is_read_where_declared(tmp_path, monkeypatch):
+    monkeypatch.chdir(tmp_path)
+    rows = [["ball", "A", "B"], ["time [s]", 12.84, "soon"], ["temperature [degC]", 25, 26]]
+    write_workbook(tmp_path / "a.xlsx", {"S": rows})
+    timings = collect("a.xlsx", Bench(timings=TimingHints(transposed=True), balls={"A": 1, "B": 2}))
+    assert timings.table["temperature_K"].tolist() == [298.15, 299.15]
+    assert timings.table[["line", "column"]].values.tolist() == [[2, 2], [2, 3]]
+    assert [problem.place for problem in timings.problems] == ["a.xlsx:2:3"]
 
 
 @pytest.mark.parametrize("size", [300_000_000])

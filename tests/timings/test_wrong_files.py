@@ -7,8 +7,10 @@ from pathlib import Path
 
 import pytest
 
+from plumbfall.bench.records import TimingHints
 from plumbfall.errors import InputError
 from plumbfall.timings import collect, read_timings
+from timings.benches import bench
 
 CASES = tomllib.loads((Path(__file__).parent / "wrong_files.toml").read_text(encoding="utf-8"))
 
@@ -17,8 +19,12 @@ CASES = tomllib.loads((Path(__file__).parent / "wrong_files.toml").read_text(enc
 def test_a_wrong_file_is_refused_with_every_problem_in_it(name, tmp_path, monkeypatch):
     monkeypatch.chdir(tmp_path)
     Path("t.csv").write_text(CASES[name]["file"], encoding="utf-8", newline="")
+    sheet = None
+    if "timings" in CASES[name] or "marks" in CASES[name]:
+        hints = TimingHints(**CASES[name].get("timings", {}))
+        sheet = bench(balls="AB", marks=CASES[name].get("marks", 0), timings=hints)
     with pytest.raises(InputError) as refused:
-        read_timings("t.csv")
+        read_timings("t.csv", sheet)
     assert [str(problem) for problem in refused.value.problems] == CASES[name]["says"]
 
 

@@ -51,6 +51,7 @@ class SliceColumn:
         self._padded = padded
         self._delimiter = delimiter
         self._numbers: dict[str, Numbers] = {}
+        self._distinct: tuple[Integers, list[str]] | None = None
 
     def __len__(self) -> int:
         return self._before.size
@@ -85,6 +86,23 @@ class SliceColumn:
         Eight bytes of every cell are numbered at a time, and pairs of numbers again, so that
         no string is made but for the distinct ones.
         """
+        if rows is not None:
+            return self._coded(rows)
+        if self._distinct is None:
+            self._distinct = self._coded(None)
+        return self._distinct
+
+    def take(self, rows: Integers) -> SliceColumn:
+        """Return some of the rows."""
+        return SliceColumn(
+            self._buffer,
+            self._before[rows],
+            self._ends[rows],
+            padded=self._padded,
+            delimiter=self._delimiter,
+        )
+
+    def _coded(self, rows: Integers | None) -> tuple[Integers, list[str]]:
         starts, lengths = self._slices
         if rows is not None:
             starts, lengths = starts[rows], lengths[rows]

@@ -15,25 +15,10 @@ __all__ = ["part_unit", "read_with_unit"]
 
 _WITH_UNIT = re.compile(r"([+-]?(?:[0-9][0-9.,'’\s]*|[.,][0-9]+))([^\d\s].*)")
 _TIMES = frozenset(
-    [
-        "s",
-        "sec",
-        "secs",
-        "sec.",
-        "second",
-        "seconds",
-        "ms",
-        "min",
-        "min.",
-        "mins",
-        "minute",
-        "minutes",
-        "h",
-        "hr",
-        "hrs",
-        "hour",
-        "hours",
-    ]
+    (
+        *("s", "sec", "secs", "sec.", "second", "seconds", "ms"),
+        *("min", "min.", "mins", "minute", "minutes", "h", "hr", "hrs", "hour", "hours"),
+    )
 )
 
 

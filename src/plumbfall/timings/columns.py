@@ -11,7 +11,7 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
-__all__ = ["Column", "FloatColumn", "Integers", "Numbers", "TextColumn", "rows_of"]
+__all__ = ["Column", "FloatColumn", "Integers", "Numbers", "TextColumn", "number_text", "rows_of"]
 
 Integers = NDArray[np.int64]
 T = TypeVar("T")
@@ -47,6 +47,16 @@ class Column(Protocol):
     def numbers(self, decimal: str = ".") -> Numbers:
         """Read every plain number, correctly rounded; nothing is guessed."""
 
+    def take(self, rows: Integers) -> Column:
+        """Return some of the rows."""
+
+
+def number_text(value: float) -> str:
+    """Return a number as one would type it, empty for NaN."""
+    if np.isnan(value):
+        return ""
+    return np.format_float_positional(value, trim="-") if np.isfinite(value) else str(value)
+
 
 def rows_of(codes: Integers, chosen: Mapping[int, T]) -> Iterator[tuple[int, T]]:
     """Yield every row whose code is among the chosen ones, with what the code stands for."""
@@ -70,9 +80,11 @@ def _coded(texts: Any) -> tuple[Integers, list[str]]:
 class TextColumn:
     """Cells held as Python strings; for files with quotes, spreadsheets and tables."""
 
-    def __init__(self, cells: Sequence[str]) -> None:
+    def __init__(self, cells: Sequence[str] | NDArray[np.object_]) -> None:
         self._cells = np.empty(len(cells), dtype=object)
         self._cells[:] = cells
+        self._distinct: tuple[Integers, list[str]] | None = None
+        self._numbers: dict[str, Numbers] = {}
 
     def __len__(self) -> int:
         return self._cells.size
@@ -83,10 +95,23 @@ class TextColumn:
 
     def distinct(self, rows: Integers | None = None) -> tuple[Integers, list[str]]:
         """Return codes, shape (rows,), and the distinct texts that they number."""
-        return _coded(self._cells if rows is None else self._cells[rows])
+        if rows is not None:
+            return _coded(self._cells[rows])
+        if self._distinct is None:
+            self._distinct = _coded(self._cells)
+        return self._distinct
+
+    def take(self, rows: Integers) -> TextColumn:
+        """Return some of the rows."""
+        return TextColumn(self._cells[rows])
 
     def numbers(self, decimal: str = ".") -> Numbers:
         """Read every plain number, each distinct text once."""
+        if decimal not in self._numbers:
+            self._numbers[decimal] = self._read_numbers(decimal)
+        return self._numbers[decimal]
+
+    def _read_numbers(self, decimal: str) -> Numbers:
         codes, texts = self.distinct()
         plain = _PLAIN[decimal]
         clean = np.array([plain.fullmatch(text) is not None for text in texts], dtype=bool)
@@ -115,20 +140,19 @@ class FloatColumn:
 
     def text(self, row: int) -> str:
         """Return the number as one would type it, empty for NaN."""
-        value = float(self._values[row])
-        if np.isnan(value):
-            return ""
-        if not np.isfinite(value):
-            return str(value)
-        return np.format_float_positional(value, trim="-")
+        return number_text(float(self._values[row]))
 
     def distinct(self, rows: Integers | None = None) -> tuple[Integers, list[str]]:
         """Return codes, shape (rows,), and the distinct texts that they number."""
         chosen = self._values if rows is None else self._values[rows]
         codes, found = pd.factorize(chosen, use_na_sentinel=False)
-        return codes.astype(np.int64), [FloatColumn(found).text(row) for row in range(len(found))]
+        return codes.astype(np.int64), [number_text(float(value)) for value in found]
 
     def numbers(self, decimal: str = ".") -> Numbers:
         """Return the finite numbers as they are."""
         clean = np.isfinite(self._values)
         return Numbers(np.where(clean, self._values, np.nan), clean, True)
+
+    def take(self, rows: Integers) -> FloatColumn:
+        """Return some of the rows."""
+        return FloatColumn(self._values[rows])

@@ -55,10 +55,11 @@ class Decimal:
         part, mark = re.escape(self.thousands), re.escape(self.mark)
         if re.fullmatch(rf"[+-]?[0-9]{{1,3}}(?:{part}[0-9]{{3}})+(?:{mark}[0-9]*)?", plain):
             return plain.replace(self.thousands, "")
-        name = "a space" if self.thousands == " " else quoted(self.thousands)
+        name = "space" if self.thousands == " " else quoted(self.thousands)
         return Fault(
-            f"{quoted(text)} has {name}, which is declared to part thousands, in another place",
-            "write three digits after it, or correct thousands under [timings] in the bench sheet",
+            f"{quoted(text)} does not have three digits after each {name}, which is declared to"
+            " part thousands",
+            "correct the cell, or thousands under [timings] in the bench sheet",
         )
 
 

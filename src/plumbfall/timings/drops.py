@@ -8,17 +8,17 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.bench.records import TimingHints
-from plumbfall.timings.columns import Integers
-from plumbfall.timings.decimals import Decimal, find_decimal
+from plumbfall.timings.columns import Column, Integers
+from plumbfall.timings.decimals import Decimal
 from plumbfall.timings.grid import Grid
 from plumbfall.timings.labels import Labels, read_labels, read_status
 from plumbfall.timings.layout import Layout
 from plumbfall.timings.measured import MeasuredColumns
 from plumbfall.timings.notices import Notices, quoted
 from plumbfall.timings.numbering import read_drop_numbers
+from plumbfall.timings.totals import Watch
 
-__all__ = ["TEXTS", "FileDrops", "read_drops"]
+__all__ = ["TEXTS", "FileDrops", "measured_columns", "read_drops"]
 
 TEXTS = ("set", "ball", "tube", "liquid", "timer", "thermometer", "operator", "started", "note")
 """Columns of text, in the order of the table, status apart."""
@@ -50,23 +50,32 @@ class FileDrops:
         return self.line.size
 
 
+def measured_columns(grid: Grid, layout: Layout) -> list[tuple[Column, str]]:
+    """Return the columns of numbers with what each holds, ``a time`` or ``a temperature``."""
+    headings = [(heading, "a time") for heading in layout.times]
+    if layout.kind != "total" and (heading := layout.fields.get("total")):
+        headings.append((heading, "a time"))
+    if heading := layout.fields.get("temperature"):
+        headings.append((heading, "a temperature"))
+    return [(grid.columns[heading.column - 1], what) for heading, what in headings]
+
+
 def read_drops(
-    grid: Grid, layout: Layout, hints: TimingHints, path: str, stem: str, notices: Notices
-) -> tuple[FileDrops, Decimal]:
-    """Read every drop of a file; whatever is wrong goes to the notices."""
+    grid: Grid,
+    layout: Layout,
+    decimal: Decimal,
+    units: Mapping[str, str],
+    watch: Watch,
+    stem: str,
+    notices: Notices,
+) -> FileDrops:
+    """Read every drop under one row of headings; whatever is wrong goes to the notices.
+
+    ``units`` are those declared, ``watch`` what a running stopwatch showed last, and ``stem`` the
+    name of the run set where no column names one.
+    """
     rows = grid.lines.size
     fields = layout.fields
-    temperature_heading = fields.get("temperature")
-    measured = [(heading, "a time") for heading in layout.times]
-    if temperature_heading:
-        measured.append((temperature_heading, "a temperature"))
-    decimal = find_decimal(
-        [(grid.columns[heading.column - 1], what) for heading, what in measured],
-        grid.delimiter,
-        grid.decimal or hints.decimal,
-        hints.thousands,
-        notices,
-    )
     status = np.zeros(rows, dtype=np.int64)
     if heading := fields.get("status"):
         status = read_status(grid.columns[heading.column - 1], grid.lines, heading.column, notices)
@@ -82,8 +91,10 @@ def read_drops(
         else Labels.constant(stem if meaning == "set" else "", rows)
         for meaning in TEXTS
     }
-    reader = MeasuredColumns(grid, layout, hints.units, decimal, status == 1, notices)
-    temperature = reader.temperature(temperature_heading)
+    reader = MeasuredColumns(
+        grid, layout, units, decimal, status == 1, labels["set"].codes, watch, notices
+    )
+    temperature = reader.temperature(fields.get("temperature"))
     times = reader.times()
     if grid.delimiter == ",":
         reader.mind_split_decimals(fields)
@@ -115,8 +126,8 @@ def read_drops(
     status = status.copy()
     status[absent] = status[refused] = 2
     labels["note"] = _reasoned(labels["note"], absent, refused, times.why)
-    drops = FileDrops(
-        path=path,
+    return FileDrops(
+        path=notices.path,
         layout=layout,
         heading_line=grid.heading_line,
         line=line,
@@ -131,7 +142,6 @@ def read_drops(
         marks=times.marks,
         named_sets="set" in fields,
     )
-    return drops, decimal
 
 
 def _reasoned(note: Labels, absent: Integers, refused: Integers, why: Mapping[int, str]) -> Labels:

@@ -9,7 +9,7 @@ from collections.abc import Hashable
 import numpy as np
 import pandas as pd
 
-from plumbfall.timings.columns import Column, FloatColumn, TextColumn
+from plumbfall.timings.columns import Column, FloatColumn, TextColumn, number_text
 from plumbfall.timings.grid import Grid
 from plumbfall.timings.notices import Notices
 
@@ -63,9 +63,9 @@ def _text(value: object) -> str:
     if value is None or value is pd.NA or value is pd.NaT:
         return ""
     if isinstance(value, (float, np.floating)):
-        return FloatColumn(np.array([value], dtype=float)).text(0)
+        return number_text(float(value))
     if isinstance(value, dt.timedelta):
-        return f"{FloatColumn(np.array([value.total_seconds()])).text(0)} s"
+        return f"{number_text(value.total_seconds())} s"
     if isinstance(value, pd.Timestamp):
         return value.isoformat()
     return str(value)

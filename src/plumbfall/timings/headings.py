@@ -5,14 +5,15 @@ from __future__ import annotations
 import re
 from collections.abc import Iterable
 from dataclasses import dataclass
+from fractions import Fraction
 
 from plumbfall.timings.units import temperature_unit, time_unit
 
 __all__ = [
     "FIELDS",
     "SERIES",
+    "TIMES",
     "Heading",
-    "has_times",
     "known_headings",
     "normalised",
     "read_heading",
@@ -20,7 +21,19 @@ __all__ = [
 
 FIELDS = {
     "set": ("batch", "sample", "run", "run set", "runset", "run set name", "batch no", "series"),
-    "drop": ("drop no", "drop number", "drop nr", "drop #", "no", "nr", "n", "#", "number"),
+    "drop": (
+        "lap",
+        "lap no",
+        "drop no",
+        "drop number",
+        "drop nr",
+        "drop #",
+        "no",
+        "nr",
+        "n",
+        "#",
+        "number",
+    ),
     "ball": ("sphere", "ball id", "ball name", "ball no", "ball number", "sphere id"),
     "tube": ("fall tube", "tube id", "tube name", "tube no"),
     "liquid": ("fluid", "oil", "liquid name"),
@@ -31,7 +44,14 @@ FIELDS = {
     "status": ("state", "used/void"),
     "note": ("notes", "comment", "comments", "remark", "remarks"),
     "temperature": ("temp", "liquid temperature", "bath temperature", "bath temp"),
-    "time": ("fall time", "falltime", "drop time", "time of fall", "elapsed", "elapsed time"),
+    "time": (
+        *("fall time", "falltime", "drop time", "time of fall", "elapsed", "elapsed time"),
+        *("lap time", "laptime"),
+    ),
+    "total": (
+        *("total time", "running total", "stopwatch total", "cumulative", "cumulative time"),
+        *("split time", "overall time", "time total"),
+    ),
 }
 """Every column of its own with its synonyms; ``t`` and ``T`` are told apart by their case."""
 
@@ -43,11 +63,19 @@ SERIES = {
 }
 """Columns that come numbered, as ``mark 1``, ``mark 2``, with their synonyms."""
 
+TIMES = (*SERIES, "total")
+"""What columns of times may mean."""
+
 _NAMES = {name: field for field, names in FIELDS.items() for name in (field, *names)}
 _SERIES_NAMES = {name: kind for kind, names in SERIES.items() for name in (kind, *names)}
 _NUMBERED = re.compile(r"(.+?)\s*([0-9]{1,3})")
 _BRACKETED = re.compile(r"(.*?)\s*(?:\[([^\[\]]*)\]|\(([^()]*)\))")
-_QUANTITIES = ("time", "temperature", "mark", "interval", "repeat")
+_QUANTITIES = (*TIMES, "temperature")
+_POSITION = re.compile(
+    r"(?:(?:clock|time|t)?\s*(?:at)?\s*(?:mark|gate|ring|position|line)?s?\s*(?:at)?\s*)"
+    r"([0-9]{1,5}(?:[.,][0-9]{1,4})?)\s*(mm|cm|m)"
+)
+_METRES = {"mm": Fraction(1, 1000), "cm": Fraction(1, 100), "m": Fraction(1)}
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,7 +83,8 @@ class Heading:
     """A heading as read: ``meaning`` is empty where it is not known.
 
     ``column`` counts from 1; ``number`` is that of a series (``mark 2``), else 0; ``unit`` is
-    the unit's text, empty where none is written.
+    the unit's text, empty where none is written. ``position`` is in metres, of a mark that is
+    named by where it stands (``100 mm``); marks are numbered by it later.
     """
 
     text: str
@@ -63,6 +92,7 @@ class Heading:
     meaning: str = ""
     number: int = 0
     unit: str = ""
+    position: Fraction | None = None
 
     @property
     def label(self) -> str:
@@ -74,7 +104,7 @@ class Heading:
         """Whether the unit is one of what the column holds."""
         if self.meaning == "temperature":
             return temperature_unit(self.unit) is not None
-        return self.meaning in SERIES and time_unit(self.unit) is not None
+        return self.meaning in TIMES and time_unit(self.unit) is not None
 
 
 def normalised(text: str) -> str:
@@ -106,6 +136,8 @@ def _meaning(name: str, unit: str) -> tuple[str, int] | None:
     folded = normalised(name)
     if folded in _NAMES:
         return _NAMES[folded], 0
+    if _position(name) is not None:
+        return "mark", 0
     numbered = _NUMBERED.fullmatch(folded)
     if numbered and numbered[1] in _SERIES_NAMES:
         return _SERIES_NAMES[numbered[1]], int(numbered[2])
@@ -138,10 +170,12 @@ def read_heading(text: str, column: int) -> Heading:
     for name, unit in _split(text):
         meaning = _meaning(name, unit)
         if meaning and (not unit or meaning[0] in _QUANTITIES or "[" in text or "(" in text):
-            return Heading(text.strip(), column, meaning[0], meaning[1], unit)
+            position = _position(name) if meaning == ("mark", 0) else None
+            return Heading(text.strip(), column, meaning[0], meaning[1], unit, position)
     return Heading(text.strip(), column)
 
 
-def has_times(texts: Iterable[str]) -> bool:
-    """Say whether cells read like headings, with a column of times among them."""
-    return any(read_heading(text, 1).meaning in SERIES for text in texts)
+def _position(name: str) -> Fraction | None:
+    """Return where a mark stands, in metres, that is named by its position."""
+    found = _POSITION.fullmatch(" ".join(name.casefold().split()))
+    return Fraction(found[1].replace(",", ".")) * _METRES[found[2]] if found else None

@@ -10,7 +10,8 @@ from numpy.typing import NDArray
 
 from plumbfall.timings.columns import Integers
 from plumbfall.timings.drops import TEXTS, FileDrops
-from plumbfall.timings.labels import STATUSES, Labels
+from plumbfall.timings.labels import STATUSES, Labels, stacked
+from plumbfall.timings.merging import merged_marks
 from plumbfall.timings.notices import Notices, quoted
 from plumbfall.timings.numbering import numbered_in_order
 from plumbfall.timings.records import COLUMNS
@@ -23,8 +24,8 @@ def join_drops(
 ) -> tuple[pd.DataFrame, NDArray[np.float64] | None]:
     """Return the table of all drops and their clock readings (``None`` where none has any)."""
     _mind_equal_sets(drops, notices)
-    labels = {name: _stacked([one.labels[name] for one in drops]) for name in TEXTS}
-    labels["file"] = _stacked([Labels.constant(one.path, len(one)) for one in drops])
+    labels = {name: stacked([one.labels[name] for one in drops]) for name in TEXTS}
+    labels["file"] = stacked([Labels.constant(one.path, len(one)) for one in drops])
     status = _joined([one.status for one in drops])
     columns: dict[str, object] = {name: label.categorical() for name, label in labels.items()}
     columns["status"] = Labels(status, STATUSES).categorical()
@@ -36,7 +37,7 @@ def join_drops(
     columns["temperature_K"] = _floats([one.temperature for one in drops])
     columns["drop"] = _numbered(drops, labels["set"], notices)
     table = pd.DataFrame({name: columns[name] for name in COLUMNS}, copy=False)
-    return table, _marks(drops)
+    return table, merged_marks(drops)
 
 
 def _joined(parts: Sequence[Integers]) -> Integers:
@@ -49,17 +50,6 @@ def _floats(parts: Sequence[NDArray[np.float64]]) -> NDArray[np.float64]:
     if len(parts) == 1:
         return parts[0]
     return np.concatenate(parts) if len(parts) else np.zeros(0)
-
-
-def _stacked(parts: Sequence[Labels]) -> Labels:
-    if len(parts) == 1:
-        return parts[0]
-    codes: list[Integers] = []
-    names: list[str] = []
-    for part in parts:
-        codes.append(part.codes + len(names))
-        names.extend(part.names)
-    return Labels.coded(_joined(codes), names)
 
 
 def _mind_equal_sets(drops: Sequence[FileDrops], notices: Notices) -> None:
@@ -127,16 +117,3 @@ def _note_left_out(
             f" there are {counts[code]}",
             path=drops[0].path if len(drops) == 1 else None,
         )
-
-
-def _marks(drops: Sequence[FileDrops]) -> NDArray[np.float64] | None:
-    widths = [one.marks.shape[1] for one in drops if one.marks is not None]
-    if not widths:
-        return None
-    result = np.full((sum(map(len, drops)), max(widths)), np.nan)
-    start = 0
-    for one in drops:
-        if one.marks is not None:
-            result[start : start + len(one), : one.marks.shape[1]] = one.marks
-        start += len(one)
-    return result

@@ -15,7 +15,7 @@ from plumbfall.timings.moments import read_moment
 from plumbfall.timings.notices import Notices, quoted
 from plumbfall.timings.values import is_missing
 
-__all__ = ["LONGEST_NAME", "Labels", "read_labels", "read_status"]
+__all__ = ["LONGEST_NAME", "Labels", "read_labels", "read_status", "stacked"]
 
 LONGEST_NAME = 120
 """Characters in the longest name of a set, ball, tube and so on."""
@@ -71,6 +71,18 @@ class Labels:
         codes = self.codes.astype(np.min_scalar_type(-len(self.names) - 1), copy=False)
         dtype = pd.CategoricalDtype(list(self.names))
         return pd.Categorical.from_codes(codes, dtype=dtype, validate=False)
+
+
+def stacked(parts: Sequence[Labels]) -> Labels:
+    """Return labels of several tables one after the other."""
+    if len(parts) == 1:
+        return parts[0]
+    codes: list[Integers] = []
+    names: list[str] = []
+    for part in parts:
+        codes.append(part.codes + len(names))
+        names.extend(part.names)
+    return Labels.coded(np.concatenate(codes) if codes else np.zeros(0, dtype=np.int64), names)
 
 
 def read_labels(

@@ -3,14 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
+from fractions import Fraction
 
 from plumbfall.errors import nearest_name
 from plumbfall.timings.headings import Heading, known_headings, normalised, read_heading
 from plumbfall.timings.notices import Notices, quoted
 from plumbfall.timings.records import ColumnRead
+from plumbfall.timings.vocabulary import part_heading
 
-__all__ = ["Layout", "columns_read", "declared_unit", "find_layout", "read_headings"]
+__all__ = ["Layout", "columns_read", "declared_unit", "find_layout"]
 
 _PLURAL = {"time": "time", "mark": "marks", "interval": "intervals", "repeat": "repeats"}
 
@@ -21,7 +23,8 @@ class Layout:
 
     ``kind`` is ``time``, ``marks``, ``intervals`` or ``repeats``; ``times`` are its columns in
     order, ``written`` the series they are headed with (``time`` for repeats headed ``time 1``);
-    ``first_mark`` is 2 where the clock starts at a first mark that has no column.
+    ``first_mark`` is 2 where the clock starts at a first mark that has no column. ``positions``
+    are those of marks that are headed by them, in metres.
     """
 
     kind: str
@@ -29,6 +32,7 @@ class Layout:
     fields: Mapping[str, Heading] = field(default_factory=dict)
     written: str = "time"
     first_mark: int = 1
+    positions: tuple[Fraction, ...] = ()
 
     @property
     def n_marks(self) -> int:
@@ -38,55 +42,6 @@ class Layout:
         return len(self.times) + 1 if self.kind == "intervals" else 0
 
 
-def read_headings(
-    texts: Sequence[str], declared: Mapping[str, str], notices: Notices, used: set[str]
-) -> list[Heading]:
-    """Return the meaning of every heading, by the user's declarations before our own list.
-
-    ``used`` takes the declarations that met a heading.
-    """
-    by_name = {normalised(name): (name, meaning) for name, meaning in declared.items()}
-    headings = []
-    for column, text in enumerate(texts, 1):
-        heading = read_heading(text, column)
-        parted = read_heading_unit(text)
-        for candidate in (text, parted[0]):
-            if normalised(candidate) in by_name:
-                name, meaning = by_name[normalised(candidate)]
-                used.add(name)
-                wanted = read_heading(meaning, column)
-                if not wanted.meaning:
-                    _note_meaning(name, meaning, notices)
-                unit = wanted.unit or (parted[1] if candidate != text else heading.unit)
-                heading = Heading(text.strip(), column, wanted.meaning, wanted.number, unit)
-                break
-        headings.append(heading)
-    return headings
-
-
-def read_heading_unit(text: str) -> tuple[str, str]:
-    """Part a heading that is not known by itself into its name and its unit."""
-    for opening, closing in ("[]", "()"):
-        name, found, rest = text.strip().partition(opening)
-        if found and rest.endswith(closing):
-            return name, rest[:-1].strip()
-    for separator in ("/", "_"):
-        name, found, unit = text.strip().rpartition(separator)
-        if found:
-            return name, unit.strip()
-    return text, ""
-
-
-def _note_meaning(name: str, meaning: str, notices: Notices) -> None:
-    near = nearest_name(meaning, known_headings())
-    hint = f"did you mean {quoted(near)}?" if near else "use one of the usual headings"
-    notices.error(
-        f"{quoted(meaning)} is not something a column can hold",
-        hint,
-        key=f"timings.columns.{name}",
-    )
-
-
 def find_layout(
     headings: Sequence[Heading], heading_line: int | None, notices: Notices
 ) -> Layout | None:
@@ -94,10 +49,27 @@ def find_layout(
 
     ``None``, and an error in the notices, where they describe none or more than one.
     """
-    fields, series = _sorted(headings, heading_line, notices)
+    placed = _numbered_by_position(headings, heading_line, notices)
+    if placed is None:
+        return None
+    fields, series = _sorted(placed, heading_line, notices)
     groups = [(kind, columns) for kind, columns in series.items()]
     if "time" in fields:
         groups.append(("time", [fields["time"]]))
+    if "total" in fields and not groups:
+        notices.repair(
+            "times are the differences of successive running totals",
+            heading_line,
+            fields["total"].column,
+        )
+        return Layout("total", (fields["total"],), fields)
+    if "total" in fields and "time" not in fields:
+        notices.repair(
+            f"column {quoted(fields['total'].text)} is not used",
+            heading_line,
+            fields["total"].column,
+        )
+        del fields["total"]
     if not groups:
         _note_no_times(headings, heading_line, notices)
         return None
@@ -146,17 +118,46 @@ def find_layout(
         )
         return None
     plural = "repeats" if kind == "time" else _PLURAL[kind]
-    return Layout(plural, tuple(columns), fields, kind, first_number)
+    positions = tuple(heading.position for heading in columns if heading.position is not None)
+    return Layout(plural, tuple(columns), fields, kind, first_number, positions)
+
+
+def _numbered_by_position(
+    headings: Sequence[Heading], line: int | None, notices: Notices
+) -> list[Heading] | None:
+    """Return the headings, marks that are headed by where they stand numbered from the first.
+
+    ``None``, and an error noted, where some marks have a position and some a number.
+    """
+    placed = [heading for heading in headings if heading.position is not None]
+    numbered = [one for one in headings if one.meaning == "mark" and one.position is None]
+    if placed and numbered:
+        notices.error(
+            f"{quoted(placed[0].text)} names a mark by its position, and"
+            f" {quoted(numbered[0].text)} by its number",
+            "name all marks in the same way",
+            line,
+            placed[0].column,
+        )
+        return None
+    order = sorted({one.position for one in placed if one.position is not None})
+    return [
+        heading
+        if heading.position is None
+        else replace(heading, number=order.index(heading.position) + 1)
+        for heading in headings
+    ]
 
 
 def columns_read(
     headings: Sequence[Heading], layout: Layout, units: Mapping[str, str]
 ) -> tuple[ColumnRead, ...]:
     """Return how every column was understood, for a person to check at a glance."""
-    used = {heading.column for heading in (*layout.times, *layout.fields.values())}
+    used = {one.column: one for one in (*layout.fields.values(), *layout.times)}
     series = {"marks": "mark", "intervals": "interval", "repeats": "repeat"}.get(layout.kind)
     found = []
-    for heading in headings:
+    for written in headings:
+        heading = used.get(written.column, written)
         meaning = heading.label if heading.column in used else ""
         if heading.number and meaning and series:
             meaning = f"{series} {heading.number}"
@@ -167,7 +168,7 @@ def columns_read(
 
 def declared_unit(heading: Heading, units: Mapping[str, str]) -> str:
     """Return the unit that the user declared for a column, empty where there is none."""
-    if heading.meaning not in ("temperature", *_PLURAL):
+    if heading.meaning not in ("temperature", "total", *_PLURAL):
         return ""
     what = "temperature" if heading.meaning == "temperature" else "time"
     names = (heading.text, heading.label, heading.meaning, what)
@@ -207,7 +208,7 @@ def _note_unused(heading: Heading, line: int | None, notices: Notices) -> None:
     if not heading.text:
         notices.repair(f"column {heading.column} has no heading and is not used", line)
         return
-    name, unit = read_heading_unit(heading.text)
+    name, unit = part_heading(heading.text)
     near = nearest_name(normalised(name), known_headings()) if len(name.strip()) > 2 else None
     if near and unit and not read_heading(f"{near} [{unit}]", 1).unit_fits:
         near = None  # a heading in millimetres is not a misspelt name
@@ -216,7 +217,7 @@ def _note_unused(heading: Heading, line: int | None, notices: Notices) -> None:
 
 
 def _near(headings: Sequence[Heading], wanted: str) -> Heading | None:
-    names = {read_heading_unit(h.text)[0]: h for h in headings if not h.meaning and h.text}
+    names = {part_heading(h.text)[0]: h for h in headings if not h.meaning and h.text}
     near = nearest_name(wanted, names)
     return names[near] if near else None
 

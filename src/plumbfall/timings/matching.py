@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection
+from collections.abc import Collection, Sequence
 
 import numpy as np
 
@@ -142,6 +142,8 @@ def _match_marks(drops: FileDrops, bench: Bench, notices: Notices) -> None:
                 drops.heading_line,
                 first.column,
             )
+        elif layout.positions and marks:
+            _match_positions(drops, name, [one.value for one in bench.tubes[name].marks], notices)
         if layout.written == "time" and layout.kind == "repeats" and count == marks - 1 >= 2:
             notices.error(
                 f"{quoted(first.text)} to {quoted(layout.times[-1].text)} may be {count} drops, or"
@@ -150,4 +152,19 @@ def _match_marks(drops: FileDrops, bench: Bench, notices: Notices) -> None:
                 f" interval {count} if they are times between marks",
                 drops.heading_line,
                 first.column,
+            )
+
+
+def _match_positions(drops: FileDrops, tube: str, marks: Sequence[float], notices: Notices) -> None:
+    """Note a mark whose heading says that it stands elsewhere than the tube's, by over 1 mm."""
+    positions = [float(position) for position in drops.layout.positions]
+    for heading, position, mark in zip(drops.layout.times, positions, marks, strict=True):
+        below, wanted = position - positions[0], mark - marks[0]
+        if abs(below - wanted) > 1e-3:
+            notices.error(
+                f"{quoted(heading.text)} is {below * 1e3:g} mm below the first mark of this file;"
+                f" this mark of tube {quoted(tube)} is {wanted * 1e3:g} mm below its first",
+                f"correct the heading, or tube.{_key(tube)}.marks in the bench sheet",
+                drops.heading_line,
+                heading.column,
             )

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, replace
 
 import numpy as np
@@ -15,6 +15,7 @@ from plumbfall.timings.headings import Heading
 from plumbfall.timings.layout import Layout, declared_unit
 from plumbfall.timings.notices import Notices, quoted
 from plumbfall.timings.times import FallTimes, Parsed, from_intervals, from_marks, parse_column
+from plumbfall.timings.totals import Watch, check_laps, from_totals
 from plumbfall.timings.units import Unit, temperature_unit, time_unit
 
 __all__ = ["MeasuredColumns"]
@@ -29,6 +30,8 @@ class MeasuredColumns:
     units: Mapping[str, str]
     decimal: Decimal
     void: NDArray[np.bool_]
+    sets: Integers
+    watch: Watch
     notices: Notices
 
     def fault(self, row: int, column: int, message: str, remedy: str) -> None:
@@ -142,6 +145,9 @@ class MeasuredColumns:
     def times(self) -> FallTimes:
         """Return the fall time of every drop."""
         headings = self.layout.times
+        if self.layout.kind == "total":
+            total = self._parsed(headings[0], "a time")
+            return from_totals(total, self.sets, self.watch, self._refuse_in(headings[0]))
         columns = [self._parsed(heading, "a time") for heading in headings]
         if self.layout.kind != "marks":
             columns = [
@@ -161,6 +167,9 @@ class MeasuredColumns:
                 ones,
                 ones * 0,
             )
+        if total_heading := self.layout.fields.get("total"):
+            total = self._parsed(total_heading, "a time")
+            check_laps(columns[0], total, self.sets, self._refuse_in(total_heading))
         for row, number in result.omitted:
             heading = headings[number]
             left = "the point" if self.layout.kind == "marks" else "the interval"
@@ -171,10 +180,17 @@ class MeasuredColumns:
             )
         return result
 
+    def _refuse_in(self, heading: Heading) -> Callable[[int, str, str], None]:
+        """Return what notes a cell of a column that cannot be."""
+
+        def refuse(row: int, message: str, remedy: str) -> None:
+            cell = self.grid.columns[heading.column - 1].text(row)
+            self.fault(row, heading.column, f"{quoted(cell)} {message}", remedy)
+
+        return refuse
+
     def _refuse_mark(self, row: int, number: int, message: str, remedy: str) -> None:
-        heading = self.layout.times[number]
-        cell = self.grid.columns[heading.column - 1].text(row)
-        self.fault(row, heading.column, f"{quoted(cell)} {message}", remedy)
+        self._refuse_in(self.layout.times[number])(row, message, remedy)
 
     def _positive(self, parsed: Parsed, heading: Heading) -> Parsed:
         """Refuse times of zero or less."""

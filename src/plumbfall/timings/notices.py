@@ -2,10 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
+from typing import TypeAlias
+
 from plumbfall.errors import Problem
 from plumbfall.timings.records import Repair
 
-__all__ = ["Notices", "quoted"]
+__all__ = ["Notices", "Place", "quoted"]
 
 _MOST = 500
 """Problems (and repairs) listed of one file; the rest are counted, so that output is bounded."""
@@ -17,8 +20,20 @@ def quoted(text: str, most: int = 60) -> str:
     return f"'{shown}{'…' if len(text) > most else ''}'"
 
 
+Place: TypeAlias = Callable[[int | None, int | None], tuple[int | None, int | None]]
+"""Turns line and column of a table into those of its file."""
+
+
+def _as_it_is(line: int | None, column: int | None) -> tuple[int | None, int | None]:
+    return line, column
+
+
 class Notices:
-    """Collects problems and repairs of one file, in the order they are found."""
+    """Collects problems and repairs of one file, in the order they are found.
+
+    ``place`` may be set where the lines and columns noted are not those of the file; ``offers``
+    are lines for ``[timings]``, by key, that would settle what is ambiguous.
+    """
 
     def __init__(self, path: str) -> None:
         self.path = path
@@ -26,6 +41,7 @@ class Notices:
         self._repairs: list[Repair] = []
         self._errors = 0
         self.offers: dict[str, str] = {}
+        self.place: Place = _as_it_is
         self._more_problems = 0
         self._more_repairs = 0
 
@@ -50,8 +66,16 @@ class Notices:
         if len(self._problems) >= _MOST:
             self._more_problems += 1
             return
+        line, column = self.place(line, column)
         place = self.path if path is None else path
         self._problems.append(Problem(message, remedy, place, line, column, key, severity=severity))
+
+    def extend(self, other: Notices) -> None:
+        """Take over what was noted elsewhere of the same file."""
+        for one in other.problems:
+            self.error(one.message, one.remedy, one.line, one.column, severity=one.severity)
+        for repair in other.repairs:
+            self.repair(repair.what, repair.line, repair.column)
 
     def offer(self, key: str, value: str) -> None:
         """Offer a line for ``[timings]`` that would settle what is ambiguous.
@@ -72,6 +96,7 @@ class Notices:
         if len(self._repairs) >= _MOST:
             self._more_repairs += 1
             return
+        line, column = self.place(line, column)
         self._repairs.append(Repair(self.path if path is None else path, line, column, what))
 
     @property

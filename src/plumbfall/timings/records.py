@@ -12,7 +12,7 @@ if TYPE_CHECKING:
     import pandas as pd
     from numpy.typing import NDArray
 
-__all__ = ["COLUMNS", "ColumnRead", "Repair", "TimingFile", "Timings"]
+__all__ = ["COLUMNS", "Block", "ColumnRead", "Repair", "TimingFile", "Timings"]
 
 COLUMNS = (
     "file",
@@ -58,10 +58,20 @@ class ColumnRead:
 
 
 @dataclass(frozen=True, slots=True)
+class Block:
+    """Rows under one row of headings: where these are, what they mean, and how many rows."""
+
+    heading_line: int | None
+    columns: tuple[ColumnRead, ...]
+    rows: int
+
+
+@dataclass(frozen=True, slots=True)
 class TimingFile:
     """A file that was read, and the dialect it was found to be written in.
 
-    ``heading_line`` and ``columns`` are ``None`` and empty where no headings were found.
+    ``heading_line`` and ``columns`` are those of the first block, ``None`` and empty where no
+    headings were found. In a ``transposed`` file the headings stand in a column of that number.
     """
 
     path: str
@@ -71,6 +81,8 @@ class TimingFile:
     decimal: str
     heading_line: int | None = None
     columns: tuple[ColumnRead, ...] = ()
+    blocks: tuple[Block, ...] = ()
+    transposed: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -89,6 +101,7 @@ class Timings:
 
     ``marks_s`` holds clock readings at the tube's marks, shape (rows, marks), seconds since the
     first mark's clock zero, NaN where not read; ``None`` where only total times were given.
+    ``offers`` are lines for ``[timings]`` of the bench sheet that would settle what is ambiguous.
     """
 
     table: pd.DataFrame
@@ -96,6 +109,7 @@ class Timings:
     files: tuple[TimingFile, ...] = ()
     repairs: tuple[Repair, ...] = ()
     problems: tuple[Problem, ...] = field(default=())
+    offers: tuple[str, ...] = ()
 
     @classmethod
     def empty(cls, problems: tuple[Problem, ...] = ()) -> Timings:

@@ -1,4 +1,4 @@
-"""A sheet of an XLSX workbook as a grid of cells."""
+"""A sheet of an XLSX workbook as rows of cells."""
 
 from __future__ import annotations
 
@@ -8,15 +8,13 @@ import re
 import zipfile
 import zlib
 
-import numpy as np
-
 from plumbfall.errors import nearest_name
-from plumbfall.timings.columns import FloatColumn, TextColumn
+from plumbfall.timings.columns import number_text
 from plumbfall.timings.files import RawFile
-from plumbfall.timings.grid import Grid
+from plumbfall.timings.grid import StoredTime
 from plumbfall.timings.notices import Notices, quoted
 
-__all__ = ["LARGEST_WORKBOOK", "spreadsheet_grid"]
+__all__ = ["LARGEST_WORKBOOK", "sheet_rows"]
 
 LARGEST_WORKBOOK = 200_000_000
 """Bytes of the largest workbook that is read, once unpacked."""
@@ -26,53 +24,11 @@ _CELL = re.compile(rb"""<(?:\w+:)?(?:c|row)\s(?:[^>]*?\s)?r=["']([A-Z]{0,3})([0-
 _AS_CSV = "save the sheet as CSV and name that file"
 
 
-def spreadsheet_grid(
-    raw: RawFile, sheet: str | None, header_row: int | None, notices: Notices
-) -> Grid | None:
-    """Read the first or the named sheet; ``None``, and an error noted, where that fails."""
-    rows = _rows(raw, sheet, notices)
-    if rows is None:
-        return None
-    filled = [n for n, row in enumerate(rows, 1) if any(text.strip() for text in row)]
-    if not filled:
-        notices.error("the sheet is empty", "it needs headings and one row for each drop")
-        return None
-    heading = header_row if header_row is not None else filled[0]
-    if heading not in filled:
-        notices.error(
-            f"there are no headings in row {heading}",
-            "correct header_row under [timings] in the bench sheet",
-            key="timings.header_row",
-        )
-        return None
-    if heading != filled[0]:
-        notices.repair(f"rows above the headings in row {heading} are not read", filled[0])
-    below = [n for n in filled if n > heading]
-    width = max(len(rows[n - 1]) for n in filled)
-    headings = tuple(text.strip() for text in rows[heading - 1])
-    cells = [[*rows[n - 1], *[""] * (width - len(rows[n - 1]))] for n in below]
-    headings += ("",) * (width - len(headings))
-    columns = tuple(TextColumn([row[place] for row in cells]) for place in range(width))
-    stored = {
-        place + 1: np.flatnonzero([isinstance(row[place], _StoredTime) for row in cells])
-        for place in range(width)
-    }
-    return Grid(
-        headings,
-        heading,
-        np.array(below, dtype=np.int64),
-        columns,
-        stored_times={place: found for place, found in stored.items() if found.size},
-    )
+def sheet_rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[str]] | None:
+    """Return the rows of the first or the named sheet as texts, from row 1 on.
 
-
-class _StoredTime(str):
-    """Text of a cell that the spreadsheet stores as a time of day or a duration."""
-
-    __slots__ = ()
-
-
-def _rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[str]] | None:
+    ``None``, and an error in the notices, where that fails or the sheet is empty.
+    """
     from python_calamine import CalamineError, CalamineWorkbook
 
     try:
@@ -94,6 +50,7 @@ def _rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[str]] 
             return None
         if sheet is None and len(names) > 1:
             notices.repair(f"the first of {len(names)} sheets, {quoted(names[0])}, is read")
+            notices.offer("sheet", f'"{names[0]}"')
         chosen = workbook.get_sheet_by_name(sheet if sheet is not None else names[0])
         values = chosen.to_python(skip_empty_area=False)
     except (
@@ -106,7 +63,11 @@ def _rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[str]] 
     ) as fault:
         notices.error(f"the workbook cannot be read: {fault}", _AS_CSV)
         return None
-    return [[_text(value) for value in row] for row in values]
+    rows = [[_text(value) for value in row] for row in values]
+    if not any(text.strip() for row in rows for text in row):
+        notices.error("the sheet is empty", "it needs headings and one row for each drop")
+        return None
+    return rows
 
 
 def _trouble(archive: zipfile.ZipFile) -> str:
@@ -137,7 +98,7 @@ def _column_number(letters: bytes) -> int:
 def _text(value: object) -> str:
     """Return a cell's value as one would type it."""
     if isinstance(value, float):
-        return FloatColumn(np.array([value])).text(0)
+        return number_text(value)
     if isinstance(value, (dt.time, dt.timedelta)):
-        return _StoredTime(value)
+        return StoredTime(value)
     return value.isoformat() if isinstance(value, dt.datetime) else str(value)

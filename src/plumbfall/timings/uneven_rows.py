@@ -1,9 +1,10 @@
-"""Cells of any delimited file: quotes, line breaks within them, rows of uneven width."""
+"""Cells of any delimited file: quotes, line breaks within them, rows of any width."""
 
 from __future__ import annotations
 
 import csv
 from collections.abc import Iterator
+from itertools import zip_longest
 
 import numpy as np
 
@@ -11,10 +12,10 @@ from plumbfall.timings.clocks import read_clock
 from plumbfall.timings.columns import TextColumn
 from plumbfall.timings.comments import note_comments
 from plumbfall.timings.grid import WIDEST, Grid
-from plumbfall.timings.notices import Notices, quoted
+from plumbfall.timings.notices import Notices
 from plumbfall.timings.values import looks_like_number
 
-__all__ = ["cut_any"]
+__all__ = ["cut_any", "cut_rows"]
 
 _BATCH = 4096
 
@@ -72,6 +73,7 @@ def cut_any(text: str, delimiter: str, heading_line: int, notices: Notices) -> G
     columns: list[list[str]] = []
     rows: list[list[str]] = []
     lines: list[int] = []
+    widths: list[int] = []
     known: dict[str, str] = {}
     try:
         for cells in reader:
@@ -80,18 +82,20 @@ def cut_any(text: str, delimiter: str, heading_line: int, notices: Notices) -> G
             if not headings:
                 headings = [cell.strip() for cell in cells]
                 if len(headings) > WIDEST:
-                    _note_width(len(headings), heading_line, notices)
+                    _note_width(len(headings), "headings have", heading_line, notices)
                     return None
                 columns = [[] for _ in headings]
                 continue
+            if len(cells) > WIDEST:
+                _note_width(len(cells), "row has", first, notices)
+                return None
             if last > first:
                 _note_breaks(cells, first, last, delimiter, len(headings), notices)
             if not any(map(str.strip, cells)):
                 if len(cells) > 1:
                     notices.repair("a row of empty cells is left out", first)
                 continue
-            if len(cells) != len(headings):
-                cells = _evened(cells, len(headings), delimiter, first, notices)
+            widths.append(len(cells))
             rows.append(cells)
             lines.append(first)
             if len(rows) == _BATCH:
@@ -107,22 +111,49 @@ def cut_any(text: str, delimiter: str, heading_line: int, notices: Notices) -> G
         np.array(lines, dtype=np.int64),
         tuple(TextColumn(cells) for cells in columns),
         delimiter,
+        widths=np.array(widths, dtype=np.int64),
     )
+
+
+def cut_rows(
+    text: str, delimiter: str, notices: Notices
+) -> tuple[list[list[str]], list[int]] | None:
+    """Cut all rows of a text, for sheets that are not read from their headings down.
+
+    Returns the rows and the line of each; ``None``, and an error noted, where the cells cannot be
+    told apart.
+    """
+    source = _Lines(text, 1)
+    rows: list[list[str]] = []
+    lines: list[int] = []
+    try:
+        for cells in csv.reader(
+            iter(source), delimiter=delimiter, strict=True, skipinitialspace=True
+        ):
+            source.between_rows = True
+            if cells:
+                rows.append(cells)
+                lines.append(source.row_line)
+    except csv.Error as fault:
+        _note_quote(str(fault), source, notices)
+        return None
+    return rows, lines
 
 
 def _move(rows: list[list[str]], columns: list[list[str]], known: dict[str, str]) -> None:
     """Move rows into columns, equal texts as one object; memory is what takes time here."""
-    for column, cells in zip(columns, zip(*rows, strict=True), strict=bool(rows)):
-        column.extend(map(known.setdefault, cells, cells))
+    done = len(columns[0]) if columns else 0
+    width = max(map(len, rows), default=0)
+    columns.extend([""] * done for _ in range(width - len(columns)))
+    for place, cells in enumerate(zip_longest(*rows, fillvalue="")):
+        columns[place].extend(map(known.setdefault, cells, cells))
+    for column in columns[width:]:
+        column.extend([""] * len(rows))
     rows.clear()
 
 
-def _note_width(width: int, heading_line: int, notices: Notices) -> None:
-    notices.error(
-        f"the headings have {width} cells",
-        f"a timing file has at most {WIDEST} columns",
-        heading_line,
-    )
+def _note_width(width: int, what: str, line: int, notices: Notices) -> None:
+    notices.error(f"the {what} {width} cells", f"a timing file has at most {WIDEST} columns", line)
 
 
 def _note_quote(fault: str, source: _Lines, notices: Notices) -> None:
@@ -161,31 +192,3 @@ def _like_row(line: str, delimiter: str, width: int) -> bool:
     return len(cells) >= width > 1 and any(
         looks_like_number(cell.strip()) or read_clock(cell.strip()) is not None for cell in cells
     )
-
-
-def _evened(cells: list[str], width: int, delimiter: str, line: int, notices: Notices) -> list[str]:
-    """Bring a row to the headings' width: too few cells are missing ones, too many a fault."""
-    if len(cells) < width:
-        notices.repair(
-            f"the row has {len(cells)} of {width} cells; the others are taken as empty", line
-        )
-        return cells + [""] * (width - len(cells))
-    extra = next((n for n, cell in enumerate(cells[width:], width) if cell.strip()), None)
-    if extra is None:
-        notices.repair(f"{len(cells) - width} empty cells beyond the headings", line, width + 1)
-        return cells[:width]
-    if delimiter == ",":
-        remedy = (
-            "quote a cell that holds a comma; if the comma is a decimal mark, write points, or"
-            " save the file with semicolons between its cells"
-        )
-    else:
-        remedy = f"quote a cell that holds {quoted(delimiter)}, or give its column a heading"
-    notices.error(
-        f"the row has {len(cells)} cells under {width} headings;"
-        f" the first without a heading is {quoted(cells[extra])}",
-        remedy,
-        line,
-        extra + 1,
-    )
-    return cells[:width]

@@ -109,7 +109,8 @@ def _explain(text: str, decimal: str, what: str) -> Fault:
         )
     if time_unit(text) or temperature_unit(text):
         return Fault(
-            f"{shown} is a unit where {what} is expected", "write the unit in the heading, as [s]"
+            f"{shown} is a unit where {what} is expected",
+            f"write the unit in the heading, as [{'s' if what == 'a time' else 'degC'}]",
         )
     mended = text.translate(_LETTERS)
     if mended != text and (_NUMBER.fullmatch(mended) or isinstance(read_clock(mended), float)):

@@ -1,0 +1,235 @@
+"""A table cut where headings stand again or a title names another ball, each part by itself."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import dataclass, field, replace
+
+import numpy as np
+
+from plumbfall.timings.columns import TextColumn
+from plumbfall.timings.grid import Grid
+from plumbfall.timings.heading_rows import DEPTH, Head, read_head
+from plumbfall.timings.headings import TIMES
+from plumbfall.timings.notices import Notices, quoted
+from plumbfall.timings.statistics_rows import drop_rows
+from plumbfall.timings.titles import Title, read_title
+from plumbfall.timings.values import is_missing
+from plumbfall.timings.vocabulary import Vocabulary, is_value
+from plumbfall.timings.widths import evened
+
+__all__ = ["Above", "Section", "cut_sections"]
+
+_PLAIN = re.compile(r"[+-]?[0-9:.,]+")
+_MOST_SHOWN = 3
+
+
+@dataclass(frozen=True, slots=True)
+class Above:
+    """Lines above the headings: where each stands, its text, and its cells."""
+
+    line: int
+    text: str
+    cells: Sequence[str]
+
+
+@dataclass(frozen=True, slots=True)
+class Section:
+    """Rows under one row of headings; what a title names is a column of its own at the end.
+
+    ``title_lines`` has the line of the title by the number of that column.
+    """
+
+    grid: Grid
+    title_lines: Mapping[int, int] = field(default_factory=dict)
+
+
+@dataclass(slots=True)
+class _Part:
+    """A section while it is found: its headings, and the rows from ``start`` up to ``end``."""
+
+    head: Head
+    line: int | None
+    start: int
+    end: int
+    titles: dict[str, tuple[Title, int]]
+
+
+def cut_sections(
+    grid: Grid, above: Sequence[Above], vocabulary: Vocabulary, notices: Notices
+) -> Iterator[Section]:
+    """Yield the parts of a table, each with its own headings; list what belongs to none.
+
+    ``above`` are the lines above the headings, the last one last.
+    """
+    titles = _titles_above(grid, above, vocabulary, notices)
+    first = _first_part(grid, above, titles, vocabulary, notices)
+    for part in _parts(grid, first, vocabulary, notices):
+        yield _section(grid, part, vocabulary, notices)
+
+
+def _titles_above(
+    grid: Grid, above: Sequence[Above], vocabulary: Vocabulary, notices: Notices
+) -> dict[str, tuple[Title, int]]:
+    titles: dict[str, tuple[Title, int]] = {}
+    unread: list[Above] = []
+    for one in above:
+        if _is_top(one, grid, vocabulary):
+            continue
+        title = read_title(one.cells, vocabulary)
+        if title is None:
+            unread.append(one)
+        else:
+            _name(title, one.line, titles, notices)
+    if unread:
+        shown = ", ".join(quoted(one.text, 40) for one in unread[:_MOST_SHOWN])
+        notices.repair(
+            f"lines above the headings in line {grid.heading_line} are not read: {shown}"
+            + (", …" if len(unread) > _MOST_SHOWN else ""),
+            unread[0].line,
+        )
+    return titles
+
+
+def _is_top(one: Above, grid: Grid, vocabulary: Vocabulary) -> bool:
+    """Say whether a line is the upper one of two rows of headings."""
+    if grid.heading_line is None or one.line != grid.heading_line - 1:
+        return False
+    return read_head(one.cells, grid.headings, (), vocabulary).merged
+
+
+def _name(title: Title, line: int, titles: dict[str, tuple[Title, int]], notices: Notices) -> None:
+    titles[title.field] = (title, line)
+    notices.repair(f"{title.field} {quoted(title.text)} holds for the drops below", line)
+
+
+def _first_part(
+    grid: Grid,
+    above: Sequence[Above],
+    titles: dict[str, tuple[Title, int]],
+    vocabulary: Vocabulary,
+    notices: Notices,
+) -> _Part:
+    top: Sequence[str] = ()
+    if above and grid.heading_line is not None and above[-1].line == grid.heading_line - 1:
+        top = above[-1].cells
+    below = [grid.row(row) for row in range(min(DEPTH, len(grid)))]
+    head = read_head(top, grid.headings, below, vocabulary)
+    _note_head(head, grid, -1, notices)
+    return _Part(head, grid.heading_line, head.rows, len(grid), titles)
+
+
+def _note_head(head: Head, grid: Grid, row: int, notices: Notices) -> None:
+    """List how headings were put together; ``row`` is their first, -1 that above the grid."""
+    rows = row + head.rows
+    line = grid.heading_line if rows < 0 else int(grid.lines[rows])
+    if head.units or head.contradicted:
+        for heading, unit in head.contradicted:
+            notices.error(
+                f"the row of units has {quoted(unit)} under {quoted(heading.text)}",
+                "write the unit in one place only, or the same in both",
+                line,
+                heading.column,
+            )
+        if head.units:
+            told = ", ".join(f"{one.label or one.text} in {unit}" for one, unit in head.units)
+            notices.repair(f"units are taken from this row: {told}", line)
+        rows -= 1
+    if head.merged:
+        line = grid.heading_line if rows < 0 else int(grid.lines[rows])
+        notices.repair("this row and the one above are read together as headings", line)
+
+
+def _parts(grid: Grid, part: _Part, vocabulary: Vocabulary, notices: Notices) -> Iterator[_Part]:
+    """Yield the parts from the first on, cut at every row that is headings or a title."""
+    titles = dict(part.titles)
+    unclear = -1  # the latest row without a time that is neither headings nor a title
+    heading_line: int | None
+    for row in _special_rows(grid, part.head, part.start, vocabulary):
+        if row < part.start:
+            continue
+        cells = grid.row(row)
+        end = row
+        if vocabulary.is_heading_row(cells):
+            top = grid.row(unclear) if unclear == row - 1 >= part.start else ()
+            below = [grid.row(at) for at in range(row + 1, min(row + 1 + DEPTH, len(grid)))]
+            head, line = read_head(top, cells, below, vocabulary), int(grid.lines[row])
+            if top and head.merged and not read_head((), cells, below, vocabulary).merged:
+                end = row - 1
+            notices.repair("headings stand again in this row and hold for the rows below it", line)
+            _note_head(head, grid, row, notices)
+            start, heading_line = row + 1 + head.rows, line
+        elif title := read_title(cells, vocabulary):
+            _name(title, int(grid.lines[row]), titles, notices)
+            head, start, heading_line = part.head, row + 1, part.line
+        else:
+            unclear = row
+            continue
+        if end > part.start:
+            part.end = end
+            yield part
+        part = _Part(head, heading_line, start, len(grid), dict(titles))
+    yield part
+
+
+def _special_rows(grid: Grid, head: Head, start: int, vocabulary: Vocabulary) -> list[int]:
+    """Return rows that may be headings or a title: those without a value where a time would be."""
+    times = [one.column for one in vocabulary.read_all(head.texts) if one.meaning in TIMES]
+    if not times or times[0] > len(grid.columns) or start >= len(grid):
+        return []
+    column = grid.columns[times[0] - 1]
+    rest = np.flatnonzero(~column.numbers(".").clean)
+    rest = rest[rest >= start]
+    if not rest.size:
+        return []
+    codes, texts = column.distinct(rest)
+    wordy = np.array([not (_PLAIN.fullmatch(text) or is_value(text)) for text in texts], dtype=bool)
+    empty = np.array([is_missing(text) for text in texts], dtype=bool)
+    rows = rest[wordy[codes] & ~empty[codes]].tolist()
+    gaps = rest[empty[codes]]
+    if gaps.size:
+        filled = np.zeros(gaps.size, dtype=np.int64)
+        heading = np.zeros(gaps.size, dtype=bool)
+        for one in grid.columns:
+            codes, texts = one.distinct(gaps)
+            filled += np.array([bool(text) for text in texts], dtype=np.int64)[codes]
+            heading |= np.array([vocabulary.has_times([text]) for text in texts], dtype=bool)[codes]
+        rows += gaps[heading | ((filled > 0) & (filled <= 2))].tolist()
+    return sorted(rows)
+
+
+def _section(grid: Grid, part: _Part, vocabulary: Vocabulary, notices: Notices) -> Section:
+    whole = part.start == 0 and part.end == len(grid)
+    rows = grid if whole else grid.take(np.arange(part.start, part.end, dtype=np.int64))
+    rows = replace(rows, headings=part.head.texts, heading_line=part.line)
+    rows = _padded(rows)
+    headings = vocabulary.read_all(rows.headings)
+    if (drops := drop_rows(rows, headings, vocabulary, notices)) is not None:
+        rows = rows.take(drops)
+    rows = evened(rows, notices)
+    return _titled(rows, part.titles, {one.meaning for one in headings})
+
+
+def _padded(grid: Grid) -> Grid:
+    """Give every heading a column, empty where the rows are all narrower."""
+    missing = len(grid.headings) - len(grid.columns)
+    if missing <= 0:
+        return grid
+    empty = tuple(TextColumn([""] * len(grid)) for _ in range(missing))
+    widths = grid.widths
+    if widths is None:
+        widths = np.full(len(grid), len(grid.columns), dtype=np.int64)
+    return replace(grid, columns=grid.columns + empty, widths=widths)
+
+
+def _titled(grid: Grid, titles: Mapping[str, tuple[Title, int]], known: set[str]) -> Section:
+    """Add a column for everything that a title names and no column holds."""
+    lines: dict[int, int] = {}
+    headings, columns = list(grid.headings), list(grid.columns[: len(grid.headings)])
+    for name, (title, line) in titles.items():
+        if name not in known:
+            headings.append(name)
+            columns.append(TextColumn([title.text] * len(grid)))
+            lines[len(headings)] = line
+    return Section(replace(grid, headings=tuple(headings), columns=tuple(columns)), lines)
