@@ -28,6 +28,12 @@ def add_reduce(commands: Commands) -> None:
         help="write report.html, report.json, run_sets.csv and drops.csv there, all or none",
     )
     reduce.add_argument(
+        "--format",
+        choices=("html", "pdf"),
+        default="html",
+        help="pdf: write report.pdf into DIR too, printed by an installed Chromium (default html)",
+    )
+    reduce.add_argument(
         "--coverage", type=probability, metavar="P", help="coverage probability (default 0.95)"
     )
     reduce.add_argument(
@@ -59,10 +65,15 @@ def add_reduce(commands: Commands) -> None:
 def _run(options: argparse.Namespace) -> int:
     import warnings
 
-    from plumbfall.errors import PlumbfallWarning
+    from plumbfall.errors import InputError, PlumbfallWarning
+    from plumbfall.report.browser import find_browser
     from plumbfall.report.text import show
     from plumbfall.workflow import reduce
 
+    if options.format == "pdf":
+        if not options.out:
+            raise InputError("--format pdf needs a folder", remedy="add --out DIR")
+        find_browser()  # before anything is computed
     asked = {} if options.draws is None else {"draws": options.draws}
     with warnings.catch_warnings(record=True) as said, progress_bar("run sets") as progress:
         warnings.simplefilter("always", PlumbfallWarning)
@@ -81,8 +92,11 @@ def _run(options: argparse.Namespace) -> int:
     statuses = set(report.table()["status"])
     failing = {"invalid", "valid-with-warnings"} if options.strict else {"invalid"}
     if options.out:
-        report.write(options.out)
-        say(f"written to {options.out}: report.html, report.json, run_sets.csv, drops.csv")
+        printed = options.format == "pdf"
+        report.write(options.out, pdf=printed)
+        written = ["report.html", "report.json", "run_sets.csv", "drops.csv"]
+        written += ["report.pdf"] if printed else []
+        say(f"written to {options.out}: {', '.join(written)}")
     with standard_output() as output:
         if options.json:
             output.write(report.to_json())

@@ -194,14 +194,29 @@ class Report:
             write_file(path, text.encode("utf-8"))
         return text
 
+    def to_pdf(self, path: str | os.PathLike[str]) -> None:
+        """Write the page as PDF, printed by an installed Chromium.
+
+        Raises
+        ------
+        InputError
+            Where no Chromium is found, or the file cannot be written.
+        """
+        from plumbfall.report.browser import pdf_of
+        from plumbfall.report.writing import write_file
+
+        write_file(path, pdf_of(self.to_html()))
+
     def to_csv(self, folder: str | os.PathLike[str]) -> None:
         """Write ``run_sets.csv`` and ``drops.csv`` into a folder, both or none."""
         from plumbfall.report.writing import write_folder
 
         write_folder(folder, self._csv_files())
 
-    def write(self, folder: str | os.PathLike[str]) -> None:
+    def write(self, folder: str | os.PathLike[str], *, pdf: bool = False) -> None:
         """Write report.html, report.json, run_sets.csv and drops.csv, all of them or none.
+
+        With ``pdf`` also report.pdf, printed by an installed Chromium.
 
         Raises
         ------
@@ -210,10 +225,15 @@ class Report:
         """
         from plumbfall.report.writing import write_folder
 
+        page = self.to_html()
         files = {
-            "report.html": self.to_html().encode("utf-8"),
+            "report.html": page.encode("utf-8"),
             "report.json": self.to_json().encode("ascii"),
         }
+        if pdf:
+            from plumbfall.report.browser import pdf_of
+
+            files["report.pdf"] = pdf_of(page)
         write_folder(folder, files | self._csv_files())
 
     def plot(
