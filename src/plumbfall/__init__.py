@@ -20,7 +20,7 @@ if TYPE_CHECKING:
     from plumbfall.report.report import Report
     from plumbfall.timings.reader import read_timings
     from plumbfall.timings.records import Timings
-    from plumbfall.workflow import reduce
+    from plumbfall.workflow import calibrate, reduce
 
 __all__ = [
     "Bench",
@@ -31,6 +31,7 @@ __all__ = [
     "Report",
     "Timings",
     "__version__",
+    "calibrate",
     "physics",
     "read_bench",
     "read_timings",
@@ -46,6 +47,7 @@ _HOME = {
     "PlumbfallWarning": "plumbfall.errors",
     "Report": "plumbfall.report.report",
     "Timings": "plumbfall.timings.records",
+    "calibrate": "plumbfall.workflow",
     "read_bench": "plumbfall.bench.reader",
     "read_timings": "plumbfall.timings.reader",
     "reduce": "plumbfall.workflow",

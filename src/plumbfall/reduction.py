@@ -230,9 +230,15 @@ def reduce_drops(
         found=findings,
         coverage=probability,
         seed=seed,
-        inputs=inputs,
+        inputs=(*inputs, *_constant_files(reduced)),
         drawn=drawn,
     )
+
+
+def _constant_files(sets: SetColumns) -> tuple[tuple[str, str], ...]:
+    """Files of the tube constants in use, with their hashes."""
+    files = [constant.chosen.file for constant in sets.inputs.constants]
+    return tuple(dict.fromkeys((file.path, file.sha256) for file in files if file is not None))
 
 
 def _invalid_but_fitted(

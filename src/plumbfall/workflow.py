@@ -4,10 +4,10 @@ from __future__ import annotations
 
 import datetime as dt
 import os
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from numbers import Integral
 from pathlib import Path
-from typing import Any, TypeAlias
+from typing import TYPE_CHECKING, Any, TypeAlias
 
 import pandas as pd
 
@@ -20,7 +20,18 @@ from plumbfall.timings.reader import collect, read_timings
 from plumbfall.timings.records import Timings
 from plumbfall.uncertainty.monte_carlo import DRAWS
 
-__all__ = ["BenchSource", "TimingSource", "find_bench", "inspect_inputs", "reduce"]
+if TYPE_CHECKING:
+    from plumbfall.report.calibrate_result import CalibrationReport
+
+__all__ = [
+    "BenchSource",
+    "TimingSource",
+    "calibrate",
+    "find_bench",
+    "inspect_inputs",
+    "read_inputs",
+    "reduce",
+]
 
 FilePath: TypeAlias = str | os.PathLike[str]
 BenchSource: TypeAlias = FilePath | Mapping[str, Any] | Bench
@@ -94,13 +105,7 @@ def reduce(
     InputError
         With everything wrong with the inputs, each with its place and a remedy.
     """
-    if not isinstance(bench, Bench):
-        bench = read_bench(find_bench(timings) if bench is None else bench)
-    if not isinstance(timings, Timings):
-        timings = read_timings(timings, bench, encoding=encoding)
-    inputs = [(file.path, file.sha256) for file in timings.files]
-    if bench.path:
-        inputs.append((bench.path, bench.sha256))
+    timings, bench, inputs = read_inputs(timings, bench, encoding=encoding)
     return Report(
         reduce_drops(
             timings,
@@ -108,10 +113,78 @@ def reduce(
             coverage=coverage,
             draws=_checked_draws(draws),
             seed=seed,
-            inputs=tuple(inputs),
+            inputs=inputs,
             progress=progress,
         ),
         date=_checked_date(date),
+    )
+
+
+def read_inputs(
+    timings: TimingSource, bench: BenchSource | None = None, *, encoding: str | None = None
+) -> tuple[Timings, Bench, tuple[tuple[str, str], ...]]:
+    """Read timings and bench sheet, and say which files they are.
+
+    Returns
+    -------
+    Timings, Bench, tuple of (path, sha256)
+        What was read; the files with their hashes.
+
+    Raises
+    ------
+    InputError
+        With everything wrong with the inputs, each with its place and a remedy.
+    """
+    if not isinstance(bench, Bench):
+        bench = read_bench(find_bench(timings) if bench is None else bench)
+    if not isinstance(timings, Timings):
+        timings = read_timings(timings, bench, encoding=encoding)
+    inputs = [(file.path, file.sha256) for file in timings.files]
+    if bench.path:
+        inputs.append((bench.path, bench.sha256))
+    return timings, bench, tuple(inputs)
+
+
+def calibrate(
+    timings: TimingSource,
+    bench: BenchSource | None = None,
+    *,
+    reference: str | Sequence[str],
+    date: dt.date | str | None = None,
+    encoding: str | None = None,
+) -> CalibrationReport:
+    """Find the constant of each ball and tube from timings in certified liquids.
+
+    Parameters
+    ----------
+    timings : path, list of paths, DataFrame, dict of columns or Timings
+        Timed drops in certified liquids, one row a drop.
+    bench : path, dict or Bench, optional
+        The bench sheet; ``bench.toml`` beside the timing file where not given.
+    reference : str or sequence of str
+        Names of the certified liquids, each a ``[reference.NAME]`` of the bench sheet.
+    date : date, optional
+        Of the calibration; that of the last drop where the timings say when it started.
+    encoding : str, optional
+        Encoding of the timing files where they are not UTF-8.
+
+    Returns
+    -------
+    CalibrationReport
+        Constants with uncertainty, sensitivities, domain, and tests of their constancy.
+
+    Raises
+    ------
+    InputError
+        With everything wrong with the inputs, each with its place and a remedy.
+    """
+    from plumbfall.calibration.constant import calibrate_tubes
+    from plumbfall.report.calibrate_result import CalibrationReport
+
+    names = (reference,) if isinstance(reference, str) else tuple(reference)
+    timings, bench, inputs = read_inputs(timings, bench, encoding=encoding)
+    return CalibrationReport(
+        calibrate_tubes(timings, bench, names, date=_checked_date(date), inputs=inputs)
     )
 
 

@@ -11,6 +11,7 @@ import sys
 from collections.abc import Sequence
 
 from plumbfall._version import __version__
+from plumbfall.cli.calibrate import add_calibrate
 from plumbfall.cli.exit_codes import BAD_INPUT, INTERRUPTED
 from plumbfall.cli.inspect import add_inspect
 from plumbfall.cli.methods import add_methods
@@ -62,6 +63,6 @@ def build_parser() -> argparse.ArgumentParser:
     )
     parser.add_argument("--version", action="version", version=f"plumbfall {__version__}")
     commands = parser.add_subparsers(title="commands", metavar="COMMAND", required=True)
-    for add in (add_inspect, add_reduce, add_methods, add_selftest):
+    for add in (add_inspect, add_reduce, add_calibrate, add_methods, add_selftest):
         add(commands)
     return parser

@@ -58,6 +58,17 @@ class Limits:
         of 20 s by stopwatch (Am. J. Phys. 87, 110, 2019).
     best_uncertainty
         Least relative standard uncertainty to be believed: BIPM key comparison CCM.V-K1.
+    constant_temperature
+        Largest distance from the temperatures a tube constant was found at (common practice, no
+        source).
+    constant_range
+        By how much, as a ratio, viscosity and time may leave those a tube constant was found
+        between (common practice, no source).
+    constant_tilt
+        Largest difference, in degrees, of the tube's tilt from that the constant was found at
+        (common practice, no source).
+    constant_gravity
+        Largest relative difference of gravity (ISO 3104, 7, has it for capillary viscometers).
     stopwatch_share
         Least uncertainty to be believed of a stopwatch, over that of usual timing by hand.
     """
@@ -84,6 +95,10 @@ class Limits:
     excluded_effect: float = 1 / 3
     timing_effect: float = 0.005
     best_uncertainty: float = 4e-4
+    constant_temperature: float = 1.0
+    constant_range: float = 0.25
+    constant_tilt: float = 0.5
+    constant_gravity: float = 1e-3
     stopwatch_share: float = 0.5
 
 

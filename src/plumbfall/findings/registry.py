@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from plumbfall.findings.balls import balls_disagree, diameter_ratio_trend, shear_dependence
 from plumbfall.findings.claims import uncertainty_implausible
+from plumbfall.findings.constants import constant_outside_domain, input_changed
 from plumbfall.findings.counts import (
     nothing_left,
     reused_balls,
@@ -74,6 +75,7 @@ DETECTORS: tuple[Detector, ...] = (
     fall_time_short,
     many_excluded,
     void_without_reason,
+    constant_outside_domain,
     calibration_overdue,
     reference_expired,
     uncertainty_implausible,
@@ -83,6 +85,7 @@ DETECTORS: tuple[Detector, ...] = (
     nominal_diameter,
     geometry_unknown,
     missing_uncertainty,
+    input_changed,
     default_gravity,
 )
 

@@ -52,8 +52,7 @@ class ChosenConstant:
     """The constant of one tube and ball.
 
     ``own`` is the constant with what it shares with no other input; ``stored`` is ``None`` and
-    ``inputs`` empty where it was typed by hand. ``edited`` says that its file was changed since it
-    was written.
+    ``inputs`` empty where it was typed by hand.
     """
 
     tube: str
@@ -62,8 +61,7 @@ class ChosenConstant:
     own: Estimate
     certified: tuple[Certified, ...]
     stored: StoredConstant | None = None
-    path: str = ""
-    edited: bool = False
+    file: ConstantFile | None = None
 
     @property
     def inputs(self) -> tuple[StoredInput, ...]:
@@ -181,8 +179,7 @@ def _match(
                 own,
                 stored.certified,
                 stored,
-                file.path,
-                file.edited,
+                file,
             )
     return None
 

@@ -147,9 +147,6 @@ def add_block(
     a_liquid = a_weight * -s
     a_speed = a_liquid - a_weight
     a_diameter = a_speed - a_bore
-    if slopes.calibrated:  # not weight over diameter, but net mass over volume
-        a_diameter = -3 * a_weight
-        add("constant", lambda: pull / take("constant"))
     if (beside := slopes.beside) is not None:
         # the bore also scales the distance from the axis
         a_bore = a_bore + a_weight * take("release_offset") * beside.by_offset
@@ -198,11 +195,14 @@ def add_block(
         )
         add("mass", lambda: by_reading)
         add("balance", lambda: by_reading)
-    by_diameter = (a_diameter + by_volume + of_mass) / cold
+    grow = a_diameter + by_volume
+    if slopes.calibrated:  # not weight over diameter, but net mass over volume
+        grow = -3 * carried
+        add("constant", lambda: pull / take("constant"))
+    by_diameter = (grow + of_mass) / cold
     add("diameter", lambda: by_diameter)
     add("gauge", lambda: by_diameter)
     add("ball_density", lambda: np.where(inputs.weighed[cell], 0.0, carried / take("ball_density")))
-    grow = a_diameter + by_volume
     add("ball_expansion", lambda: grow * (forces.ball_offset / grown))
 
     add("liquid_density", lambda: by_density / take("liquid_density"))

@@ -28,7 +28,7 @@ if TYPE_CHECKING:
     from plumbfall.report.report import Report
     from plumbfall.run_sets.joint import Joint
 
-__all__ = ["SCHEMA", "json_text", "report_document"]
+__all__ = ["SCHEMA", "finding_document", "json_text", "report_document"]
 
 SCHEMA = "plumbfall/report/1"
 
@@ -55,7 +55,7 @@ def report_document(report: Report) -> dict[str, Any]:
         },
         "covariance": _covariance(report.reduced.joint, report.coverage),
         "temperature_fit": _temperature_fit(report.temperature_fits),
-        "findings": [_finding(finding) for finding in report.findings],
+        "findings": [finding_document(finding) for finding in report.findings],
     }
 
 
@@ -101,7 +101,7 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
         "monte_carlo": _monte_carlo(result.monte_carlo),
         "balls": [_ball(ball) for ball in result.balls],
         "drops": [_drop(drop) for drop in result.drops],
-        "findings": [_finding(finding) for finding in result.findings],
+        "findings": [finding_document(finding) for finding in result.findings],
     }
 
 
@@ -284,7 +284,8 @@ def _drop(drop: DropResult) -> dict[str, Any]:
     }
 
 
-def _finding(finding: Finding) -> dict[str, Any]:
+def finding_document(finding: Finding) -> dict[str, Any]:
+    """Return a finding as a dict of the report's schema."""
     return {
         "code": finding.code,
         "severity": finding.severity,

@@ -47,6 +47,7 @@ _BY_SIZE: dict[str, tuple[tuple[float, Scale], ...]] = {
     "kg": ((1.0, Scale("kg")), (1e-3, Scale("g", 1e3)), (0.0, Scale("mg", 1e6))),
     "m/s": ((1.0, Scale("m/s")), (0.0, Scale("mm/s", 1e3))),
     "m2/s": ((0.0, Scale("mm2/s", 1e6)),),
+    "m2/s2": ((0.0, Scale("mPa.s.cm3/(g.s)", 1e6)),),
     "rad": ((0.0, Scale("deg", 180.0 / math.pi)),),
     "K": ((200.0, CELSIUS), (0.0, Scale("K"))),
     "1": ((1e-3, Scale("")), (0.0, Scale("ppm", 1e6))),
