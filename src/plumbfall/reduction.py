@@ -28,6 +28,7 @@ from plumbfall.measurement.selection import check_temperatures, select
 from plumbfall.measurement.values import value_weights
 from plumbfall.physics.laws import DEFAULTS
 from plumbfall.results import Finding, RunSetResult, TemperatureFitResult
+from plumbfall.run_sets.ball_scatter import ball_scatter
 from plumbfall.run_sets.drawn import Drawn
 from plumbfall.run_sets.fitted_slopes import SetValues, fit_slopes
 from plumbfall.run_sets.jacobian import build_jacobian
@@ -131,7 +132,13 @@ class Reduction:
     @cached_property
     def joint(self) -> Joint:
         """All quantities of all run sets with what each input contributes to each."""
-        return joint_results(self.sets.outputs, self.sets.jacobian, self.sets.inputs, self.names)
+        return joint_results(
+            self.sets.outputs,
+            self.sets.jacobian,
+            self.sets.inputs,
+            self.names,
+            self.bench.balls,
+        )
 
     @cached_property
     def temperature_fits(self) -> tuple[TemperatureFitResult, ...]:
@@ -299,9 +306,9 @@ def reduce_numbers(
         columns, sums = compute_drops(selection, inputs, weights, law, readings, ends, released)
         own = own_errors(selection, inputs, sums)
         scatter = repeatability(selection, columns, weights, own, bench.scatter)
-        return SetValues(
-            columns, sums, scatter, build_jacobian(selection, inputs, sums, own, scatter)
-        )
+        of_balls = ball_scatter(selection, inputs, weights, scatter)
+        jacobian = build_jacobian(selection, inputs, sums, own, scatter, of_balls)
+        return SetValues(columns, sums, scatter, jacobian)
 
     if bench.methods.slope is None:
         fits: tuple[TemperatureFit, ...] = ()
@@ -311,7 +318,7 @@ def reduce_numbers(
     liquid = conditions(selection, inputs, values.columns)
     outputs = compute_outputs(
         values.jacobian,
-        values.scatter,
+        values.scatter.mean,
         liquid,
         inputs,
         values.columns.set_temperature,

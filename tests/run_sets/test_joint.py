@@ -99,7 +99,11 @@ def test_a_number_carries_its_budget():
         if line.input in parts:
             both = math.hypot(parts[line.input], parts.get(f"{line.input} squared", 0.0))
             assert both == pytest.approx(line.contribution, rel=1e-9)
-    assert {"tube.A.bore", "thermometer.P1.correction", "set.A.scatter"} <= set(parts)
+    assert {"tube.A.bore", "thermometer.P1.correction"} <= set(parts)
+    # both sets have the same balls, so that their scatter is kept ball by ball
+    (scatter,) = (line for line in report["A"].result.budget if line.input == "set.A.scatter")
+    of_balls = [u for tag, u in parts.items() if str(tag).endswith(".scatter")]
+    assert math.hypot(*of_balls) == pytest.approx(scatter.contribution, rel=1e-9)
 
 
 def test_a_pickled_report_keeps_the_covariance():

@@ -135,14 +135,17 @@ def test_order_of_rows_changes_nothing():
 
 
 def test_shared_errors_correlate_run_sets_and_cancel_in_their_ratio():
-    table = pd.concat([drops_table(TIMES), drops_table(TIMES, run_set="B")])
+    others = {ball: list(reversed(times)) for ball, times in TIMES.items()}
+    others["B2"] = [1.004 * time for time in others["B2"]]
+    table = pd.concat([drops_table(TIMES), drops_table(others, run_set="B")])
     report = pf.reduce(table, bench_dict())
     a, b = report["A"].viscosity, report["B"].viscosity
     correlation = report.correlation()[0, 1]
     assert 0.05 < correlation < 1
     ratio = a / b
-    independent = math.hypot(a.std_dev / a.n, b.std_dev / b.n)
-    assert ratio.std_dev == pytest.approx(independent * math.sqrt(1 - correlation), rel=1e-6)
+    one, other = a.std_dev / a.n, b.std_dev / b.n
+    variance = one**2 + other**2 - 2 * correlation * one * other
+    assert ratio.std_dev / ratio.n == pytest.approx(math.sqrt(variance), rel=1e-6)
 
 
 def test_drops_of_a_set_do_not_average_a_shared_error_away():

@@ -13,7 +13,8 @@ from plumbfall.calibration.precision import critical_difference, pooled_sd, repe
 from plumbfall.errors import InputError, nearest_name
 from plumbfall.reduction import Reduction
 from plumbfall.results import Measured, RunSetResult
-from plumbfall.uncertainty.coverage import coverage_factor, effective_dof
+from plumbfall.run_sets.outputs import Outputs
+from plumbfall.uncertainty.coverage import coverage_factor
 from plumbfall.uncertainty.type_a import group_scatter
 
 __all__ = ["LEVEL", "Comparison", "Precision", "compare_run_sets"]
@@ -172,33 +173,27 @@ def _propagated(
     outputs = reduction.sets.outputs
     start = outputs.rows(quantity).start
     rows = [start + reduction.names.index(name) for name in sets]
-    contributions = np.asarray(outputs.propagation.contributions[rows].todense(), dtype=float)
-    one, other = contributions
-    dof = outputs.propagation.dof
+    (a, both), (_, b) = outputs.propagation.covariance(rows)
     ratio = first / second
-    by_ratio = (one - ratio * other) / second
-    both = float(np.sqrt((one @ one) * (other @ other)))
+    scale = math.sqrt(a * b)
     return (
-        _measured(ratio, by_ratio, dof, reduction.coverage, "1"),
-        _measured(first - second, one - other, dof, reduction.coverage, "Pa.s"),
-        float(one @ other) / both if both else math.nan,
+        _measured(ratio, outputs, rows, (1 / second, -ratio / second), "1"),
+        _measured(first - second, outputs, rows, (1.0, -1.0), "Pa.s"),
+        float(both) / scale if scale else math.nan,
     )
 
 
 def _measured(
-    value: float, contributions: np.ndarray, dof: np.ndarray, coverage: float, unit: str
+    value: float, outputs: Outputs, rows: Sequence[int], weights: tuple[float, float], unit: str
 ) -> Measured:
-    u = float(np.sqrt(contributions @ contributions))
-    effective = float(
-        effective_dof(u=u, contributions_fourth=float((contributions**4 / dof).sum()))
-    )
-    factor = float(coverage_factor(dof=effective, probability=coverage))
+    u, effective = outputs.combination(rows, np.array(weights))
+    factor = float(coverage_factor(dof=effective, probability=outputs.coverage))
     return Measured(
         value=value,
         unit=unit,
         u=u,
         effective_dof=effective,
-        coverage_probability=coverage,
+        coverage_probability=outputs.coverage,
         coverage_factor=factor,
         expanded=factor * u,
         low=value - factor * u,

@@ -41,9 +41,13 @@ def budget_lines(
         return ()
     cells = np.flatnonzero(selection.cells.run_set == run_set)
     lines: dict[str, BudgetLine] = {}
+    own_scatter = int(jacobian.own_columns("scatter")[run_set])
+    shared_scatter = jacobian.shared_scatter
     for column, sensitivity in zip(columns.tolist(), sensitivities.tolist(), strict=True):
         contribution = abs(sensitivity) * float(jacobian.u[column])
-        if contribution == 0:
+        if column == own_scatter:  # whole, also where other sets have a part in it
+            contribution = float(jacobian.u[column])
+        if contribution == 0 or shared_scatter[column]:
             continue
         if (entry := jacobian.input_of(column)) >= 0:
             line = _input_line(inputs, sums, cells, entry, sensitivity, contribution)

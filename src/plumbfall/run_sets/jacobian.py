@@ -1,7 +1,8 @@
 """The run sets' Jacobian: rows are outputs, columns the inputs of the bench sheet.
 
 After the bench's own entries come columns that belong to one run set each: what its scatter,
-its clock readings or its fresh balls add. The same list of columns serves every output.
+its clock readings or its fresh balls add; then one for each ball whose residuals several run sets
+share. The same list of columns serves every output.
 """
 
 from __future__ import annotations
@@ -17,6 +18,7 @@ from plumbfall.measurement.balance import Numbers
 from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.measurement.sensitivities import Sums
+from plumbfall.run_sets.ball_scatter import BallScatter
 from plumbfall.run_sets.own_errors import OwnErrors
 from plumbfall.run_sets.repeatability import DECLARED, KNOWN, OF_VALUES, Repeatability
 
@@ -31,7 +33,9 @@ class Jacobian:
     """Sensitivities of the run sets' viscosities, shape (run sets, columns).
 
     The first columns are ``Inputs.estimates`` in order, then the second-order ones (their input
-    in ``squared``), then one column a run set for each of ``OWN_KINDS``.
+    in ``squared``), then one column a run set for each of ``OWN_KINDS``, then one a ball for the
+    scatter that run sets share; such a set has nothing in its own column of scatter, whose ``u``
+    and ``dof`` are still those of its scatter. ``scatter_dof`` has shape (run sets,).
     """
 
     matrix: sparse.csr_array
@@ -40,6 +44,8 @@ class Jacobian:
     squared: NDArray[np.intp]
     n_inputs: int
     n_sets: int
+    n_balls: int
+    scatter_dof: Numbers
 
     def input_of(self, column: int) -> int:
         """Which estimate a column belongs to; -1 for a run set's own columns."""
@@ -54,9 +60,21 @@ class Jacobian:
         return first + np.arange(self.n_sets)
 
     def own_kind(self, column: int) -> str:
-        """Say what a run set's own column stands for."""
+        """Say what a run set's own column stands for; nothing for one of shared scatter."""
         place = column - self.n_inputs - len(self.squared)
-        return OWN_KINDS[place // self.n_sets]
+        return (*OWN_KINDS, "")[min(place // self.n_sets, len(OWN_KINDS))]
+
+    @property
+    def shared_scatter(self) -> NDArray[np.bool_]:
+        """Columns of the balls' residuals: together they are one sample, shape (columns,)."""
+        return np.arange(len(self.u)) >= len(self.u) - self.n_balls
+
+    @property
+    def observed_scatter(self) -> NDArray[np.bool_]:
+        """Columns of all observed scatter, shape (columns,)."""
+        mask = self.shared_scatter
+        mask[self.own_columns("scatter")] = True
+        return mask
 
 
 def _through_constants(
@@ -75,6 +93,7 @@ def build_jacobian(
     sums: Sums,
     own: OwnErrors,
     scatter: Repeatability,
+    of_balls: BallScatter,
 ) -> Jacobian:
     """Stack the sums over cells into one sparse Jacobian.
 
@@ -125,10 +144,17 @@ def build_jacobian(
             own_dof = np.full(n_sets, np.inf)
         rows.append(np.arange(n_sets))
         columns.append(offset + np.arange(n_sets))
-        values.append(np.ones(n_sets))
+        values.append(np.where((kind == "scatter") & of_balls.shared, 0.0, 1.0))
         u.append(own_u)
         dof.append(own_dof)
         offset += n_sets
+    rows.append(of_balls.run_set)
+    columns.append(offset + of_balls.ball)
+    values.append(of_balls.contribution)
+    n_balls = int(of_balls.ball.max(initial=-1)) + 1
+    u.append(np.ones(n_balls))
+    dof.append(np.full(n_balls, np.inf))
+    offset += n_balls
 
     matrix = sparse.csr_array(
         (np.concatenate(values), (np.concatenate(rows), np.concatenate(columns))),
@@ -142,4 +168,6 @@ def build_jacobian(
         squared=np.array(squared, dtype=np.intp),
         n_inputs=n_inputs,
         n_sets=n_sets,
+        n_balls=n_balls,
+        scatter_dof=scatter.dof,
     )

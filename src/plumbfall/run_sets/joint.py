@@ -5,6 +5,7 @@ Two of them are correlated as far as they share inputs; nothing else need be kep
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -67,7 +68,11 @@ class Joint:
 
 
 def joint_results(
-    outputs: Outputs, jacobian: Jacobian, inputs: Inputs, names: tuple[str, ...]
+    outputs: Outputs,
+    jacobian: Jacobian,
+    inputs: Inputs,
+    names: tuple[str, ...],
+    balls: Iterable[str],
 ) -> Joint:
     """Gather every quantity that has a value, set by set.
 
@@ -81,6 +86,8 @@ def joint_results(
         For the inputs' names.
     names : tuple of str
         Names of the run sets.
+    balls : names
+        Of the balls, in the bench's order.
     """
     labels, rows = [], []
     for place, name in enumerate(names):
@@ -93,7 +100,7 @@ def joint_results(
     used = np.unique(contributions.indices[contributions.data != 0])
     part = sparse.csr_array(contributions[:, used])
     part.eliminate_zeros()
-    known = _column_names(jacobian, inputs, names)
+    known = _column_names(jacobian, inputs, names, balls)
     return Joint(
         labels=tuple(labels),
         values=outputs.values[rows],
@@ -102,8 +109,12 @@ def joint_results(
     )
 
 
-def _column_names(jacobian: Jacobian, inputs: Inputs, names: tuple[str, ...]) -> list[str]:
+def _column_names(
+    jacobian: Jacobian, inputs: Inputs, names: tuple[str, ...], balls: Iterable[str]
+) -> list[str]:
     entries = [estimate.name for estimate in inputs.estimates]
     # the second-order part of an input's error is independent of the first
     squared = [f"{entries[entry]} squared" for entry in jacobian.squared.tolist()]
-    return entries + squared + [key_path("set", n, kind) for kind in OWN_KINDS for n in names]
+    own = [key_path("set", n, kind) for kind in OWN_KINDS for n in names]
+    of_balls = [key_path("ball", n, "scatter") for n in list(balls)[: jacobian.n_balls]]
+    return entries + squared + own + of_balls

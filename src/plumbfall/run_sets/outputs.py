@@ -20,7 +20,6 @@ from plumbfall.measurement.inputs import Inputs
 from plumbfall.measurement.selection import Selection
 from plumbfall.physics.thermal import liquid_density
 from plumbfall.run_sets.jacobian import Jacobian
-from plumbfall.run_sets.repeatability import Repeatability
 from plumbfall.run_sets.temperature_fit import TemperatureFit
 from plumbfall.uncertainty.coverage import coverage_factor
 from plumbfall.uncertainty.few_values import dof_with_few_values
@@ -90,16 +89,14 @@ class Output:
 class Outputs:
     """All quantities of all run sets, and the propagation they share.
 
-    ``scatter_u`` is what a set's own scatter adds to each value, ``scatter_dof`` its degrees of
-    freedom, both of the shape of ``values``.
+    ``scatter`` marks the columns of observed scatter.
     """
 
     values: Numbers
     propagation: Propagation
     coverage: float
     n_sets: int
-    scatter_u: Numbers
-    scatter_dof: Numbers
+    scatter: NDArray[np.bool_]
 
     def of(self, quantity: str) -> Output:
         """Return one quantity in columns."""
@@ -114,16 +111,24 @@ class Outputs:
         """Covariance of the run sets' values of one quantity, shape (run sets, run sets)."""
         return self.propagation.covariance(self.rows(quantity))
 
-    @cached_property
-    def _columns(self) -> dict[str, Output]:
-        u = self.propagation.u
-        dof = dof_with_few_values(
-            u=u,
-            dof=self.propagation.effective_dof,
-            scatter_u=self.scatter_u,
-            scatter_dof=self.scatter_dof,
+    def combination(self, rows: Sequence[int], weights: Numbers) -> tuple[float, float]:
+        """Return u and effective degrees of freedom of a weighted sum of values, by their rows."""
+        mixed = self.propagation.combine(rows, weights)
+        return float(mixed.u[0]), float(self._dof(mixed)[0])
+
+    def _dof(self, propagation: Propagation) -> Numbers:
+        seen = propagation.part(self.scatter)
+        return dof_with_few_values(
+            u=propagation.u,
+            dof=propagation.effective_dof,
+            scatter_u=seen.u,
+            scatter_dof=seen.effective_dof,
             probability=self.coverage,
         )
+
+    @cached_property
+    def _columns(self) -> dict[str, Output]:
+        u, dof = self.propagation.u, self._dof(self.propagation)
         factor = coverage_factor(dof=dof, probability=self.coverage)
         factor = np.where(np.isfinite(self.values), factor, np.nan)
         return {
@@ -169,7 +174,7 @@ def conditions(selection: Selection, inputs: Inputs, columns: DropColumns) -> Se
 
 def compute_outputs(
     jacobian: Jacobian,
-    scatter: Repeatability,
+    viscosity: Numbers,
     liquid: SetConditions,
     inputs: Inputs,
     set_temperature: Numbers,
@@ -183,8 +188,8 @@ def compute_outputs(
     ----------
     jacobian : Jacobian
         Sensitivities of the viscosities.
-    scatter : Repeatability
-        Each set's viscosity at its own temperature, and its scatter.
+    viscosity : array, shape (run sets,) [Pa.s]
+        Each set's value at its own temperature.
     liquid : SetConditions
         Density and temperature slope by run set.
     inputs : Inputs
@@ -203,7 +208,7 @@ def compute_outputs(
     Outputs
         Values with uncertainties; NaN where there is none.
     """
-    n, viscosity = jacobian.n_sets, scatter.mean
+    n = jacobian.n_sets
     reference = np.nan if reference_temperature is None else reference_temperature
     distance = np.where(liquid.slope_known, reference - set_temperature, np.nan)
     log_ratio = liquid.slope * distance
@@ -230,17 +235,19 @@ def compute_outputs(
         + entries("liquid_expansion", by_expansion)
     )
     stacked = sparse.vstack([jacobian.matrix, at_reference, kinematic], format="csr")
-    propagation = propagate(sensitivities=stacked, u=jacobian.u, dof=jacobian.dof)
-    fitted = np.isin(np.arange(n), [place for fit in fits for place in fit.members])
-    # a fitted law mixes the scatters of its sets, so that none is of few values only
-    own = np.concatenate([np.ones(n), np.where(fitted, 0.0, scale), 1 / liquid.density])
+    propagation = propagate(
+        sensitivities=stacked,
+        u=jacobian.u,
+        dof=jacobian.dof,
+        sample=jacobian.shared_scatter,
+        sample_dof=np.tile(jacobian.scatter_dof, len(QUANTITIES)),
+    )
     return Outputs(
         values=values,
         propagation=propagation,
         coverage=coverage,
         n_sets=n,
-        scatter_u=own * np.tile(scatter.u, len(QUANTITIES)),
-        scatter_dof=np.tile(scatter.dof, len(QUANTITIES)),
+        scatter=jacobian.observed_scatter,
     )
 
 

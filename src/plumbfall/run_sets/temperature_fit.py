@@ -142,6 +142,12 @@ def _fit(
     relative = sparse.csr_array(sparse.diags_array(1 / eta) @ jacobian.matrix[sets])
     contributions = sparse.csr_array(relative * jacobian.u)
     covariance = np.asarray((contributions @ contributions.T).todense())
+    with np.errstate(invalid="ignore", divide="ignore"):
+        pooled = np.nan_to_num(np.sqrt(_pooled(observed, own_dof, basis) / observed), nan=1.0)
+    seen = contributions[:, jacobian.observed_scatter]
+    by_sets, by_all = (
+        np.asarray((part @ part.T).todense()) for part in (seen, sparse.diags_array(pooled) @ seen)
+    )
     log_viscosity = np.log(eta)
     try:
         found = fit(
@@ -149,7 +155,7 @@ def _fit(
             law.start(at, log_viscosity),
             log_viscosity,
             covariance,
-            covariance + np.diag(_pooled(observed, own_dof, basis) - observed),
+            covariance - by_sets + by_all,
         )
         _check(law, found, at)
         tested = fit(

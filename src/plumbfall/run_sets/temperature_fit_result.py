@@ -69,7 +69,13 @@ def _at(fit: TemperatureFit, jacobian: Jacobian, temperature: float, coverage: f
     log_viscosity, by_parameters = fit.log_viscosity(np.array([temperature]))
     value = float(np.exp(log_viscosity[0]))
     row = sparse.csr_array(value * by_parameters) @ fit.rows
-    spread = propagate(sensitivities=sparse.csr_array(row), u=jacobian.u, dof=jacobian.dof)
+    spread = propagate(
+        sensitivities=sparse.csr_array(row),
+        u=jacobian.u,
+        dof=jacobian.dof,
+        sample=jacobian.shared_scatter,
+        sample_dof=jacobian.scatter_dof[fit.sets].min(keepdims=True),
+    )
     u, dof = float(spread.u[0]), float(spread.effective_dof[0])
     factor = float(coverage_factor(dof=dof, probability=coverage))
     return Measured(

@@ -6,7 +6,8 @@ outputs share give the outputs' covariance without anybody saying which.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 import numpy as np
@@ -26,12 +27,15 @@ class Propagation:
 
     ``contributions`` is a sparse matrix, shape (outputs, inputs): sensitivity times standard
     uncertainty, in the outputs' units. ``correlation`` is that of the inputs, ``None`` where
-    they are independent.
+    they are independent. ``sample`` marks inputs that together are one sample, deviations from
+    one mean; in each output they have ``sample_dof`` degrees of freedom together, shape (outputs,).
     """
 
     contributions: sparse.csr_array
     dof: Numbers
     correlation: Numbers | None = None
+    sample: NDArray[np.bool_] | None = None
+    sample_dof: Numbers | None = None
 
     @cached_property
     def variance(self) -> Numbers:
@@ -49,15 +53,41 @@ class Propagation:
     def effective_dof(self) -> Numbers:
         """Welch and Satterthwaite's effective degrees of freedom, shape (outputs,)."""
         dof = self.dof[self.contributions.indices]
-        fourth = self._row_sums(self.contributions.data**4 / dof)
+        squares = self.contributions.data**2
+        fourth = self._row_sums(squares**2 / dof)
+        if self.sample is not None and self.sample_dof is not None:
+            of_sample = self.sample[self.contributions.indices]
+            fourth += self._row_sums(np.where(of_sample, squares, 0.0)) ** 2 / self.sample_dof
         return effective_dof(u=self.u, contributions_fourth=fourth)
 
-    def covariance(self, rows: slice | None = None) -> Numbers:
+    def covariance(self, rows: slice | Sequence[int] | None = None) -> Numbers:
         """Covariance matrix of the outputs (of some ``rows``), in their units' products."""
         part = self.contributions if rows is None else self.contributions[rows]
         middle = part if self.correlation is None else part @ self.correlation
         product = middle @ part.T
         return np.asarray(product.todense() if sparse.issparse(product) else product)
+
+    def combine(self, outputs: Sequence[int], weights: Numbers) -> Propagation:
+        """Return the propagation of a weighted sum of outputs, whatever they share.
+
+        A sample that they share keeps the fewest degrees of freedom that it has in any.
+        """
+        rows = np.asarray(outputs, dtype=np.intp)
+        mixed = sparse.csr_array(
+            sparse.csr_array(np.atleast_2d(weights)) @ self.contributions[rows]
+        )
+        dof = None if self.sample_dof is None else self.sample_dof[rows].min(keepdims=True)
+        return replace(self, contributions=mixed, sample_dof=dof)
+
+    def part(self, inputs: NDArray[np.bool_]) -> Propagation:
+        """Return what some of the inputs alone contribute, independent of the others."""
+        return replace(
+            self,
+            contributions=sparse.csr_array(self.contributions[:, inputs]),
+            dof=self.dof[inputs],
+            correlation=None if self.correlation is None else self.correlation[inputs][:, inputs],
+            sample=None if self.sample is None else self.sample[inputs],
+        )
 
     def row(self, output: int) -> tuple[NDArray[np.intp], Numbers]:
         """Return the inputs of one output, and their contributions with sign."""
@@ -78,6 +108,8 @@ def propagate(
     u: Numbers,
     dof: Numbers | None = None,
     correlation: Numbers | None = None,
+    sample: NDArray[np.bool_] | None = None,
+    sample_dof: Numbers | None = None,
 ) -> Propagation:
     """Propagate standard uncertainties of inputs to outputs.
 
@@ -91,6 +123,10 @@ def propagate(
         Degrees of freedom; infinite where not given.
     correlation : array, shape (inputs, inputs), optional
         Correlation coefficients of the inputs.
+    sample : array of bool, shape (inputs,), optional
+        Inputs that together are one sample; their own ``dof`` are infinite.
+    sample_dof : array, shape (outputs,), optional
+        Degrees of freedom of that sample in each output.
 
     Returns
     -------
@@ -105,4 +141,6 @@ def propagate(
         contributions=sparse.csr_array(sparse.csr_array(sensitivities) * u),
         dof=np.full(len(u), np.inf) if dof is None else np.asarray(dof, dtype=float),
         correlation=correlation,
+        sample=sample,
+        sample_dof=sample_dof,
     )
