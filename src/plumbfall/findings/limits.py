@@ -56,6 +56,12 @@ class Limits:
     timing_effect
         Largest standard uncertainty of the result by its timing alone, relative to it: one drop
         of 20 s by stopwatch (Am. J. Phys. 87, 110, 2019).
+    scatter_excess
+        Least unexplained scatter of a drop, relative to its viscosity, before it is warned of.
+    resolution_share
+        Largest step of written times over their scatter (common practice, no source).
+    resolution_effect
+        Least effect of half such a step on the viscosity, as a ratio, before it is warned of.
     best_uncertainty
         Least relative standard uncertainty to be believed: BIPM key comparison CCM.V-K1.
     constant_temperature
@@ -94,6 +100,9 @@ class Limits:
     density_effect: float = 5e-4
     excluded_effect: float = 1 / 3
     timing_effect: float = 0.005
+    scatter_excess: float = 0.005
+    resolution_share: float = 0.5
+    resolution_effect: float = 1e-3
     best_uncertainty: float = 4e-4
     constant_temperature: float = 1.0
     constant_range: float = 0.25

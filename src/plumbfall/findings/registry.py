@@ -16,6 +16,7 @@ from plumbfall.findings.dates import calibration_overdue, reference_expired
 from plumbfall.findings.densities import density_implausible, radius_as_diameter
 from plumbfall.findings.diameters import nominal_diameter
 from plumbfall.findings.drifts import temperature_lag, temperature_trend, time_trend
+from plumbfall.findings.duplicates import duplicate_rows
 from plumbfall.findings.equilibrium import first_drops_off, not_equilibrated
 from plumbfall.findings.gaps import default_gravity, missing_uncertainty
 from plumbfall.findings.geometry import (
@@ -25,7 +26,10 @@ from plumbfall.findings.geometry import (
     run_in_short,
 )
 from plumbfall.findings.left_out import many_excluded
+from plumbfall.findings.minutes import minutes_as_decimals
 from plumbfall.findings.outliers import outlier, outlier_pair, straggler
+from plumbfall.findings.resolution import resolution_coarse
+from plumbfall.findings.scatter import scatter_large, scatter_small
 from plumbfall.findings.solvability import (
     ball_not_denser,
     diameter_ratio_high,
@@ -72,6 +76,11 @@ DETECTORS: tuple[Detector, ...] = (
     slope_sign,
     fitted_slope,
     slope_unknown,
+    minutes_as_decimals,
+    scatter_large,
+    scatter_small,
+    duplicate_rows,
+    resolution_coarse,
     fall_time_short,
     many_excluded,
     void_without_reason,

@@ -31,6 +31,8 @@ TESTS = (
     "scatter-large",
     "minutes-as-decimals-suspected",
     "slope-unknown",
+    "resolution-coarse",
+    "duplicate-rows",
 )
 """Tests that share ``warning_level``. A detector that judges by a p-value stands here once."""
 

@@ -20,9 +20,8 @@ def fall_time_short(data: RunData) -> Iterator[Found]:
     """
     cells, n_sets = data.selection.cells, len(data.names)
     bias_u = np.append(data.inputs.u, 0.0)[data.inputs.roles["bias"].entry]
-    own = np.bincount(
-        cells.run_set, weights=data.sums.timing * data.inputs.per_drop**2, minlength=n_sets
-    )
+    own_variance = data.inputs.per_drop**2 + data.inputs.resolution**2 / 6
+    own = np.bincount(cells.run_set, weights=data.sums.timing * own_variance, minlength=n_sets)
     shared = np.bincount(
         cells.run_set, weights=np.abs(data.sums.first["bias"]) * bias_u, minlength=n_sets
     )
