@@ -29,7 +29,7 @@ QUIET = {
 def test_clean_sets_stay_quiet(timer, drops):
     found = findings_of(timer=timer, drops=drops, balls=["B1", "B2"][: 1 + drops // 8])
     noisy = [one for findings in found for one in findings if one.code in QUIET]
-    assert len(noisy) <= 2, noisy  # of 60 sets; five tests at 0.2 % each
+    assert len(noisy) <= 2, noisy  # of 40 sets; five tests at 0.2 % each
 
 
 # --- scatter -------------------------------------------------------------------------------------

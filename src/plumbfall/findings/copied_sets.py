@@ -9,7 +9,6 @@ from numpy.typing import NDArray
 
 from plumbfall.findings.data import Found, RunData
 from plumbfall.findings.equal_readings import chance_of_time, repeats_of, ticks
-from plumbfall.findings.significance import level_of_each
 from plumbfall.results import Finding
 
 __all__ = ["copied_set"]
@@ -32,7 +31,7 @@ def copied_set(data: RunData) -> Iterator[Found]:
     for at in np.flatnonzero(again):
         later, earlier = able[at], able[np.flatnonzero(group == group[at])[0]]
         p_value = min(1.0, n_sets * float(chance[later]) ** int(n[later]))
-        if p_value < level_of_each(data.limits):
+        if p_value < data.level:
             yield (
                 int(later),
                 Finding(

@@ -16,7 +16,6 @@ from plumbfall.findings.equal_readings import (
     repeats_of,
     row_keys,
 )
-from plumbfall.findings.significance import level_of_each
 from plumbfall.results import Finding
 
 __all__ = ["duplicate_rows"]
@@ -100,7 +99,7 @@ def _codes(data: RunData, name: str) -> NDArray[np.int64]:
 def _repeated(data: RunData) -> Iterator[Found]:
     """Count the equal rows of a set, and look for blocks of them."""
     n_sets, run_set, cell = len(data.names), data.selection.run_set, data.selection.cell
-    level = level_of_each(data.limits) / 2  # two tests of one set
+    level = data.level / 2  # two tests of one set
     key = row_keys(data)
     _, repeated = repeats_of(run_set, key)
     count = np.bincount(run_set[repeated], minlength=n_sets)

@@ -9,7 +9,6 @@ from numpy.typing import NDArray
 from scipy.special import fdtrc
 
 from plumbfall.findings.data import Found, RunData
-from plumbfall.findings.significance import level_of_each
 from plumbfall.results import Finding
 from plumbfall.uncertainty.type_a import group_scatter
 
@@ -28,7 +27,7 @@ def minutes_as_decimals(data: RunData) -> Iterator[Found]:
     shrink, by Fisher's ratio of variances.
     """
     n_sets, run_set = len(data.names), data.selection.run_set
-    level = level_of_each(data.limits)
+    level = data.level
     value = _proportional_to_time(data)
     before = group_scatter(value, run_set, n_sets)
     for unit, seconds in UNITS.items():

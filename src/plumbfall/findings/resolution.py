@@ -9,7 +9,6 @@ import numpy as np
 from plumbfall.findings.clock_steps import clock_steps
 from plumbfall.findings.data import Found, RunData
 from plumbfall.findings.repeats import repeats
-from plumbfall.findings.significance import level_of_each
 from plumbfall.results import Finding
 
 __all__ = ["resolution_coarse"]
@@ -38,7 +37,7 @@ def resolution_coarse(data: RunData) -> Iterator[Found]:
         coarse = (steps.found > data.limits.resolution_share * scatter) & (
             effect > data.limits.resolution_effect
         )
-    for run_set in np.flatnonzero(coarse & (p_value < level_of_each(data.limits))):
+    for run_set in np.flatnonzero(coarse & (p_value < data.level)):
         step, declared = float(steps.found[run_set]), float(steps.declared[run_set])
         clock = f"the timer reads {declared:g} s" if declared else "no resolution is given"
         yield (

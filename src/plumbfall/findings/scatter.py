@@ -10,9 +10,8 @@ from scipy.special import chdtr, chdtrc, chdtri, fdtr, fdtrc, fdtri
 
 from plumbfall.findings.clock_steps import clock_steps
 from plumbfall.findings.data import Found, RunData
-from plumbfall.findings.outliers import suspects
 from plumbfall.findings.repeats import Repeats, repeats
-from plumbfall.findings.significance import POWER, level_of_each
+from plumbfall.findings.significance import POWER
 from plumbfall.results import Finding
 
 __all__ = ["scatter_large", "scatter_small"]
@@ -26,12 +25,12 @@ def scatter_large(data: RunData) -> Iterator[Found]:
 
     The drop that Grubbs' test calls an outlier is left out: it has a finding of its own.
     """
-    suspect = suspects(data)
+    suspect = data.suspects
     keep = np.ones(len(data.selection.run_set), dtype=bool)
     keep[suspect.drop[suspect.p_value < data.limits.outlier_level]] = False
     found = repeats(data, keep)
     expected, known_dof = _expected(data, found)
-    level = level_of_each(data.limits)
+    level = data.level
     p_value = _tail(data, found, known_dof, upper=True)
     with np.errstate(invalid="ignore"):
         unexplained = np.sqrt(np.maximum(found.sd**2 - expected**2, 0.0))
@@ -64,7 +63,7 @@ def scatter_small(data: RunData) -> Iterator[Found]:
     """
     found = repeats(data)
     expected, known_dof = _expected(data, found)
-    level = level_of_each(data.limits)
+    level = data.level
     hidden = clock_steps(data).relative ** 2 / 6
     p_value = _tail(data, found, known_dof, upper=False, hidden=hidden)
     for run_set in np.flatnonzero(p_value < level):
