@@ -51,8 +51,8 @@ def level_of_each(limits: Limits) -> float:
 
     Examples
     --------
-    >>> print(f"{level_of_each(Limits()):.4f}")
-    0.0023
+    >>> print(f"{len(TESTS) * level_of_each(Limits()):.2f}")
+    0.03
     """
     return limits.warning_level / len(TESTS)
 
