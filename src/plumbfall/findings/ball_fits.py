@@ -12,6 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.findings.ball_means import BallMeans, Batch
+from plumbfall.findings.least_squares import weighted_squares
 from plumbfall.findings.significance import FEW, f_p_value, t_p_value
 
 __all__ = ["BallFits", "Trend", "ball_fits"]
@@ -118,7 +119,7 @@ def _fit(fits: BallFits, balls: BallMeans, batch: Batch) -> None:
     fits.scatter_dof[at] = dof
     inverse: Numbers = np.asarray(np.linalg.inv(batch.covariance), dtype=float)
     ones = np.ones_like(batch.value)
-    rest = _squares(inverse, batch.value, [ones])[0]
+    rest = weighted_squares(inverse, batch.value, [ones])[0]
     fits.f[at] = rest / (k - 1)
     fits.p_value[at] = f_p_value(f=fits.f[at], dof=k - 1, dof_within=dof)
     if k < FEWEST_BALLS:
@@ -143,35 +144,10 @@ def _fit(fits: BallFits, balls: BallMeans, batch: Batch) -> None:
         part = np.flatnonzero(where)
         if not len(part):
             continue
-        rest, value, error = _squares(
+        rest, value, error = weighted_squares(
             inverse[part], batch.value[part], [column[part] for column in known], covariate[part]
         )
         span, left = np.ptp(covariate[part], axis=1), k - len(known) - 1
         trend.value[at[part]], trend.error[at[part]] = value * span, error * span
         trend.p_value[at[part]] = t_p_value(t=value / error, dof=dof[part])
         trend.rest_p_value[at[part]] = f_p_value(f=rest / left, dof=left, dof_within=dof[part])
-
-
-def _squares(
-    inverse: Numbers, value: Numbers, known: list[Numbers], covariate: Numbers | None = None
-) -> tuple[Numbers, Numbers, Numbers]:
-    """Weighted squares that are left, and the last covariate's slope with its standard error.
-
-    Covariates are taken off one after another, each cleared of those before it; shapes (sets, k)
-    and (sets, k, k).
-    """
-
-    def product(a: Numbers, b: Numbers) -> Numbers:
-        return np.asarray(np.einsum("si,sij,sj->s", a, inverse, b))
-
-    basis: list[Numbers] = []
-    rest, slope, error = value, np.full(len(value), np.nan), np.full(len(value), np.nan)
-    for column in [*known, *([covariate] if covariate is not None else [])]:
-        for earlier in basis:
-            share = product(column, earlier) / product(earlier, earlier)
-            column = column - share[:, None] * earlier
-        basis.append(column)
-        weight = product(column, column)
-        slope, error = product(column, rest) / weight, 1 / np.sqrt(weight)
-        rest = rest - slope[:, None] * column
-    return product(rest, rest), slope, error

@@ -13,6 +13,8 @@ from plumbfall.bench.records import Ball, Bench, Liquid, Tube
 from plumbfall.findings.ball_fits import BallFits, ball_fits
 from plumbfall.findings.ball_means import BallMeans, ball_means
 from plumbfall.findings.drop_errors import DropErrors, drop_errors
+from plumbfall.findings.interval_drops import IntervalDrops, interval_drops
+from plumbfall.findings.interval_fits import IntervalFits, interval_fits
 from plumbfall.findings.limits import Limits
 from plumbfall.findings.residuals import Residuals, residuals
 from plumbfall.findings.significance import level_of_each
@@ -169,6 +171,23 @@ class RunData:
     def trends(self) -> Trends:
         """Whether the drops of each set drift, and with what."""
         return trends(self.residuals, self.order, self.warmth)
+
+    @cached_property
+    def interval_drops(self) -> IntervalDrops | None:
+        """Intervals between successive marks as drops of their own; ``None`` without any."""
+        return interval_drops(
+            self.bench,
+            self.selection,
+            self.columns,
+            self.law,
+            self.timings.marks_s,
+        )
+
+    @cached_property
+    def interval_fits(self) -> IntervalFits:
+        """Whether the intervals of each run set and tube agree; asked only where there are some."""
+        assert self.interval_drops is not None
+        return interval_fits(self.interval_drops)
 
     @cached_property
     def temperature_change(self) -> NDArray[np.float64]:

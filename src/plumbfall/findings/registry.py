@@ -25,6 +25,7 @@ from plumbfall.findings.geometry import (
     off_axis_suspected,
     run_in_short,
 )
+from plumbfall.findings.intervals import intervals_disagree
 from plumbfall.findings.left_out import many_excluded
 from plumbfall.findings.minutes import minutes_as_decimals
 from plumbfall.findings.outliers import outlier, outlier_pair, straggler
@@ -64,6 +65,7 @@ DETECTORS: tuple[Detector, ...] = (
     time_trend,
     temperature_trend,
     temperature_lag,
+    intervals_disagree,
     balls_disagree,
     shear_dependence,
     diameter_ratio_trend,
