@@ -63,7 +63,7 @@ def interval_fits(drops: IntervalDrops) -> IntervalFits:
     for sets, groups, declared in declared_batches(drops.group_set, drops.slopes, finite):
         k, n_drops = groups.shape[1], count[groups[:, 0]]
         # without a timer the pattern of the marks stands, and the drops give its size
-        known = (timed[groups] > 0).all(axis=1)
+        known = np.asarray(np.all(timed[groups] > 0, axis=1))
         reading = np.where(known[:, None], timed[groups], by_time[groups])
         shape = _of_marks(reading)
         value = mean[groups]
