@@ -233,7 +233,8 @@ def _usage(parser: argparse.ArgumentParser) -> str:
 
 
 def _written(action: argparse.Action) -> str:
-    value = str(action.metavar or action.dest)
+    name = action.metavar or action.dest
+    value = name if isinstance(name, str) else " ".join(name)
     if not action.option_strings:
         return value + (" …" if action.nargs in ("*", "+") else "")
     return action.option_strings[-1] + ("" if action.nargs == 0 else f" {value}")
@@ -242,7 +243,8 @@ def _written(action: argparse.Action) -> str:
 def _arguments(parser: argparse.ArgumentParser) -> str:
     shown = [action for action in parser._actions if not isinstance(action.choices, dict)]
     return table(
-        ("argument", "meaning"), ((f"`{_written(action)}`", action.help or "") for action in shown)
+        ("argument", "meaning"),
+        ((f"`{_written(action)}`", (action.help or "").replace("%%", "%")) for action in shown),
     )
 
 

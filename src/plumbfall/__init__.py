@@ -14,6 +14,7 @@ if TYPE_CHECKING:
     from plumbfall import physics
     from plumbfall.bench.reader import read_bench
     from plumbfall.bench.records import Bench
+    from plumbfall.checking import chart, check, compare
     from plumbfall.errors import InputError, PlumbfallError, PlumbfallWarning
     from plumbfall.estimate import Estimate
     from plumbfall.planning.simulation import simulate
@@ -32,6 +33,9 @@ __all__ = [
     "Timings",
     "__version__",
     "calibrate",
+    "chart",
+    "check",
+    "compare",
     "physics",
     "read_bench",
     "read_timings",
@@ -48,6 +52,9 @@ _HOME = {
     "Report": "plumbfall.report.report",
     "Timings": "plumbfall.timings.records",
     "calibrate": "plumbfall.workflow",
+    "chart": "plumbfall.checking",
+    "check": "plumbfall.checking",
+    "compare": "plumbfall.checking",
     "read_bench": "plumbfall.bench.reader",
     "read_timings": "plumbfall.timings.reader",
     "reduce": "plumbfall.workflow",

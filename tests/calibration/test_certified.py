@@ -143,10 +143,18 @@ def test_one_point_without_a_slope_holds_at_its_temperature_alone():
     assert refused.value.key == "reference.R.viscosity"
 
 
-def test_points_that_follow_no_law_are_refused():
+def test_a_viscosity_that_rises_is_refused():
     wrong = {20: "1.2 Pa.s", 25: "1.4 Pa.s", 40: "0.3 Pa.s"}
     with pytest.raises(pf.InputError, match="compare each temperature and viscosity"):
         value_at(23, wrong)
+
+
+def test_points_bent_the_wrong_way_are_joined_two_by_two():
+    # ln(viscosity) falls faster the warmer it gets, which no law of Vogel does
+    bent = {20: "1.0(1) Pa.s", 25: "0.9(1) Pa.s", 40: "0.5(1) Pa.s"}
+    found, two = value_at(23, bent), value_at(23, dict(list(bent.items())[:2]))
+    assert (found.value, found.u) == (two.value, pytest.approx(two.u))
+    assert "no law of Vogel" in found.law
 
 
 def test_a_law_carries_one_kelvin_beyond_the_certificate():

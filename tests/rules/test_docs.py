@@ -21,7 +21,7 @@ import plumbfall as pf
 from plumbfall.bench.common_keys import Keys
 from plumbfall.bench.notation import read_quantity
 from plumbfall.bench.schema import Sheet, json_schema
-from plumbfall.cli.exit_codes import BAD_INPUT, DONE, INVALID
+from plumbfall.cli.exit_codes import BAD_INPUT, DONE, INVALID, UNDECIDED
 from plumbfall.cli.program import build_parser
 from plumbfall.findings.limits import Limits
 from plumbfall.results import SEVERITIES
@@ -247,7 +247,7 @@ def test_command_lines_parse(document, line):
 
 def test_exit_codes_are_those_of_the_command_line():
     _, *rows = table_headed("command_line.md", "| code |")
-    assert [int(code) for code, _ in rows] == [DONE, INVALID, BAD_INPUT]
+    assert [int(code) for code, _ in rows] == [DONE, INVALID, BAD_INPUT, UNDECIDED]
 
 
 # --- findings -----------------------------------------------------------------------------------

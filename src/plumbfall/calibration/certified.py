@@ -98,7 +98,8 @@ def certified_value(
 
     Two points are joined by Walther's law and three or more by Vogel's. How far another law
     through the nearest two points (Andrade's, or Walther's) lies from it are the limits of the
-    law's own error. One point is carried over at most 1 K by the liquid's temperature slope.
+    law's own error. Where no law of Vogel passes through them the nearest two are joined as if
+    they were alone. One point is carried over at most 1 K by the liquid's temperature slope.
 
     Parameters
     ----------
@@ -130,16 +131,13 @@ def certified_value(
     estimates = [point.viscosity for point in points]
     if len(points) == 1:
         return _from_one(reference, temperature, estimates[0], float(known[0]), liquid)
-    pair = _nearest_pair(known, temperature)
-    nearest = _walther(known[pair], values[pair], temperature, liquid)
-    try:
-        if len(points) == 2:
-            found, other = nearest, by_andrade(known, values, temperature)
-        else:
-            found, other = by_vogel(known, values, temperature), nearest
-    except InputError as error:
-        key = key_path("reference", reference.name, "viscosity")
-        raise InputError(replace(error.first, key=key)) from None
+    if (np.diff(values) >= 0).any():
+        raise InputError(
+            "the certified viscosity does not fall from one temperature to the next",
+            key=key_path("reference", reference.name, "viscosity"),
+            remedy="compare each temperature and viscosity with the certificate",
+        )
+    found, other = _joined(known, values, temperature, liquid)
     parts = _points(reference, estimates, found.viscosity * found.weights / values)
     parts.append(_law(reference, other.viscosity - found.viscosity))
     return CertifiedValue(
@@ -150,6 +148,23 @@ def certified_value(
         parts=tuple(parts),
         law=found.law,
     )
+
+
+def _joined(
+    known: Numbers, values: Numbers, temperature: float, liquid: Liquid | None
+) -> tuple[Interpolated, Interpolated]:
+    """Return the value by the law that is used, and by another one."""
+    pair = _nearest_pair(known, temperature)
+    nearest = _walther(known[pair], values[pair], temperature, liquid)
+    if len(known) > 2:
+        try:
+            return by_vogel(known, values, temperature), nearest
+        except InputError:  # bent the wrong way, as invented or rounded points may be
+            weights = np.zeros(len(known))
+            weights[pair] = nearest.weights
+            told = "walther between the nearest two, as no law of Vogel passes through all"
+            nearest = replace(nearest, law=told, weights=weights)
+    return nearest, by_andrade(known[pair], values[pair], temperature)
 
 
 def _nearest_pair(known: Numbers, temperature: float) -> slice:

@@ -12,6 +12,9 @@ from collections.abc import Sequence
 
 from plumbfall._version import __version__
 from plumbfall.cli.calibrate import add_calibrate
+from plumbfall.cli.chart import add_chart
+from plumbfall.cli.check import add_check
+from plumbfall.cli.compare import add_compare
 from plumbfall.cli.exit_codes import BAD_INPUT, INTERRUPTED
 from plumbfall.cli.inspect import add_inspect
 from plumbfall.cli.methods import add_methods
@@ -32,8 +35,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
     """Run a command and return its exit code.
 
     Exit codes: 0 done and every set valid; 1 a set invalid (with ``--strict`` also one with
-    warnings), or a figure of the self-test failed; 2 bad input or usage, and then nothing has
-    been written.
+    warnings), a check failed, a chart out of control, or a figure of the self-test failed; 2 bad
+    input or usage, and then nothing has been written; 3 a check undecided.
     """
     for name in ("stdout", "stderr"):
         if getattr(sys, name) is None:  # closed by the shell: what is said there goes nowhere
@@ -63,6 +66,15 @@ def build_parser() -> argparse.ArgumentParser:
     )
     parser.add_argument("--version", action="version", version=f"plumbfall {__version__}")
     commands = parser.add_subparsers(title="commands", metavar="COMMAND", required=True)
-    for add in (add_inspect, add_reduce, add_calibrate, add_methods, add_selftest):
+    for add in (
+        add_inspect,
+        add_reduce,
+        add_calibrate,
+        add_check,
+        add_compare,
+        add_chart,
+        add_methods,
+        add_selftest,
+    ):
         add(commands)
     return parser

@@ -8,6 +8,7 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING, Any
 
 from plumbfall._version import __version__
+from plumbfall.report.json_values import finite_or_none as _number
 from plumbfall.results import (
     BallResult,
     BudgetLine,
@@ -28,7 +29,13 @@ if TYPE_CHECKING:
     from plumbfall.report.report import Report
     from plumbfall.run_sets.joint import Joint
 
-__all__ = ["SCHEMA", "finding_document", "json_text", "report_document"]
+__all__ = [
+    "SCHEMA",
+    "finding_document",
+    "json_text",
+    "measured_document",
+    "report_document",
+]
 
 SCHEMA = "plumbfall/report/1"
 
@@ -76,9 +83,9 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
         "liquid": result.liquid,
         "temperature": _quantity(result.temperature),
         "reference_temperature_K": _number(result.reference_temperature),
-        "viscosity": _measured(result.viscosity),
-        "viscosity_at_reference": _measured(result.viscosity_at_reference),
-        "kinematic_viscosity": _measured(result.kinematic_viscosity),
+        "viscosity": measured_document(result.viscosity),
+        "viscosity_at_reference": measured_document(result.viscosity_at_reference),
+        "kinematic_viscosity": measured_document(result.kinematic_viscosity),
         "stokes_viscosity": _quantity(result.stokes_viscosity),
         "conformity": _conformity(result.conformity),
         "liquid_density_kg_m3": _number(result.liquid_density),
@@ -97,7 +104,7 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
         ],
         "budget": [_budget_line(line) for line in result.budget],
         "halving": [_improvement(one) for one in result.improvements],
-        "linear": _measured(result.linear),
+        "linear": measured_document(result.linear),
         "monte_carlo": _monte_carlo(result.monte_carlo),
         "balls": [_ball(ball) for ball in result.balls],
         "drops": [_drop(drop) for drop in result.drops],
@@ -105,7 +112,8 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
     }
 
 
-def _measured(measured: Measured | None) -> dict[str, Any] | None:
+def measured_document(measured: Measured | None) -> dict[str, Any] | None:
+    """Return a measured value as a dict of the report's schema."""
     if measured is None:
         return None
     return {
@@ -219,7 +227,7 @@ def _temperature_fit(fits: Sequence[TemperatureFitResult]) -> dict[str, Any] | N
                 "dof": int(fit.dof),
                 "p_value": _number(fit.p_value),
                 "reference_temperature_K": _number(fit.reference_temperature),
-                "viscosity_at_reference": _measured(fit.viscosity_at_reference),
+                "viscosity_at_reference": measured_document(fit.viscosity_at_reference),
                 "run_sets": [
                     {
                         "name": name,
@@ -297,8 +305,3 @@ def finding_document(finding: Finding) -> dict[str, Any]:
         "detectable": _number(finding.detectable),
         "remedy": finding.remedy,
     }
-
-
-def _number(value: float | None) -> float | None:
-    """Return a finite float (of numpy or Python) as a Python float, anything else as ``None``."""
-    return float(value) if value is not None and math.isfinite(value) else None

@@ -21,7 +21,7 @@ from plumbfall.results import Finding, RunSetResult
 if TYPE_CHECKING:
     from plumbfall.report.report import Report
 
-__all__ = ["plain_text", "printable", "show"]
+__all__ = ["plain_text", "printable", "show", "wrapped"]
 
 WIDTH = 80
 MANY_SETS = 12
@@ -94,20 +94,20 @@ def _lines(report: Report) -> Iterator[str]:
             yield ""
     if not few:
         yield ""
-        yield from _wrapped("", "Sets that are valid are told in full by --out DIR.")
+        yield from wrapped("", "Sets that are valid are told in full by --out DIR.")
     for fit in report.temperature_fits:
-        yield from _wrapped("", visible(fit_heading(fit)))
+        yield from wrapped("", visible(fit_heading(fit)))
         yield from _of_facts(fit_facts(fit, report.bench.viscosity_unit), explain)
         yield ""
     yield from _of_findings(report.findings)
     rows = report.rows
-    yield from _wrapped(
+    yield from wrapped(
         "",
         f"{counted(rows['read'], 'row')} read = {rows['used']} used + {rows['void']} void + "
         f"{rows['excluded']} excluded by rule",
     )
     for kind, what in reading_remarks(report.timings):
-        yield from _wrapped(f"{kind}  ", visible(what))
+        yield from wrapped(f"{kind}  ", visible(what))
     yield f"plumbfall {__version__}, seed {report.seed}"
 
 
@@ -119,7 +119,7 @@ def _of_set(result: RunSetResult, unit: str | None, explain: Explainer) -> Itera
         if not drop.used:
             reason = ": ".join(filter(None, (why_not_used(drop), drop.note)))
             where = f"{drop.file}:{drop.line}"
-            yield from _wrapped("  not used  ", visible(f"drop {drop.drop}, {where}, {reason}"))
+            yield from wrapped("  not used  ", visible(f"drop {drop.drop}, {where}, {reason}"))
     yield from _of_corrections(result, explain)
     yield from _of_budget(result, scale, explain)
     yield from _of_halving(result)
@@ -129,20 +129,20 @@ def _of_facts(shown: Iterable[Fact], explain: Explainer) -> Iterator[str]:
     for fact in shown:
         text = f"{fact.text} {fact.unit}" if fact.unit not in fact.text else fact.text
         why = explain(fact.term)
-        yield from _wrapped(f"  {fact.label:<36}", visible(f"{text}  ({why})" if why else text))
+        yield from wrapped(f"  {fact.label:<36}", visible(f"{text}  ({why})" if why else text))
 
 
 def _of_corrections(result: RunSetResult, explain: Explainer) -> Iterator[str]:
     if not result.corrections:
         return
     why = explain("drag factor")
-    yield from _wrapped("  ", "Corrections, each a factor that divides Stokes' viscosity" + (
+    yield from wrapped("  ", "Corrections, each a factor that divides Stokes' viscosity" + (
         f" (together the drag factor: {why})" if why else ""
     ))  # fmt: skip
     for correction in result.corrections:
         factor = Scale("").fixed(correction.factor, 5)
         told = f"{factor}  {correction.method} [{correction.source}]"
-        yield from _wrapped(f"    {correction.name:<12}", visible(told))
+        yield from wrapped(f"    {correction.name:<12}", visible(told))
 
 
 def _of_budget(result: RunSetResult, scale: Scale, explain: Explainer) -> Iterator[str]:
@@ -151,23 +151,23 @@ def _of_budget(result: RunSetResult, scale: Scale, explain: Explainer) -> Iterat
     lines = sorted(result.budget, key=lambda line: -line.share)
     why = explain("share")
     heading = "Largest parts of the uncertainty" + (f" (share: {why})" if why else "")
-    yield from _wrapped("  ", heading)
+    yield from wrapped("  ", heading)
     for line in lines[:TOP_INPUTS]:
         share = Scale("%", 100.0).fixed(line.share, 1)
         part = f"{scale.alone(line.contribution, 2)} {scale.unit}"
         told = f"{share:>5} %  {part}  {line.scope}"
-        yield from _wrapped(f"    {visible(line.input):<30}", told)
+        yield from wrapped(f"    {visible(line.input):<30}", told)
     if rest := lines[TOP_INPUTS:]:
         share = Scale("%", 100.0).fixed(sum(line.share for line in rest), 1)
-        yield from _wrapped(f"    {counted(len(rest), 'smaller input'):<30}", f"{share:>5} %")
+        yield from wrapped(f"    {counted(len(rest), 'smaller input'):<30}", f"{share:>5} %")
 
 
 def _of_halving(result: RunSetResult) -> Iterator[str]:
     if not result.improvements:
         return
-    yield from _wrapped("  ", HALVING)
+    yield from wrapped("  ", HALVING)
     for name, told in halving_lines(result.improvements):
-        yield from _wrapped(f"    {visible(name):<30}", told)
+        yield from wrapped(f"    {visible(name):<30}", told)
 
 
 def _of_findings(findings: Sequence[Finding]) -> Iterator[str]:
@@ -175,12 +175,13 @@ def _of_findings(findings: Sequence[Finding]) -> Iterator[str]:
     for finding in sorted(findings, key=lambda finding: order.get(finding.severity, 3)):
         evidence = finding_evidence(finding)
         told = f"{finding.message} ({evidence})" if evidence else finding.message
-        yield from _wrapped(f"  {finding.severity} {visible(finding.code)}: ", visible(told), 4)
+        yield from wrapped(f"  {finding.severity} {visible(finding.code)}: ", visible(told), 4)
         if finding.remedy:
-            yield from _wrapped("    remedy: ", visible(finding.remedy), 6)
+            yield from wrapped("    remedy: ", visible(finding.remedy), 6)
 
 
-def _wrapped(start: str, text: str, indent: int | None = None) -> Iterable[str]:
+def wrapped(start: str, text: str, indent: int | None = None) -> Iterable[str]:
+    """Return lines of at most 80 columns: ``start``, then the text, indented under itself."""
     lead = " " * (min(len(start), 40) if indent is None else indent)
     return textwrap.wrap(
         text,

@@ -42,6 +42,20 @@ TERMS = {
     "chi-squared": "squared distances of the run sets from the law in units of their uncertainty; "
     "about the degrees of freedom where the law holds",
     "linear": "propagation of uncertainty by the GUM, JCGM 100",
+    "bias": "measured over certified, less 1",
+    "E_n": "the difference over its expanded uncertainty; within 1 is satisfactory",
+    "zeta": "the difference over its standard uncertainty; within 2 is satisfactory, from 3 on "
+    "unsatisfactory",
+    "conformance probability": "how likely the true bias lies within the tolerance",
+    "correlation": "1 where both values share all their errors, 0 where none",
+    "repeatability limit": "what two single drops differ by at most, 19 times of 20",
+    "critical difference": "what the means of the two sets differ by at most, 19 times of 20, if "
+    "nothing but the scatter of drops parts them",
+    "moving range": "difference from the check before",
+    "action limits": "three standard deviations from the centre: a bench in control passes them "
+    "once in some 370 checks",
+    "warning limits": "two standard deviations from the centre: passed once in some 20 checks",
+    "moving average": "shows a small lasting shift sooner than single checks do",
     "monte-carlo": "propagation of distributions by JCGM 101",
 }
 """Explanations of words that an outsider does not know; printed once, where first used."""

@@ -1,0 +1,52 @@
+"""The command ``compare``."""
+
+from __future__ import annotations
+
+import argparse
+
+from plumbfall.cli.arguments import add_inputs, probability
+from plumbfall.cli.commands import Commands
+from plumbfall.cli.exit_codes import DONE
+from plumbfall.cli.output import print_json, print_text
+
+__all__ = ["add_compare"]
+
+
+def add_compare(commands: Commands) -> None:
+    """Add the command to the parser."""
+    compare = commands.add_parser(
+        "compare",
+        help="ratio and difference of two run sets, shared errors cancelled",
+        description="Compare two run sets: ratio (the first over the second) and difference, with "
+        "the errors that they share cancelled; tests of difference and equality.",
+        epilog="Exit code: 0 compared, 2 bad input or a set without a viscosity.",
+    )
+    add_inputs(compare, timings="+")
+    compare.add_argument(
+        "--sets", nargs=2, required=True, metavar=("A", "B"), help="names of the two run sets"
+    )
+    compare.add_argument(
+        "--margin", metavar="RATIO", help='within which the two count as equal, such as "1 %%"'
+    )
+    compare.add_argument(
+        "--coverage", type=probability, metavar="P", help="coverage probability (default 0.95)"
+    )
+    compare.set_defaults(run=_run)
+
+
+def _run(options: argparse.Namespace) -> int:
+    from plumbfall.checking import compare
+
+    report = compare(
+        options.timings,
+        options.bench,
+        sets=options.sets,
+        margin=options.margin,
+        coverage=options.coverage,
+        encoding=options.encoding,
+    )
+    if options.json:
+        print_json(report.to_dict())
+    else:
+        print_text(report.text())
+    return DONE
