@@ -18,8 +18,10 @@ from plumbfall.published import (
     statistics_decisions,
     statistics_tables,
     uncertainty_correlated,
+    uncertainty_fits,
     uncertainty_gum,
     uncertainty_inputs,
+    uncertainty_supplement,
 )
 from plumbfall.published.figure import Figure
 from plumbfall.report.selftest_result import CheckedFigure, SelfTest
@@ -34,6 +36,8 @@ FIGURES: tuple[Figure, ...] = (
     *uncertainty_inputs.FIGURES,
     *uncertainty_gum.FIGURES,
     *uncertainty_correlated.FIGURES,
+    *uncertainty_fits.FIGURES,
+    *uncertainty_supplement.FIGURES,
     *statistics_tables.FIGURES,
     *statistics_data.FIGURES,
     *statistics_anova.FIGURES,
