@@ -3,12 +3,16 @@
 from __future__ import annotations
 
 import json
+import tomllib
+from pathlib import Path
 
 import pytest
 
+from plumbfall.bench import read_bench
 from plumbfall.bench.records import Bench, Tube
 from plumbfall.estimate import Estimate
-from plumbfall.report.inspection import inspection_text, inspection_to_dict
+from plumbfall.report.inspection import inspection_to_dict
+from plumbfall.report.inspection_text import inspection_text
 from plumbfall.timings import collect
 
 TEXT = (
@@ -82,7 +86,10 @@ def test_the_json_has_every_drop_and_every_problem(timings):
     assert third["time_s"] is None
     assert third["marks_s"] is None
     assert (fourth["status"], fourth["note"]) == ("excluded", "refused")
-    assert found["rows"] == {"read": 4, "used": 1, "void": 1, "excluded": 2}
+    assert found["rows"] == {"read": 4, "used": 1, "void": 1, "excluded": 2, "refused": 1}
+    assert file["rows"] == found["rows"]
+    assert file["blocks"] == [{"heading_line": 1, "rows": 4, "columns": file["columns"]}]
+    assert found["offers"] == []
     assert found["repairs"] == [
         {"file": "t.csv", "line": 1, "column": 9, "what": "column 'colour' is not used"},
         {"file": "t.csv", "line": 3, "column": 5, "what": "mark 2 is empty; the point is left out"},
@@ -131,6 +138,8 @@ def test_the_text_can_be_checked_at_a_glance(timings, bench):
         "file t.csv",
         f"  SHA-256 {sha256}",
         "  encoding utf-8, delimiter semicolon, decimal comma, headings in line 1",
+        "  rows read 4 = used 1 + void 1 + excluded 2 (1 of them refused)",
+        "",
         "  column  heading     meaning      unit",
         "       1  set         set",
         "       2  drop        drop",
@@ -142,17 +151,17 @@ def test_the_text_can_be_checked_at_a_glance(timings, bench):
         "       8  note        note",
         "       9  colour      not used",
         "",
-        "  line  set  drop  ball  time / s  temperature / K  status    note",
-        "     2  A       1            12.1           298.15  used",
-        "     3  A       2            12.5                -  void      slipped",
-        "     4  A       3               -           298.15  excluded  no-time",
-        "     5  A       4               -           298.15  excluded  refused",
+        "  line  set  drop  ball  time / s  temperature / degC  status    marks / s     note",
+        "     2  A       1            12.1                  25  used      0.5 6.5 12.6",
+        "     3  A       2            12.5                   -  void      0.1 - 12.6    slipped",
+        "     4  A       3               -                  25  excluded                no-time",
+        "     5  A       4               -                  25  excluded  - 6.5 12.6    refused",
         "",
         "bench sheet bench.toml",
         "  entry        as written   as read  standard uncertainty",
         "  tube.T.bore  50.00(2) mm  0.05 m   2e-05 m",
         "",
-        "rows read 4 = used 1 + void 1 + excluded 2",
+        "rows read 4 = used 1 + void 1 + excluded 2 (1 of them refused)",
         "",
         "repaired (2)",
         "  t.csv:1:9: column 'colour' is not used",
@@ -177,3 +186,61 @@ def test_nothing_read_is_no_traceback(tmp_path):
     assert found["drops"] == []
     assert found["rows"]["read"] == 0
     assert "there is no such file" in inspection_text(timings, None)
+
+
+def test_every_block_is_shown_and_lines_that_would_settle_it_are_offered(tmp_path, monkeypatch):
+    monkeypatch.chdir(tmp_path)
+    (tmp_path / "t.csv").write_text(
+        "Ball A\ndrop;time;temp\n1;1,234;25\nBall B\ndrop;time [ms];temp [°C]\n1;1,301;25\n",
+        encoding="cp1252",
+    )
+    timings = collect("t.csv")
+    offers = [
+        'encoding = "cp1252"',
+        'decimal = ","',
+        'thousands = ","',
+        'units.temperature = "degC"',
+    ]
+    assert inspection_to_dict(timings, None)["offers"] == offers
+    lines = inspection_text(timings, None).splitlines()
+    assert lines[3:17] == [
+        "  rows read 2 = used 0 + void 0 + excluded 2 (2 of them refused)",
+        "",
+        "  headings in line 2, for 1 row",
+        "  column  heading     meaning      unit",
+        "       1  drop        drop",
+        "       2  time        time",
+        "       3  temp        temperature",
+        "       -  A (line 1)  ball",
+        "",
+        "  headings in line 5, for 1 row",
+        "  column  heading     meaning      unit",
+        "       1  drop        drop",
+        "       2  time [ms]   time         ms",
+        "       3  temp [°C]   temperature  °C",
+    ]
+    assert lines[-6:] == [
+        "lines for the bench sheet that would settle what is ambiguous; write those that are true",
+        "  [timings]",
+        *(f"  {offer}" for offer in offers),
+    ]
+
+
+def test_what_is_offered_is_read_by_the_bench_sheet(tmp_path, monkeypatch):
+    monkeypatch.chdir(tmp_path)
+    (tmp_path / "t.csv").write_text("ball,tiem,T\nA,1.5,25\n")
+    assert collect("t.csv").offers == ('columns."tiem" = "time"',)
+    for name, text in {
+        "columns": "ball,tiem,T\nA,1.5,25\n",
+        "units": "ball,time,T\nA,1.5,25\n",
+        "spaces": "ball time_s\nA 1.5\n",
+        "turned": "ball,A\ntime [s],1.5\n",
+        "tie": "time [s];note,remarks\n12;a\n",
+    }.items():
+        Path("t.csv").write_text(text)
+        offers = collect("t.csv").offers
+        assert offers, name
+        sheet = {"timings": tomllib.loads("\n".join(offers))}
+        sheet |= {"ball": {"A": {"diameter": "2.0000(5) mm", "density": "7.700(3) g/cm3"}}}
+        again = collect("t.csv", read_bench(sheet)).offers
+        assert not set(offers) & set(again), name

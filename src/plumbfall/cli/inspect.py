@@ -25,7 +25,8 @@ def add_inspect(commands: Commands) -> None:
 
 def _run(options: argparse.Namespace) -> int:
     from plumbfall.errors import InputError
-    from plumbfall.report.inspection import inspection_text, inspection_to_dict
+    from plumbfall.report.inspection import inspection_to_dict
+    from plumbfall.report.inspection_text import inspection_text
     from plumbfall.timings.records import Timings
     from plumbfall.workflow import inspect_inputs
 

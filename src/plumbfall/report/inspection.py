@@ -1,9 +1,9 @@
-"""What was understood of timing files and bench sheet, as JSON and as a table to check."""
+"""What was understood of timing files and bench sheet, as JSON."""
 
 from __future__ import annotations
 
 import math
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
@@ -11,25 +11,21 @@ if TYPE_CHECKING:
 
     from plumbfall.bench.records import Bench
     from plumbfall.estimate import Estimate
-    from plumbfall.timings.records import TimingFile, Timings
+    from plumbfall.timings.records import ColumnRead, TimingFile, Timings
 
-__all__ = ["SCHEMA", "inspection_text", "inspection_to_dict"]
+__all__ = ["SCHEMA", "counts_of", "inspection_to_dict"]
 
 SCHEMA = "plumbfall/inspect/1"
-_DELIMITERS = {",": "comma", ";": "semicolon", "\t": "tab", "|": "pipe", " ": "space", "": "none"}
-_DECIMALS = {".": "point", ",": "comma"}
 _NAMES = ("tube", "liquid", "timer", "thermometer", "operator", "started")
-_LISTED = 20
-"""Rows, repairs and entries of each kind that the text shows; the JSON holds them all."""
 
 
 def inspection_to_dict(timings: Timings, bench: Bench | None) -> dict[str, Any]:
     """Return the whole inspection as plain lists, dicts, strings and finite numbers."""
     return {
         "schema": SCHEMA,
-        "files": [_file(file) for file in timings.files],
+        "files": [_file(file, timings) for file in timings.files],
         "bench": None if bench is None else _bench(bench),
-        "rows": _counts(timings),
+        "rows": counts_of(timings.table),
         "drops": _drops(timings),
         "repairs": [
             {"file": r.file, "line": r.line, "column": r.column, "what": r.what}
@@ -47,26 +43,38 @@ def inspection_to_dict(timings: Timings, bench: Bench | None) -> dict[str, Any]:
             }
             for problem in timings.problems
         ],
+        "offers": list(timings.offers),
     }
 
 
-def _file(file: TimingFile) -> dict[str, Any]:
+def _file(file: TimingFile, timings: Timings) -> dict[str, Any]:
     return {
         "path": file.path,
         "sha256": file.sha256,
         "encoding": file.encoding,
         "delimiter": file.delimiter,
         "decimal": file.decimal,
+        "transposed": file.transposed,
         "heading_line": file.heading_line,
-        "columns": [
+        "columns": [_column(column) for column in file.columns],
+        "blocks": [
             {
-                "column": column.column,
-                "heading": column.heading,
-                "meaning": column.meaning or None,
-                "unit": column.unit or None,
+                "heading_line": block.heading_line,
+                "rows": block.rows,
+                "columns": [_column(column) for column in block.columns],
             }
-            for column in file.columns
+            for block in file.blocks
         ],
+        "rows": counts_of(timings.table[timings.table["file"] == file.path]),
+    }
+
+
+def _column(column: ColumnRead) -> dict[str, Any]:
+    return {
+        "column": column.column or None,
+        "heading": column.heading,
+        "meaning": column.meaning or None,
+        "unit": column.unit or None,
     }
 
 
@@ -105,11 +113,14 @@ def _number(value: float | None) -> float | None:
     return None if value is None or not math.isfinite(value) else float(value)
 
 
-def _counts(timings: Timings) -> dict[str, int]:
-    counts = timings.table["status"].value_counts()
+def counts_of(table: pd.DataFrame) -> dict[str, int]:
+    """Count the rows of a table of drops by what became of them; those refused are excluded too."""
+    counts = table["status"].value_counts()
+    excluded = table["note"][table["status"] == "excluded"].astype(str)
     return {
-        "read": len(timings.table),
+        "read": len(table),
         **{status: int(counts.get(status, 0)) for status in ("used", "void", "excluded")},
+        "refused": int(excluded.str.startswith("refused").sum()),
     }
 
 
@@ -148,118 +159,3 @@ def _drops(timings: Timings) -> list[dict[str, Any]]:
         }
         for row in range(len(table))
     ]
-
-
-def inspection_text(timings: Timings, bench: Bench | None) -> str:
-    """Return the inspection as plain text, for a person to check at a glance."""
-    lines: list[str] = []
-    for file in timings.files:
-        lines += [*_file_lines(file, timings.table[timings.table["file"] == file.path]), ""]
-    if bench is not None:
-        lines += [*_bench_lines(bench), ""]
-    counts = _counts(timings)
-    lines.append(
-        f"rows read {counts['read']} = used {counts['used']} + void {counts['void']}"
-        f" + excluded {counts['excluded']}"
-    )
-    lines += _listing(
-        "repaired", (_placed(r.file, r.line, r.column, r.what) for r in timings.repairs)
-    )
-    for severity, title in (("warning", "warnings"), ("error", "errors")):
-        lines += _listing(
-            title, (str(p) for p in timings.problems if p.severity == severity), most=None
-        )
-    return "\n".join(lines) + "\n"
-
-
-def _placed(file: str, line: int | None, column: int | None, what: str) -> str:
-    place = file
-    if line is not None:
-        place += f":{line}" + (f":{column}" if column is not None else "")
-    return f"{place}: {what}" if place else what
-
-
-def _listing(title: str, entries: Iterable[str], most: int | None = _LISTED) -> list[str]:
-    found = [_one_line(entry) for entry in entries]
-    if not found:
-        return []
-    shown = found if most is None else found[:most]
-    rest = [f"  and {len(found) - len(shown)} more"] if len(shown) < len(found) else []
-    return ["", f"{title} ({len(found)})", *(f"  {entry}" for entry in shown), *rest]
-
-
-def _one_line(text: str) -> str:
-    return "".join(c if c.isprintable() else " " for c in text)
-
-
-def _columned(rows: Sequence[Sequence[str]], right: frozenset[int] = frozenset()) -> list[str]:
-    rows = [[_one_line(cell) for cell in row] for row in rows]
-    widths = [max(len(row[place]) for row in rows) for place in range(len(rows[0]))]
-    return [
-        "  "
-        + "  ".join(
-            cell.rjust(width) if place in right else cell.ljust(width)
-            for place, (cell, width) in enumerate(zip(row, widths, strict=True))
-        ).rstrip()
-        for row in rows
-    ]
-
-
-def _file_lines(file: TimingFile, table: pd.DataFrame) -> list[str]:
-    lines = [f"file {_one_line(file.path)}", f"  SHA-256 {file.sha256}"]
-    if file.encoding:
-        lines.append(
-            f"  encoding {file.encoding}, delimiter {_DELIMITERS.get(file.delimiter, 'other')},"
-            f" decimal {_DECIMALS.get(file.decimal, 'other')}, headings in line"
-            f" {file.heading_line or 'not found'}"
-        )
-    if file.columns:
-        lines += _columned(
-            [
-                ("column", "heading", "meaning", "unit"),
-                *(
-                    (str(c.column), c.heading, c.meaning or "not used", c.unit)
-                    for c in file.columns
-                ),
-            ],
-            frozenset({0}),
-        )
-    if len(table):
-        lines += ["", *_drop_lines(table)]
-    return lines
-
-
-def _drop_lines(table: pd.DataFrame) -> list[str]:
-    shown = table.head(_LISTED)
-    rows: list[Sequence[str]] = [
-        ("line", "set", "drop", "ball", "time / s", "temperature / K", "status", "note")
-    ]
-    columns = [shown[name].tolist() for name in ("line", "set", "drop", "ball", "status", "note")]
-    measured = [map(_shown, shown[name].tolist()) for name in ("time_s", "temperature_K")]
-    for line, run_set, drop, ball, status, note, time, temperature in zip(
-        *columns, *measured, strict=True
-    ):
-        rows.append((str(line), run_set, str(drop), ball, time, temperature, status, note))
-    rest = len(table) - len(shown)
-    more = [f"  and {rest} more rows"] if rest else []
-    return _columned(rows, frozenset({0, 2, 4, 5})) + more
-
-
-def _shown(value: float) -> str:
-    return "-" if math.isnan(value) else f"{value:.10g}"
-
-
-def _bench_lines(bench: Bench) -> list[str]:
-    rows: list[Sequence[str]] = [("entry", "as written", "as read", "standard uncertainty")]
-    for key, estimate in bench.quantities().items():
-        unit = "" if estimate.unit == "1" else f" {estimate.unit}"
-        rows.append(
-            (
-                key,
-                estimate.text,
-                f"{estimate.value:.10g}{unit}",
-                "exact" if estimate.exact else f"{estimate.u:.3g}{unit}",
-            )
-        )
-    title = f"bench sheet {_one_line(bench.path)}".rstrip()
-    return [title, *(_columned(rows) if len(rows) > 1 else [])]

@@ -25,13 +25,15 @@ _SPACES = re.compile(r"[\s\u00a0\u2009\u202f]")
 class Decimal:
     """The decimal mark, and what to say of a cell with a comma where that is not certain.
 
-    ``thousands`` is what parts thousands where the user declared it, else empty.
+    ``thousands`` is what parts thousands where the user declared it, else empty; ``grouped`` says
+    that the commas may part thousands though nobody did.
     """
 
     mark: str
     uncertain: str = ""
     remedy: str = ""
     thousands: str = ""
+    grouped: bool = False
 
     def fault(self, text: str) -> Fault | None:
         """Return what is wrong with a cell whose comma may mean two things."""
@@ -91,6 +93,8 @@ def find_decimal(
     found = _found(columns, delimiter, thousands or "")
     if found.uncertain:
         notices.offer("decimal", '","')
+        if found.grouped:
+            notices.offer("thousands", '","')
     return replace(found, thousands=thousands or "")
 
 
@@ -134,5 +138,6 @@ def _found(columns: Iterable[tuple[Column, str]], delimiter: str, thousands: str
             else "may have a decimal comma or a comma that parts thousands",
             f'set {_DECLARE} if it is a decimal comma, thousands = "," there if it parts thousands,'
             " or write the number without it",
+            grouped=True,
         )
     return Decimal(",")

@@ -227,6 +227,7 @@ def _note_no_times(headings: Sequence[Heading], line: int | None, notices: Notic
     for wanted in ("time", "fall time", "mark 1", "interval 1", "repeat 1"):
         near = _near(headings, wanted)
         if near:
+            notices.offer(f'columns."{part_heading(near.text)[0]}"', f'"{wanted}"')
             notices.error(
                 f"no column holds times; {quoted(near.text)} may be meant as {quoted(wanted)}",
                 f'write its heading as "{wanted} [s]", with the unit that was used',

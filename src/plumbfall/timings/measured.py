@@ -117,6 +117,7 @@ class MeasuredColumns:
                 heading.column,
             )
             return
+        self.notices.offer(f"units.{kind}", '"degC"' if kind == "temperature" else '"s"')
         declared = f'units = {{ {kind} = "{"degC" if kind == "temperature" else "s"}" }}'
         self.notices.error(
             f"column {quoted(heading.text)} has plain numbers such as {cell} and no unit",

@@ -20,7 +20,7 @@ from plumbfall.timings.merging import merge_blocks
 from plumbfall.timings.missed_headings import note_missed_headings
 from plumbfall.timings.notices import Notices, Place
 from plumbfall.timings.opening import Opened, open_file
-from plumbfall.timings.records import Block, TimingFile
+from plumbfall.timings.records import Block, ColumnRead, TimingFile
 from plumbfall.timings.sections import Section, cut_sections
 from plumbfall.timings.totals import Watch
 from plumbfall.timings.vocabulary import Vocabulary
@@ -101,9 +101,8 @@ class Reading:
         for section, layout in blocks:
             notices.place = _place(opened.turned_lines, section.title_lines)
             grid = section.grid
-            columns = columns_read(
-                self.vocabulary.read_all(grid.headings), layout, self.hints.units
-            )
+            read = columns_read(self.vocabulary.read_all(grid.headings), layout, self.hints.units)
+            columns = tuple(_of_title(one, section) for one in read)
             told.append(Block(grid.heading_line, columns, len(grid)))
             if not len(grid):
                 continue
@@ -141,6 +140,15 @@ class Reading:
                 f"the file is the same, byte for byte, as {twin.path}",
                 "leave one of them out; a drop counts once",
             )
+
+
+def _of_title(column: ColumnRead, section: Section) -> ColumnRead:
+    """Return a column that stands for a title as what it is: no column, and the title's line."""
+    line = section.title_lines.get(column.column)
+    if line is None:
+        return column
+    text = section.grid.columns[column.column - 1].text(0) if len(section.grid) else ""
+    return ColumnRead(0, f"{text} (line {line})", column.meaning, column.unit)
 
 
 def _place(turned_lines: Sequence[int] | None, title_lines: Mapping[int, int]) -> Place:

@@ -48,7 +48,8 @@ an excluded row's ``note`` opens with the rule that excluded it, such as ``no-ti
 class ColumnRead:
     """A column as it was understood; ``meaning`` is empty where it is not used.
 
-    ``column`` counts from 1; ``unit`` is that of plain numbers, empty where none is needed.
+    ``column`` counts from 1, and is 0 for what a title above the headings names; ``unit`` is that
+    of plain numbers, empty where none is needed.
     """
 
     column: int
