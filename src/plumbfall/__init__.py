@@ -18,6 +18,7 @@ if TYPE_CHECKING:
     from plumbfall.errors import InputError, PlumbfallError, PlumbfallWarning
     from plumbfall.estimate import Estimate
     from plumbfall.planning.simulation import simulate
+    from plumbfall.report.plan_report import plan
     from plumbfall.report.report import Report
     from plumbfall.timings.reader import read_timings
     from plumbfall.timings.records import Timings
@@ -37,6 +38,7 @@ __all__ = [
     "check",
     "compare",
     "physics",
+    "plan",
     "read_bench",
     "read_timings",
     "reduce",
@@ -55,6 +57,7 @@ _HOME = {
     "chart": "plumbfall.checking",
     "check": "plumbfall.checking",
     "compare": "plumbfall.checking",
+    "plan": "plumbfall.report.plan_report",
     "read_bench": "plumbfall.bench.reader",
     "read_timings": "plumbfall.timings.reader",
     "reduce": "plumbfall.workflow",

@@ -19,6 +19,7 @@ from plumbfall.cli.exit_codes import BAD_INPUT, INTERRUPTED
 from plumbfall.cli.inspect import add_inspect
 from plumbfall.cli.methods import add_methods
 from plumbfall.cli.output import say, say_problems
+from plumbfall.cli.plan import add_plan
 from plumbfall.cli.reduce import add_reduce
 from plumbfall.cli.selftest import add_selftest
 
@@ -35,8 +36,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
     """Run a command and return its exit code.
 
     Exit codes: 0 done and every set valid; 1 a set invalid (with ``--strict`` also one with
-    warnings), a check failed, a chart out of control, or a figure of the self-test failed; 2 bad
-    input or usage, and then nothing has been written; 3 a check undecided.
+    warnings), a check failed, a chart out of control, nothing suitable to plan, or a figure of the
+    self-test failed; 2 bad input or usage, and then nothing has been written; 3 a check undecided.
     """
     for name in ("stdout", "stderr"):
         if getattr(sys, name) is None:  # closed by the shell: what is said there goes nowhere
@@ -73,6 +74,7 @@ def build_parser() -> argparse.ArgumentParser:
         add_check,
         add_compare,
         add_chart,
+        add_plan,
         add_methods,
         add_selftest,
     ):

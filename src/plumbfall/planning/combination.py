@@ -13,7 +13,13 @@ from plumbfall.measurement.balance import Numbers
 from plumbfall.physics.stokes import shear_rate
 from plumbfall.physics.thermal import equilibration_time
 from plumbfall.planning.evaluation import Evaluation, interval_times
-from plumbfall.planning.judgement import Improvement, Reason, improvements, reasons_against
+from plumbfall.planning.judgement import (
+    Improvement,
+    Reason,
+    improvements,
+    reasons_against,
+    spoken_of,
+)
 from plumbfall.planning.prediction import Part, Prediction
 from plumbfall.planning.start import run_in_distances
 from plumbfall.planning.wanted import Wanted
@@ -28,6 +34,7 @@ class Combination:
     ``intervals`` are the times between successive marks; ``run_in`` is the distance to 99.9 % of
     the speed and ``run_in_room`` what there is; clearances are distances of the first mark from
     the surface and of the last from the bottom; ``scatter`` that of one drop, relative.
+    ``cautions`` are warnings of what the bounds include, which reach the target all the same.
     ``relative_expanded_uncertainty`` is that of ``drops`` drops, made of ``budget``. ``floor`` is
     what no number of drops goes below.
     """
@@ -44,6 +51,7 @@ class Combination:
     drops: int
     suitable: bool
     reasons: tuple[Reason, ...]
+    cautions: tuple[Reason, ...] = ()
     fall_time: float | None = None
     intervals: tuple[float, ...] = ()
     speed: float | None = None
@@ -141,6 +149,7 @@ def build_combinations(
             dominant_input=dominant[drops][rank],
             budget=prediction.budget(rank, drops),
             improvements=tuple(better),
+            cautions=spoken_of(evaluation.found(rank), wanted.target)[1],
             **known,
         )
 

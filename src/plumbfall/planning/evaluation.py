@@ -1,7 +1,7 @@
 """Planned drops, worked out: each falls by the measurement equation, and is reduced.
 
-One drop of every combination of tube, ball and viscosity is let fall without errors, and all are
-reduced as run sets of one drop. So limits, findings and budget are those of the reduction itself.
+Drops of every combination of tube, ball and viscosity are let fall without errors, and reduced,
+each combination as a run set. So limits, findings and budget are those of the reduction itself.
 """
 
 from __future__ import annotations
@@ -61,7 +61,9 @@ class Evaluation:
         return () if self.reduction is None else self.reduction.found[place]
 
 
-def evaluate(conditions: Conditions, tube: Codes, ball: Codes, viscosity: Numbers) -> Evaluation:
+def evaluate(
+    conditions: Conditions, tube: Codes, ball: Codes, viscosity: Numbers, drops: int = 1
+) -> Evaluation:
     """Work out drops of combinations of tube, ball and viscosity.
 
     Parameters
@@ -72,6 +74,8 @@ def evaluate(conditions: Conditions, tube: Codes, ball: Codes, viscosity: Number
         Codes into the bench's tubes and balls.
     viscosity : array, shape (combinations,) [Pa.s]
         Viscosity of the liquid.
+    drops : int
+        Drops of a run set; some findings depend on it.
 
     Returns
     -------
@@ -95,7 +99,7 @@ def evaluate(conditions: Conditions, tube: Codes, ball: Codes, viscosity: Number
             conditions, tube, ball, viscosity, law, inputs, fallen, solved, None, shared,
             OwnErrors(*[none] * len(OwnErrors.__slots__)), (),
         )  # fmt: skip
-    timings = _timings(conditions, cells, inputs, fallen, names, solved)
+    timings = _timings(conditions, cells, inputs, fallen, names, solved, drops)
     reduction = reduce_drops(timings, bench, draws=0)
     sets = reduction.sets
     jacobian, eta = sets.jacobian, sets.scatter.mean
@@ -115,7 +119,7 @@ def evaluate(conditions: Conditions, tube: Codes, ball: Codes, viscosity: Number
         shared=propagate(
             sensitivities=relative, u=jacobian.u[:entries], dof=jacobian.dof[:entries]
         ),
-        own=OwnErrors(*(getattr(own, kind) / eta**2 for kind in OwnErrors.__slots__)),
+        own=OwnErrors(*(drops * getattr(own, kind) / eta**2 for kind in OwnErrors.__slots__)),
         columns=tuple(
             sets.inputs.estimates[jacobian.input_of(column)].name for column in range(entries)
         ),
@@ -194,10 +198,13 @@ def _timings(
     fallen: Fall,
     names: tuple[str, ...],
     solved: NDArray[np.intp],
+    drops: int,
 ) -> Timings:
-    """Return the planned drops as a timing table."""
-    bench, n = conditions.bench, len(solved)
-    reading = conditions.temperature - inputs.roles["thermometer"].value[solved]
+    """Return the planned drops as a timing table, those of a run set together."""
+    bench, n = conditions.bench, len(solved) * drops
+    run_set = np.repeat(np.arange(len(solved)), drops)
+    row = solved[run_set]
+    reading = conditions.temperature - inputs.roles["thermometer"].value[row]
     if conditions.entry is not None:
         reading = np.full(n, np.nan)
 
@@ -211,16 +218,16 @@ def _timings(
         "file": text("planned"),
         "line": np.arange(1, n + 1),
         "column": np.ones(n, dtype=np.int64),
-        "set": coded(np.arange(n), [names[place] for place in solved]),
-        "drop": np.ones(n, dtype=np.int64),
+        "set": coded(run_set, [names[place] for place in solved]),
+        "drop": np.tile(np.arange(1, drops + 1), len(solved)),
         "status": text("used"),
-        "time_s": fallen.clock[solved],
+        "time_s": fallen.clock[row],
         "from_mark": np.ones(n, dtype=np.int64),
         "to_mark": np.zeros(n, dtype=np.int64),
         "temperature_K": reading,
     }
     for kind, attribute in KINDS.items():
-        codes, known = getattr(cells, kind)[solved], list(getattr(bench, attribute))
+        codes, known = getattr(cells, kind)[row], list(getattr(bench, attribute))
         columns[kind] = coded(np.where(codes < 0, len(known), codes), [*known, ""])
     for name in ("operator", "started", "note"):
         columns[name] = text("")

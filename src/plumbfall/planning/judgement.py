@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator
 from dataclasses import dataclass
 
 import numpy as np
@@ -16,7 +15,7 @@ from plumbfall.planning.prediction import Part, Prediction
 from plumbfall.planning.wanted import Wanted
 from plumbfall.results import Finding
 
-__all__ = ["CHOICE", "Improvement", "Reason", "improvements", "reasons_against"]
+__all__ = ["CHOICE", "Improvement", "Reason", "improvements", "reasons_against", "spoken_of"]
 
 CHOICE = frozenset(
     {
@@ -26,6 +25,9 @@ CHOICE = frozenset(
     }
 )  # fmt: skip
 """Findings that speak against a ball or a tube, not against data or against the whole sheet."""
+
+BOUNDED = frozenset({"fall-time-short", "resolution-coarse", "reynolds-high"})
+"""Warnings of what the bounds include: a target that is reached all the same outweighs them."""
 
 EASY, WORTH = 1 / 3, 1 / 2
 """Few inputs are named if a third of their uncertainty does it, else if they need be no better
@@ -56,11 +58,18 @@ class Improvement:
     needed: float
 
 
-def _findings_of_choice(found: tuple[Finding, ...]) -> Iterator[Reason]:
-    """Return what the reduction would warn of, or refuse, because of the ball or the tube."""
+def spoken_of(
+    found: tuple[Finding, ...], target: float | None
+) -> tuple[tuple[Reason, ...], tuple[Reason, ...]]:
+    """Return what the reduction would say of the ball or the tube: what bars it, and cautions."""
+    bars: list[Reason] = []
+    cautions: list[Reason] = []
     for finding in found:
-        if finding.code in CHOICE and finding.severity != "note":
-            yield Reason(finding.code, finding.message)
+        if finding.code not in CHOICE or finding.severity == "note":
+            continue
+        within = target is not None and finding.severity == "warning" and finding.code in BOUNDED
+        (cautions if within else bars).append(Reason(finding.code, finding.message))
+    return tuple(bars), tuple(cautions)
 
 
 def _unsolved(evaluation: Evaluation, place: int) -> Reason:
@@ -99,7 +108,7 @@ def reasons_against(
     """Return everything that speaks against a combination, the gravest first."""
     if rank is None:
         return [_unsolved(evaluation, place)]
-    reasons = list(_findings_of_choice(evaluation.found(rank)))
+    reasons = list(spoken_of(evaluation.found(rank), wanted.target)[0])
     time = float(evaluation.fallen.time[place])
     if time > wanted.longest:
         reasons.append(

@@ -78,9 +78,14 @@ class Plan:
 
     @property
     def suitable(self) -> bool:
-        """Whether any ball and tube will do at every viscosity."""
-        fails = {(one.tube, one.ball) for one in self.combinations if not one.suitable}
-        return any((one.tube, one.ball) not in fails for one in self.combinations)
+        """Whether some ball and tube will do at each of the viscosities."""
+        covered = {one.viscosity for one in self.combinations if one.suitable}
+        return covered.issuperset(self.wanted.viscosities)
+
+    @property
+    def one_for_all(self) -> bool:
+        """Whether the best ball and tube will do at every viscosity."""
+        return all(one.suitable for one in self.best)
 
     @property
     def best(self) -> tuple[Combination, ...]:
@@ -143,7 +148,7 @@ def make_plan(
         part.ravel() for part in np.meshgrid(tube_codes, ball_codes, np.arange(len(eta)),
                                              indexing="ij")
     )  # fmt: skip
-    evaluation = evaluate(conditions, tube, ball, eta[which])
+    evaluation = evaluate(conditions, tube, ball, eta[which], wanted.drops)
     prediction = Prediction(evaluation, wanted.coverage)
     n = len(evaluation.solved)
     needed = np.zeros(n, dtype=np.intp)

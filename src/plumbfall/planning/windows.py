@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 from plumbfall.measurement.balance import Codes, Numbers
 from plumbfall.planning.conditions import Conditions
 from plumbfall.planning.evaluation import Evaluation, evaluate
-from plumbfall.planning.judgement import CHOICE, Reason, reasons_against
+from plumbfall.planning.judgement import Reason, reasons_against, spoken_of
 from plumbfall.planning.prediction import Prediction
 from plumbfall.planning.wanted import Wanted
 
@@ -44,7 +44,8 @@ class Window:
 def viscosity_span(wanted: Wanted) -> tuple[float, float]:
     """Return the viscosities [Pa.s] between which windows are looked for, whole decades."""
     low, high = min(wanted.viscosities), max(wanted.viscosities)
-    return 10.0 ** (math.floor(math.log10(low)) - 1), 10.0 ** (math.ceil(math.log10(high)) + 1)
+    first, last = math.ceil(math.log10(low)) - 2, math.floor(math.log10(high)) + 3
+    return 10.0**first, 10.0**last
 
 
 def usable_windows(
@@ -128,7 +129,7 @@ class _Judged:
         viscosity: Numbers,
         fewest: int,
     ) -> None:
-        self.evaluation: Evaluation = evaluate(conditions, tube, ball, viscosity)
+        self.evaluation: Evaluation = evaluate(conditions, tube, ball, viscosity, wanted.drops)
         self.prediction = Prediction(self.evaluation, wanted.coverage)
         self.wanted = wanted
         solved = self.evaluation.solved
@@ -143,10 +144,7 @@ class _Judged:
         self._rank = {place: rank for rank, place in enumerate(solved.tolist())}
 
     def _clean(self, rank: int) -> bool:
-        return not any(
-            finding.code in CHOICE and finding.severity != "note"
-            for finding in self.evaluation.found(rank)
-        )
+        return not spoken_of(self.evaluation.found(rank), self.wanted.target)[0]
 
     def limit(self, place: int) -> tuple[Reason | None, str | None]:
         """Return what speaks against a combination, and its largest part of the uncertainty."""

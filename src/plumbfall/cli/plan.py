@@ -1,0 +1,95 @@
+"""The command ``plan``."""
+
+from __future__ import annotations
+
+import argparse
+
+from plumbfall.cli.arguments import add_json, probability
+from plumbfall.cli.commands import Commands
+from plumbfall.cli.exit_codes import DONE, INVALID
+from plumbfall.cli.output import print_json, print_text, say
+
+__all__ = ["add_plan"]
+
+
+def add_plan(commands: Commands) -> None:
+    """Add the command to the parser."""
+    plan = commands.add_parser(
+        "plan",
+        help="which of the balls and tubes will reach the wanted uncertainty",
+        description="Plan a measurement before the liquid is poured: each ball and tube with fall "
+        "time, Reynolds number, run-in and predicted uncertainty, ranked.",
+        epilog="Exit code: 0 a ball and tube will do, 1 nothing will, 2 bad input.",
+    )
+    plan.add_argument("--bench", metavar="FILE", default="bench.toml",
+                      help="bench sheet (default: bench.toml in this folder)")  # fmt: skip
+    plan.add_argument(
+        "--viscosity",
+        nargs="+",
+        required=True,
+        metavar="V",
+        help='expected viscosity, such as "0.5 Pa.s"; two are a range',
+    )
+    plan.add_argument(
+        "--target",
+        metavar="U",
+        help='wanted expanded uncertainty over the viscosity, such as "0.5 %%"',
+    )
+    plan.add_argument("--drops", type=_count, metavar="N", help="drops of a run set (default 8)")
+    plan.add_argument(
+        "--most-drops", type=_count, metavar="N", help="most drops that are made (default 20)"
+    )
+    plan.add_argument(
+        "--longest", metavar="T", help='longest fall time, such as "30 min" (default 1 h)'
+    )
+    plan.add_argument(
+        "--coverage", type=probability, metavar="P", help="coverage probability (default 0.95)"
+    )
+    plan.add_argument("--set", metavar="NAME", help="run set whose entry says what is used")
+    for kind in ("liquid", "timer", "thermometer"):
+        plan.add_argument(f"--{kind}", metavar="NAME", help=f"which {kind}, of several")
+    plan.add_argument(
+        "--temperature",
+        metavar="T",
+        help='of the liquid, such as "25 degC"',
+    )
+    plan.add_argument("--tubes", nargs="+", metavar="NAME", help="only these tubes")
+    plan.add_argument("--balls", nargs="+", metavar="NAME", help="only these balls")
+    plan.add_argument("--out", metavar="DIR", help="write plan.html and plan.json there")
+    add_json(plan)
+    plan.set_defaults(run=_run)
+
+
+def _run(options: argparse.Namespace) -> int:
+    from plumbfall.report.plan_report import plan
+
+    asked = {
+        "target": options.target,
+        "drops": options.drops,
+        "most_drops": options.most_drops,
+        "longest": options.longest,
+        "coverage": options.coverage,
+        "run_set": options.set,
+        "liquid": options.liquid,
+        "timer": options.timer,
+        "thermometer": options.thermometer,
+        "temperature": options.temperature,
+        "tubes": options.tubes,
+        "balls": options.balls,
+    }
+    given = {name: value for name, value in asked.items() if value is not None}
+    planned = plan(options.bench, viscosity=options.viscosity, **given)
+    if options.out:
+        planned.write(options.out)
+        say(f"written to {options.out}: plan.html, plan.json")
+    if options.json:
+        print_json(planned.to_dict())
+    else:
+        print_text(planned.text())
+    return DONE if planned.suitable else INVALID
+
+
+def _count(text: str) -> int:
+    if not text.isdecimal() or int(text) < 1:
+        raise argparse.ArgumentTypeError(f"{text!r} is no number of drops; write 8")
+    return int(text)
