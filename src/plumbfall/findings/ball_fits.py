@@ -25,19 +25,24 @@ FEWEST_BALLS = 3
 LEAST_CONTRAST = 0.05
 """Balls whose sizes (or shear at one size) differ by less show no trend: 5 %."""
 
+MOST_LEVERAGE = 0.95
+"""A trend that hangs on one ball by more than this cannot be told from that ball being bad."""
+
 
 @dataclass(frozen=True, slots=True)
 class Trend:
     """Change of ln(viscosity) from the lowest to the highest value of a covariate, (run sets,).
 
-    ``rest_p_value`` says whether the balls agree once the trend is taken off: where they do not, a
-    single bad ball is likelier than a trend. NaN, and ``p_value`` 1, where the balls do not tell.
+    ``rest_p_value`` says whether the balls agree once the trend is taken off, ``explained`` what
+    part of their squares it takes: where both are small, a single bad ball is likelier than a
+    trend. NaN, and ``p_value`` 1, where the balls do not tell.
     """
 
     value: Numbers
     error: Numbers
     p_value: Numbers
     rest_p_value: Numbers
+    explained: Numbers
 
 
 @dataclass(frozen=True, slots=True)
@@ -83,7 +88,7 @@ def ball_fits(balls: BallMeans, n_sets: int) -> BallFits:
         return np.full(n_sets, value)
 
     def trend() -> Trend:
-        return Trend(blank(np.nan), blank(np.nan), blank(1.0), blank(1.0))
+        return Trend(blank(np.nan), blank(np.nan), blank(1.0), blank(1.0), blank(0.0))
 
     fits = BallFits(
         f=blank(np.nan),
@@ -125,14 +130,17 @@ def _fit(fits: BallFits, balls: BallMeans, batch: Batch) -> None:
     if k < FEWEST_BALLS:
         return
     with np.errstate(invalid="ignore", divide="ignore"):
-        size = np.log(balls.diameter_ratio[batch.groups])
+        size = balls.diameter_ratio[batch.groups]  # walls act by it, nearly in proportion
         shear = np.log(balls.shear_stress[batch.groups])
-    sized = np.ptp(size, axis=1) >= LEAST_CONTRAST
+    sized = _tells(size, LEAST_CONTRAST * size.mean(axis=1))
     size = size - size.mean(axis=1, keepdims=True)
     shear = shear - shear.mean(axis=1, keepdims=True)
     with np.errstate(invalid="ignore", divide="ignore"):
-        along = np.where(sized, (size * shear).sum(axis=1) / (size**2).sum(axis=1), 0.0)
-    sheared = np.ptp(shear - along[:, None] * size, axis=1) >= LEAST_CONTRAST
+        # balls of one density have a stress in proportion to their size
+        log_size = np.log(balls.diameter_ratio[batch.groups])
+        log_size = log_size - log_size.mean(axis=1, keepdims=True)
+        along = np.where(sized, (log_size * shear).sum(axis=1) / (log_size**2).sum(axis=1), 0.0)
+    sheared = _tells(shear - along[:, None] * log_size, LEAST_CONTRAST)
     both = sized & sheared & (k > FEWEST_BALLS)
     fits.separable[at] = both | (sheared & ~sized)
     for trend, covariate, known, where in (
@@ -144,6 +152,7 @@ def _fit(fits: BallFits, balls: BallMeans, batch: Batch) -> None:
         part = np.flatnonzero(where)
         if not len(part):
             continue
+        whole = fits.f[at[part]] * (k - 1)
         rest, value, error = weighted_squares(
             inverse[part], batch.value[part], [column[part] for column in known], covariate[part]
         )
@@ -151,3 +160,12 @@ def _fit(fits: BallFits, balls: BallMeans, batch: Batch) -> None:
         trend.value[at[part]], trend.error[at[part]] = value * span, error * span
         trend.p_value[at[part]] = t_p_value(t=value / error, dof=dof[part])
         trend.rest_p_value[at[part]] = f_p_value(f=rest / left, dof=left, dof_within=dof[part])
+        trend.explained[at[part]] = 1 - rest / whole
+
+
+def _tells(covariate: Numbers, contrast: Numbers | float) -> NDArray[np.bool_]:
+    """Whether a covariate changes enough within each set, and not by one ball alone."""
+    apart = (covariate - covariate.mean(axis=1, keepdims=True)) ** 2
+    with np.errstate(invalid="ignore", divide="ignore"):
+        leverage = 1 / covariate.shape[1] + apart.max(axis=1) / apart.sum(axis=1)
+    return np.asarray((np.ptp(covariate, axis=1) >= contrast) & (leverage <= MOST_LEVERAGE))

@@ -48,7 +48,7 @@ def intervals_disagree(data: RunData) -> Iterator[Found]:
         parts = " / ".join(f"{100 * value:+.2f}" for value in fit.value)
         also = ""
         if abs(cause.effect) > 0:
-            also = f"; the viscosity is {100 * abs(cause.effect):.2f} % too "
+            also = f", the viscosity is {100 * abs(cause.effect):.2f} % too "
             also += "high by that" if cause.effect > 0 else "low by that"
         yield (
             run_set,
@@ -57,7 +57,7 @@ def intervals_disagree(data: RunData) -> Iterator[Found]:
                 severity="warning",
                 statistic=float(fits.f[at]),
                 p_value=float(fits.p_value[at]),
-                effect=-cause.effect,
+                effect=-cause.effect or None,
                 detectable=float(seen),
                 message=f"the intervals of tube {tube.name} give different viscosities (from the "
                 f"top {parts} % about their mean): {cause.says}{also}",
@@ -68,7 +68,42 @@ def intervals_disagree(data: RunData) -> Iterator[Found]:
 
 def _best(fit: IntervalFit, tube: Tube, slope: float) -> _Cause:
     """Return the simplest explanation that leaves the least between the intervals."""
+    if len(fit.value) == 2:
+        return _of_two(fit, tube, slope)
     return min(_causes(fit, tube, slope), key=lambda cause: cause.rest)
+
+
+def _of_two(fit: IntervalFit, tube: Tube, slope: float) -> _Cause:
+    """Name every cause that may be: two intervals show no more than that they differ."""
+    above = float(fit.value[0] - fit.value[1])
+    contrast = np.array([1.0, -1.0])
+    error = float(np.sqrt(contrast @ fit.covariance @ contrast))
+    marks = np.array([mark.value for mark in tube.marks])
+    upper, lower = np.diff(marks)
+    out = above * upper * lower / (upper + lower)
+    slow = (
+        "the ball still gains speed, or is colder than the liquid, at the first mark"
+        if above > 0
+        else "the bottom, or what lies on it, is felt at the last mark"
+    )
+    warm = ""
+    if slope:
+        warm = f" (by {abs(above / slope):.2g} K from the one interval to the other)"
+    return _Cause(
+        pattern=contrast, rest=0.0, size=above, error=error,
+        says=f"the upper interval gives {100 * abs(above):.2f} % {'more' if above > 0 else 'less'} "
+        f"than the lower one; either {slow}, or the liquid's temperature changes with depth{warm}, "
+        f"or mark 2 is given {1000 * abs(out):.2f} mm too far {'down' if above < 0 else 'up'}; if "
+        "the first of these",
+        remedy=(
+            "let the ball go higher above the first mark"
+            if above > 0
+            else "keep the last mark higher above the bottom, take out the balls that lie there"
+        )
+        + f"; read the temperature at both ends; measure mark 2 of [tube.{tube.name}] again; a "
+        "further mark would tell which it is",
+        effect=float(abs(above) * (upper if above > 0 else lower) / (upper + lower)),
+    )  # fmt: skip
 
 
 def _causes(fit: IntervalFit, tube: Tube, slope: float) -> Iterator[_Cause]:
@@ -95,7 +130,7 @@ def _causes(fit: IntervalFit, tube: Tube, slope: float) -> Iterator[_Cause]:
             size * float(share[0]),
         )  # fmt: skip
     rest, size, error = fitted(last)
-    if size > 0 and k > 2:
+    if size > 0:
         yield _Cause(
             last, rest, size, error,
             f"the last one takes {100 * size:.2f} % longer than the others, as if the bottom, or "
@@ -124,8 +159,8 @@ def _causes(fit: IntervalFit, tube: Tube, slope: float) -> Iterator[_Cause]:
         rest, size, error = fitted(pattern)
         yield _Cause(
             pattern, rest, size, error * float(np.ptp(pattern)),
-            f"mark {mark + 1} looks {1000 * abs(size):.2f} mm too "
-            f"{'high' if size < 0 else 'low'} in the bench sheet, or is read "
+            f"mark {mark + 1} looks {1000 * abs(size):.2f} mm too far "
+            f"{'up' if size < 0 else 'down'} in the bench sheet, or is read "
             f"{'late' if size < 0 else 'early'}; the result runs from the first mark to the last "
             "and is not touched by it",
             f"measure mark {mark + 1} of [tube.{tube.name}] again",
