@@ -16,6 +16,7 @@ from numpy.typing import NDArray
 
 from plumbfall.calibration.control_charts import (
     ACTION,
+    ROUNDING,
     WARNING,
     Drift,
     Individuals,
@@ -165,9 +166,10 @@ def control_chart(
     low, high = ewma_limits(centre=limits.centre, sd=limits.sd, weight=WEIGHT, count=len(values))
     signals = run_signals(values, centre=limits.centre, sd=limits.sd)
     ranges = moving_ranges(values)
+    rounding = ROUNDING * float(np.abs(values).max())
     points = []
     for place, line in enumerate(kept):
-        drifted = not low[place] <= averages[place] <= high[place]
+        drifted = not low[place] - rounding <= averages[place] <= high[place] + rounding
         point = ControlPoint(
             when=line.when,
             run_set=line.run_set,

@@ -155,7 +155,7 @@ def _checked(
     measured, certified, bias = result.viscosity, None, None
     if known is not None and measured is not None and result.temperature is not None:
         certified = _with_bounds(known, _loose(reduction, result, known), reduction.coverage)
-        bias = _bias(reduction, result.name, measured.value, known, certified)
+        bias = _bias(reduction, result.name, measured, known, certified)
     shared = _shared(reduction, entry, result.name)
     score = zeta = probability = None
     if bias is not None and measured is not None and certified is not None:
@@ -243,28 +243,31 @@ def _with_bounds(known: CertifiedValue, loose: float, coverage: float) -> Measur
 
 
 def _bias(
-    reduction: Reduction, name: str, measured: float, known: CertifiedValue, certified: Measured
+    reduction: Reduction, name: str, measured: Measured, known: CertifiedValue, certified: Measured
 ) -> _Bias:
-    """Propagate every input of both values to the bias; one of the same name acts on both."""
+    """Propagate both values to the bias; an input of the same name acts on both."""
     sets = reduction.sets
+    ratio = measured.value / known.value
     columns, contributions = sets.outputs.propagation.row(reduction.names.index(name))
-    estimates = sets.inputs.estimates
-    ratio = measured / known.value
-    parts: dict[object, tuple[float, float]] = {}
-    for column, contribution in zip(columns.tolist(), contributions.tolist(), strict=True):
-        key = estimates[column] if column < sets.jacobian.n_inputs else column
-        same = (key.name, key.value, key.u) if not isinstance(key, int) else key
-        parts[same] = (contribution / known.value, float(sets.jacobian.dof[column]))
-    for part in known.parts:
-        entry = part.input
-        same = (entry.name, entry.value, entry.u)
-        before, dof = parts.get(same, (0.0, entry.dof))
-        parts[same] = (before - ratio * part.contribution / known.value, dof)
-    loose = math.sqrt(max(certified.u**2 - known.u**2, 0.0))
-    parts["temperature"] = (ratio * loose / known.value, math.inf)
-    u = math.hypot(*(part for part, _ in parts.values()))
-    fourth = sum(part**4 / dof for part, dof in parts.values())
+    inputs = {
+        (entry.name, entry.value, entry.u): float(contribution)
+        for column, contribution in zip(columns.tolist(), contributions.tolist(), strict=True)
+        if column < sets.jacobian.n_inputs
+        for entry in (sets.inputs.estimates[column],)
+    }
+    both = sum(
+        inputs.get((part.input.name, part.input.value, part.input.u), 0.0) * part.contribution
+        for part in known.parts
+    )
+    own, theirs = measured.u / known.value, ratio * certified.u / known.value
+    variance = own**2 + theirs**2 - 2 * ratio * both / known.value**2
+    u = math.sqrt(max(variance, 0.0))
+    fourth = own**4 / _dof(measured) + theirs**4 / _dof(certified)
     return _Bias(ratio - 1.0, u, float(effective_dof(u=u, contributions_fourth=fourth)))
+
+
+def _dof(measured: Measured) -> float:
+    return math.inf if measured.effective_dof is None else measured.effective_dof
 
 
 def _shared(reduction: Reduction, entry: Reference, name: str) -> str:

@@ -13,6 +13,7 @@ from plumbfall.calibration.chart_constants import chart_constants
 
 __all__ = [
     "ACTION",
+    "ROUNDING",
     "WARNING",
     "Cusum",
     "Drift",
@@ -33,6 +34,9 @@ WARNING, ACTION = 2.0, 3.0
 
 RUN, TREND = 9, 6
 """Points on one side, and points rising or falling, that are a signal (ISO 7870-2, from memory)."""
+
+ROUNDING = 1e-12
+"""Relative distance that is rounding of floats: equal values have limits of no width."""
 
 DETECTED = 0.8
 """Power at which the detectable drift is stated."""
@@ -203,6 +207,7 @@ def run_signals(values: ArrayLike, *, centre: float, sd: float) -> list[tuple[st
     """
     values = np.asarray(values, dtype=float)
     away = values - centre
+    away[np.abs(away) <= ROUNDING * np.abs(values)] = 0.0
     steps = np.sign(np.diff(values))
     found: list[tuple[str, ...]] = []
     for place in range(len(values)):

@@ -12,6 +12,7 @@ from typing import Any
 _NAMES_OF = {
     "drag": ("BoundDrag", "DragLaw"),
     "ends": ("end_excess", "end_factor_classical", "plane_factor"),
+    "equivalent_time": ("equivalent_time",),
     "fall": ("fall_time", "terminal_speed"),
     "factors": ("inertia_factor", "tube_drag_factor", "wall_factor"),
     "gravity": (
