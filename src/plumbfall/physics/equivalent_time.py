@@ -49,8 +49,9 @@ def equivalent_time(
 
     Valid range
     -----------
-    Both balls denser than the liquid and within the range of the wall factor, and both Reynolds numbers far below 1: inertia, which slows
-    each ball by some 3/16 of its Reynolds number, is left out.
+    Both balls denser than the liquid and within the range of the wall factor, and both Reynolds
+    numbers far below 1: inertia, which slows each ball by some 3/16 of its Reynolds number, is
+    left out.
 
     Notes
     -----
