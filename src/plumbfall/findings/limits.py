@@ -62,6 +62,12 @@ class Limits:
         Largest step of written times over their scatter (common practice, no source).
     resolution_effect
         Least effect of half such a step on the viscosity, as a ratio, before it is warned of.
+    swap_effect
+        Least difference of what two balls give for one drop, as a ratio, before they are tried
+        for each other.
+    swap_match
+        How near a drop must come to the others when taken for another ball, as a ratio (common
+        practice, no source).
     best_uncertainty
         Least relative standard uncertainty to be believed: BIPM key comparison CCM.V-K1.
     constant_temperature
@@ -103,6 +109,8 @@ class Limits:
     scatter_excess: float = 0.005
     resolution_share: float = 0.5
     resolution_effect: float = 1e-3
+    swap_effect: float = 0.02
+    swap_match: float = 0.01
     best_uncertainty: float = 4e-4
     constant_temperature: float = 1.0
     constant_range: float = 0.25

@@ -38,6 +38,7 @@ from plumbfall.findings.solvability import (
     reynolds_high,
     reynolds_uncertain,
 )
+from plumbfall.findings.swaps import swapped_ball
 from plumbfall.findings.temperatures import (
     density_temperature,
     fitted_slope,
@@ -58,6 +59,7 @@ DETECTORS: tuple[Detector, ...] = (
     diameter_ratio_high,
     radius_as_diameter,
     density_implausible,
+    swapped_ball,
     outlier,
     outlier_pair,
     not_equilibrated,
