@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -194,27 +195,26 @@ def _finding(
     said = list(dict.fromkeys(said))
     ball = data.balls[data.selection.cells.ball[data.selection.cell[drops[moved[0]]]]].name
     size = 100 * float(np.abs(best.swap.shift).max())
-    if factor == 1:
-        code, severity = "swapped-ball-suspected", "warning"
-        remedy = (
-            "look into the record which ball it was, and measure it; correct the ball column, or "
-            "mark the drops void and note the reason"
-        )
-    else:
-        code = "radius-as-diameter-suspected" if factor == 2 else "unit-slip-suspected"
-        severity = "error" if factor == 2 else "warning"
-        remedy = f"check [ball.{ball}] diameter and its unit"
-    return Finding(
-        code=code,
-        severity=severity,
-        drops=data.numbers(drops[moved]),
-        statistic=float(np.exp(best.swap.shift[moved[0]])),
-        p_value=best.p_value,
-        effect=_effect(data, drops, others, best.swap),
-        detectable=data.limits.swap_effect,
-        message=f"{', or '.join(said)}: that explains {size:.1f} % of viscosity, and the drops "
+    common: dict[str, Any] = {
+        "drops": data.numbers(drops[moved]),
+        "statistic": float(np.exp(best.swap.shift[moved[0]])),
+        "p_value": best.p_value,
+        "effect": _effect(data, drops, others, best.swap),
+        "detectable": data.limits.swap_effect,
+        "message": f"{', or '.join(said)}: that explains {size:.1f} % of viscosity, and the drops "
         "then agree",
-        remedy=remedy,
+    }
+    slip = f"check [ball.{ball}] diameter and its unit"
+    if factor == 2:
+        return Finding(code="radius-as-diameter-suspected", severity="error", remedy=slip, **common)
+    if factor != 1:
+        return Finding(code="unit-slip-suspected", severity="warning", remedy=slip, **common)
+    return Finding(
+        code="swapped-ball-suspected",
+        severity="warning",
+        remedy="look into the record which ball it was, and measure it; correct the ball column, "
+        "or mark the drops void and note the reason",
+        **common,
     )
 
 
