@@ -14,6 +14,7 @@ FOLDER = Path(__file__).parents[1] / "sample_runs"
 RUNS = {
     "damping_fluid_clean": "drops.csv",
     "resin_bad_drop": "drops.csv",
+    "three_batches": "drops.csv",
     "varnish_warm": "drops.tsv",
     "wash_oil_invalid": "drops.csv",
 }
@@ -79,6 +80,20 @@ def test_bad_drop_is_named_and_without_it_the_truth_is_covered():
     assert without == pytest.approx(truth, rel=0.01)
     (void,) = (drop for drop in resin.drops if not drop.used)
     assert void.note == "ball touched the wall"
+
+
+def test_three_batches_hold_the_truth_and_are_judged_by_it():
+    report = reduced("three_batches")
+    truths = {"batch 231": 1.001, "batch 232": 1.0504, "batch 233": 1.074}
+    assert dict.fromkeys(truths) == dict.fromkeys(report.names)
+    for run_set in report:
+        at_25 = run_set.result.viscosity_at_reference
+        assert at_25.low < truths[run_set.name] < at_25.high
+        assert run_set.status == "valid"
+    decisions = [run_set.result.conformity.decision for run_set in report]
+    assert decisions == ["conforms", "undecided", "does-not-conform"]
+    (void,) = (drop for drop in report["batch 233"].result.drops if not drop.used)
+    assert void.note.startswith("gate 2 did not trigger")
 
 
 def test_warm_sets_are_reduced_to_the_reference_temperature():

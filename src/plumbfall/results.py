@@ -204,13 +204,17 @@ class Conformity:
 
     ``probability`` is that of lying within the limits, ``None`` where nothing could be judged, and
     ``rule`` then says why. ``decision`` is ``conforms``, ``does-not-conform`` or ``undecided``;
-    ``limits`` are those of the bench sheet, as written there.
+    ``limits`` are those of the bench sheet, as written there; ``low`` and ``high`` [Pa.s] at
+    ``temperature`` [K] are their numbers, ``None`` where there is none.
     """
 
     probability: float | None
     rule: str
     decision: str
     limits: str
+    low: float | None = None
+    high: float | None = None
+    temperature: float | None = None
 
 
 @dataclass(frozen=True, slots=True)

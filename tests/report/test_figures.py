@@ -20,8 +20,9 @@ from plumbfall.report.house_style import COLOURS
 from plumbfall.report.intervals_figure import draw_intervals
 from plumbfall.report.map_figure import draw_map
 from plumbfall.report.residuals_figure import AGAINST, draw_residuals, residuals_vary
+from plumbfall.report.sets_figure import draw_sets
 from plumbfall.report.svg import inline_svg
-from plumbfall.results import RunSetResult
+from plumbfall.results import Conformity, RunSetResult
 from report.invented_report import (
     InventedReduction,
     drop,
@@ -198,7 +199,7 @@ class TestPlot:
             ({"kind": "drop"}, "no figure of kind 'drop'; did you mean 'drops'"),
             (
                 {"kind": "zzz"},
-                "write one of 'drops', 'budget', 'draws', 'intervals', 'residuals', 'map'",
+                "write one of 'drops', 'budget', 'draws', 'intervals', 'residuals', 'sets', 'map'",
             ),
             ({"run_set": "batch 18"}, "did you mean 'batch 118'"),
             ({"ax": Figure().add_subplot()}, "one place for several run sets; say which"),
@@ -291,6 +292,37 @@ def test_intervals_show_each_speed_over_the_drops_own() -> None:
     assert [text.get_text() for text in ax.get_xticklabels()] == ["1 to 2", "2 to 3"]
     means = [line.get_ydata()[0] for line in ax.get_lines() if line.get_linewidth() == 2]
     assert means == pytest.approx([0.9935, 1.0065])
+
+
+class TestSets:
+    def test_values_stand_with_their_bounds(self) -> None:
+        ax = draw_sets(three_sets().sets, axes())
+        assert ax.get_ylabel() == "Viscosity / Pa·s"  # 119 was measured at no reference temperature
+        drawn_bars = {
+            round(segment[0, 0]): tuple(segment[:, 1])
+            for group in ax.collections
+            for segment in group.get_segments()
+        }
+        assert drawn_bars[1] == pytest.approx((0.8471, 0.8555), abs=1e-4)
+        assert drawn_bars[2] == pytest.approx((1.1793, 1.2301))
+        assert list(lines(ax)["invalid"].get_xdata()) == [3]
+        assert [text.get_text() for text in ax.get_xticklabels()] == [
+            "batch 118", "batch 119", "batch 120",
+        ]  # fmt: skip
+
+    def test_limits_are_drawn_where_they_hold_for_all(self) -> None:
+        judged = Conformity(0.9, "a rule", "undecided", "as written", 0.8, None, 298.15)
+        inside = replace(valid_set("A"), conformity=judged)
+        limit = lines(draw_sets([inside, inside], axes()))["limit of the specification"]
+        assert limit.get_ydata()[0] == pytest.approx(800.0)
+        elsewhere = replace(inside, conformity=replace(judged, temperature=293.15))
+        for sets in ([inside, valid_set("B")], [inside, elsewhere], [elsewhere, elsewhere]):
+            assert "limit of the specification" not in lines(draw_sets(sets, axes()))
+
+    def test_very_many_sets_are_pixels(self) -> None:
+        many = [valid_set("A")] * 2001
+        ax = draw_sets(many, axes())
+        assert all(group.get_rasterized() for group in ax.collections)
 
 
 class TestMap:

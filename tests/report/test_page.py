@@ -10,14 +10,18 @@ from html.parser import HTMLParser
 
 import pytest
 
+from plumbfall.bench.records import Specification
 from plumbfall.report import Report
+from plumbfall.report.views import product
 from plumbfall.report.words import CAUTIONS, STATEMENTS, TERMS
+from plumbfall.results import Conformity
 from report.invented_report import (
     HOSTILE_NAMES,
     HOSTILE_NOTE,
     InventedReduction,
     bench,
     drop,
+    estimate,
     hostile_sets,
     three_sets,
     valid_set,
@@ -142,8 +146,8 @@ class TestAccessible:
     def test_drawings_are_described(self, page: Page) -> None:
         drawings = page.all("svg")
         # 1: drops, budget, residuals against temperature; 2: these, draws and intervals;
-        # 3: drops of the set without viscosity; and the map
-        assert len(drawings) == 3 + 5 + 1 + 1
+        # 3: drops of the set without viscosity; and for all of them, values and map
+        assert len(drawings) == 3 + 5 + 1 + 2
         assert all(drawing["role"] == "img" for drawing in drawings)
         assert len(page.all("desc")) == len(drawings)
         assert len(page.all("figcaption")) == len(drawings)
@@ -179,6 +183,29 @@ class TestContent:
         assert "Monte Carlo, 200000 draws 1.1793 1.2301 0.0123 – quoted" in found
         assert "apart by 0.0018 0.0034 0.0050 Pa·s allowed – the linear bounds hold" in found
         assert "12 draws had no viscosity and count as outside the bounds." in found
+
+    def test_what_the_specification_says_stands_with_the_value(self) -> None:
+        limits = Specification(
+            low=estimate(0.8505, 0.0, "Pa.s", "low", "850.5 mPa.s"), high=None, temperature=298.15
+        )
+        oil = replace(bench().liquids["oil"], specification=limits)
+        sets = (valid_set("A"), replace(valid_set("B"), liquid="another"))
+        reduced = InventedReduction(sets, bench=bench(liquids={"oil": oil}))
+        text = Page(Report(reduced).to_html()).shown
+        # t = (0.8513 - 0.8505) / 0.002124 = 0.3767; with 61 degrees of freedom that is 64.6 %
+        assert "Undecided with at least 850.5 mPa·s at 25 °C, probability 64.6 %" in text
+        assert text.count("conforms where the value lies within the limits") == 1
+        assert re.search("A Valid .{40,90} 0 Undecided B Valid .{40,90} 0 – ", text)
+        assert "Product" not in Page(Report(three_sets()).to_html()).shown
+
+    @pytest.mark.parametrize(
+        ("probability", "shown"),
+        [(1.0, "above 99.9 %"), (0.99949, "99.9 %"), (2e-55, "below 0.1 %"), (0.05, "5.0 %")],
+    )
+    def test_nearly_certain_is_not_certain(self, probability: float, shown: str) -> None:
+        made = product(Conformity(probability, "a rule", "conforms", "limits"))
+        assert made is not None
+        assert made.told == f"with limits, probability {shown}"
 
     def test_rows_in_no_result_are_listed_with_their_reason(self, page: Page) -> None:
         text = page.shown

@@ -48,22 +48,25 @@ def conformity(result: RunSetResult, liquid: Liquid | None) -> Conformity | None
     if liquid is None or limits is None or result.viscosity is None or result.temperature is None:
         return None
     written = _written(limits)
+    low, high = (None if one is None else one.value for one in (limits.low, limits.high))
+    numbers = (low, high, limits.temperature)
     if result.status == "invalid":
-        return Conformity(None, "not judged, as the data are invalid", UNDECIDED, written)
+        told = "not judged, as the data are invalid"
+        return Conformity(None, told, UNDECIDED, written, *numbers)
     brought = _brought(result, result.viscosity, liquid, limits)
     if brought is None:
         told = (
             f"not judged, as the drops fell at {result.temperature.value - 273.15:.2f} degC, and "
             f"{liquid.name} has no viscosity_slope to bring them to the limits"
         )
-        return Conformity(None, told, UNDECIDED, written)
+        return Conformity(None, told, UNDECIDED, written, *numbers)
     value, u, dof = brought
     probability = float(
         conformance_probability(
             value=value,
             u=u,
-            low=-math.inf if limits.low is None else limits.low.value,
-            high=math.inf if limits.high is None else limits.high.value,
+            low=-math.inf if low is None else low,
+            high=math.inf if high is None else high,
             dof=math.inf if dof is None else dof,
         )
     )
@@ -71,7 +74,7 @@ def conformity(result: RunSetResult, liquid: Liquid | None) -> Conformity | None
         decision = CONFORMS
     else:
         decision = DOES_NOT_CONFORM if probability <= REJECT else UNDECIDED
-    return Conformity(probability, RULE, decision, written)
+    return Conformity(probability, RULE, decision, written, *numbers)
 
 
 def _written(limits: Specification) -> str:

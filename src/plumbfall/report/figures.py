@@ -16,15 +16,17 @@ from plumbfall.report.house_style import house_style, short_name
 from plumbfall.report.intervals_figure import draw_intervals
 from plumbfall.report.map_figure import draw_map
 from plumbfall.report.residuals_figure import AGAINST, draw_residuals
+from plumbfall.report.sets_figure import draw_sets
 from plumbfall.results import RunSetResult
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
-__all__ = ["KINDS", "PLOTS", "draw", "new_figure", "page_figure"]
+__all__ = ["KINDS", "PLOTS", "TOGETHER", "draw", "new_figure", "page_figure"]
 
 Draw: TypeAlias = "Callable[[RunSetResult, Axes, str | None], Axes]"
+DrawTogether: TypeAlias = "Callable[[Sequence[RunSetResult], Axes, str | None], Axes]"
 
 
 def _residuals(against: str) -> Draw:
@@ -43,7 +45,13 @@ KINDS: dict[str, Draw] = {
 }
 """Every kind of figure of one run set by name."""
 
-PLOTS = (*(kind for kind in KINDS if "-" not in kind), "residuals", "map")
+TOGETHER: dict[str, DrawTogether] = {
+    "sets": draw_sets,
+    "map": lambda results, ax, _unit: draw_map(results, ax),
+}
+"""Every kind of figure that shows all run sets in one place."""
+
+PLOTS = (*(kind for kind in KINDS if "-" not in kind), "residuals", *TOGETHER)
 """What may be asked for: ``residuals`` is all three side by side unless one is named."""
 
 MOST_PANELS = 12
@@ -64,8 +72,8 @@ def draw(
     Returns
     -------
     Figure or Axes
-        The Axes that were given, else a new Figure with one panel a run set; the map shows all
-        sets in one.
+        The Axes that were given, else a new Figure with one panel a run set; those of
+        ``TOGETHER`` show all sets in one.
 
     Raises
     ------
@@ -76,11 +84,11 @@ def draw(
     _refuse_unknown("figure of kind", kind, PLOTS)
     if against is not None:
         _refuse_unknown("axis for residuals named", against, AGAINST)
-    if kind == "map":
+    if kind in TOGETHER:
         if ax is not None:
-            return draw_map(results, ax)
+            return TOGETHER[kind](results, ax, viscosity_unit)
         figure = new_figure()
-        draw_map(results, figure.add_subplot())
+        TOGETHER[kind](results, figure.add_subplot(), viscosity_unit)
         return figure
     kinds = [kind]
     if kind == "residuals":

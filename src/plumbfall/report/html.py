@@ -13,7 +13,7 @@ from plumbfall.report.equipment import bench_conditions, equipment_view, identif
 from plumbfall.report.house_style import house_style
 from plumbfall.report.json_report import json_text, report_document
 from plumbfall.report.observed import observed
-from plumbfall.report.page_pictures import map_picture
+from plumbfall.report.page_pictures import map_picture, sets_picture
 from plumbfall.report.page_sets import overview, set_page
 from plumbfall.report.scales import pretty_unit
 from plumbfall.report.set_tables import unused_view
@@ -56,8 +56,10 @@ def page(report: Report) -> str:
             for index, result in enumerate(results, 1)
         ]
         where = map_picture(results)
-    if where is not None and not several:
-        sets[0].pictures.append(where)
+        together = [sets_picture(results, report.bench.viscosity_unit)] if several else []
+        together += [where] if where is not None else []
+    if not several:
+        sets[0].pictures.extend(together)
     return template("page.html.j2").render(
         style=_markup(style),
         style_hash=digest,
@@ -66,11 +68,12 @@ def page(report: Report) -> str:
         version=__version__,
         number=report.bench.report.get("number") or NOT_SUPPLIED,
         overview=overview(report) if several else None,
-        map=where,
+        together=together,
         sets=sets,
         parts=PARTS,
         date=str(report.date or NOT_SUPPLIED),
         several=several,
+        judged=any(result.conformity for result in results),
         fits=[
             (fit_heading(fit), fit_facts(fit, report.bench.viscosity_unit))
             for fit in report.temperature_fits

@@ -11,13 +11,14 @@ from plumbfall.report.figures import KINDS, page_figure
 from plumbfall.report.intervals_figure import interval_count
 from plumbfall.report.map_figure import draw_map, on_map
 from plumbfall.report.residuals_figure import AGAINST, draw_residuals, residuals_vary
+from plumbfall.report.sets_figure import draw_sets
 from plumbfall.report.svg import inline_svg
 from plumbfall.results import RunSetResult
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
-__all__ = ["Picture", "map_picture", "pictures", "residual_pictures"]
+__all__ = ["Picture", "map_picture", "pictures", "residual_pictures", "sets_picture"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -97,6 +98,17 @@ def map_picture(results: Sequence[RunSetResult]) -> Picture | None:
     return _picture(
         draw_into, "map", "Run sets on the map of the drag factor", what, "results in figures"
     )
+
+
+def sets_picture(results: Sequence[RunSetResult], viscosity_unit: str | None) -> Picture:
+    """Return the run sets beside each other."""
+
+    def draw_into(ax: Axes) -> object:
+        return draw_sets(results, ax, viscosity_unit)
+
+    what = "Viscosity of each run set with its bounds. Errors that the sets share, such as the "
+    what += "bore's, move all of them together."
+    return _picture(draw_into, "sets", "Run sets beside each other", what, "overview")
 
 
 def _picture(

@@ -21,9 +21,11 @@ from plumbfall.report.views import (
     BOTH_WAYS,
     Fact,
     Headline,
+    Product,
     TableView,
     facts,
     headline,
+    product,
     set_scale,
 )
 from plumbfall.report.ways_table import ways_view
@@ -59,6 +61,7 @@ class SetPage:
     pictures: list[Picture]
     tables: list[TableView]
     conditions: list[Fact]
+    product: Product | None
 
 
 @dataclass(frozen=True, slots=True)
@@ -73,6 +76,7 @@ class OverviewRow:
     drops: str
     balls: str
     warnings: str
+    product: str
 
 
 def overview(report: Report) -> list[OverviewRow]:
@@ -92,6 +96,7 @@ def overview_row(result: RunSetResult, index: int, viscosity_unit: str | None) -
         drops=f"{result.n_drops} of {result.n_read}",
         balls=str(result.n_balls),
         warnings=str(result.count("warning")),
+        product=judged.decision if (judged := product(result.conformity)) else "–",
     )
 
 
@@ -127,6 +132,7 @@ def set_page(result: RunSetResult, index: int, bench: Bench, seen: Observed | No
         pictures=pictures(result, index, viscosity_unit) + residual_pictures(result, index),
         tables=tables,
         conditions=_conditions(result, bench, seen or Observed()),
+        product=product(result.conformity),
     )
 
 

@@ -251,9 +251,10 @@ class Report:
         kind : str
             ``drops`` in order with scatter and bounds, ``budget`` of the uncertainty, ``draws`` of
             Monte Carlo, ``residuals`` against temperature, diameter ratio and Reynolds number,
-            ``intervals`` between three or more marks, or the ``map`` of the drag factor.
+            ``intervals`` between three or more marks; or all ``sets`` beside each other, or on the
+            ``map`` of the drag factor.
         run_set : str, optional
-            Name of the set; without it the sets are drawn one below the other, on the map together.
+            Name of the set; without it the sets are drawn one below the other, or together.
         ax : Axes, optional
             Where to draw one set; without it a Figure is made.
         against : str, optional

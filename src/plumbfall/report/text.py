@@ -128,7 +128,7 @@ def _of_set(result: RunSetResult, unit: str | None, explain: Explainer) -> Itera
 def _of_facts(shown: Iterable[Fact], explain: Explainer) -> Iterator[str]:
     for fact in shown:
         text = f"{fact.text} {fact.unit}" if fact.unit not in fact.text else fact.text
-        why = explain(fact.term)
+        why = explain(fact.term) or explain.once(fact.note)
         yield from wrapped(f"  {fact.label:<36}", visible(f"{text}  ({why})" if why else text))
 
 

@@ -14,10 +14,12 @@ __all__ = [
     "BOTH_WAYS",
     "Fact",
     "Headline",
+    "Product",
     "TableView",
     "drop_place",
     "facts",
     "headline",
+    "product",
     "set_scale",
 ]
 
@@ -26,12 +28,24 @@ BOTH_WAYS = "Linear against Monte Carlo"
 
 @dataclass(frozen=True, slots=True)
 class Fact:
-    """A label and what is said under it; ``term`` is a word to explain where first printed."""
+    """A label and what is said under it.
+
+    ``term`` is a word to explain where first printed, ``note`` what is said small beside the text.
+    """
 
     label: str
     text: str
     unit: str = ""
     term: str = ""
+    note: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Product:
+    """What the specification says of the product, for the head of a run set."""
+
+    decision: str
+    told: str
 
 
 @dataclass(frozen=True, slots=True)
@@ -157,11 +171,30 @@ def _of_measured(measured: Measured, scale: Scale) -> list[Fact]:
     return shown
 
 
+def product(judged: Conformity | None) -> Product | None:
+    """Return the decision on the product, and with what it was compared."""
+    if judged is None:
+        return None
+    if judged.probability is None:
+        return Product("Undecided", f"with {judged.limits}: {judged.rule}")
+    told = f"with {judged.limits}, probability {_probability(judged.probability)}"
+    return Product(judged.decision.replace("-", " ").capitalize(), told)
+
+
 def _of_conformity(judged: Conformity) -> Fact:
     text = f"{judged.decision.replace('-', ' ')} with {judged.limits}"
     if judged.probability is not None:
-        text += f", probability {Scale('%', 100.0).fixed(judged.probability, 1)} %"
-    return Fact("Conformity of the product", f"{text}; {judged.rule}")
+        text += f", probability {_probability(judged.probability)}"
+    return Fact("Conformity of the product", text, note=judged.rule)
+
+
+def _probability(probability: float) -> str:
+    """Return a percentage; what is nearly none or nearly all is not said to be it."""
+    if probability < 5e-4:
+        return "below 0.1 %"
+    if probability > 0.9995:
+        return "above 99.9 %"
+    return f"{Scale('%', 100.0).fixed(probability, 1)} %"
 
 
 def _of_draws(linear: Measured, drawn: MonteCarloResult, scale: Scale) -> Fact:

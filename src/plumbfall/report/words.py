@@ -97,3 +97,10 @@ class Explainer:
             return ""
         self._done.add(term)
         return TERMS[term]
+
+    def once(self, text: str) -> str:
+        """Return a text the first time it is given, and then an empty string."""
+        if text in self._done:
+            return ""
+        self._done.add(text)
+        return text
