@@ -12,7 +12,7 @@ from plumbfall.findings.significance import detectable
 from plumbfall.results import Finding
 from plumbfall.uncertainty.coverage import coverage_factor
 
-__all__ = ["temperature_lag", "temperature_trend", "time_trend"]
+__all__ = ["drifting", "lagging", "temperature_lag", "temperature_trend", "time_trend", "warming"]
 
 TELLS = 0.05
 """Significance by which one of two trends is preferred to the other; no warning comes of it."""
@@ -21,8 +21,7 @@ TELLS = 0.05
 def time_trend(data: RunData) -> Iterator[Found]:
     """Find run sets whose viscosity rises or falls from drop to drop."""
     trends = data.trends
-    shown = (trends.drift_p_value < data.level) & ~data.settling & ~_by_warmth(data)
-    for run_set in np.flatnonzero(shown):
+    for run_set in np.flatnonzero(drifting(data)):
         steps = float(data.order[data.selection.run_set == run_set].max())
         drift = float(trends.drift.value[run_set]) * steps
         error = float(trends.drift_error[run_set]) * steps
@@ -53,7 +52,7 @@ def time_trend(data: RunData) -> Iterator[Found]:
 def temperature_trend(data: RunData) -> Iterator[Found]:
     """Find run sets whose drops follow their temperatures otherwise than the slope given says."""
     trends = data.trends
-    for run_set in np.flatnonzero(_warming(data)):
+    for run_set in np.flatnonzero(warming(data)):
         rest, error = float(trends.warming[run_set]), float(trends.warming_error[run_set])
         slope = float(data.warmth.slope[run_set])
         span = float(data.temperature_range[run_set])
@@ -87,8 +86,7 @@ def temperature_trend(data: RunData) -> Iterator[Found]:
 def temperature_lag(data: RunData) -> Iterator[Found]:
     """Find drops that follow the change of the temperature: the thermometer lags the liquid."""
     trends = data.trends
-    lagging = (trends.lag_p_value < data.level) & ~_warming(data)
-    for run_set in np.flatnonzero(lagging):
+    for run_set in np.flatnonzero(lagging(data)):
         value, error = float(trends.lag.value[run_set]), float(trends.lag.error[run_set])
         slope = float(data.warmth.slope[run_set])
         at = data.selection.run_set == run_set
@@ -118,8 +116,21 @@ def temperature_lag(data: RunData) -> Iterator[Found]:
         )
 
 
-def _warming(data: RunData) -> NDArray[np.bool_]:
-    """Whether drops follow temperature, and not the time that goes with it."""
+def drifting(data: RunData) -> NDArray[np.bool_]:
+    """Whether drops drift with their order, and nothing else accounts for it, (run sets,)."""
+    by_warmth = warming(data) & (data.trends.drift_beside >= TELLS)
+    found: NDArray[np.bool_] = (data.trends.drift_p_value < data.level) & ~data.settling
+    return found & ~by_warmth
+
+
+def lagging(data: RunData) -> NDArray[np.bool_]:
+    """Whether drops follow the change of temperature and not temperature itself, (run sets,)."""
+    found: NDArray[np.bool_] = (data.trends.lag_p_value < data.level) & ~warming(data)
+    return found
+
+
+def warming(data: RunData) -> NDArray[np.bool_]:
+    """Whether drops follow temperature, and not the time that goes with it, (run sets,)."""
     trends = data.trends
     by_time = (
         (trends.drift_p_value < data.level)
@@ -127,12 +138,6 @@ def _warming(data: RunData) -> NDArray[np.bool_]:
         & (trends.warming_beside >= TELLS)
     )
     found: NDArray[np.bool_] = (trends.warming_p_value < data.level) & ~by_time
-    return found
-
-
-def _by_warmth(data: RunData) -> NDArray[np.bool_]:
-    """Whether temperature accounts for the drift."""
-    found: NDArray[np.bool_] = _warming(data) & (data.trends.drift_beside >= TELLS)
     return found
 
 

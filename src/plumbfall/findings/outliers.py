@@ -13,7 +13,7 @@ from plumbfall.findings.hints import transposed
 from plumbfall.findings.significance import detectable
 from plumbfall.results import Finding
 
-__all__ = ["outlier", "outlier_pair", "straggler"]
+__all__ = ["in_pair", "outlier", "outlier_pair", "straggler"]
 
 
 def outlier(data: RunData) -> Iterator[Found]:
@@ -27,7 +27,7 @@ def outlier_pair(data: RunData) -> Iterator[Found]:
 
     ISO 5725-2, 7.3.4: tried where no single drop is an outlier.
     """
-    for run_set in np.flatnonzero(_in_pair(data)):
+    for run_set in np.flatnonzero(in_pair(data)):
         places = data.suspect_pairs.drops[run_set]
         places = places[np.argsort(data.order[places])]
         first, second = data.numbers(places)
@@ -60,7 +60,7 @@ def straggler(data: RunData) -> Iterator[Found]:
     """Note the drop that lies between the 5 % and the 1 % limit (ISO 5725-2, 7.3.3)."""
     p_value, limits = data.suspects.p_value, data.limits
     between = (p_value >= limits.outlier_level) & (p_value < limits.straggler_level)
-    for run_set in np.flatnonzero(between & ~_in_pair(data)):
+    for run_set in np.flatnonzero(between & ~in_pair(data)):
         found = _single(data, int(run_set), limits.straggler_level)
         yield (
             int(run_set),
@@ -105,7 +105,7 @@ def _single(data: RunData, run_set: int, level: float) -> Finding:
     )
 
 
-def _in_pair(data: RunData) -> NDArray[np.bool_]:
+def in_pair(data: RunData) -> NDArray[np.bool_]:
     """Whether two drops are outliers together where none is alone."""
     level = data.limits.outlier_level
     found: NDArray[np.bool_] = (data.suspects.p_value >= level) & (

@@ -10,6 +10,7 @@ from scipy.special import chdtr, chdtrc, chdtri, fdtr, fdtrc, fdtri
 
 from plumbfall.findings.clock_steps import clock_steps
 from plumbfall.findings.data import Found, RunData
+from plumbfall.findings.explained import explained_scatter
 from plumbfall.findings.repeats import Repeats, repeats
 from plumbfall.findings.significance import POWER
 from plumbfall.results import Finding
@@ -23,7 +24,8 @@ MANY = 1e8
 def scatter_large(data: RunData) -> Iterator[Found]:
     """Find drops of one ball that scatter more than timer and thermometer are said to.
 
-    The drop that Grubbs' test calls an outlier is left out: it has a finding of its own.
+    The drop that Grubbs' test calls an outlier is left out, and so are sets whose drops drift or
+    follow the temperature: these have findings of their own.
     """
     suspect = data.suspects
     keep = np.ones(len(data.selection.run_set), dtype=bool)
@@ -35,6 +37,7 @@ def scatter_large(data: RunData) -> Iterator[Found]:
     with np.errstate(invalid="ignore"):
         unexplained = np.sqrt(np.maximum(found.sd**2 - expected**2, 0.0))
         flagged = (p_value < level) & (unexplained > data.limits.scatter_excess)
+    flagged &= ~explained_scatter(data)
     for run_set in np.flatnonzero(flagged):
         sd, least = float(found.sd[run_set]), float(expected[run_set])
         n = int(data.weights.n_drops[run_set])
