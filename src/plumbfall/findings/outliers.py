@@ -16,6 +16,10 @@ from plumbfall.results import Finding
 __all__ = ["in_pair", "outlier", "outlier_pair", "straggler"]
 
 
+SURER = 0.1
+"""Part of the level that is asked of a pair one of whose drops is a straggler."""
+
+
 def outlier(data: RunData) -> Iterator[Found]:
     """Find the one drop that does not belong with the others; it is kept, and named."""
     for run_set in np.flatnonzero(data.suspects.p_value < data.limits.outlier_level):
@@ -106,12 +110,13 @@ def _single(data: RunData, run_set: int, level: float) -> Finding:
 
 
 def in_pair(data: RunData) -> NDArray[np.bool_]:
-    """Whether two drops are outliers together where none is alone."""
-    level = data.limits.outlier_level
-    found: NDArray[np.bool_] = (data.suspects.p_value >= level) & (
-        data.suspect_pairs.p_value < level
-    )
-    return found
+    """Whether two drops are outliers together where none is alone.
+
+    Where one is a straggler already (ISO 5725-2 then tries no pair), the two must be surer.
+    """
+    level, one = data.limits.outlier_level, data.suspects.p_value
+    of_two = np.where(one < data.limits.straggler_level, level * SURER, level)
+    return np.asarray((one >= level) & (data.suspect_pairs.p_value < of_two))
 
 
 def _mate(data: RunData, drop: int) -> str:
