@@ -216,18 +216,18 @@ def reduce_drops(
     limits = limits_from(bench.limits, bench.path)
     reduced = reduce_numbers(timings, bench, probability)
     while limits.exclude_outliers:
-        found = _data(reduced, limits).suspects
+        found = run_data(reduced, limits).suspects
         beyond = found.p_value < limits.outlier_level
         if not beyond.any():
             break
         rows = reduced.selection.row[found.drop[beyond]]
         reduced = reduce_numbers(_exclude(reduced.timings, rows), bench, probability)
-    findings = find(_data(reduced, limits))
+    findings = find(run_data(reduced, limits))
     not_fitted: frozenset[int] = frozenset()
     while spoilt := _invalid_but_fitted(reduced, findings) - not_fitted:
         not_fitted |= spoilt
         reduced = reduce_numbers(reduced.timings, bench, probability, not_fitted)
-        findings = find(_data(reduced, limits))
+        findings = find(run_data(reduced, limits))
     drawn = _drawn(reduced, findings, draws, seed, progress) if draws else {}
     for place, of_set in drawn.items():
         note = linear_not_validated(reduced.outputs, of_set, place)
@@ -332,7 +332,8 @@ def reduce_numbers(
     )  # fmt: skip
 
 
-def _data(sets: SetColumns, limits: Limits) -> RunData:
+def run_data(sets: SetColumns, limits: Limits) -> RunData:
+    """Return what detectors look at."""
     return RunData(
         bench=sets.bench,
         timings=sets.timings,

@@ -49,7 +49,7 @@ from plumbfall.findings.temperatures import (
 from plumbfall.findings.timing import fall_time_short
 from plumbfall.results import SEVERITIES, Finding
 
-__all__ = ["DETECTORS", "find"]
+__all__ = ["DETECTORS", "OF_EQUIPMENT", "find"]
 
 DETECTORS: tuple[Detector, ...] = (
     nothing_left,
@@ -103,10 +103,36 @@ DETECTORS: tuple[Detector, ...] = (
 )
 
 
-def find(data: RunData) -> tuple[tuple[Finding, ...], ...]:
+OF_EQUIPMENT: tuple[Detector, ...] = (
+    ball_not_denser,
+    no_solution,
+    reynolds_high,
+    diameter_ratio_high,
+    radius_as_diameter,
+    density_implausible,
+    reynolds_uncertain,
+    run_in_short,
+    end_near,
+    off_axis_suspected,
+    density_temperature,
+    slope_sign,
+    slope_unknown,
+    fall_time_short,
+    constant_outside_domain,
+    nominal_diameter,
+    geometry_unknown,
+    missing_uncertainty,
+    default_gravity,
+)
+"""Those that judge ball, tube and bench sheet, not readings: they hold for planned drops too."""
+
+
+def find(
+    data: RunData, detectors: tuple[Detector, ...] = DETECTORS
+) -> tuple[tuple[Finding, ...], ...]:
     """Run every detector; findings by run set, the gravest first."""
     found: list[list[Finding]] = [[] for _ in data.names]
-    for detector in DETECTORS:
+    for detector in detectors:
         for run_set, finding in detector(data):
             found[run_set].append(finding)
     return tuple(

@@ -90,8 +90,14 @@ def arrange(
     else:
         own, of_drop = np.unique(ball, return_inverse=True)
     n_marks = len(bench.tubes[list(bench.tubes)[codes["tube"]]].marks)
+    if successive and n_marks < 2:
+        raise InputError(
+            f"tube '{list(bench.tubes)[codes['tube']]}' has no marks to read the clock at",
+            path=bench.path,
+            remedy="ask for total times",
+        )
     first = np.arange(n_marks - 1) if successive else np.zeros(1, dtype=np.intp)
-    last = first + 1 if successive else np.array([max(n_marks - 1, 0)])
+    last = first + 1 if successive else np.array([n_marks - 1])
     n, n_balls = len(first) * len(own), len(own)
 
     def every(code: int) -> Codes:

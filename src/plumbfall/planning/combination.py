@@ -3,18 +3,19 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
+from plumbfall.bench.records import Bench
 from plumbfall.measurement.balance import Numbers
 from plumbfall.physics.stokes import shear_rate
 from plumbfall.physics.thermal import equilibration_time
 from plumbfall.planning.evaluation import Evaluation, interval_times
 from plumbfall.planning.judgement import (
-    Improvement,
+    Needed,
     Reason,
     improvements,
     reasons_against,
@@ -24,7 +25,7 @@ from plumbfall.planning.prediction import Part, Prediction
 from plumbfall.planning.start import run_in_distances
 from plumbfall.planning.wanted import Wanted
 
-__all__ = ["Combination", "build_combinations"]
+__all__ = ["Combination", "build_combinations", "without_fall"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -42,9 +43,9 @@ class Combination:
     tube: str
     ball: str
     viscosity: float
-    bore: float
-    diameter_ratio: float
-    equilibration_time: float
+    bore: float | None
+    diameter_ratio: float | None
+    equilibration_time: float | None
     run_in_room: float | None
     surface_clearance: float | None
     bottom_clearance: float | None
@@ -63,8 +64,16 @@ class Combination:
     floor: float | None = None
     drops_needed: int | None = None
     dominant_input: str | None = None
-    budget: tuple[Part, ...] = ()
-    improvements: tuple[Improvement, ...] = ()
+    prediction: Prediction | None = field(default=None, repr=False, compare=False)
+    rank: int = -1
+    improvements: tuple[Needed, ...] = ()
+
+    @property
+    def budget(self) -> tuple[Part, ...]:
+        """Parts of the uncertainty, the largest first."""
+        if self.prediction is None:
+            return ()
+        return self.prediction.budget(self.rank, self.drops)
 
 
 def build_combinations(
@@ -99,13 +108,16 @@ def build_combinations(
     run_in = run_in_distances(
         forces, fallen.reynolds, evaluation.viscosity, np.broadcast_to(drag, shape)
     )
-    intervals = interval_times(evaluation, np.arange(n))
+    if any(len(tube.marks) > 2 for tube in tubes):
+        intervals = interval_times(evaluation, np.arange(n))
+    else:
+        intervals = [(time,) for time in fallen.time.tolist()]
     ranks = {place: rank for rank, place in enumerate(evaluation.solved.tolist())}
     floor = prediction.floor()
     dominant = {drops: prediction.dominant(drops) for drops in np.unique(planned).tolist()}
-    ratio, bore, diameter = (
-        np.broadcast_to(values, shape)
-        for values in (forces.diameter_ratio, forces.bore, forces.diameter)
+    shear = np.asarray(shear_rate(fall_speed=fallen.speed, ball_diameter=forces.diameter))
+    ratio, bore, shear = (
+        np.broadcast_to(values, shape) for values in (forces.diameter_ratio, forces.bore, shear)
     )
 
     def build(place: int) -> Combination:
@@ -115,9 +127,9 @@ def build_combinations(
             "tube": tube.name,
             "ball": balls[evaluation.ball[place]],
             "viscosity": float(evaluation.viscosity[place]),
-            "diameter_ratio": float(ratio[place]),
-            "bore": float(bore[place]),
-            "equilibration_time": float(equilibration_time(tube_bore=float(bore[place]))),
+            "diameter_ratio": _number(ratio[place]),
+            "bore": None,
+            "equilibration_time": None,
             "suitable": not reasons,
             "reasons": reasons,
         }
@@ -128,10 +140,13 @@ def build_combinations(
         ):
             estimate = getattr(tube, name)
             known[key] = None if estimate is None else float(estimate.value)
+        if tube.bore is not None:
+            known["bore"] = float(bore[place])
+            known["equilibration_time"] = float(equilibration_time(tube_bore=known["bore"]))
         if rank is None:
             return Combination(drops=wanted.drops, **known)
-        drops, speed = int(planned[rank]), float(fallen.speed[place])
-        better: list[Improvement] = []
+        drops, speed = int(planned[rank]), _number(fallen.speed[place])
+        better: list[Needed] = []
         if wanted.target is not None and not needed[rank]:
             better = improvements(prediction, rank, wanted.target, wanted.most_drops)
         return Combination(
@@ -139,18 +154,49 @@ def build_combinations(
             fall_time=float(fallen.time[place]),
             intervals=intervals[place],
             speed=speed,
-            reynolds=float(fallen.reynolds[place]),
-            shear_rate=float(shear_rate(fall_speed=speed, ball_diameter=float(diameter[place]))),
-            run_in=float(run_in[place]) if math.isfinite(run_in[place]) else None,
+            reynolds=_number(fallen.reynolds[place]),
+            shear_rate=_number(shear[place]),
+            run_in=_number(run_in[place]),
             scatter=float(prediction.scatter[rank]),
             relative_expanded_uncertainty=float(expanded[rank]),
             floor=float(floor[rank]),
             drops_needed=int(needed[rank]) or None,
             dominant_input=dominant[drops][rank],
-            budget=prediction.budget(rank, drops),
+            prediction=prediction,
+            rank=rank,
             improvements=tuple(better),
-            cautions=spoken_of(evaluation.found(rank), wanted.target)[1],
+            cautions=spoken_of(evaluation.found[rank], wanted.target)[1],
             **known,
         )
 
     return tuple(build(place) for place in range(n))
+
+
+def without_fall(
+    bench: Bench, wanted: Wanted, pair: tuple[str, str], viscosity: float, reason: Reason
+) -> Combination:
+    """Return the record of a tube and a ball of which the bench sheet says too little."""
+    tube = bench.tubes[pair[0]]
+
+    def given(name: str) -> float | None:
+        estimate = getattr(tube, name)
+        return None if estimate is None else float(estimate.value)
+
+    return Combination(
+        tube=tube.name,
+        ball=pair[1],
+        viscosity=viscosity,
+        bore=given("bore"),
+        diameter_ratio=None,
+        equilibration_time=None,
+        run_in_room=given("release_above"),
+        surface_clearance=given("surface_above"),
+        bottom_clearance=given("bottom_below"),
+        drops=wanted.drops,
+        suitable=False,
+        reasons=(reason,),
+    )
+
+
+def _number(value: float) -> float | None:
+    return float(value) if math.isfinite(value) else None

@@ -1,6 +1,6 @@
 """Planned drops, worked out: each falls by the measurement equation, and is reduced.
 
-Drops of every combination of tube, ball and viscosity are let fall without errors, and reduced,
+A drop of every combination of tube, ball and viscosity is let fall without errors, and reduced,
 each combination as a run set. So limits, findings and budget are those of the reduction itself.
 """
 
@@ -14,6 +14,8 @@ from numpy.typing import NDArray
 from scipy import sparse
 
 from plumbfall.bench.records import Bench
+from plumbfall.findings.limits import limits_from
+from plumbfall.findings.registry import OF_EQUIPMENT, find
 from plumbfall.measurement.balance import Codes, Numbers
 from plumbfall.measurement.ends import path_ends
 from plumbfall.measurement.gather import gather
@@ -25,7 +27,7 @@ from plumbfall.physics.drag import DragLaw
 from plumbfall.physics.laws import DEFAULTS
 from plumbfall.planning.conditions import Conditions
 from plumbfall.planning.forward import Fall, fall
-from plumbfall.reduction import Reduction, reduce_drops
+from plumbfall.reduction import reduce_numbers, run_data
 from plumbfall.results import Finding
 from plumbfall.run_sets.own_errors import OwnErrors, own_errors
 from plumbfall.timings.records import COLUMNS, Timings
@@ -39,7 +41,7 @@ class Evaluation:
     """Planned drops in columns of shape (combinations,).
 
     ``fallen`` are the falls; ``solved`` are the places of those that have a time, and only they
-    are in what follows: ``reduction``, ``shared`` (contributions of the bench's entries relative
+    are in what follows: ``found`` (findings), ``shared`` (contributions of the entries, relative
     to the viscosity), ``own`` (relative variances of what each drop has to itself).
     """
 
@@ -51,14 +53,10 @@ class Evaluation:
     inputs: Inputs
     fallen: Fall
     solved: NDArray[np.intp]
-    reduction: Reduction | None
+    found: tuple[tuple[Finding, ...], ...]
     shared: Propagation
     own: OwnErrors
     columns: tuple[str, ...]
-
-    def found(self, place: int) -> tuple[Finding, ...]:
-        """Return what the reduction finds of a solved combination, by its place among them."""
-        return () if self.reduction is None else self.reduction.found[place]
 
 
 def evaluate(
@@ -75,7 +73,7 @@ def evaluate(
     viscosity : array, shape (combinations,) [Pa.s]
         Viscosity of the liquid.
     drops : int
-        Drops of a run set; some findings depend on it.
+        Drops of a run set, by which their own errors average out in findings.
 
     Returns
     -------
@@ -96,12 +94,14 @@ def evaluate(
         none = np.zeros(0)
         shared = propagate(sensitivities=np.zeros((0, 0)), u=none)
         return Evaluation(
-            conditions, tube, ball, viscosity, law, inputs, fallen, solved, None, shared,
+            conditions, tube, ball, viscosity, law, inputs, fallen, solved, (), shared,
             OwnErrors(*[none] * len(OwnErrors.__slots__)), (),
         )  # fmt: skip
-    timings = _timings(conditions, cells, inputs, fallen, names, solved, drops)
-    reduction = reduce_drops(timings, bench, draws=0)
-    sets = reduction.sets
+    timings = _timings(conditions, cells, inputs, fallen, names, solved)
+    sets = reduce_numbers(timings, bench)
+    data = run_data(sets, limits_from(bench.limits, bench.path))
+    averaged = {kind: getattr(sets.sums, kind) / drops for kind in ("timing", "reading", "lot")}
+    found = find(replace(data, sums=replace(sets.sums, **averaged)), OF_EQUIPMENT)
     jacobian, eta = sets.jacobian, sets.scatter.mean
     entries = jacobian.n_inputs + len(jacobian.squared)
     relative = sparse.diags_array(1 / eta) @ jacobian.matrix[:, :entries]
@@ -115,11 +115,11 @@ def evaluate(
         inputs=inputs,
         fallen=fallen,
         solved=solved,
-        reduction=reduction,
+        found=found,
         shared=propagate(
             sensitivities=relative, u=jacobian.u[:entries], dof=jacobian.dof[:entries]
         ),
-        own=OwnErrors(*(drops * getattr(own, kind) / eta**2 for kind in OwnErrors.__slots__)),
+        own=OwnErrors(*(getattr(own, kind) / eta**2 for kind in OwnErrors.__slots__)),
         columns=tuple(
             sets.inputs.estimates[jacobian.input_of(column)].name for column in range(entries)
         ),
@@ -146,10 +146,13 @@ def interval_times(evaluation: Evaluation, places: Codes) -> list[tuple[float, .
 
 
 def _bench_of(conditions: Conditions, names: tuple[str, ...]) -> Bench:
-    """Return the bench with entries of the planned run sets alone."""
-    entry = conditions.entry
+    """Return the bench with entries of the planned run sets alone.
+
+    There is nothing yet that a temperature law could be fitted to.
+    """
+    bench, entry = conditions.bench, conditions.entry
     entries = {} if entry is None else {name: replace(entry, name=name) for name in names}
-    return replace(conditions.bench, sets=entries)
+    return replace(bench, sets=entries, methods=replace(bench.methods, slope=None))
 
 
 def _cells(
@@ -198,13 +201,10 @@ def _timings(
     fallen: Fall,
     names: tuple[str, ...],
     solved: NDArray[np.intp],
-    drops: int,
 ) -> Timings:
-    """Return the planned drops as a timing table, those of a run set together."""
-    bench, n = conditions.bench, len(solved) * drops
-    run_set = np.repeat(np.arange(len(solved)), drops)
-    row = solved[run_set]
-    reading = conditions.temperature - inputs.roles["thermometer"].value[row]
+    """Return the planned drops as a timing table, one a run set."""
+    bench, n = conditions.bench, len(solved)
+    reading = conditions.temperature - inputs.roles["thermometer"].value[solved]
     if conditions.entry is not None:
         reading = np.full(n, np.nan)
 
@@ -218,16 +218,16 @@ def _timings(
         "file": text("planned"),
         "line": np.arange(1, n + 1),
         "column": np.ones(n, dtype=np.int64),
-        "set": coded(run_set, [names[place] for place in solved]),
-        "drop": np.tile(np.arange(1, drops + 1), len(solved)),
+        "set": coded(np.arange(n), [names[place] for place in solved]),
+        "drop": np.ones(n, dtype=np.int64),
         "status": text("used"),
-        "time_s": fallen.clock[row],
+        "time_s": fallen.clock[solved],
         "from_mark": np.ones(n, dtype=np.int64),
         "to_mark": np.zeros(n, dtype=np.int64),
         "temperature_K": reading,
     }
     for kind, attribute in KINDS.items():
-        codes, known = getattr(cells, kind)[row], list(getattr(bench, attribute))
+        codes, known = getattr(cells, kind)[solved], list(getattr(bench, attribute))
         columns[kind] = coded(np.where(codes < 0, len(known), codes), [*known, ""])
     for name in ("operator", "started", "note"):
         columns[name] = text("")

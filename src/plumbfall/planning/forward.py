@@ -7,7 +7,8 @@ is repeated here, as the run-in follows from the viscosity, which is given.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, fields, replace
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -32,7 +33,8 @@ class Fall:
     ``clock`` is the reading that a clock of the inputs' bias and rate would show, ``time`` the
     true time, ``speed`` that far from ends and release. ``reynolds_slope`` is d ln K / d ln Re,
     ``bound`` the half-width of what is not known of the drag. A drop that does not sink
-    (``floating``), or is beyond the drag law (``too_fast``, ``too_wide``), has NaN times.
+    (``floating``), or is beyond the drag law (``too_fast``, ``too_wide``), has NaN times. In a
+    calibrated tube nothing is known of the speed.
     """
 
     clock: Numbers
@@ -58,7 +60,7 @@ def fall(
     temperature: Numbers,
     log_extra: Numbers | float = 0.0,
 ) -> Fall:
-    """Solve the force balance of a block of drops for their times.
+    """Solve the force balance of a block of drops for their times, or use their tube's constant.
 
     Parameters
     ----------
@@ -84,6 +86,11 @@ def fall(
     Fall
         Times, and all that led to them.
     """
+    calibrated = inputs.calibrated[cell]
+    if calibrated.all():
+        return _by_constant(inputs, cell, viscosity, temperature)
+    if calibrated.any():
+        return _mixed(inputs, law, ends, released, cell, viscosity, temperature, log_extra)
     shape = cell.shape
     with np.errstate(invalid="ignore", divide="ignore"):
         end_factor = 1.0 if ends is None else spread(ends.factor, cell)
@@ -112,8 +119,7 @@ def fall(
         if start is not None:
             time = steady + start.bias
             bound = bound + (1 + reynolds_slope) * start.error
-        bias, rate = (spread(inputs.roles[role].value, cell) for role in ("bias", "rate"))
-        clock = (time + bias) / (1 + rate)
+        clock = _clock(inputs, cell, time)
     return Fall(
         clock=clock,
         time=time,
@@ -126,4 +132,71 @@ def fall(
         floating=floating,
         too_fast=too_fast & ~floating & ~too_wide,
         too_wide=too_wide & ~floating,
+    )
+
+
+def _clock(inputs: Inputs, cell: Codes, time: Numbers) -> Numbers:
+    bias, rate = (spread(inputs.roles[role].value, cell) for role in ("bias", "rate"))
+    return (time + bias) / (1 + rate)
+
+
+def _by_constant(inputs: Inputs, cell: Codes, viscosity: Numbers, temperature: Numbers) -> Fall:
+    """Return the times of drops in calibrated tubes, t = eta / (K (rho_b - rho_f))."""
+    none, nothing = np.full(cell.shape, np.nan), np.zeros(cell.shape)
+    never = np.zeros(cell.shape, bool)
+    with np.errstate(invalid="ignore", divide="ignore"):
+        forces = balance(inputs, cell, np.ones(cell.shape), temperature)
+        floating = np.broadcast_to(~(forces.net_mass > 0), cell.shape)
+        constant = spread(inputs.roles["constant"].value, cell)
+        excess = forces.mass / forces.volume - forces.liquid_density
+        time = np.where(floating, np.nan, viscosity / (constant * excess))
+        clock = _clock(inputs, cell, time)
+    return Fall(
+        clock=clock,
+        time=time,
+        speed=none,
+        reynolds=none,
+        reynolds_slope=nothing,
+        bound=nothing,
+        forces=replace(forces, time=time, speed=none, diameter_ratio=none),
+        start=None,
+        floating=floating,
+        too_fast=never,
+        too_wide=never,
+    )
+
+
+def _mixed(
+    inputs: Inputs,
+    law: DragLaw,
+    ends: Ends | None,
+    released: Release | None,
+    cell: Codes,
+    viscosity: Numbers,
+    temperature: Numbers,
+    log_extra: Numbers | float,
+) -> Fall:
+    """Join the falls in calibrated tubes and those in others; no start is given."""
+    calibrated = inputs.calibrated[cell]
+    extra = np.broadcast_to(log_extra, cell.shape)
+    parts = [
+        fall(inputs, law, ends, released, cell[here], viscosity[here], temperature[here],
+             extra[here])
+        for here in (calibrated, ~calibrated)
+    ]  # fmt: skip
+
+    def join(by_constant: Numbers, other: Numbers) -> Numbers:
+        whole = np.empty(cell.shape, dtype=np.asarray(other).dtype)
+        whole[calibrated], whole[~calibrated] = by_constant, other
+        return whole
+
+    def joined(record: object, other: object, names: set[str]) -> dict[str, Any]:
+        return {name: join(getattr(record, name), getattr(other, name)) for name in names}
+
+    plain = {field.name for field in fields(Fall)} - {"forces", "start"}
+    of_forces = {field.name for field in fields(Balance)}
+    return Fall(
+        **joined(parts[0], parts[1], plain),
+        forces=Balance(**joined(parts[0].forces, parts[1].forces, of_forces)),
+        start=None,
     )

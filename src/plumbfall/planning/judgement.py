@@ -15,7 +15,7 @@ from plumbfall.planning.prediction import Part, Prediction
 from plumbfall.planning.wanted import Wanted
 from plumbfall.results import Finding
 
-__all__ = ["CHOICE", "Improvement", "Reason", "improvements", "reasons_against", "spoken_of"]
+__all__ = ["CHOICE", "Needed", "Reason", "improvements", "reasons_against", "spoken_of"]
 
 CHOICE = frozenset(
     {
@@ -49,7 +49,7 @@ class Reason:
 
 
 @dataclass(frozen=True, slots=True)
-class Improvement:
+class Needed:
     """An input whose standard uncertainty is too large: what it is, and what would do, in SI."""
 
     input: str
@@ -108,7 +108,7 @@ def reasons_against(
     """Return everything that speaks against a combination, the gravest first."""
     if rank is None:
         return [_unsolved(evaluation, place)]
-    reasons = list(spoken_of(evaluation.found(rank), wanted.target)[0])
+    reasons = list(spoken_of(evaluation.found[rank], wanted.target)[0])
     time = float(evaluation.fallen.time[place])
     if time > wanted.longest:
         reasons.append(
@@ -119,7 +119,7 @@ def reasons_against(
             )
         )
     if wanted.target is not None and not needed[rank]:
-        floor = float(prediction.expanded(wanted.most_drops)[rank])
+        floor = float(prediction.expanded(wanted.most_drops, np.array([rank]))[0])
         dominant = prediction.budget(rank, wanted.most_drops)[0].input
         reasons.append(
             Reason(
@@ -131,15 +131,13 @@ def reasons_against(
     return reasons
 
 
-def improvements(
-    prediction: Prediction, place: int, target: float, drops: int
-) -> list[Improvement]:
+def improvements(prediction: Prediction, place: int, target: float, drops: int) -> list[Needed]:
     """Return what would have to be better for so many drops to reach the target.
 
     As few inputs as can do it are named, the largest first, all by the same factor.
     """
     parts = prediction.budget(place, drops)
-    allowed = (target / float(prediction.factor(drops)[place])) ** 2
+    allowed = (target / prediction.factor(place, drops)) ** 2
     count, factor = _fewest([part.contribution**2 for part in parts], allowed)
     return [_improvement(prediction.evaluation, part, factor) for part in parts[:count]]
 
@@ -154,15 +152,15 @@ def _fewest(variances: list[float], allowed: float) -> tuple[int, float]:
     return next((count, f) for count, f in enumerate(factors, 1) if f >= enough)
 
 
-def _improvement(evaluation: Evaluation, part: Part, factor: float) -> Improvement:
+def _improvement(evaluation: Evaluation, part: Part, factor: float) -> Needed:
     known = {estimate.name: estimate for estimate in evaluation.inputs.estimates}
     estimate = known.get(part.input)
     if part.input == MODEL_INPUT:
-        return Improvement(part.input, "1", part.contribution, factor * part.contribution)
+        return Needed(part.input, "1", part.contribution, factor * part.contribution)
     if estimate is not None:
-        return Improvement(part.input, estimate.unit, estimate.u, factor * estimate.u)
+        return Needed(part.input, estimate.unit, estimate.u, factor * estimate.u)
     own = _declared(evaluation, part.input)
-    return Improvement(part.input, own.unit, own.value, factor * own.value)
+    return Needed(part.input, own.unit, own.value, factor * own.value)
 
 
 def _declared(evaluation: Evaluation, name: str) -> Estimate:

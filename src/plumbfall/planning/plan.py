@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -11,18 +11,23 @@ import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.bench.records import Bench
-from plumbfall.errors import InputError, nearest_name
+from plumbfall.errors import InputError, Problem, nearest_name
 from plumbfall.findings.limits import Limits, limits_from
 from plumbfall.measurement.balance import Numbers
-from plumbfall.planning.combination import Combination, build_combinations
+from plumbfall.measurement.constants import choose_constants
+from plumbfall.planning.combination import Combination, build_combinations, without_fall
 from plumbfall.planning.conditions import Conditions
 from plumbfall.planning.evaluation import Evaluation, evaluate
+from plumbfall.planning.judgement import Reason
 from plumbfall.planning.prediction import Prediction
 from plumbfall.planning.wanted import Wanted
 from plumbfall.planning.windows import Window, usable_windows
 from plumbfall.results import Finding
 
 __all__ = ["Plan", "make_plan"]
+
+Pair = tuple[str, str]
+"""Names of a tube and a ball."""
 
 SHEET = frozenset(
     {
@@ -45,6 +50,7 @@ class Plan:
     needed: NDArray[np.intp]
     planned: NDArray[np.intp]
     expanded: Numbers
+    left_out: Mapping[Pair, Reason]
 
     @property
     def bench(self) -> Bench:
@@ -61,6 +67,11 @@ class Plan:
         """Every combination, the best ball and tube first, by viscosity within."""
         every = build_combinations(
             self.wanted, self.evaluation, self.prediction, self.needed, self.planned, self.expanded
+        )
+        every += tuple(
+            without_fall(self.bench, self.wanted, pair, viscosity, reason)
+            for pair, reason in self.left_out.items()
+            for viscosity in self.wanted.viscosities
         )
         groups: dict[tuple[str, str], list[Combination]] = {}
         for one in every:
@@ -100,7 +111,7 @@ class Plan:
         """What the reduction will say of the bench sheet whatever the ball, each once."""
         found: dict[tuple[str, str], Finding] = {}
         for place in range(len(self.evaluation.solved)):
-            for finding in self.evaluation.found(place):
+            for finding in self.evaluation.found[place]:
                 if finding.code in SHEET:
                     found.setdefault((finding.code, finding.message), finding)
         return tuple(found.values())
@@ -108,15 +119,20 @@ class Plan:
     @cached_property
     def windows(self) -> tuple[Window, ...]:
         """The usable window of every ball and tube, ranked as the combinations."""
-        ranked = list(dict.fromkeys((one.tube, one.ball) for one in self.combinations))
+        pairs = list(dict.fromkeys((one.tube, one.ball) for one in self.combinations))
+        planned = [pair for pair in pairs if pair not in self.left_out]
         tubes, balls = list(self.bench.tubes), list(self.bench.balls)
-        return usable_windows(
+        found = usable_windows(
             self.conditions,
             self.wanted,
-            np.array([tubes.index(tube) for tube, _ in ranked], dtype=np.intp),
-            np.array([balls.index(ball) for _, ball in ranked], dtype=np.intp),
+            np.array([tubes.index(tube) for tube, _ in planned], dtype=np.intp),
+            np.array([balls.index(ball) for _, ball in planned], dtype=np.intp),
             fewest_drops(self.limits),
         )
+        of_pair = dict(zip(planned, found, strict=True))
+        for (tube, ball), reason in self.left_out.items():
+            of_pair[tube, ball] = Window(tube, ball, None, None, reason, None)
+        return tuple(of_pair[pair] for pair in pairs)
 
     def reaches(self, one: Combination) -> bool:
         """Whether a combination reaches the target, or has bounds where there is none."""
@@ -141,14 +157,30 @@ def make_plan(
     """
     bench = conditions.bench
     limits = limits_from(bench.limits, bench.path)
-    tube_codes = _codes(bench, "tube", list(bench.tubes), tubes)
-    ball_codes = _codes(bench, "ball", list(bench.balls), balls)
+    tube_names = _names(bench, "tube", list(bench.tubes), tubes)
+    ball_names = _names(bench, "ball", list(bench.balls), balls)
+    pairs = [(tube, ball) for tube in tube_names for ball in ball_names]
+    left_out = {
+        pair: reason for pair in pairs if (reason := _not_described(bench, *pair)) is not None
+    }
+    if len(left_out) == len(pairs):
+        raise InputError(
+            Problem(reason.message, path=bench.path, key=f"tube.{tube}")
+            for (tube, _), reason in left_out.items()
+        )
     eta = np.array(wanted.viscosities)
-    tube, ball, which = (
-        part.ravel() for part in np.meshgrid(tube_codes, ball_codes, np.arange(len(eta)),
-                                             indexing="ij")
-    )  # fmt: skip
-    evaluation = evaluate(conditions, tube, ball, eta[which], wanted.drops)
+    known_tubes, known_balls = list(bench.tubes), list(bench.balls)
+    codes = np.array(
+        [
+            (known_tubes.index(tube), known_balls.index(ball))
+            for tube, ball in pairs
+            if (tube, ball) not in left_out
+        ],
+        dtype=np.intp,
+    )
+    tube, ball = np.repeat(codes, len(eta), axis=0).T
+    viscosity = np.tile(eta, len(codes))
+    evaluation = evaluate(conditions, tube, ball, viscosity, wanted.drops)
     prediction = Prediction(evaluation, wanted.coverage)
     n = len(evaluation.solved)
     needed = np.zeros(n, dtype=np.intp)
@@ -163,6 +195,7 @@ def make_plan(
         needed=needed,
         planned=planned,
         expanded=prediction.expanded(planned),
+        left_out=left_out,
     )
 
 
@@ -171,9 +204,17 @@ def fewest_drops(limits: Limits) -> int:
     return max(math.ceil(limits.too_few_drops), 1)
 
 
-def _codes(
-    bench: Bench, kind: str, known: list[str], names: Sequence[str] | None
-) -> NDArray[np.intp]:
+def _not_described(bench: Bench, tube: str, ball: str) -> Reason | None:
+    """Return why a ball cannot be planned in a calibrated tube: it has no constant there."""
+    if bench.tubes[tube].kind == "calibrated":
+        try:
+            choose_constants(bench, [(tube, ball)])
+        except InputError as error:
+            return Reason("constant-missing", error.first.message)
+    return None
+
+
+def _names(bench: Bench, kind: str, known: list[str], names: Sequence[str] | None) -> list[str]:
     if not known:
         raise InputError(
             f"no {kind} is described",
@@ -188,5 +229,4 @@ def _codes(
                 path=bench.path,
                 remedy=f"did you mean '{near}'?" if near else f"known: {', '.join(known)}",
             )
-    chosen = known if names is None else names
-    return np.array([known.index(name) for name in chosen], dtype=np.intp)
+    return known if names is None else list(dict.fromkeys(names))

@@ -8,6 +8,7 @@ drops will observe it with n - 1 degrees of freedom.
 from __future__ import annotations
 
 import math
+from collections.abc import Iterator
 from dataclasses import dataclass
 
 import numpy as np
@@ -15,11 +16,16 @@ from numpy.typing import NDArray
 
 from plumbfall.bench.keys import key_path
 from plumbfall.measurement.balance import Numbers
+from plumbfall.planning.conditions import Conditions
 from plumbfall.planning.evaluation import Evaluation
 from plumbfall.run_sets.repeatability import FEWEST
 from plumbfall.uncertainty.coverage import coverage_factor, effective_dof
+from plumbfall.uncertainty.few_values import FEW, dof_with_few_values
 
 __all__ = ["Part", "Prediction"]
+
+
+EVERY = slice(None)
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,13 +51,17 @@ class Prediction:
         self.scatter: Numbers = np.sqrt(np.maximum(instruments, known) + own.spread)
         """Relative standard deviation of one drop's viscosity."""
         self._by_bench = instruments < known
+        self._spreads = [key_path("ball", name, "spread") for name in bench.balls]
+        self._instruments = list(_declaring(evaluation.conditions))
         self._shared = shared.variance
         with np.errstate(divide="ignore", invalid="ignore"):
             self._fourth = self._shared**2 / shared.effective_dof
 
-    def expanded(self, drops: int | NDArray[np.intp]) -> Numbers:
+    def expanded(
+        self, drops: int | NDArray[np.intp], places: NDArray[np.intp] | slice = EVERY
+    ) -> Numbers:
         """Return the relative expanded uncertainty of run sets of so many drops."""
-        u, factor = self._combined(drops)
+        u, factor = self._combined(drops, places)
         return np.asarray(factor * u)
 
     def floor(self) -> Numbers:
@@ -62,11 +72,13 @@ class Prediction:
     def drops_needed(self, target: float, fewest: int, most: int) -> NDArray[np.intp]:
         """Return the least number of drops that reaches a target, 0 where none does."""
         needed = np.zeros(len(self._shared), dtype=np.intp)
+        missing = np.flatnonzero(self.expanded(most) <= target)
         for drops in range(fewest, most + 1):
-            missing = needed == 0
-            if not missing.any():
+            reached = self.expanded(drops, missing) <= target
+            needed[missing[reached]] = drops
+            missing = missing[~reached]
+            if not len(missing):
                 break
-            needed[missing & (self.expanded(drops) <= target)] = drops
         return needed
 
     def dominant(self, drops: int) -> list[str]:
@@ -101,41 +113,57 @@ class Prediction:
             if variance > 0
         )
 
-    def factor(self, drops: int) -> Numbers:
-        """Return the coverage factors of run sets of so many drops."""
-        return self._combined(drops)[1]
+    def factor(self, place: int, drops: int) -> float:
+        """Return the coverage factor of a run set of so many drops."""
+        return float(self._combined(drops, np.array([place]))[1][0])
 
-    def _combined(self, drops: int | NDArray[np.intp]) -> tuple[Numbers, Numbers]:
+    def _combined(
+        self, drops: int | NDArray[np.intp], places: NDArray[np.intp] | slice
+    ) -> tuple[Numbers, Numbers]:
         n = np.asarray(drops, dtype=float)
-        scatter = self.scatter**2 / n
+        scatter = self.scatter[places] ** 2 / n
         dof = np.maximum(n - 1, 1)
         if self._known is not None:
             dof = np.where(n < FEWEST, self._known.dof, dof)
         else:
             dof = np.where(n < 2, np.inf, dof)
-        u = np.sqrt(self._shared + scatter)
-        effective = effective_dof(u=u, contributions_fourth=self._fourth + scatter**2 / dof)
+        u = np.sqrt(self._shared[places] + scatter)
+        fourth = self._fourth[places] + scatter**2 / dof
+        effective = effective_dof(u=u, contributions_fourth=fourth)
+        if (dof < FEW).any():
+            effective = dof_with_few_values(
+                u=u,
+                dof=effective,
+                scatter_u=np.sqrt(scatter),
+                scatter_dof=dof,
+                probability=self.coverage,
+            )
         return u, coverage_factor(dof=effective, probability=self.coverage)
 
     def _own_parts(self, place: int) -> dict[str, float]:
         """Relative variances of what each drop has to itself, by the entry that declares it."""
-        evaluation, own = self.evaluation, self.evaluation.own
-        conditions = evaluation.conditions
-        bench = conditions.bench
-        ball = list(bench.balls)[evaluation.ball[evaluation.solved[place]]]
-        parts = {key_path("ball", ball, "spread"): float(own.spread[place])}
+        own, made = self.evaluation.own, self.evaluation
+        ball = self._spreads[made.ball[made.solved[place]]]
+        parts = {ball: float(own.spread[place])}
         if self._by_bench[place]:
-            assert bench.scatter is not None  # it is what the scatter is from
-            return parts | {"scatter.relative": bench.scatter.relative.value**2}
-        if conditions.timer >= 0:
-            timer = list(bench.timers)[conditions.timer]
-            parts[key_path("timer", timer, "per_drop")] = float(own.per_drop[place])
-            parts[key_path("timer", timer, "resolution")] = float(own.resolution[place])
-        if conditions.thermometer >= 0:
-            name = list(bench.thermometers)[conditions.thermometer]
-            parts[key_path("thermometer", name, "per_reading")] = float(own.per_reading[place])
+            assert self._known is not None  # it is what the scatter is from
+            return parts | {"scatter.relative": self._known.relative.value**2}
+        for name, kind in self._instruments:
+            parts[name] = float(getattr(own, kind)[place])
         return parts
 
     def _largest_own(self, place: int) -> str:
         parts = self._own_parts(place)
         return max(parts, key=lambda name: parts[name])
+
+
+def _declaring(conditions: Conditions) -> Iterator[tuple[str, str]]:
+    """Yield the entries that declare what each drop has to itself, and which error that is."""
+    bench = conditions.bench
+    if conditions.timer >= 0:
+        timer = list(bench.timers)[conditions.timer]
+        for kind in ("per_drop", "resolution"):
+            yield key_path("timer", timer, kind), kind
+    if conditions.thermometer >= 0:
+        thermometer = list(bench.thermometers)[conditions.thermometer]
+        yield key_path("thermometer", thermometer, "per_reading"), "per_reading"

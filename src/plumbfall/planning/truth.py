@@ -60,6 +60,14 @@ def with_entries(inputs: Inputs, drawn: Numbers) -> Inputs:
         )
         gravity = np.asarray(normal_gravity(latitude=latitude, elevation=elevation))
         roles["gravity"] = Column(np.tile(gravity, n), repeated.roles["gravity"].entry)
+    for place, constant in enumerate(inputs.constants):
+        # a tube constant was found with inputs of its own, whose errors it carries
+        nominal = np.array([inputs.estimates[entry].value for entry in constant.entries])
+        shift = constant.slopes @ (drawn[constant.entries] - nominal[:, None])
+        here = np.repeat(inputs.constant_of == place, sets)
+        column = roles["constant"]
+        value = np.where(here, column.value + np.tile(shift, n), column.value)
+        roles["constant"] = Column(value, column.entry)
     return replace(repeated, roles=roles)
 
 

@@ -144,7 +144,7 @@ class _Judged:
         self._rank = {place: rank for rank, place in enumerate(solved.tolist())}
 
     def _clean(self, rank: int) -> bool:
-        return not spoken_of(self.evaluation.found(rank), self.wanted.target)[0]
+        return not spoken_of(self.evaluation.found[rank], self.wanted.target)[0]
 
     def limit(self, place: int) -> tuple[Reason | None, str | None]:
         """Return what speaks against a combination, and its largest part of the uncertainty."""

@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 from plumbfall.measurement.inputs import MODEL_INPUT
 from plumbfall.planning.combination import Combination
-from plumbfall.planning.judgement import Improvement, Reason
+from plumbfall.planning.judgement import Needed, Reason
 from plumbfall.planning.plan import Plan
 from plumbfall.report.rounding import NO_VALUE, round_alone
 from plumbfall.report.scales import CELSIUS, Scale, scale_for, viscosity_scale
@@ -39,6 +39,8 @@ LIMITS = {
     "fall-time-long": "fall time too long",
     "resolution-coarse": "clock too coarse",
     "density-implausible": "density",
+    "constant-outside-domain": "calibrated range",
+    "constant-missing": "no tube constant",
     "radius-as-diameter-suspected": "density",
 }
 """What limits a ball, in the words of a chart."""
@@ -143,7 +145,7 @@ def better_text(one: Combination) -> Iterator[str]:
         yield _better(better)
 
 
-def _better(better: Improvement) -> str:
+def _better(better: Needed) -> str:
     if better.input == MODEL_INPUT:
         return (
             f"the drag law is known to {percent_text(better.present)} there and "
@@ -208,22 +210,23 @@ def answer_text(plan: Plan) -> str:
 
 def facts_of(one: Combination) -> Iterator[tuple[str, str]]:
     """Yield what holds for a ball in a tube, by name: geometry, run-in, ends, waiting."""
-    yield "diameter ratio", round_alone(one.diameter_ratio, 3)
+    if one.diameter_ratio is not None:
+        yield "diameter ratio", round_alone(one.diameter_ratio, 3)
     if one.shear_rate is not None:
         yield "shear rate", f"{round_alone(one.shear_rate, 3)} 1/s"
     if one.run_in is not None:
         room = "room unknown" if one.run_in_room is None else f"{length_text(one.run_in_room)} room"
         yield "run-in", f"{length_text(one.run_in)}, {room}"
-    ends = [
-        f"{name} {round_alone(2 * clearance / one.bore, 2)}"
-        for name, clearance in (
-            ("surface", one.surface_clearance),
-            ("bottom", one.bottom_clearance),
+    clearances = (("surface", one.surface_clearance), ("bottom", one.bottom_clearance))
+    if one.speed is not None and one.bore is not None:
+        ends = [
+            f"{name} {round_alone(2 * clearance / one.bore, 2)}"
+            for name, clearance in clearances
+            if clearance is not None
+        ]
+        yield "ends", f"{', '.join(ends)} bore radii away" if ends else "distances unknown"
+    if one.equilibration_time is not None:
+        yield (
+            "wait before the first drop",
+            f"{WAIT} x {time_text(one.equilibration_time)} (time constant of the bore)",
         )
-        if clearance is not None
-    ]
-    yield "ends", f"{', '.join(ends)} bore radii away" if ends else "distances unknown"
-    yield (
-        "wait before the first drop",
-        f"{WAIT} x {time_text(one.equilibration_time)} (time constant of the bore)",
-    )
