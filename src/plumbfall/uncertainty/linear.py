@@ -13,6 +13,7 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import NDArray
 from scipy import sparse
+from scipy.sparse.csgraph import connected_components
 
 from plumbfall.uncertainty.coverage import effective_dof
 
@@ -70,13 +71,16 @@ class Propagation:
     def combine(self, outputs: Sequence[int], weights: Numbers) -> Propagation:
         """Return the propagation of a weighted sum of outputs, whatever they share.
 
-        A sample that they share keeps the fewest degrees of freedom that it has in any.
+        Outputs with inputs of one sample in common have as many degrees of freedom in it as the
+        one of them with the fewest; samples of different inputs are independent.
         """
         rows = np.asarray(outputs, dtype=np.intp)
-        mixed = sparse.csr_array(
-            sparse.csr_array(np.atleast_2d(weights)) @ self.contributions[rows]
-        )
-        dof = None if self.sample_dof is None else self.sample_dof[rows].min(keepdims=True)
+        weights = np.asarray(weights, dtype=float)
+        mixed = sparse.csr_array(sparse.csr_array(weights[None, :]) @ self.contributions[rows])
+        dof = None
+        if self.sample is not None and self.sample_dof is not None:
+            parts = weights[:, None] * self.contributions[rows][:, self.sample].toarray()
+            dof = np.array([_joined_dof(parts, self.sample_dof[rows])])
         return replace(self, contributions=mixed, sample_dof=dof)
 
     def part(self, inputs: NDArray[np.bool_]) -> Propagation:
@@ -144,3 +148,17 @@ def propagate(
         sample=sample,
         sample_dof=sample_dof,
     )
+
+
+def _joined_dof(parts: Numbers, dof: Numbers) -> float:
+    """Degrees of freedom of a sum of samples, shape (samples, inputs), by what they share."""
+    felt = parts != 0
+    _, group = connected_components(sparse.csr_array((felt @ felt.T).astype(float)), directed=False)
+    variances, fewest = [], []
+    for one in np.unique(group):
+        here = group == one
+        variances.append(float((parts[here].sum(axis=0) ** 2).sum()))
+        fewest.append(float(dof[here].min()))
+    variance = np.array(variances)
+    fourth = float((variance**2 / np.array(fewest)).sum())
+    return float(effective_dof(u=np.sqrt(variance.sum()), contributions_fourth=fourth))
