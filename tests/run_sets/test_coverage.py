@@ -50,7 +50,7 @@ def test_linear_bounds(study):
 
 @pytest.mark.slow
 def test_linear_bounds_at_length(study):
-    check(list(study.study(sets=5_000, seed=12)))
+    check(list(study.study(sets=3_000, seed=12)))
 
 
 def test_quoted_bounds_of_few_values(study):
@@ -67,7 +67,7 @@ def test_quoted_bounds_of_few_values(study):
 @pytest.mark.slow
 def test_quoted_bounds_at_length(study):
     shapes = [(1, 2), (2, 1), (2, 4), (3, 2), (4, 2), (6, 1)]
-    strata = list(study.study_drawn(sets=2_000, draws=10_000, seed=3, shapes=shapes))
+    strata = list(study.study_drawn(sets=600, draws=10_000, seed=3, shapes=shapes))
     covered = np.array([one.coverage for one in strata])
     assert LOW < covered.mean() < HIGH
     assert covered.min() >= LEAST

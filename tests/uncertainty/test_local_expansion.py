@@ -81,8 +81,8 @@ def test_the_result_does_not_depend_on_how_many_draws_come_at_once():
     "function",
     [
         lambda x: np.abs(x[0] - 1.0),  # a kink
-        lambda x: np.sin(40 * x[0]),  # faster than its nodes
-        lambda x: np.where(x[0] > 1.3, np.nan, x[0]),  # no value within reach
+        lambda x: np.sin(100 * x[0]),  # faster than its nodes
+        lambda x: np.where(x[0] > 1.01, np.nan, x[0]),  # no value within reach
         lambda x: (x[0] - 1) ** 2 * (x[1] - 1) * 100,  # a product of three
     ],
     ids=["kink", "fast", "hole", "triple"],
@@ -93,11 +93,25 @@ def test_what_cannot_be_expanded_is_not(function):
         assert expand(function, inputs, seed=0) is None
 
 
+def test_draws_beyond_a_hole_are_left_to_the_function():
+    inputs = [Estimate(1.0, 0.1, "normal"), Estimate(2.0, 0.1, "normal")]
+
+    def holed(x: np.ndarray) -> np.ndarray:
+        return np.where(x[0] > 1.3, np.nan, np.exp(x[0]) + x[0] * x[1])
+
+    expansion = expand(holed, inputs, seed=0)
+    assert expansion is not None
+    drawn = draws_of(inputs)
+    far = set(expansion.beyond(drawn).tolist())
+    assert set(np.flatnonzero(drawn[0] > 1.3).tolist()) <= far
+    assert len(far) < 0.1 * drawn.shape[1]
+
+
 def test_errors_are_measured_beside_what_is_added_elsewhere():
     inputs = [Estimate(1.0, 0.1, "normal"), Estimate(1.0, 0.1, "normal")]
 
     def function(x: np.ndarray) -> np.ndarray:
-        return x[0] + 0.05 * np.sin(8 * x[1])
+        return x[0] + 0.05 * np.sin(30 * x[1])
 
     assert expand(function, inputs, seed=0) is None
     assert expand(function, inputs, seed=0, beside=math.inf) is not None

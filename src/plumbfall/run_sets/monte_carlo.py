@@ -9,6 +9,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
+from plumbfall.estimate import Estimate
 from plumbfall.run_sets.drawn import Drawn, compare
 from plumbfall.run_sets.result import SetColumns
 from plumbfall.run_sets.set_model import SetModel
@@ -62,8 +63,7 @@ def draw_run_set(
         For inputs that cannot be drawn.
     """
     model = SetModel(sets, run_set, used)
-    scatter = sets.scatter.u[run_set] / sets.scatter.mean[run_set]
-    expansion = expand(model.log_mean, model.inputs.estimates, seed=seed, beside=float(scatter))
+    expansion = _expansion(model, sets, run_set, seed)
     found = run_monte_carlo(
         model if expansion is None else ExpandedModel(model, expansion),
         model.inputs.estimates,
@@ -75,6 +75,15 @@ def draw_run_set(
         pool=pool,
     )
     return compare(found, model.quantities, sets.outputs, run_set)
+
+
+def _expansion(model: SetModel, sets: SetColumns, run_set: int, seed: int) -> LocalExpansion | None:
+    """Expand what lies before the scatter, which is added to it as it is drawn."""
+    inputs = list(model.inputs.estimates)
+    if model.inputs.scatter >= 0:
+        inputs[model.inputs.scatter] = Estimate(0.0)
+    relative = float(sets.scatter.u[run_set] / sets.scatter.mean[run_set])
+    return expand(model.log_mean, inputs, seed=seed, beside=relative)
 
 
 class ExpandedModel:
