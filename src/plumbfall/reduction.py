@@ -38,6 +38,7 @@ from plumbfall.run_sets.outputs import compute_outputs, conditions
 from plumbfall.run_sets.own_errors import own_errors
 from plumbfall.run_sets.repeatability import repeatability
 from plumbfall.run_sets.result import SetColumns, build_result, status_of
+from plumbfall.run_sets.second_order import second_order_of
 from plumbfall.run_sets.table import summary_table
 from plumbfall.run_sets.temperature_fit import TemperatureFit
 from plumbfall.run_sets.temperature_fit_result import fit_result
@@ -98,14 +99,17 @@ class Reduction:
         """Return one run set's record, built once."""
         if name not in self._built:
             place = self._place[name]
-            self._built[name] = build_result(
+            used = self._used_by_set[place]
+            built = build_result(
                 self.sets,
                 place,
-                self._used_by_set[place],
+                used,
                 self._rows_by_set[place],
                 self.found[place],
                 self.drawn.get(place),
             )
+            terms = second_order_of(self.sets, place, used, built.budget)
+            self._built[name] = dataclasses.replace(built, second_order=terms)
         return self._built[name]
 
     def summary_table(self) -> pd.DataFrame:

@@ -22,6 +22,7 @@ __all__ = [
     "MonteCarloResult",
     "Quantity",
     "RunSetResult",
+    "SecondOrderResult",
     "TemperatureFitResult",
 ]
 
@@ -266,6 +267,19 @@ class TemperatureFitResult:
 
 
 @dataclass(frozen=True, slots=True)
+class SecondOrderResult:
+    """What the second-order terms of some inputs would do to the linear result, not applied.
+
+    ``change_of_u`` is relative: 0.01 would make the standard uncertainty 1 % larger. ``shift`` is
+    that of the mean of the viscosity, Pa.s.
+    """
+
+    inputs: tuple[str, ...]
+    change_of_u: float
+    shift: float
+
+
+@dataclass(frozen=True, slots=True)
 class RunSetResult:
     """Everything a reduction says of one run set; temperatures in kelvin, all else SI.
 
@@ -304,6 +318,7 @@ class RunSetResult:
     monte_carlo: MonteCarloResult | None = None
     conformity: Conformity | None = None
     improvements: tuple[Improvement, ...] = ()
+    second_order: SecondOrderResult | None = None
 
     @property
     def interval(self) -> tuple[float, float]:

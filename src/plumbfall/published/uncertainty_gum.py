@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 from functools import partial
 
 import numpy as np
+from numpy.typing import NDArray
 
 from plumbfall.published.figure import (
     DEFINITION,
@@ -18,6 +20,7 @@ from plumbfall.published.statistics_data import mean_of, sd_of, u_of_mean
 from plumbfall.report.rounding import round_pair
 from plumbfall.uncertainty.coverage import coverage_factor
 from plumbfall.uncertainty.linear import Propagation, propagate
+from plumbfall.uncertainty.second_order import second_order
 
 __all__ = ["FIGURES"]
 
@@ -87,6 +90,29 @@ _H1 = (
         [("gum.h1.dof", "16.7", partial(_effective, _END_GAUGE, _END_GAUGE_DOF))],
         allowance=0.11,
     ),
+)
+
+
+def _end_gauge(x: NDArray[np.float64]) -> NDArray[np.float64]:
+    """H.1.1: length of an end gauge, nm, beside a standard at another temperature."""
+    standard, difference, d_alpha, theta, alpha, d_theta = x
+    return np.asarray(standard + difference - standard * (d_alpha * theta + alpha * d_theta))
+
+
+def _second_order() -> float:
+    found = second_order(
+        _end_gauge,
+        [50_000_623.0, 215.0, 0.0, -0.1, 11.5e-6, 0.0],
+        [25.0, 9.7, 0.58e-6, 0.41, 1.2e-6, 0.029],
+    )
+    return math.nan if found is None else math.sqrt(found.first + found.second)
+
+
+_H1_SECOND = figures(
+    "uncertainty",
+    FROM_MEMORY,
+    "JCGM 100:2008, H.1.7: end gauge, u with the second-order terms, nm",
+    [("gum.h1.second-order", "34", _second_order)],
 )
 
 _ZENER = tuple(10.0 + 1e-6 * v for v in (172, 116, 13, 144, 106, 31, 60, 125, 163, 41))
@@ -160,4 +186,4 @@ _STATED = (
     ),
 )
 
-FIGURES = (*_H1, *_H5, *_SUPPLEMENT, *_SHARED, *_STATED)
+FIGURES = (*_H1, *_H1_SECOND, *_H5, *_SUPPLEMENT, *_SHARED, *_STATED)

@@ -104,7 +104,7 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
         ],
         "budget": [_budget_line(line) for line in result.budget],
         "halving": [_improvement(one) for one in result.improvements],
-        "linear": measured_document(result.linear),
+        "linear": _linear(result),
         "monte_carlo": _monte_carlo(result.monte_carlo),
         "balls": [_ball(ball) for ball in result.balls],
         "drops": [_drop(drop) for drop in result.drops],
@@ -174,6 +174,22 @@ def _quantity(quantity: Quantity | None) -> dict[str, Any] | None:
         "unit": quantity.unit,
         "standard_uncertainty": _number(quantity.u),
     }
+
+
+def _linear(result: RunSetResult) -> dict[str, Any] | None:
+    linear, terms = measured_document(result.linear), result.second_order
+    if linear is None:
+        return None
+    told = (
+        None
+        if terms is None
+        else {
+            "inputs": list(terms.inputs),
+            "change_of_u": _number(terms.change_of_u),
+            "shift": _number(terms.shift),
+        }
+    )
+    return {**linear, "second_order": told}
 
 
 def _budget_line(line: BudgetLine) -> dict[str, Any]:

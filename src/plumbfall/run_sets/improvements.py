@@ -173,11 +173,21 @@ def _of_repetition(
 
 
 def _crossing(left: Callable[[float], float]) -> float | None:
-    """Largest factor found at which half remains; ``None`` where not even zero leaves half."""
-    if left(0.0) > 0.5:
+    """Factor at which half remains; ``None`` where not even zero leaves half."""
+    low, at_low, high, at_high = 0.0, left(0.0) - 0.5, 1.0, 0.5
+    if at_low > 0:
         return None
-    low, high = 0.0, 1.0
-    while high - low > 1e-12:
-        middle = (low + high) / 2
-        low, high = (middle, high) if left(middle) <= 0.5 else (low, middle)
+    last = 0.0
+    for _ in range(100):  # false position; an end that stays twice is halved (Illinois)
+        tried = (low * at_high - high * at_low) / (at_high - at_low)
+        found = left(tried) - 0.5
+        if abs(found) < 1e-9 or high - low < 1e-12:
+            return tried
+        if found > 0:
+            high, at_high = tried, found
+            at_low = at_low / 2 if last > 0 else at_low
+        else:
+            low, at_low = tried, found
+            at_high = at_high / 2 if last < 0 else at_high
+        last = found
     return low
