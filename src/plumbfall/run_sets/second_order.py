@@ -17,6 +17,9 @@ __all__ = ["LARGEST", "second_order_of"]
 LARGEST = 5
 """Inputs of the budget that are looked at."""
 
+DECIMALS = 6
+"""Decimals of relative sizes that differences are good for on every machine."""
+
 
 def second_order_of(
     sets: SetColumns, run_set: int, used: NDArray[np.intp], budget: tuple[BudgetLine, ...]
@@ -61,9 +64,11 @@ def second_order_of(
     found = second_order(viscosity, nominal[places], [estimate.u for estimate in estimates])
     if found is None:
         return None
-    variance = float(sets.outputs.of("viscosity").u[run_set]) ** 2
+    viscosities = sets.outputs.of("viscosity")
+    value, variance = float(viscosities.value[run_set]), float(viscosities.u[run_set]) ** 2
+    change = math.sqrt(max(1 + found.second / variance, 0.0)) - 1
     return SecondOrderResult(
         inputs=tuple(names),
-        change_of_u=math.sqrt(max(1 + found.second / variance, 0.0)) - 1,
-        shift=found.shift,
+        change_of_u=round(change, DECIMALS),
+        shift=round(found.shift / value, DECIMALS) * value,
     )
