@@ -328,7 +328,9 @@ def test_everything_wrong_with_a_history_is_named_at_once(tmp_path):
 
 def test_a_line_typed_by_hand_without_its_end_keeps_its_own(tmp_path):
     path = tmp_path / "history.csv"
-    path.write_text(",".join(COLUMNS) + "\n2026-03-01,A,R,0.1,0.2,0.3,passed,25,EK,0.1,x")
+    path.write_text(
+        "# kept by EK\n" + ",".join(COLUMNS) + "\n2026-03-01,A,R,0.1,0.2,0.3,passed,25,EK,0.1,x"
+    )
     pf.check(drops_table(TIMES), bench_with(), reference="R", history=path, date="2026-03-02")
     assert [line.when for line in read_history(path)] == ["2026-03-01", "2026-03-02"]
 

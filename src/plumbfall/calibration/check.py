@@ -11,7 +11,13 @@ import numpy as np
 from plumbfall.bench.keys import key_path
 from plumbfall.bench.records import Bench, Reference
 from plumbfall.calibration.certified import CertifiedValue, certified_value, is_expired
-from plumbfall.calibration.decisions import ACCEPT, REJECT, conformance_probability, is_capable
+from plumbfall.calibration.decisions import (
+    ACCEPT,
+    REJECT,
+    chance,
+    conformance_probability,
+    is_capable,
+)
 from plumbfall.calibration.moments import day_of, last_started, operators
 from plumbfall.calibration.scores import e_n, zeta_score
 from plumbfall.errors import InputError, Problem, nearest_name
@@ -299,13 +305,13 @@ def _shared(reduction: Reduction, entry: Reference, name: str) -> str:
 def _by_tolerance(bias: _Bias, tolerance: float, probability: float) -> tuple[str, str]:
     told = (
         f"the bias of {_percent(bias.value)} lies within {_percent(tolerance, False)} either way "
-        f"with a probability of {_chance(probability)}"
+        f"with a probability of {chance(probability)}"
     )
     if probability >= ACCEPT:
-        return PASSED, f"{told}, at least {_chance(ACCEPT)}"
+        return PASSED, f"{told}, at least {100 * ACCEPT:g} %"
     if probability <= REJECT:
-        return FAILED, f"{told}, at most {_chance(REJECT)}"
-    told += f", between {_chance(REJECT)} and {_chance(ACCEPT)}"
+        return FAILED, f"{told}, at most {100 * REJECT:g} %"
+    told += f", between {100 * REJECT:g} and {100 * ACCEPT:g} %"
     if not is_capable(low=-tolerance, high=tolerance, u=bias.u, dof=bias.dof):
         told += (
             f"; no bias could pass, as its standard uncertainty of {_percent(bias.u, False)} is "
@@ -322,13 +328,3 @@ def _by_score(score: float) -> tuple[str, str]:
 
 def _percent(ratio: float, signed: bool = True) -> str:
     return f"{100 * ratio:{'+' if signed else ''}.3g} %"
-
-
-def _chance(probability: float) -> str:
-    """Return a probability in percent; what rounds to all or nothing says so."""
-    percent = 100 * probability
-    if 0 < percent < 0.1:
-        return "less than 0.1 %"
-    if 99.9 < percent < 100:
-        return "more than 99.9 %"
-    return f"{percent:.3g} %"

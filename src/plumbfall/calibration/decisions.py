@@ -14,6 +14,7 @@ __all__ = [
     "REJECT",
     "Acceptance",
     "acceptance_interval",
+    "chance",
     "conformance_probability",
     "consumers_risk_at_limit",
     "guard_factor",
@@ -74,6 +75,21 @@ def conformance_probability(
     inside = below(high) - below(low)
     exact = (value >= np.asarray(low)) & (value <= np.asarray(high))
     return np.asarray(np.where(u > 0, np.clip(inside, 0.0, 1.0), exact.astype(float)))
+
+
+def chance(probability: float) -> str:
+    """Return a probability in percent to a tenth; what rounds to all or nothing says so.
+
+    Examples
+    --------
+    >>> chance(0.9731), chance(0.99999), chance(0.0002)
+    ('97.3 %', 'more than 99.9 %', 'less than 0.1 %')
+    """
+    if 0.0 < probability < 0.001:
+        return "less than 0.1 %"
+    if 0.999 < probability < 1.0:
+        return "more than 99.9 %"
+    return f"{100.0 * probability:.1f} %"
 
 
 def guard_factor(probability: ArrayLike) -> Numbers:

@@ -6,7 +6,7 @@ import csv
 import io
 import math
 import os
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -147,10 +147,10 @@ def read_history(path: str | os.PathLike[str]) -> tuple[HistoryLine, ...]:
     problems: list[Problem] = []
     found = []
     try:
-        heading = [name.strip() for name in next(reader, [])]
+        heading = _heading(reader)
         _check_heading(heading, str(path))
         for row in reader:
-            if any(cell.strip() for cell in row):
+            if any(cell.strip() for cell in row) and not _is_comment(row):
                 found.append(_line(row, heading, str(path), reader.line_num, problems))
     except csv.Error as error:
         problems.append(Problem(f"is no CSV: {error}", path=str(path), line=reader.line_num))
@@ -224,8 +224,11 @@ def _has_text(path: Path) -> bool:
 
 def _append(path: Path, lines: Sequence[HistoryLine]) -> None:
     """Append lines and wait for the disk; what was written of them is taken back on failure."""
-    new = not _has_text(path)
-    heading = list(COLUMNS) if new else _heading(path)
+    existed, new = path.exists(), not _has_text(path)
+    heading = list(COLUMNS)
+    if not new:
+        with path.open(encoding="utf-8-sig", newline="") as file:
+            heading = _heading(csv.reader(file))
     buffer = io.StringIO(newline="")
     writer = csv.writer(buffer, lineterminator="\n")
     if new:
@@ -246,6 +249,8 @@ def _append(path: Path, lines: Sequence[HistoryLine]) -> None:
             os.fsync(file.fileno())
         except OSError:
             os.truncate(path, before)
+            if not existed:
+                path.unlink()
             raise
     if new and hasattr(os, "O_DIRECTORY"):  # a new name is on disk once its folder is
         folder = os.open(path.parent, os.O_RDONLY | os.O_DIRECTORY)
@@ -255,9 +260,13 @@ def _append(path: Path, lines: Sequence[HistoryLine]) -> None:
             os.close(folder)
 
 
-def _heading(path: Path) -> list[str]:
-    with path.open(encoding="utf-8-sig", newline="") as file:
-        return [name.strip() for name in next(csv.reader(file))]
+def _heading(rows: Iterator[list[str]]) -> list[str]:
+    """Return the first row that is no comment."""
+    return [name.strip() for name in next((row for row in rows if not _is_comment(row)), [])]
+
+
+def _is_comment(row: Sequence[str]) -> bool:
+    return bool(row) and row[0].lstrip().startswith("#")
 
 
 def _cell(value: str | float | None) -> str:

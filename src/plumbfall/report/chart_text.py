@@ -11,7 +11,7 @@ from plumbfall.report.fragment import table_fragment
 from plumbfall.report.scales import Scale
 from plumbfall.report.summary import counted, visible
 from plumbfall.report.svg import inline_svg
-from plumbfall.report.text import wrapped
+from plumbfall.report.text import WIDTH, wrapped
 from plumbfall.report.words import Explainer
 
 __all__ = ["SIGNALS", "chart_fragment", "chart_text"]
@@ -90,19 +90,24 @@ def _lines(chart: ControlChart) -> Iterator[str]:
     names = max(len(visible(point.run_set)) for point in chart.points)
     yield f"  {'when':<{width}}  {'run set':<{names}}  {'bias':>9}  {'average':>9}  signals"
     for point in chart.points:
-        yield _row(point, width, names, decimals)
+        yield from _rows(point, width, names, decimals)
     yield ""
     for remark in _remarks(chart):
         yield from wrapped("", remark)
     yield f"plumbfall {__version__}"
 
 
-def _row(point: ControlPoint, width: int, names: int, decimals: int) -> str:
+def _rows(point: ControlPoint, width: int, names: int, decimals: int) -> Iterator[str]:
+    """Yield a point's line, and its signals on another where they do not fit."""
     bias = f"{PLAIN.fixed(point.value, decimals)} %"
     average = f"{PLAIN.fixed(point.average, decimals)} %"
-    signals = ", ".join(point.signals)
     row = f"  {point.when:<{width}}  {visible(point.run_set):<{names}}  {bias:>9}  {average:>9}"
-    return f"{row}  {signals}".rstrip()
+    signals = ", ".join(point.signals)
+    if len(row) + 2 + len(signals) <= WIDTH:
+        yield f"{row}  {signals}".rstrip()
+    else:
+        yield row
+        yield from wrapped("      ", signals)
 
 
 def _state(chart: ControlChart) -> str:

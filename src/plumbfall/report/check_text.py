@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 from plumbfall._version import __version__
 from plumbfall.calibration.check import CheckResult
+from plumbfall.calibration.decisions import chance
 from plumbfall.report.check_figure import draw_checks
 from plumbfall.report.fragment import table_fragment
 from plumbfall.report.placing import own_figure
@@ -77,8 +78,8 @@ def _lines(report: CheckReport) -> Iterator[str]:
             yield from wrapped(f"  {'E_n':<14}", _with(f"{check.e_n:+.3f}", explain("E_n")))
             yield from wrapped(f"  {'zeta':<14}", _with(f"{check.zeta:+.3f}", explain("zeta")))
         if check.conformance_probability is not None and check.tolerance is not None:
-            told = f"{PERCENT.fixed(check.conformance_probability, 1)} % within "
-            told += f"{PERCENT.alone(check.tolerance, 3)} % either way"
+            told = f"{chance(check.conformance_probability)} within "
+            told += f"{100 * check.tolerance:g} % either way"
             why = explain("conformance probability")
             yield from wrapped(f"  {'Probability':<14}", _with(told, why))
         yield ""

@@ -74,8 +74,8 @@ def _facts(result: Comparison, unit: str | None) -> Iterator[tuple[str, str, str
     yield "Correlation", Scale("").fixed(result.correlation, 3), "correlation"
     yield "No difference: p", f"{result.p_value:.2g}", "p-value"
     if result.equivalence_p_value is not None and result.margin is not None:
-        margin = f"{PERCENT.alone(result.margin, 3)} %"
-        yield f"Off by {margin}: p", f"{result.equivalence_p_value:.2g}", ""
+        margin = f"{100 * result.margin:g} %"
+        yield f"Apart by {margin}: p", f"{result.equivalence_p_value:.2g}", ""
     precision = result.precision
     if precision is not None:
         sd = f"{PERCENT.alone(precision.sd, 2)} %, from {precision.source}"
@@ -103,7 +103,7 @@ def _conclusions(result: Comparison) -> Iterator[str]:
             "seen."
         )
     if result.margin is not None:
-        margin = f"{PERCENT.alone(result.margin, 3)} %"
+        margin = f"{100 * result.margin:g} %"
         shown = "are shown" if result.equivalent else "are not shown"
         yield f"The two {shown} to be equal within {margin}, at the {level} level."
     precision = result.precision

@@ -21,7 +21,7 @@ from plumbfall.results import Finding, RunSetResult
 if TYPE_CHECKING:
     from plumbfall.report.report import Report
 
-__all__ = ["plain_text", "printable", "show", "wrapped"]
+__all__ = ["WIDTH", "plain_text", "printable", "show", "wrapped"]
 
 WIDTH = 80
 MANY_SETS = 12
