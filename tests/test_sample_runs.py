@@ -20,6 +20,14 @@ RUNS = {
 }
 
 
+CHECKS = {
+    "certified_oil_check": "check",
+    "resin_batches_compared": "comparison",
+    "check_history": "chart",
+}
+"""What the other commands' folders expect."""
+
+
 @pytest.fixture(autouse=True)
 def at_the_root(monkeypatch):
     """Paths stand in reports as typed."""
@@ -42,6 +50,26 @@ def test_expected_report(name):
     same(json.loads(reduced(name).to_json()), expected, "report")
     text = (FOLDER / name / "expected_report.txt").read_text("utf-8")
     assert reduced(name).text() == text
+
+
+def made(name: str):
+    """Return what a command of another kind makes of its folder."""
+    folder = f"sample_runs/{name}"
+    if name == "certified_oil_check":
+        return pf.check(f"{folder}/drops.csv", reference="bottle-3", tolerance="0.5 %")
+    if name == "resin_batches_compared":
+        return pf.compare(f"{folder}/drops.csv", sets=("batch 122", "batch 121"), margin="3 %")
+    return pf.chart(f"{folder}/history.csv", baseline=18)
+
+
+@pytest.mark.parametrize("name", CHECKS)
+def test_expected_check_comparison_and_chart(name):
+    folder, what = FOLDER / name, CHECKS[name]
+    for path in folder.glob("[!e]*"):
+        assert "invented data" in path.read_text("utf-8").lower()
+    expected = json.loads((folder / f"expected_{what}.json").read_text("utf-8"))
+    same(json.loads(made(name).to_json()), expected, what)
+    assert made(name).text() == (folder / f"expected_{what}.txt").read_text("utf-8")
 
 
 def same(ours: object, expected: object, place: str) -> None:
@@ -110,3 +138,28 @@ def test_invalid_set_has_no_viscosity():
     result = reduced("wash_oil_invalid")["drops"].result
     assert (result.status, result.viscosity) == ("invalid", None)
     assert result.findings[0].code == "reynolds-high"
+
+
+def test_check_covers_the_truth_and_passes():
+    (check,) = made("certified_oil_check").checks
+    # the certificate was drawn 0.06 % too high
+    assert check.decision == "passed"
+    assert abs(check.bias.value + 0.0006) < 2 * check.bias.u
+    slope = -0.019
+    truth = 0.9472 * math.exp(slope * (check.temperature - 298.15))
+    assert check.measured.low < truth < check.measured.high
+
+
+def test_comparison_finds_the_thicker_batch_surer_than_either_value():
+    result = made("resin_batches_compared").result
+    assert result.ratio.low < 1.640 / 1.612 < result.ratio.high
+    assert result.different
+    assert result.ratio.u < 0.5 * result.values[0].u / result.values[0].value
+
+
+def test_chart_signals_when_the_thermometer_has_drifted_and_not_before():
+    report = made("check_history")
+    signals = [bool(point.signals) for point in report.result.points]
+    assert not any(signals[:18])  # it drifts from week 20 on
+    assert all(signals[-3:])
+    assert report.out_of_control
