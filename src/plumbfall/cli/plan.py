@@ -54,7 +54,15 @@ def add_plan(commands: Commands) -> None:
         help='of the liquid, such as "25 degC"',
     )
     plan.add_argument("--tubes", nargs="+", metavar="NAME", help="only these tubes")
-    plan.add_argument("--balls", nargs="+", metavar="NAME", help="only these balls")
+    plan.add_argument(
+        "--balls",
+        nargs="+",
+        metavar="NAME",
+        help="only these balls; the word catalogue looks for the best ball instead",
+    )
+    plan.add_argument(
+        "--grade", metavar="G", help="grade of catalogue balls by ISO 3290-1 (default G10)"
+    )
     plan.add_argument("--out", metavar="DIR", help="write plan.html and plan.json there")
     add_json(plan)
     plan.set_defaults(run=_run)
@@ -76,6 +84,7 @@ def _run(options: argparse.Namespace) -> int:
         "temperature": options.temperature,
         "tubes": options.tubes,
         "balls": options.balls,
+        "grade": options.grade,
     }
     given = {name: value for name, value in asked.items() if value is not None}
     planned = plan(options.bench, viscosity=options.viscosity, **given)

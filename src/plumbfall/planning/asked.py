@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import replace
 from numbers import Integral
 from os import PathLike
 from typing import Any, TypeAlias
@@ -12,14 +13,19 @@ from plumbfall.bench.notation import read_quantity
 from plumbfall.bench.reader import read_bench
 from plumbfall.bench.records import Bench
 from plumbfall.errors import InputError
+from plumbfall.planning.catalogue import GRADE, catalogue_bench, grade_named
 from plumbfall.planning.conditions import conditions_of
+from plumbfall.planning.ideal import ideal_ball
 from plumbfall.planning.plan import Plan, make_plan
 from plumbfall.planning.wanted import DROPS, LONGEST, MOST_DROPS, Wanted
 
-__all__ = ["Amount", "BenchSource", "bench_from", "plan_bench", "viscosities_of"]
+__all__ = ["CATALOGUE", "Amount", "BenchSource", "bench_from", "plan_bench", "viscosities_of"]
 
 Amount: TypeAlias = float | str
 """A number in the SI unit, or text with its unit."""
+
+CATALOGUE = "catalogue"
+"""Instead of balls of the bench: look for the best among those that are sold."""
 
 BenchSource: TypeAlias = str | PathLike[str] | Mapping[str, Any] | Bench
 
@@ -45,9 +51,13 @@ def plan_bench(
     temperature: Amount | None = None,
     tubes: str | Sequence[str] | None = None,
     balls: str | Sequence[str] | None = None,
+    grade: str = GRADE,
 ) -> Plan:
     """Plan drops; see :func:`plumbfall.plan` for the arguments."""
-    sheet = bench_from(bench)
+    sheet, only = bench_from(bench), _names(balls)
+    searched = only == [CATALOGUE] and CATALOGUE not in sheet.balls
+    if searched:
+        sheet, only = catalogue_bench(sheet, grade_named(grade)), None
     for name, count in (("drops", drops), ("most_drops", most_drops)):
         if isinstance(count, bool) or not isinstance(count, Integral) or count < 1:
             raise InputError(f"{name} = {count!r} is no number of drops", remedy="write 8")
@@ -67,7 +77,16 @@ def plan_bench(
         thermometer=thermometer,
         temperature=temperature,
     )
-    return make_plan(conditions, wanted, tubes=_names(tubes), balls=_names(balls))
+    plan = make_plan(conditions, wanted, tubes=_names(tubes), balls=only)
+    if not searched:
+        return plan
+    chosen = _names(tubes) or list(sheet.tubes)
+    ideal = (
+        ideal_ball(conditions, wanted, tube, grade_named(grade))
+        for tube in chosen
+        if sheet.tubes[tube].kind != "calibrated"
+    )
+    return replace(plan, grade=grade, ideal=tuple(filter(None, ideal)))
 
 
 def viscosities_of(asked: Amount | Iterable[Amount]) -> tuple[float, ...]:

@@ -8,7 +8,6 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.estimate import Estimate
 from plumbfall.measurement.inputs import MODEL_INPUT
 from plumbfall.planning.evaluation import Evaluation
 from plumbfall.planning.prediction import Part, Prediction
@@ -139,7 +138,7 @@ def improvements(prediction: Prediction, place: int, target: float, drops: int) 
     parts = prediction.budget(place, drops)
     allowed = (target / prediction.factor(place, drops)) ** 2
     count, factor = _fewest([part.contribution**2 for part in parts], allowed)
-    return [_improvement(prediction.evaluation, part, factor) for part in parts[:count]]
+    return [_needed(prediction, part, factor) for part in parts[:count]]
 
 
 def _fewest(variances: list[float], allowed: float) -> tuple[int, float]:
@@ -152,17 +151,10 @@ def _fewest(variances: list[float], allowed: float) -> tuple[int, float]:
     return next((count, f) for count, f in enumerate(factors, 1) if f >= enough)
 
 
-def _improvement(evaluation: Evaluation, part: Part, factor: float) -> Needed:
-    known = {estimate.name: estimate for estimate in evaluation.inputs.estimates}
-    estimate = known.get(part.input)
+def _needed(prediction: Prediction, part: Part, factor: float) -> Needed:
     if part.input == MODEL_INPUT:
         return Needed(part.input, "1", part.contribution, factor * part.contribution)
-    if estimate is not None:
-        return Needed(part.input, estimate.unit, estimate.u, factor * estimate.u)
-    own = _declared(evaluation, part.input)
-    return Needed(part.input, own.unit, own.value, factor * own.value)
-
-
-def _declared(evaluation: Evaluation, name: str) -> Estimate:
-    """Return the standard deviation of that name that the bench sheet declares."""
-    return evaluation.conditions.bench.quantities()[name]
+    estimate = prediction.known[part.input]
+    # a standard deviation that is declared is itself what would have to be less
+    present = estimate.u if part.input not in prediction.own_names else estimate.value
+    return Needed(part.input, estimate.unit, present, factor * present)

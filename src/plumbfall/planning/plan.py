@@ -18,6 +18,7 @@ from plumbfall.measurement.constants import choose_constants
 from plumbfall.planning.combination import Combination, build_combinations, without_fall
 from plumbfall.planning.conditions import Conditions
 from plumbfall.planning.evaluation import Evaluation, evaluate
+from plumbfall.planning.ideal import IdealBall
 from plumbfall.planning.judgement import Reason
 from plumbfall.planning.prediction import Prediction
 from plumbfall.planning.wanted import Wanted
@@ -25,6 +26,8 @@ from plumbfall.planning.windows import Window, usable_windows
 from plumbfall.results import Finding
 
 __all__ = ["Plan", "make_plan"]
+
+MOST_WINDOWS = 40
 
 Pair = tuple[str, str]
 """Names of a tube and a ball."""
@@ -41,7 +44,10 @@ SHEET = frozenset(
 
 @dataclass(frozen=True)
 class Plan:
-    """Planned drops of every ball and tube; records are built when they are looked at."""
+    """Planned drops of every ball and tube; records are built when they are looked at.
+
+    Where balls of a ``grade`` were looked for, ``ideal`` are those that would do best.
+    """
 
     wanted: Wanted
     limits: Limits
@@ -51,6 +57,8 @@ class Plan:
     planned: NDArray[np.intp]
     expanded: Numbers
     left_out: Mapping[Pair, Reason]
+    grade: str = ""
+    ideal: tuple[IdealBall, ...] = ()
 
     @property
     def bench(self) -> Bench:
@@ -118,8 +126,9 @@ class Plan:
 
     @cached_property
     def windows(self) -> tuple[Window, ...]:
-        """The usable window of every ball and tube, ranked as the combinations."""
+        """The usable windows of the best balls and tubes, ranked as the combinations."""
         pairs = list(dict.fromkeys((one.tube, one.ball) for one in self.combinations))
+        pairs = pairs[:MOST_WINDOWS]
         planned = [pair for pair in pairs if pair not in self.left_out]
         tubes, balls = list(self.bench.tubes), list(self.bench.balls)
         found = usable_windows(
@@ -130,8 +139,8 @@ class Plan:
             fewest_drops(self.limits),
         )
         of_pair = dict(zip(planned, found, strict=True))
-        for (tube, ball), reason in self.left_out.items():
-            of_pair[tube, ball] = Window(tube, ball, None, None, reason, None)
+        for pair in set(pairs) - set(planned):
+            of_pair[pair] = Window(*pair, None, None, self.left_out[pair], None)
         return tuple(of_pair[pair] for pair in pairs)
 
     def reaches(self, one: Combination) -> bool:

@@ -10,11 +10,13 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.bench.keys import key_path
+from plumbfall.estimate import Estimate
 from plumbfall.measurement.balance import Numbers
 from plumbfall.planning.conditions import Conditions
 from plumbfall.planning.evaluation import Evaluation
@@ -63,6 +65,21 @@ class Prediction:
         """Return the relative expanded uncertainty of run sets of so many drops."""
         u, factor = self._combined(drops, places)
         return np.asarray(factor * u)
+
+    @cached_property
+    def known(self) -> dict[str, Estimate]:
+        """Every estimate that a part may be of, by name."""
+        made = self.evaluation
+        return {
+            **made.conditions.bench.quantities(),
+            **{estimate.name: estimate for estimate in made.inputs.estimates},
+        }
+
+    @cached_property
+    def own_names(self) -> frozenset[str]:
+        """Names of entries that declare a standard deviation of drops or balls."""
+        instruments = (name for name, _ in self._instruments)
+        return frozenset({"scatter.relative", *self._spreads, *instruments})
 
     def floor(self) -> Numbers:
         """Return the relative expanded uncertainty that no number of drops goes below."""

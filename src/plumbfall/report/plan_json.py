@@ -35,6 +35,17 @@ def plan_document(plan: Plan) -> dict[str, Any]:
         "suitable": plan.suitable,
         "combinations": [_combination(one) for one in plan.combinations],
         "windows": [_window(one) for one in plan.windows],
+        "grade": plan.grade or None,
+        "ideal": [
+            {
+                "tube": one.tube,
+                "diameter_m": one.diameter,
+                "density_kg_m3": one.density,
+                "relative_expanded_uncertainty": one.relative_expanded_uncertainty,
+                "suitable": one.clean,
+            }
+            for one in plan.ideal
+        ],
         "findings": [_finding(one) for one in plan.findings],
     }
 

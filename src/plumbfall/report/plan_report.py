@@ -8,6 +8,7 @@ from os import PathLike
 from typing import TYPE_CHECKING, Any
 
 from plumbfall.planning.asked import Amount, BenchSource, plan_bench
+from plumbfall.planning.catalogue import GRADE
 from plumbfall.planning.combination import Combination
 from plumbfall.planning.plan import Plan
 from plumbfall.planning.wanted import DROPS, LONGEST, MOST_DROPS
@@ -39,6 +40,7 @@ def plan(
     temperature: Amount | None = None,
     tubes: str | Sequence[str] | None = None,
     balls: str | Sequence[str] | None = None,
+    grade: str = GRADE,
 ) -> PlanReport:
     """Plan a measurement: which of the balls and tubes will reach the wanted uncertainty.
 
@@ -64,7 +66,10 @@ def plan(
         Of the liquid; by default that of the run set's entry, else the reference temperature, else
         that of the liquid's density, else 20 degC.
     tubes, balls : str or list of str, optional
-        Only these.
+        Only these. ``balls="catalogue"`` looks for the best ball instead: the diameter and density
+        that would do best, and the preferred sizes of balls that are sold.
+    grade : str
+        Grade of ISO 3290-1 of those, such as ``"G10"``.
 
     Returns
     -------
@@ -92,6 +97,7 @@ def plan(
             temperature=temperature,
             tubes=tubes,
             balls=balls,
+            grade=grade,
         )
     )
 

@@ -14,6 +14,7 @@ from plumbfall.report.plan_words import (
     better_text,
     conditions_text,
     facts_of,
+    ideal_texts,
     interval_text,
     limit_word,
     parts_text,
@@ -42,7 +43,8 @@ def plan_text(plan: Plan) -> str:
 
 def _lines(plan: Plan) -> Iterator[str]:
     yield from _wrapped("plan  ", conditions_text(plan))
-    yield from _wrapped("", visible(answer_text(plan)))
+    for text in (*ideal_texts(plan), answer_text(plan)):
+        yield from _wrapped("", visible(text))
     yield ""
     pairs = [
         list(group) for _, group in groupby(plan.combinations, lambda one: (one.tube, one.ball))

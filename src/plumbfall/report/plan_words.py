@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from plumbfall.measurement.inputs import MODEL_INPUT
+from plumbfall.planning.catalogue import DENSITY_U, GRADES
 from plumbfall.planning.combination import Combination
 from plumbfall.planning.judgement import Needed, Reason
 from plumbfall.planning.plan import Plan
@@ -17,6 +18,7 @@ __all__ = [
     "better_text",
     "conditions_text",
     "facts_of",
+    "ideal_texts",
     "interval_text",
     "limit_word",
     "parts_text",
@@ -206,6 +208,25 @@ def answer_text(plan: Plan) -> str:
     if any(one.suitable for one in plan.combinations):
         return "Only a part of the range can be measured: see the usable viscosities"
     return f"Nothing here will do; nearest is ball {best[0].ball} in tube {best[0].tube}"
+
+
+def ideal_texts(plan: Plan) -> Iterator[str]:
+    """Yield, for each tube, the ball that would do best if any could be had."""
+    for one in plan.ideal:
+        text = (
+            f"A ball of {length_text(one.diameter)} and {round_alone(one.density / 1000, 2)} "
+            f"g/cm3 would do best in tube {one.tube}: "
+            f"{percent_text(one.relative_expanded_uncertainty)} with {plan.wanted.drops} drops"
+        )
+        yield text if one.clean else f"{text}, in spite of what speaks against it"
+    if plan.grade:
+        grade = GRADES[plan.grade]
+        yield (
+            f"Below are lots of grade {plan.grade} in preferred sizes (ISO 3290-1), their balls "
+            f"alike within {1e6 * grade.lot:g} um. A lot's mean may be {1e6 * grade.gauge:g} um "
+            f"off the nominal diameter: measure it. The density is taken as known to "
+            f"{100 * DENSITY_U:g} %: weigh the balls"
+        )
 
 
 def facts_of(one: Combination) -> Iterator[tuple[str, str]]:
