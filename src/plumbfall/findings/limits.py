@@ -68,6 +68,10 @@ class Limits:
     swap_match
         How near a drop must come to the others when taken for another ball, as a ratio (common
         practice, no source).
+    slip_match
+        How near a viscosity must be to what is expected of it times a slip's factor, as a ratio.
+    kinematic_match
+        The same where the factor is the liquid's density, mm2/s having been taken for mPa.s.
     best_uncertainty
         Least relative standard uncertainty to be believed: BIPM key comparison CCM.V-K1.
     constant_temperature
@@ -111,6 +115,8 @@ class Limits:
     resolution_effect: float = 1e-3
     swap_effect: float = 0.02
     swap_match: float = 0.01
+    slip_match: float = 0.05
+    kinematic_match: float = 0.005
     best_uncertainty: float = 4e-4
     constant_temperature: float = 1.0
     constant_range: float = 0.25

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import dataclass
 
 import numpy as np
@@ -25,8 +26,8 @@ class Candidates:
     """Balls that a drop may have been, arrays of shape (candidates,).
 
     First the balls of the bench in their order, then each of them with its diameter times a
-    factor of :data:`FACTORS`. ``ball`` counts the bench's balls; ``factor`` is 1 for the balls as
-    they stand.
+    factor each. ``ball`` counts the bench's balls; ``factor`` is 1 for the balls as
+    they stand; ``density`` is NaN where it is that of no ball.
     """
 
     ball: Codes
@@ -40,11 +41,11 @@ class Candidates:
         return np.asarray(self.factor == 1.0)
 
 
-def candidates(data: RunData) -> Candidates:
-    """Return every ball of the bench, as written and with likely slips of its diameter."""
+def candidates(data: RunData, factors: Iterable[float] = FACTORS) -> Candidates:
+    """Return every ball of the bench, as written and with slips of its diameter."""
     n = len(data.balls)
-    factor = np.repeat([1.0, *FACTORS], n)
-    ball = np.tile(np.arange(n), 1 + len(FACTORS))
+    each = np.array([1.0, *factors])
+    factor, ball = np.repeat(each, n), np.tile(np.arange(n), len(each))
     diameter = np.array([_diameter(data, one) for one in data.balls])
     mass = np.array([_mass(data, one) for one in data.balls])
     given = np.array([np.nan if one.density is None else one.density.value for one in data.balls])
@@ -52,6 +53,10 @@ def candidates(data: RunData) -> Candidates:
     density = np.where(
         np.isnan(mass[ball]), given[ball], mass[ball] / sphere_volume(ball_diameter=size)
     )
+    # a density that no ball has is found by itself, and is no explanation either
+    low, high = data.limits.ball_density_low, data.limits.ball_density_high
+    fair = (density >= low) & (density <= high)
+    density[~(fair & ((factor == 1.0) | fair[ball]))] = np.nan
     return Candidates(ball=ball, factor=factor, diameter=size, density=density)
 
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from plumbfall.findings.ball_densities import density_off_material
 from plumbfall.findings.balls import balls_disagree, diameter_ratio_trend, shear_dependence
 from plumbfall.findings.claims import uncertainty_implausible
 from plumbfall.findings.constants import constant_outside_domain, input_changed
@@ -47,6 +48,7 @@ from plumbfall.findings.temperatures import (
     temperature_spread,
 )
 from plumbfall.findings.timing import fall_time_short
+from plumbfall.findings.unit_slips import implausible_lengths, unit_slip
 from plumbfall.results import SEVERITIES, Finding
 
 __all__ = ["DETECTORS", "OF_EQUIPMENT", "find"]
@@ -59,6 +61,9 @@ DETECTORS: tuple[Detector, ...] = (
     diameter_ratio_high,
     radius_as_diameter,
     density_implausible,
+    density_off_material,
+    implausible_lengths,
+    unit_slip,
     swapped_ball,
     outlier,
     outlier_pair,
