@@ -20,6 +20,7 @@ from plumbfall.bench.common_keys import LEFT_OUT, Equipment
 from plumbfall.bench.schema import Sheet
 from plumbfall.bench.usual import USUAL
 from plumbfall.cli.program import build_parser
+from plumbfall.findings.ball_materials import MATERIALS
 from plumbfall.findings.limits import Limits
 from plumbfall.flow.tables import read_table, tables_directory
 from plumbfall.physics.laws import DEFAULTS, KINDS, laws_of
@@ -304,6 +305,14 @@ def limits() -> str:
     return table(("limit", "default", "meaning"), rows)
 
 
+def materials() -> str:
+    """Return the densities that balls are held against."""
+    rows = (
+        (one.name, f"{one.low / 1000:g} to {one.high / 1000:g}", one.source) for one in MATERIALS
+    )
+    return table(("material", "density, g/cm³", "source"), rows)
+
+
 def totals() -> str:
     """Return how many figures the self-test recomputes, by area and basis."""
     head, *rows = totals_table(selftest())
@@ -323,6 +332,7 @@ PARTS: Mapping[tuple[str, str], Callable[[], str]] = {
     ("bench_sheet.md", "keys"): bench_keys,
     ("command_line.md", "commands"): commands,
     ("findings.md", "limits"): limits,
+    ("findings.md", "materials"): materials,
     ("methods.md", "errors"): errors,
     ("methods.md", "tables"): shipped,
     ("physics.md", "laws"): laws,
