@@ -161,8 +161,6 @@ def _fit(fits: BallFits, balls: BallMeans, batch: Batch) -> None:
         trend.p_value[at[part]] = t_p_value(t=value / error, dof=dof[part])
         trend.rest_p_value[at[part]] = f_p_value(f=rest / left, dof=left, dof_within=dof[part])
         trend.explained[at[part]] = 1 - rest / np.where(whole > 0, whole, np.inf)
-        with np.errstate(invalid="ignore", divide="ignore"):  # balls may agree exactly
-            trend.explained[at[part]] = 1 - rest / whole
 
 
 def _tells(covariate: Numbers, contrast: Numbers | float) -> NDArray[np.bool_]:
