@@ -319,6 +319,17 @@ def totals() -> str:
     return table(head, rows)
 
 
+def sources() -> str:
+    """Return where every figure of the self-test comes from, and how many there are."""
+    found: dict[tuple[str, str, str], int] = {}
+    for item in selftest().items:
+        source = item.source.replace("; ", ", ")
+        key = (item.area, source, item.basis)
+        found[key] = found.get(key, 0) + 1
+    rows = ((area, source, basis, str(count)) for (area, source, basis), count in found.items())
+    return table(("area", "source, and what of it", "basis", "figures"), rows)
+
+
 def _described(docstring: str) -> Iterator[tuple[str, str]]:
     """Yield the names that a docstring explains, each with its text."""
     for found in re.finditer(r"^(\w+(?:, \w+)*)\n((?:    .*\n?)+)", docstring, re.MULTILINE):
@@ -337,6 +348,7 @@ PARTS: Mapping[tuple[str, str], Callable[[], str]] = {
     ("methods.md", "tables"): shipped,
     ("physics.md", "laws"): laws,
     ("validation.md", "totals"): totals,
+    ("validation.md", "sources"): sources,
 }
 """What makes each generated part, by document and name."""
 

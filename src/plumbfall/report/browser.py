@@ -10,7 +10,7 @@ from pathlib import Path
 
 from plumbfall.errors import InputError
 
-__all__ = ["ENVIRONMENT", "QUIET", "find_browser", "pdf_of"]
+__all__ = ["ENVIRONMENT", "QUIET", "find_browser", "pdf_of", "sandbox"]
 
 ENVIRONMENT = "PLUMBFALL_CHROMIUM"
 """Names the program to use where it is not found by itself."""
@@ -69,7 +69,7 @@ def pdf_of(page: str) -> bytes:
         command = [
             browser,
             *QUIET,
-            *_sandbox(),
+            *sandbox(),
             f"--user-data-dir={Path(folder, 'profile')}",
             "--no-pdf-header-footer",
             f"--print-to-pdf={target}",
@@ -89,7 +89,7 @@ def pdf_of(page: str) -> bytes:
     )
 
 
-def _sandbox() -> tuple[str, ...]:
+def sandbox() -> tuple[str, ...]:
     """Chromium refuses to sandbox itself for the superuser, as in a container."""
     superuser = hasattr(os, "geteuid") and os.geteuid() == 0
     return ("--no-sandbox",) if superuser else ()

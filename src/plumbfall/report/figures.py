@@ -88,7 +88,8 @@ def draw(
         if ax is not None:
             return TOGETHER[kind](results, ax, viscosity_unit)
         figure = new_figure()
-        TOGETHER[kind](results, figure.add_subplot(), viscosity_unit)
+        with house_style():
+            TOGETHER[kind](results, figure.add_subplot(), viscosity_unit)
         return figure
     kinds = [kind]
     if kind == "residuals":

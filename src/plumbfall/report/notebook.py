@@ -21,17 +21,19 @@ MOST_ROWS = 60
 def report_fragment(report: Report) -> str:
     """Return a table of the run sets with verdict, value and bounds."""
     unit = report.bench.viscosity_unit
-    rows = [
-        overview_row(report[name].result, index, unit)
-        for index, name in enumerate(report.names[:MOST_ROWS], 1)
-    ]
+    results = [report[name].result for name in report.names[:MOST_ROWS]]
+    rows = [overview_row(result, index, unit) for index, result in enumerate(results, 1)]
     more = len(report) - len(rows)
     caption = f"{counted(len(report), 'run set')}, {percent(report.coverage)} coverage; "
     caption += rows_sum(report)
     if more:
         caption += f"; the first {len(rows)} are shown, table() has all"
     return template("notebook.html.j2").render(
-        caption=caption, rows=rows, findings=report.findings, pictures=()
+        caption=caption,
+        rows=rows,
+        findings=report.findings,
+        pictures=(),
+        judged=any(result.conformity for result in results),
     )
 
 
@@ -43,5 +45,6 @@ def run_set_fragment(view: RunSetView) -> str:
         caption="Run set",
         rows=[overview_row(view.result, index, unit)],
         findings=view.findings,
+        judged=view.result.conformity is not None,
         pictures=pictures(view.result, index, unit),
     )
