@@ -8,9 +8,10 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from plumbfall.timings.byte_columns import PADDING, SliceColumn
+from plumbfall.timings.clocks import read_clock
 from plumbfall.timings.columns import FloatColumn, TextColumn
 
-CELLS = st.text(st.characters(exclude_characters="\n,\x00\x01", exclude_categories=("Cs",)))
+CELLS = st.text(st.characters(exclude_characters="\n,\x00\x01\x02\x03", exclude_categories=("Cs",)))
 
 
 def sliced(cells):
@@ -77,3 +78,26 @@ def test_a_decimal_comma_is_read_where_asked():
 def test_numbers_in_memory_are_shown_as_typed():
     column = FloatColumn(np.array([12.84, 1e-7, 3.0, np.nan, np.inf]))
     assert [column.text(row) for row in range(5)] == ["12.84", "0.0000001", "3", "", "inf"]
+
+
+CLOCKS = st.one_of(
+    st.text("0123456789:.,", max_size=14),
+    st.from_regex(r"\A([0-9]{1,3}:)?[0-9]{1,4}:[0-9]{2}([.,][0-9]{1,6})?\Z"),
+)
+
+
+@settings(deadline=None, max_examples=300)
+@given(st.lists(CLOCKS, min_size=1))
+def test_clock_times_of_bytes_are_those_of_single_texts(cells):
+    cells = [cell.replace(",", ";") for cell in cells]  # the comma parts the cells here
+    found = sliced(cells).clocks()
+    for cell, value, clean, whole in zip(
+        cells, found.values, found.clean, found.whole, strict=True
+    ):
+        expected = read_clock(cell)
+        if clean:
+            assert value == expected
+            assert whole == (
+                cell.count(":") == 2 and value % 60 == 0 and value >= 3600 and "." not in cell
+            )
+    assert sliced(["1:03.15", "01:02:03", "9:59"]).clocks().clean.all()

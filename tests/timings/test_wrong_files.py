@@ -98,10 +98,7 @@ BYTES = {
     ),
     "long quoted cell": (
         b'time [s],note\n1,"' + b"x" * 90_000 + b"\n" + b"y" * 90_000 + b'"\n',
-        [
-            "t.csv:2: a quoted cell that opens in this row is never closed; close the quote, or"
-            ' write a quote that belongs to the text twice ("")'
-        ],
+        ["t.csv:2:2: the note has 180001 characters; write at most 2000"],
     ),
 }
 

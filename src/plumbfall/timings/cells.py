@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
-from plumbfall.timings.byte_columns import STAND_IN
+import re
+from dataclasses import replace
+
+from plumbfall.timings.byte_columns import BREAK, QUOTE, STAND_IN, as_written
 from plumbfall.timings.clean_rows import cut_clean, unquoted
 from plumbfall.timings.grid import WIDEST, Grid
 from plumbfall.timings.notices import Notices
@@ -34,16 +37,20 @@ def read_cells(data: bytes, delimiter: str, heading_line: int, notices: Notices)
     for _ in range(heading_line - 1):
         start = data.index(b"\n", start) + 1
     text = data[start:] if start else data
-    if b'"' in text:
+    if any(bytes((stand_in,)) in data for stand_in in (STAND_IN, BREAK, QUOTE)):
+        text = b""
+    elif b'"' in text:
         text = unquoted(text, delimiter)
-    if text and delimiter != " " and bytes((STAND_IN,)) not in data:
+    elif delimiter == " ":
+        text = re.sub(rb" *\n *", b"\n", re.sub(rb"  +", b" ", text)).strip(b" ")
+    if text and (delimiter != " " or b'"' not in data):
         heading, _, body = text.partition(b"\n")
         headings = tuple(
-            cell.replace(chr(STAND_IN), delimiter).strip()
-            for cell in heading.decode("utf-8").split(delimiter)
+            as_written(cell, delimiter).strip() for cell in heading.decode("utf-8").split(delimiter)
         )
         if len(headings) <= WIDEST:
-            grid = cut_clean(body, delimiter, headings, heading_line, notices)
+            first = heading_line + 1 + heading.count(BREAK)
+            grid = cut_clean(body, delimiter, headings, first, notices)
             if grid is not None:
-                return grid
+                return replace(grid, heading_line=heading_line)
     return cut_any(data[start:].decode("utf-8"), delimiter, heading_line, notices)

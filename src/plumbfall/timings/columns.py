@@ -11,7 +11,17 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
-__all__ = ["Column", "FloatColumn", "Integers", "Numbers", "TextColumn", "number_text", "rows_of"]
+__all__ = [
+    "Clocks",
+    "Column",
+    "FloatColumn",
+    "Integers",
+    "Numbers",
+    "TextColumn",
+    "number_text",
+    "rows_of",
+    "unread",
+]
 
 Integers = NDArray[np.int64]
 T = TypeVar("T")
@@ -33,6 +43,24 @@ class Numbers:
     fractional: bool
 
 
+@dataclass(frozen=True, slots=True)
+class Clocks:
+    """A column's times with colons in seconds, shape (rows,); not ``clean`` where a cell is none.
+
+    ``whole`` says where a time has hours and whole minutes only.
+    """
+
+    values: NDArray[np.float64]
+    clean: NDArray[np.bool_]
+    whole: NDArray[np.bool_]
+
+    @classmethod
+    def none(cls, rows: int) -> Clocks:
+        """Return a column that has none."""
+        no = np.zeros(rows, dtype=bool)
+        return cls(np.full(rows, np.nan), no, no)
+
+
 class Column(Protocol):
     """What the layout asks of a column, wherever its cells come from."""
 
@@ -47,8 +75,21 @@ class Column(Protocol):
     def numbers(self, decimal: str = ".") -> Numbers:
         """Read every plain number, correctly rounded; nothing is guessed."""
 
+    def clocks(self) -> Clocks:
+        """Read times such as 1:03.15 or 1:02:03, as far as that is done for all rows at once."""
+
     def take(self, rows: Integers) -> Column:
         """Return some of the rows."""
+
+
+def unread(column: Column) -> Integers:
+    """Return the rows that hold neither a plain number, by point or comma, nor a clock time."""
+    rest = np.flatnonzero(~column.numbers(".").clean)
+    if rest.size:
+        rest = rest[~column.clocks().clean[rest]]
+    if rest.size:
+        rest = rest[~column.numbers(",").clean[rest]]
+    return rest.astype(np.int64, copy=False)
 
 
 def number_text(value: float) -> str:
@@ -101,6 +142,10 @@ class TextColumn:
             self._distinct = _coded(self._cells)
         return self._distinct
 
+    def clocks(self) -> Clocks:
+        """Return none: distinct texts are read one by one."""
+        return Clocks.none(len(self))
+
     def take(self, rows: Integers) -> TextColumn:
         """Return some of the rows."""
         return TextColumn(self._cells[rows])
@@ -152,6 +197,10 @@ class FloatColumn:
         """Return the finite numbers as they are."""
         clean = np.isfinite(self._values)
         return Numbers(np.where(clean, self._values, np.nan), clean, True)
+
+    def clocks(self) -> Clocks:
+        """Return none."""
+        return Clocks.none(len(self))
 
     def take(self, rows: Integers) -> FloatColumn:
         """Return some of the rows."""

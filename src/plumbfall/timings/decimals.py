@@ -18,6 +18,7 @@ from plumbfall.timings.values import is_thousands, looks_like_number
 __all__ = ["Decimal", "find_decimal"]
 
 _DECLARE = 'decimal = "," under [timings] in the bench sheet'
+_FIRST = 1000
 _SPACES = re.compile(r"[\s\u00a0\u2009\u202f]")
 
 
@@ -105,6 +106,16 @@ def _found(columns: Iterable[tuple[Column, str]], delimiter: str, thousands: str
         numbers = column.numbers(".")
         points |= numbers.fractional
         rest = np.flatnonzero(~numbers.clean)
+        if not rest.size:
+            continue
+        by_comma = column.numbers(",").clean[rest]
+        if by_comma.any():
+            # what is certain in a few is certain; only where it is not are all looked at
+            first = column.distinct(rest[by_comma][:_FIRST])[1]
+            if all(map(is_thousands, first)):
+                first = column.distinct(rest[by_comma])[1]
+            commas += first
+        rest = rest[~(by_comma | column.clocks().clean[rest])]
         if rest.size:
             for text in column.distinct(rest)[1]:
                 parted = part_unit(text, what)

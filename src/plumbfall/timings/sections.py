@@ -8,7 +8,7 @@ from dataclasses import dataclass, field, replace
 
 import numpy as np
 
-from plumbfall.timings.columns import TextColumn
+from plumbfall.timings.columns import Integers, TextColumn, unread
 from plumbfall.timings.grid import Grid
 from plumbfall.timings.heading_rows import DEPTH, Head, read_head
 from plumbfall.timings.headings import TIMES
@@ -19,10 +19,12 @@ from plumbfall.timings.values import is_missing
 from plumbfall.timings.vocabulary import Vocabulary, is_value
 from plumbfall.timings.widths import evened
 
-__all__ = ["Above", "Section", "cut_sections"]
+__all__ = ["MOST_SECTIONS", "Above", "Section", "cut_sections"]
 
 _PLAIN = re.compile(r"[+-]?[0-9:.,]+")
 _MOST_SHOWN = 3
+MOST_SECTIONS = 500
+"""Blocks with headings or titles of their own that are read of one file."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,13 +49,23 @@ class Section:
 
 @dataclass(slots=True)
 class _Part:
-    """A section while it is found: its headings, and the rows from ``start`` up to ``end``."""
+    """A section while it is found: its headings, and rows from ``start`` up to ``end``.
+
+    ``earlier`` are rows further up under the same headings, which stand again, as on every page.
+    """
 
     head: Head
     line: int | None
     start: int
     end: int
     titles: dict[str, tuple[Title, int]]
+    earlier: tuple[tuple[int, int], ...] = ()
+
+    @property
+    def rows(self) -> Integers:
+        """Every row of the section."""
+        ranges = (*self.earlier, (self.start, self.end))
+        return np.concatenate([np.arange(*one, dtype=np.int64) for one in ranges])
 
 
 def cut_sections(
@@ -65,7 +77,14 @@ def cut_sections(
     """
     titles = _titles_above(grid, above, vocabulary, notices)
     first = _first_part(grid, above, titles, vocabulary, notices)
-    for part in _parts(grid, first, vocabulary, notices):
+    for number, part in enumerate(_parts(grid, first, vocabulary, notices)):
+        if number == MOST_SECTIONS:
+            notices.error(
+                f"the file has more than {MOST_SECTIONS} blocks under headings of their own",
+                "write one row of headings, and what the blocks are for in a column",
+                part.line,
+            )
+            return
         yield _section(grid, part, vocabulary, notices)
 
 
@@ -166,8 +185,12 @@ def _parts(grid: Grid, part: _Part, vocabulary: Vocabulary, notices: Notices) ->
         else:
             unclear = row
             continue
-        if end > part.start:
-            part.end = end
+        part.end = end
+        if head.texts == part.head.texts and titles == part.titles:
+            earlier = (*part.earlier, (part.start, end))
+            part = _Part(head, part.line, start, len(grid), part.titles, earlier)
+            continue
+        if part.rows.size:
             yield part
         part = _Part(head, heading_line, start, len(grid), dict(titles))
     yield part
@@ -179,7 +202,7 @@ def _special_rows(grid: Grid, head: Head, start: int, vocabulary: Vocabulary) ->
     if not times or times[0] > len(grid.columns) or start >= len(grid):
         return []
     column = grid.columns[times[0] - 1]
-    rest = np.flatnonzero(~column.numbers(".").clean)
+    rest = unread(column)
     rest = rest[rest >= start]
     if not rest.size:
         return []
@@ -200,8 +223,8 @@ def _special_rows(grid: Grid, head: Head, start: int, vocabulary: Vocabulary) ->
 
 
 def _section(grid: Grid, part: _Part, vocabulary: Vocabulary, notices: Notices) -> Section:
-    whole = part.start == 0 and part.end == len(grid)
-    rows = grid if whole else grid.take(np.arange(part.start, part.end, dtype=np.int64))
+    chosen = part.rows
+    rows = grid if chosen.size == len(grid) else grid.take(chosen)
     rows = replace(rows, headings=part.head.texts, heading_line=part.line)
     rows = _padded(rows)
     headings = vocabulary.read_all(rows.headings)

@@ -75,6 +75,15 @@ def parse_column(
     hours = np.zeros(0, dtype=np.int64)
     plain_row = -1 if scaled or not numbers.clean.any() else int(numbers.clean.argmax())
     rest = np.flatnonzero(~numbers.clean)
+    whole_clocks = np.zeros(0, dtype=np.int64)
+    any_clocks = 0
+    if clock and rest.size and not (unit is not None and unit.exact.factor == 3600):
+        clocks = column.clocks()
+        values = np.where(clocks.clean, clocks.values, values)
+        rest = rest[~clocks.clean[rest]]
+        any_clocks = int(clocks.clean.sum())
+        whole_clocks = np.flatnonzero(clocks.whole)
+    hours = whole_clocks if whole_clocks.size == any_clocks else hours
     if rest.size:
         values = values.copy()
         codes, texts = column.distinct(rest)
@@ -104,10 +113,12 @@ def parse_column(
         missing[rest] = absent[codes]
         faults = [(int(rest[place]), fault) for place, fault in rows_of(codes, wrong)]
         bad[[row for row, _ in faults]] = True
-        clocks = np.array([":" in text for text in texts], dtype=bool)
+        clocks_here = np.array([":" in text for text in texts], dtype=bool)
         whole = np.array([_WHOLE_MINUTES.fullmatch(text) is not None for text in texts], dtype=bool)
-        if clock and whole.any() and (whole == clocks).all():
-            hours = rest[whole[codes]]
+        if clock and whole_clocks.size == any_clocks and (whole == clocks_here).all():
+            hours = np.sort(np.concatenate((whole_clocks, rest[whole[codes]])))
+        else:
+            hours = np.zeros(0, dtype=np.int64)
     return Parsed(values, missing, bad, faults, plain_row, hours if hours.size > 1 else None)
 
 

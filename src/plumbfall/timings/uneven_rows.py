@@ -3,49 +3,67 @@
 from __future__ import annotations
 
 import csv
+import io
 from collections.abc import Iterator
 from itertools import zip_longest
 
 import numpy as np
 
-from plumbfall.timings.clocks import read_clock
 from plumbfall.timings.columns import TextColumn
 from plumbfall.timings.comments import note_comments
 from plumbfall.timings.grid import WIDEST, Grid
+from plumbfall.timings.line_breaks import note_breaks
 from plumbfall.timings.notices import Notices
-from plumbfall.timings.values import looks_like_number
 
 __all__ = ["cut_any", "cut_rows"]
 
-_BATCH = 4096
+_BATCH = 250
+"""Rows moved at a time: few enough that the collector of garbage never looks at them twice."""
 
 
-class _Lines:
-    """Hands a file's lines to the csv reader, leaves out comments, and counts.
+class _Rows:
+    """Hands a file's rows over as the csv reader cuts them, with the line each begins in.
 
-    ``row_line`` is the line in which the row begins that the reader is in, ``line`` the latest.
-    The reader's user sets ``between_rows`` after each row: only there can a comment stand.
+    Comments are left out, and gathered; ``line`` is the latest line, ``row_line`` that in which
+    the row begins that the reader is in.
     """
 
-    def __init__(self, text: str, first: int) -> None:
-        self._lines = text.split("\n")
-        if self._lines and not self._lines[-1]:
-            self._lines.pop()
+    def __init__(self, text: str, delimiter: str, first: int) -> None:
         self._first = first
-        self.line = self.row_line = first
-        self.between_rows = True
+        self._between = True
+        self._commented = text.startswith("#") or "\n#" in text
+        lines = self._uncommented(text) if self._commented else io.StringIO(text)
+        self._reader = csv.reader(lines, delimiter=delimiter, strict=True, skipinitialspace=True)
+        self._left_out = 0
+        self.row_line = first
         self.comments: list[tuple[int, str]] = []
 
-    def __iter__(self) -> Iterator[str]:
-        for line, text in enumerate(self._lines, self._first):
-            self.line = line
-            if self.between_rows:
-                if text.startswith("#"):
-                    self.comments.append((line, text))
-                    continue
-                self.row_line = line
-                self.between_rows = False
-            yield text + "\n"
+    @property
+    def line(self) -> int:
+        """The latest line that was read."""
+        return self._first - 1 + self._reader.line_num + self._left_out
+
+    def _uncommented(self, text: str) -> Iterator[str]:
+        for line in io.StringIO(text):
+            if self._between and line.startswith("#"):
+                self._left_out += 1
+                self.comments.append((self.line, line.rstrip("\n")))
+                continue
+            if self._between:
+                self.row_line = self.line + 1
+                self._between = False
+            yield line
+
+    def __iter__(self) -> Iterator[list[str]]:
+        reader = self._reader
+        if not self._commented:
+            for cells in reader:
+                yield cells
+                self.row_line = self._first + reader.line_num
+            return
+        for cells in reader:
+            self._between = True
+            yield cells
 
 
 def cut_any(text: str, delimiter: str, heading_line: int, notices: Notices) -> Grid | None:
@@ -67,8 +85,7 @@ def cut_any(text: str, delimiter: str, heading_line: int, notices: Notices) -> G
     Grid or None
         ``None`` where the cells cannot be told apart; the notices then hold an error.
     """
-    source = _Lines(text, heading_line)
-    reader = csv.reader(iter(source), delimiter=delimiter, strict=True, skipinitialspace=True)
+    source = _Rows(text, delimiter, heading_line)
     headings: list[str] = []
     columns: list[list[str]] = []
     rows: list[list[str]] = []
@@ -76,9 +93,8 @@ def cut_any(text: str, delimiter: str, heading_line: int, notices: Notices) -> G
     widths: list[int] = []
     known: dict[str, str] = {}
     try:
-        for cells in reader:
-            first, last = source.row_line, source.line
-            source.between_rows = True
+        for cells in source:
+            first = source.row_line
             if not headings:
                 headings = [cell.strip() for cell in cells]
                 if len(headings) > WIDEST:
@@ -89,9 +105,9 @@ def cut_any(text: str, delimiter: str, heading_line: int, notices: Notices) -> G
             if len(cells) > WIDEST:
                 _note_width(len(cells), "row has", first, notices)
                 return None
-            if last > first:
-                _note_breaks(cells, first, last, delimiter, len(headings), notices)
-            if not any(map(str.strip, cells)):
+            if source.line > first:
+                note_breaks(cells, first, source.line, delimiter, len(headings), notices)
+            if not cells or (not cells[0] and not any(map(str.strip, cells))):
                 if len(cells) > 1:
                     notices.repair("a row of empty cells is left out", first)
                 continue
@@ -123,14 +139,11 @@ def cut_rows(
     Returns the rows and the line of each; ``None``, and an error noted, where the cells cannot be
     told apart.
     """
-    source = _Lines(text, 1)
+    source = _Rows(text, delimiter, 1)
     rows: list[list[str]] = []
     lines: list[int] = []
     try:
-        for cells in csv.reader(
-            iter(source), delimiter=delimiter, strict=True, skipinitialspace=True
-        ):
-            source.between_rows = True
+        for cells in source:
             if cells:
                 rows.append(cells)
                 lines.append(source.row_line)
@@ -156,7 +169,7 @@ def _note_width(width: int, what: str, line: int, notices: Notices) -> None:
     notices.error(f"the {what} {width} cells", f"a timing file has at most {WIDEST} columns", line)
 
 
-def _note_quote(fault: str, source: _Lines, notices: Notices) -> None:
+def _note_quote(fault: str, source: _Rows, notices: Notices) -> None:
     if "expected after" in fault:
         notices.error(
             "a quoted cell goes on after its closing quote",
@@ -169,26 +182,3 @@ def _note_quote(fault: str, source: _Lines, notices: Notices) -> None:
             'close the quote, or write a quote that belongs to the text twice ("")',
             source.row_line,
         )
-
-
-def _note_breaks(
-    cells: list[str], first: int, last: int, delimiter: str, width: int, notices: Notices
-) -> None:
-    """List line breaks within quotes; refuse those that seem to have swallowed rows."""
-    for number, cell in enumerate(cells, 1):
-        if any(_like_row(inner, delimiter, width) for inner in cell.split("\n")[1:]):
-            notices.error(
-                f"a quoted cell runs from line {first} to line {last} and holds whole rows",
-                "look for a quote that is not closed",
-                first,
-                number,
-            )
-        elif "\n" in cell:
-            notices.repair(f"a quoted cell runs on to line {last}", first, number)
-
-
-def _like_row(line: str, delimiter: str, width: int) -> bool:
-    cells = line.split(delimiter)
-    return len(cells) >= width > 1 and any(
-        looks_like_number(cell.strip()) or read_clock(cell.strip()) is not None for cell in cells
-    )
