@@ -7,7 +7,7 @@ import math
 import numpy as np
 import pytest
 from scipy.optimize import curve_fit
-from scipy.stats import f
+from scipy.stats import f, ttest_ind_from_stats
 
 from plumbfall.run_sets.temperature_laws import LAWS
 from plumbfall.uncertainty.least_squares import Evaluated, NoFitError, fit, fit_linear
@@ -93,7 +93,8 @@ def test_as_many_values_as_parameters_leave_nothing_to_judge_by():
     found = fit_linear([[1.0, 0.0], [1.0, 1.0]], [2.0, 5.0], np.diag([0.1, 0.2]) ** 2)
     assert found.parameters == pytest.approx([2.0, 3.0], rel=1e-12)
     assert found.u == pytest.approx([0.1, math.hypot(0.1, 0.2)], rel=1e-12)
-    assert math.isnan(found.p_value())
+    assert math.isnan(found.p_value(np.zeros(2), np.full(2, np.inf)))
+    assert math.isnan(found.goodness(np.zeros(2), np.full(2, np.inf)).p_value)
     with pytest.raises(NoFitError):
         found.scaled()
 
@@ -145,4 +146,40 @@ def test_misfit_of_exactly_known_errors_is_chi_squared():
     design, u = np.ones((3, 1)), 1.0
     distance = math.sqrt(5.9915 / 2)
     found = fit_linear(design, [-distance, 0.0, distance], np.eye(3) * u)
-    assert found.p_value() == pytest.approx(0.05, abs=1e-5)
+    known = np.zeros(3), np.full(3, np.inf)
+    assert found.p_value(*known) == pytest.approx(0.05, abs=1e-5)
+    goodness = found.goodness(*known)
+    assert goodness.chi_squared == pytest.approx(5.9915)
+    assert goodness.p_value == pytest.approx(0.05, abs=1e-5)
+
+
+def test_goodness_of_two_means_is_welchs_t_test():
+    theirs = ttest_ind_from_stats(10.0, 2.0, 5, 12.5, 0.7, 9, equal_var=False)
+    variance = np.array([2.0**2 / 5, 0.7**2 / 9])
+    found = fit(
+        lambda p: Evaluated(np.ones(2) * p[0], np.ones((2, 1))),
+        [0.0], [10.0, 12.5], np.diag(variance), np.eye(2),
+    )  # fmt: skip
+    ours = found.goodness(variance, np.array([4.0, 8.0]))
+    assert ours.p_value == pytest.approx(theirs.pvalue, rel=1e-6)
+
+
+@pytest.mark.parametrize("spread", [0.0, 1.0])
+@pytest.mark.parametrize(("sets", "drops"), [(3, 3), (5, 2), (10, 3), (30, 3)])
+def test_goodness_finds_no_more_than_its_level_in_what_follows_the_law(sets, drops, spread):
+    """Own scatter seen in few drops, alike or from 0.4 to 2.7 times as large, by simulation."""
+    rng = np.random.default_rng(4)
+    x = np.linspace(-1.0, 1.0, sets)
+    design, dof = np.stack([np.ones(sets), x], axis=1), np.full(sets, drops - 1.0)
+    found = []
+    for _ in range(400):
+        values = np.exp(spread * x)[:, None] * rng.standard_normal((sets, drops))
+        variance = values.var(axis=1, ddof=1) / drops
+        made = fit(
+            lambda p: Evaluated(design @ p, design),
+            [0.0, 0.0], values.mean(axis=1), np.diag(variance), np.eye(sets) * variance.mean(),
+        )  # fmt: skip
+        found.append(made.goodness(variance, dof).p_value)
+    # two standard deviations of 400 trials are 2.2 %
+    assert np.mean(np.array(found) < 0.05) <= 0.072
+    assert np.mean(np.array(found) < 0.0023) <= 0.012

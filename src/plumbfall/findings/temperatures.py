@@ -69,7 +69,7 @@ def slope_unknown(data: RunData) -> Iterator[Found]:
 def fitted_slope(data: RunData) -> Iterator[Found]:
     """Find run sets that the law fitted to them does not describe, or not where it is asked to."""
     for fit in data.fits:
-        if fit.p_value < level_of_each(data.limits):
+        if fit.goodness.p_value < level_of_each(data.limits):
             yield from _misfit(data, fit)
         reference = data.bench.reference_temperature
         if reference is None:
@@ -102,8 +102,8 @@ def _misfit(data: RunData, fit: TemperatureFit) -> Iterator[Found]:
             Finding(
                 code="slope-unknown",
                 severity="warning",
-                statistic=fit.chi_squared,
-                p_value=fit.p_value,
+                statistic=fit.goodness.chi_squared,
+                p_value=fit.goodness.p_value,
                 effect=effect,
                 message=f"the run sets of {fit.liquid} do not follow {fit.law.title}: set "
                 f"'{name}' lies {100 * effect:.2g} % off it, more than their uncertainties allow",

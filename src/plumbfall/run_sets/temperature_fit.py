@@ -23,7 +23,7 @@ from plumbfall.measurement.selection import Selection
 from plumbfall.run_sets.jacobian import Jacobian
 from plumbfall.run_sets.repeatability import OF_DROPS, OF_VALUES, Repeatability
 from plumbfall.run_sets.temperature_laws import LAWS, TemperatureLaw
-from plumbfall.uncertainty.least_squares import LeastSquares, NoFitError, fit
+from plumbfall.uncertainty.least_squares import Goodness, LeastSquares, NoFitError, fit
 
 __all__ = ["APART", "TemperatureFit", "fit_temperatures", "slopes_of", "with_fitted_slopes"]
 
@@ -40,8 +40,8 @@ class TemperatureFit:
 
     ``sets`` are the places of the run sets fitted, ``members`` those of all the liquid's sets
     that have a temperature, whose slope the fit gives. ``rows`` are the parameters' sensitivities
-    to the columns of the Jacobian, shape (parameters, columns). ``chi_squared`` and ``p_value``
-    measure the sets' distances from the law by each set's own scatter, not by the pooled one that
+    to the columns of the Jacobian, shape (parameters, columns). ``goodness``
+    measures the sets' distances from the law by each set's own scatter, not by the pooled one that
     weighs them.
     """
 
@@ -52,8 +52,7 @@ class TemperatureFit:
     temperature: Numbers
     found: LeastSquares
     rows: sparse.csr_array
-    chi_squared: float
-    p_value: float
+    goodness: Goodness
 
     def log_viscosity(self, temperature: Numbers) -> tuple[Numbers, Numbers]:
         """ln(viscosity) of the law, and its derivatives by the parameters, shape (..., those)."""
@@ -158,12 +157,6 @@ def _fit(
             covariance - by_sets + by_all,
         )
         _check(law, found, at)
-        tested = fit(
-            lambda parameters: law.evaluate(parameters, at),
-            found.parameters,
-            log_viscosity,
-            covariance,
-        )
     except NoFitError as error:
         raise InputError(
             f"{law.title} cannot be fitted to the run sets of liquid {liquid}: {error}",
@@ -181,8 +174,7 @@ def _fit(
         temperature=at,
         found=found,
         rows=sparse.csr_array(sparse.csr_array(found.sensitivities) @ relative),
-        chi_squared=tested.chi_squared,
-        p_value=tested.p_value(observed, own_dof),
+        goodness=found.goodness(observed, own_dof),
     )
 
 

@@ -54,9 +54,9 @@ def fit_result(
         temperatures=tuple(fit.temperature.tolist()),
         residuals=tuple(found.residuals.tolist()),
         slopes=tuple(fit.slope(fit.temperature).tolist()),
-        chi_squared=None if math.isnan(fit.chi_squared) else fit.chi_squared,
+        chi_squared=None if math.isnan(fit.goodness.chi_squared) else fit.goodness.chi_squared,
         dof=found.dof,
-        p_value=None if math.isnan(fit.p_value) else fit.p_value,
+        p_value=None if math.isnan(fit.goodness.p_value) else fit.goodness.p_value,
         reference_temperature=reference,
         viscosity_at_reference=None
         if reference is None

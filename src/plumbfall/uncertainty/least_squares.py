@@ -18,13 +18,16 @@ from scipy.special import chdtrc, fdtrc
 
 from plumbfall.errors import PlumbfallError
 
-__all__ = ["Evaluated", "LeastSquares", "NoFitError", "fit", "fit_linear"]
+__all__ = ["Evaluated", "Goodness", "LeastSquares", "NoFitError", "fit", "fit_linear"]
 
 Numbers = NDArray[np.float64]
 
 MOST_STEPS = 100
 SETTLED = 1e-9
 """Steps stop once they move the fit, in standard uncertainties, or every parameter by less."""
+MANY = 1e8
+"""Degrees of freedom that are as good as unlimited."""
+
 SINGULAR = 1e-12
 """Variances below this part of the largest are taken as no errors of the values' own."""
 
@@ -56,7 +59,9 @@ class LeastSquares:
 
     ``sensitivities`` are the parameters' derivatives by the values, shape (parameters, values);
     ``chi_squared`` is the sum of squared residuals in units of the covariance that weighs them,
-    NaN where that is singular. ``projector`` is P of chi-squared = y' P y, shape (values, values).
+    NaN where that is singular. ``contrasts`` are what the values must be multiplied with for
+    the independent distances from the model whose squares make chi-squared, shape (dof, values),
+    and ``of_contrasts`` is the covariance of these distances by that of the values.
     """
 
     parameters: Numbers
@@ -65,7 +70,8 @@ class LeastSquares:
     residuals: Numbers
     chi_squared: float
     dof: int
-    projector: Numbers
+    contrasts: Numbers
+    of_contrasts: Numbers
 
     @property
     def u(self) -> Numbers:
@@ -86,26 +92,28 @@ class LeastSquares:
             residuals=self.residuals,
             chi_squared=float(self.dof),
             dof=self.dof,
-            projector=self.projector * (self.dof / self.chi_squared),
+            contrasts=self.contrasts * math.sqrt(self.dof / self.chi_squared),
+            of_contrasts=self.of_contrasts,
         )
 
-    def p_value(
-        self, own_variance: ArrayLike | None = None, own_dof: ArrayLike | None = None
-    ) -> float:
+    def p_value(self, own_variance: ArrayLike, own_dof: ArrayLike) -> float:
         """Probability of a chi-squared at least as large if the model holds.
+
+        For values weighed by their own variances, part of which were estimated from few
+        observations; large values of chi-squared are then common. With many values of few
+        observations each it finds too much: see :meth:`goodness`.
 
         Parameters
         ----------
-        own_variance : array, shape (values,), optional
-            The part of each value's variance that was estimated from few observations.
-        own_dof : array, shape (values,), optional
+        own_variance : array, shape (values,)
+            The part of each value's variance that was so estimated.
+        own_dof : array, shape (values,)
             Degrees of freedom of that estimate.
 
         Returns
         -------
         float
-            NaN without degrees of freedom. By the chi-squared distribution, or, as variances from
-            few observations make large values of it common, by Johansen's F.
+            NaN without degrees of freedom.
 
         References
         ----------
@@ -114,14 +122,58 @@ class LeastSquares:
         n = self.dof
         if n < 1 or math.isnan(self.chi_squared):
             return math.nan
-        if own_variance is None or own_dof is None:
-            return float(chdtrc(n, self.chi_squared))
-        parts = np.diag(self.projector) * np.asarray(own_variance, dtype=float)
+        parts = (self.contrasts**2).sum(axis=0) * np.asarray(own_variance, dtype=float)
         a = float(np.sum(parts**2 / np.asarray(own_dof, dtype=float)))
         if a <= 0:
             return float(chdtrc(n, self.chi_squared))
         larger = n + 2 * a - 6 * a / (n + 2)
         return float(fdtrc(n, n * (n + 2) / (3 * a), self.chi_squared / larger))
+
+    def goodness(self, own_variance: ArrayLike, own_dof: ArrayLike) -> Goodness:
+        """Return chi-squared by the values' own variances, and the chance of one as large.
+
+        For values weighed alike, whatever their own variances: the sum of squared distances over
+        its expectation by these variances is taken for Fisher's F, with degrees of freedom by the
+        first two moments of both. Its size holds for any number of values of two observations or
+        more each, also of unequal variances (simulated).
+
+        Parameters
+        ----------
+        own_variance : array, shape (values,)
+            The part of each value's variance that was estimated from few observations.
+        own_dof : array, shape (values,)
+            Degrees of freedom of that estimate.
+
+        Returns
+        -------
+        Goodness
+            Chi-squared is scaled to have the fit's degrees of freedom as expectation.
+
+        References
+        ----------
+        G. E. P. Box, Ann. Math. Stat. 25 (1954) 290; E. Brunner, H. Dette and A. Munk, J. Am.
+        Stat. Assoc. 92 (1997) 1494.
+        """
+        if self.dof < 1 or math.isnan(self.chi_squared):
+            return Goodness(math.nan, math.nan)
+        own, few = np.asarray(own_variance, dtype=float), np.asarray(own_dof, dtype=float)
+        expected = float(np.trace(self.of_contrasts))
+        parts = (self.contrasts**2).sum(axis=0) * own
+        # the squares of estimated variances are too large on average
+        squared = float(np.sum(self.of_contrasts**2) - np.sum(parts**2 * 2 / (few + 2)))
+        n = min(expected**2 / max(squared, expected**2 / self.dof), float(self.dof))
+        doubt = float(np.sum(parts**2 / few))
+        ratio = self.chi_squared / expected
+        within = min(expected**2 / doubt, MANY) if doubt > 0 else MANY
+        return Goodness(ratio * self.dof, float(fdtrc(n, within, ratio)))
+
+
+@dataclass(frozen=True, slots=True)
+class Goodness:
+    """How good a fit is: chi-squared, and the chance of one at least as large; NaN if unknown."""
+
+    chi_squared: float
+    p_value: float
 
 
 def fit_linear(design: ArrayLike, values: ArrayLike, covariance: ArrayLike) -> LeastSquares:
@@ -220,7 +272,7 @@ def fit(
         bent = np.einsum("k,kij->ij", pull, at.curvature) / np.outer(scale, scale)
         sensitivities = np.linalg.solve(r.T @ r - bent, r.T @ q.T @ inverse_root)
         sensitivities = sensitivities / scale[:, None]
-    across = inverse_root - q @ (q.T @ inverse_root)
+    contrasts = np.linalg.qr(q, mode="complete")[0][:, len(parameters) :].T @ inverse_root
     return LeastSquares(
         parameters=parameters,
         sensitivities=sensitivities,
@@ -228,7 +280,8 @@ def fit(
         residuals=y - at.values,
         chi_squared=float(residual @ residual) if regular else math.nan,
         dof=dof,
-        projector=across.T @ across,
+        contrasts=contrasts,
+        of_contrasts=contrasts @ v @ contrasts.T,
     )
 
 
