@@ -85,9 +85,9 @@ def chance(probability: float) -> str:
     >>> chance(0.9731), chance(0.99999), chance(0.0002)
     ('97.3 %', 'more than 99.9 %', 'less than 0.1 %')
     """
-    if 0.0 < probability < 0.001:
+    if probability < 0.0005:
         return "less than 0.1 %"
-    if 0.999 < probability < 1.0:
+    if probability > 0.9995:
         return "more than 99.9 %"
     return f"{100.0 * probability:.1f} %"
 

@@ -116,7 +116,7 @@ class CheckReport:
         from plumbfall.report.check_figure import draw_checks
         from plumbfall.report.placing import in_its_place
 
-        return in_its_place(lambda place: draw_checks(self.checks, place), ax)
+        return in_its_place(lambda place: draw_checks(self.checks, place), ax, len(self))
 
     def __repr__(self) -> str:
         return f"<check of {len(self)} run sets: {self.decision}>"

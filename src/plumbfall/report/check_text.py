@@ -116,7 +116,7 @@ def check_fragment(report: CheckReport) -> str:
     picture = ""
     if any(check.bias is not None for check in report.checks):
         picture = inline_svg(
-            own_figure(lambda ax: draw_checks(report.checks, ax)),
+            own_figure(lambda ax: draw_checks(report.checks, ax), len(report)),
             "check",
             "Bias",
             "Bias of each run set with its bounds",

@@ -13,19 +13,20 @@ if TYPE_CHECKING:
 
 __all__ = ["in_its_place", "own_figure"]
 
-SIZE = (6.4, 3.4)
+WIDTH, BASE, ROW = 6.4, 1.6, 0.4
+"""Inches."""
 
 
-def in_its_place(draw: Callable[[Axes], Axes], ax: Axes | None) -> Figure | Axes:
+def in_its_place(draw: Callable[[Axes], Axes], ax: Axes | None, rows: int = 1) -> Figure | Axes:
     """Draw into the Axes that are given and return them, or return a new Figure."""
-    return own_figure(draw) if ax is None else draw(ax)
+    return own_figure(draw, rows) if ax is None else draw(ax)
 
 
-def own_figure(draw: Callable[[Axes], Axes]) -> Figure:
-    """Draw into a new figure, outside pyplot."""
+def own_figure(draw: Callable[[Axes], Axes], rows: int = 1) -> Figure:
+    """Draw into a new figure, outside pyplot, as high as so many ``rows`` of marks need."""
     from matplotlib.figure import Figure
 
-    figure = Figure(figsize=SIZE, layout="constrained")
+    figure = Figure(figsize=(WIDTH, BASE + ROW * rows), layout="constrained")
     with house_style():
         place = figure.add_subplot()
     draw(place)
