@@ -90,6 +90,15 @@ def test_an_expired_certificate_decides_nothing():
     assert "is not known, as the drops have no date" in unknown.reason
 
 
+def test_warnings_of_the_data_stand_beside_the_decision():
+    table = drops_table(TIMES).assign(started="2026-06-01T09:00")
+    report = pf.check(table, bench_with(expires="2026-05-31"), reference="R")
+    assert "reference-expired" in {finding.code for finding in report["A"].findings}
+    assert "Found         reference-expired" in report.text()
+    codes = [one["code"] for one in report.to_dict()["checks"][0]["findings"]]
+    assert "reference-expired" in codes
+
+
 def test_sets_of_other_liquids_are_passed_over_by_name():
     bench = bench_with()
     bench["liquid"]["syrup"] = {"density": "1.3 g/cm3"}
@@ -181,6 +190,7 @@ def test_a_constant_from_the_same_certificate_leaves_the_check_undecided(tmp_pat
         one = calibrated(tmp_path, **certified)
         assert (one.decision, one.e_n, one.zeta) == ("undecided", None, None)
         assert "not independent" in one.reason
+        assert one.findings[-1].code == "reference-not-independent"
     assert calibrated(tmp_path, reference="other", certificate="C-18").decision == "passed"
 
 

@@ -21,8 +21,9 @@ from plumbfall.calibration.decisions import (
 from plumbfall.calibration.moments import day_of, last_started, operators
 from plumbfall.calibration.scores import e_n, zeta_score
 from plumbfall.errors import InputError, Problem, nearest_name
+from plumbfall.findings.independence import reference_not_independent
 from plumbfall.reduction import Reduction
-from plumbfall.results import Measured, Quantity, RunSetResult
+from plumbfall.results import Finding, Measured, Quantity, RunSetResult
 from plumbfall.uncertainty.coverage import coverage_factor, effective_dof
 
 __all__ = ["FAILED", "PASSED", "UNDECIDED", "CheckResult", "check_run_sets"]
@@ -37,7 +38,8 @@ class CheckResult:
     ``bias`` is measured over certified, less 1, with what both share taken into account; its
     degrees of freedom are ``bias_dof``. ``e_n`` and ``zeta`` are ``None`` where the two are not
     independent. ``law`` says how the certificate's points were joined; ``when`` is the set's last
-    ``started``, else the date given; ``invalid`` says that the data are.
+    ``started``, else the date given; ``invalid`` says that the data are. ``findings`` are those of
+    the data, and that measured and certified value are not independent.
     """
 
     run_set: str
@@ -57,6 +59,7 @@ class CheckResult:
     when: str
     operator: str
     invalid: bool = False
+    findings: tuple[Finding, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -165,7 +168,7 @@ def _checked(
     shared = _shared(reduction, entry, result.name)
     score = zeta = probability = None
     if bias is not None and measured is not None and certified is not None:
-        if not shared:
+        if shared is None:
             pair = {"value": measured.value, "reference_value": certified.value}
             score = float(
                 e_n(**pair, expanded=measured.expanded, reference_expanded=certified.expanded)
@@ -182,8 +185,8 @@ def _checked(
         codes = [one.code for one in result.findings if one.severity == "error"]
         told = f"the run set is invalid ({', '.join(dict.fromkeys(codes))})"
         decision, reason = UNDECIDED, told
-    elif shared:
-        decision, reason = UNDECIDED, shared
+    elif shared is not None:
+        decision, reason = UNDECIDED, f"{shared.message}; {shared.remedy}"
     elif day is not None and is_expired(entry, day):
         told = f"the certificate of {entry.name} expired on {entry.expires}, before {day}"
         decision, reason = UNDECIDED, told
@@ -214,6 +217,7 @@ def _checked(
         when=when,
         operator=operators(reduction.timings, result.name),
         invalid=invalid,
+        findings=result.findings if shared is None else (*result.findings, shared),
     )
 
 
@@ -276,30 +280,12 @@ def _dof(measured: Measured) -> float:
     return math.inf if measured.effective_dof is None else measured.effective_dof
 
 
-def _shared(reduction: Reduction, entry: Reference, name: str) -> str:
-    """Say on what both the tube constants in use and the certified value rest; empty if nothing."""
+def _shared(reduction: Reduction, entry: Reference, name: str) -> Finding | None:
+    """Find what both the tube constants in use and the certified value rest on."""
     sets = reduction.sets
-    place = reduction.names.index(name)
-    cells = np.flatnonzero(sets.selection.cells.run_set == place)
-    for constant in sets.inputs.constants_of(cells):
-        chosen = sets.inputs.constants[constant].chosen
-        for known in chosen.certified:
-            same = {
-                "the same reference": known.reference == entry.name,
-                "the same certificate": bool(known.certificate)
-                and known.certificate == entry.identity.certificate,
-                "the same bottle": bool(known.identity)
-                and known.identity == entry.identity.identity,
-            }
-            for what, is_so in same.items():
-                if is_so:
-                    return (
-                        f"the constant of tube {chosen.tube} and ball {chosen.ball} rests on "
-                        f"{what} ({known.certificate or known.identity or entry.name}): measured "
-                        "and certified value are not independent, and the check shows "
-                        "repeatability only; check with another certified liquid"
-                    )
-    return ""
+    cells = np.flatnonzero(sets.selection.cells.run_set == reduction.names.index(name))
+    used = [sets.inputs.constants[place] for place in sets.inputs.constants_of(cells)]
+    return reference_not_independent(used, entry)
 
 
 def _by_tolerance(bias: _Bias, tolerance: float, probability: float) -> tuple[str, str]:

@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
 from plumbfall.calibration.check import FAILED, PASSED, UNDECIDED, CheckResult
-from plumbfall.report.json_report import json_text, measured_document
+from plumbfall.report.json_report import finding_document, json_text, measured_document
 from plumbfall.report.json_values import finite_or_none
 from plumbfall.results import Measured, Quantity
 
@@ -152,6 +152,7 @@ def _document(check: CheckResult) -> dict[str, Any]:
         "reason": check.reason,
         "when": check.when,
         "operator": check.operator,
+        "findings": [finding_document(finding) for finding in check.findings],
     }
 
 

@@ -82,6 +82,9 @@ def _lines(report: CheckReport) -> Iterator[str]:
             told += f"{100 * check.tolerance:g} % either way"
             why = explain("conformance probability")
             yield from wrapped(f"  {'Probability':<14}", _with(told, why))
+        if codes := [one.code for one in check.findings if one.severity != "note"]:
+            told = f"{', '.join(dict.fromkeys(codes))}: reduce the drops to be told in full"
+            yield from wrapped(f"  {'Found':<14}", visible(told))
         yield ""
     if report.passed_over:
         names = ", ".join(map(visible, report.passed_over))
