@@ -13,11 +13,10 @@ import pandas as pd
 from plumbfall.planning.simulation import simulate_sets
 from support.planted import bench_of
 
-__all__ = ["FAULTS", "Fault"]
+__all__ = ["FAULTS", "Fault", "Made", "changed", "invented"]
 
 Bench = dict[str, Any]
 Made = tuple[pd.DataFrame, Bench]
-EIGHT_STEEL = ["B1", "B2", "B3", "B4"]
 
 
 @dataclass(frozen=True)
@@ -34,7 +33,8 @@ class Fault:
     make: Callable[[int, int], Made]
 
 
-def _sets(bench: Bench, sets: int, seed: int, **how: Any) -> pd.DataFrame:
+def invented(bench: Bench, sets: int, seed: int, **how: Any) -> pd.DataFrame:
+    """Return good drops, each run set on a bench drawn for itself."""
     how = {"viscosity": 2.0, "drops": 10, "temperature": 298.15, "scatter": 0.001} | how
     return simulate_sets(bench, sets=sets, seed=seed, **how).table()
 
@@ -61,14 +61,14 @@ def _times(table: pd.DataFrame, drop: int, factor: float) -> None:
 
 def one_bad_drop(sets: int, seed: int) -> Made:
     bench = bench_of(balls=1)
-    table = _sets(bench, sets, seed, scatter=0.003)
+    table = invented(bench, sets, seed, scatter=0.003)
     _times(table, 6, 1.03)
     return table, bench
 
 
 def two_bad_drops(sets: int, seed: int) -> Made:
     bench = bench_of(balls=1)
-    table = _sets(bench, sets, seed, scatter=0.003)
+    table = invented(bench, sets, seed, scatter=0.003)
     _times(table, 3, 1.03)
     _times(table, 8, 1.032)
     return table, bench
@@ -76,7 +76,7 @@ def two_bad_drops(sets: int, seed: int) -> Made:
 
 def one_bad_drop_among_balls(sets: int, seed: int) -> Made:
     bench = bench_of(balls=3, timer="stopwatch")
-    table = _sets(bench, sets, seed, drops=12, viscosity=12.0)
+    table = invented(bench, sets, seed, drops=12, viscosity=12.0)
     _times(table, 6, 1.06)
     return table, bench
 
@@ -84,13 +84,13 @@ def one_bad_drop_among_balls(sets: int, seed: int) -> Made:
 def drift(sets: int, seed: int) -> Made:
     bench = bench_of(balls=2)
     rising = 2.0 * (1 + np.linspace(0, 0.015, 12))
-    return _sets(bench, sets, seed, drops=12, viscosity=rising, scatter=0.002), bench
+    return invented(bench, sets, seed, drops=12, viscosity=rising, scatter=0.002), bench
 
 
 def drift_by_stopwatch(sets: int, seed: int) -> Made:
     bench = bench_of(balls=2, timer="stopwatch")
     rising = 20.0 * (1 + np.linspace(0, 0.03, 12))
-    return _sets(bench, sets, seed, drops=12, viscosity=rising), bench
+    return invented(bench, sets, seed, drops=12, viscosity=rising), bench
 
 
 WARM = 298.15 + np.array([0.0, 0.3, 0.5, 0.2, 0.6, 0.1, 0.4, 0.0, 0.5, 0.3])
@@ -98,20 +98,20 @@ WARM = 298.15 + np.array([0.0, 0.3, 0.5, 0.2, 0.6, 0.1, 0.4, 0.0, 0.5, 0.3])
 
 def wrong_slope(sets: int, seed: int) -> Made:
     bench = bench_of(balls=2, slope="-8.0(2) %/K")
-    table = _sets(bench, sets, seed, temperatures=WARM)
+    table = invented(bench, sets, seed, temperatures=WARM)
     return table, changed(bench, liquid__oil__viscosity_slope="-5.0(2) %/K")
 
 
 def no_slope(sets: int, seed: int) -> Made:
     bench = bench_of(balls=2, slope="-4.0(2) %/K")
-    table = _sets(bench, sets, seed, temperatures=WARM)
+    table = invented(bench, sets, seed, temperatures=WARM)
     return table, changed(bench, liquid__oil__viscosity_slope=None)
 
 
 def lagging_thermometer(sets: int, seed: int) -> Made:
     bench = bench_of(balls=1, slope="-8.0(2) %/K")
     true = 298.15 + 0.4 * np.sin(np.arange(16) * 2 * np.pi / 8)
-    table = _sets(bench, sets, seed, drops=16, temperatures=true)
+    table = invented(bench, sets, seed, drops=16, temperatures=true)
     # the reading is what the liquid was three quarters of a drop before
     reading = table["temperature [degC]"].to_numpy().reshape(sets, 16)
     before = 25 + 0.4 * np.sin((np.arange(16) - 0.75) * 2 * np.pi / 8)
@@ -122,12 +122,12 @@ def lagging_thermometer(sets: int, seed: int) -> Made:
 def unsettled_bath(sets: int, seed: int) -> Made:
     bench = bench_of(balls=2)
     above = 2.0 * (1 + 0.02 * np.exp(-np.arange(12) / 2.5))
-    return _sets(bench, sets, seed, drops=12, viscosity=above, scatter=0.001), bench
+    return invented(bench, sets, seed, drops=12, viscosity=above, scatter=0.001), bench
 
 
 def begun_too_soon(sets: int, seed: int) -> Made:
     bench = bench_of(balls=2)
-    table = _sets(bench, sets, seed)
+    table = invented(bench, sets, seed)
     table["started"] = "2026-03-02T08:40:00"
     names = table["set"].unique()
     return table, changed(bench, set={name: {"filled": "2026-03-02T08:10:00"} for name in names})
@@ -135,13 +135,13 @@ def begun_too_soon(sets: int, seed: int) -> Made:
 
 def one_wrong_ball(sets: int, seed: int) -> Made:
     bench = bench_of(balls=4)
-    table = _sets(bench, sets, seed, drops=12)
+    table = invented(bench, sets, seed, drops=12)
     return table, changed(bench, ball__B2__diameter="2.0213(5) mm")
 
 
 def two_balls_apart(sets: int, seed: int) -> Made:
     bench = bench_of(balls=2, timer="stopwatch")
-    table = _sets(bench, sets, seed, drops=12, viscosity=20.0)
+    table = invented(bench, sets, seed, drops=12, viscosity=20.0)
     size = float(bench["ball"]["B1"]["diameter"][:6])
     return table, changed(bench, ball__B1__diameter=f"{size * 1.025:.4f}(5) mm")
 
@@ -164,37 +164,37 @@ def shear_thinning(sets: int, seed: int) -> Made:
     stress = np.array([(7700 - 970) * 2, (7700 - 970) * 3, (3200 - 970) * 2, (3200 - 970) * 3.0,
                        (14900 - 970) * 2])  # fmt: skip
     viscosity = 4.0 * np.resize((stress / stress[0]) ** -0.03, 15)
-    return _sets(bench, sets, seed, drops=15, viscosity=viscosity), bench
+    return invented(bench, sets, seed, drops=15, viscosity=viscosity), bench
 
 
 def wrong_bore(sets: int, seed: int) -> Made:
     bench = bench_of(balls=5)
-    table = _sets(bench, sets, seed, drops=15)
+    table = invented(bench, sets, seed, drops=15)
     return table, changed(bench, tube__A__bore="40.00(2) mm")
 
 
 def wrong_bore_and_densities(sets: int, seed: int) -> Made:
     bench = _shear_bench()
-    table = _sets(bench, sets, seed, drops=15, viscosity=4.0)
+    table = invented(bench, sets, seed, drops=15, viscosity=4.0)
     return table, changed(bench, tube__A__bore="40.00(2) mm")
 
 
 def still_gaining_speed(sets: int, seed: int) -> Made:
     bench = bench_of(balls=2, marks=True)
     slow = 2.0 * np.array([1.01, 1.0]) * np.ones((10, 1))
-    return _sets(bench, sets, seed, viscosity=slow, marks=True, drops=10), bench
+    return invented(bench, sets, seed, viscosity=slow, marks=True, drops=10), bench
 
 
 def layers(sets: int, seed: int) -> Made:
     bench = bench_of(balls=2)
     bench["tube"]["A"]["marks"] = ["0.00(3) mm", "60.00(5) mm", "130.00(5) mm", "200.00(5) mm"]
     thicker = 2.0 * np.array([0.99, 1.0, 1.01]) * np.ones((10, 1))
-    return _sets(bench, sets, seed, viscosity=thicker, marks=True, drops=10), bench
+    return invented(bench, sets, seed, viscosity=thicker, marks=True, drops=10), bench
 
 
 def mark_out_of_place(sets: int, seed: int) -> Made:
     bench = bench_of(balls=2, marks=True)
-    table = _sets(bench, sets, seed, marks=True)
+    table = invented(bench, sets, seed, marks=True)
     return table, changed(bench, tube__A__marks=["0.00(3) mm", "101.00(5) mm", "200.00(5) mm"])
 
 

@@ -12,10 +12,9 @@ from typing import Any
 import numpy as np
 import pandas as pd
 
-import plumbfall as pf
 from plumbfall.planning.simulation import simulate_sets
 
-__all__ = ["Clean", "bench_of", "clean_benches", "codes_of", "many"]
+__all__ = ["Clean", "bench_of", "clean_benches", "many"]
 
 SIZES = (1.5, 2.0, 2.5, 3.0, 3.5, 4.0)
 """Diameters of the balls, mm."""
@@ -147,9 +146,3 @@ def many(clean: Clean, sets: int, seed: int) -> pd.DataFrame:
         marks=clean.marks,
         scatter=clean.scatter,
     ).table()
-
-
-def codes_of(table: pd.DataFrame, bench: dict[str, Any]) -> list[set[tuple[str, str]]]:
-    """Return (code, severity) of every finding, run set by run set."""
-    report = pf.reduce(table, bench, draws=0)
-    return [{(f.code, f.severity) for f in found} for found in report.reduced.found]

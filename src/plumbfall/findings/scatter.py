@@ -52,7 +52,7 @@ def scatter_large(data: RunData) -> Iterator[Found]:
                 effect=float(unexplained[run_set]) / np.sqrt(n),
                 detectable=max(least * ratio, data.limits.scatter_excess),
                 message=f"drops of one ball scatter by {100 * sd:.2g} % of viscosity, "
-                f"{sd / least:.1f} times the {100 * least:.2g} % that {_source(data)}",
+                f"{sd / least:.1f} times the {100 * least:.2g} % that {_source(data)} gives",
                 remedy="look for drops let go off the axis, bubbles, a ball or liquid not yet at "
                 "the bath's temperature, or liquid still moving from the drop before",
             ),
