@@ -47,7 +47,7 @@ def filled(text: str, study: Study) -> str:
 def _written(study: Study) -> str:
     quiet = study.quiet
     lines = [
-        "| code | severity | fault in each run set | found in |",
+        "| finding | severity | fault in each run set | found in |",
         "| --- | --- | --- | --- |",
         *(
             f"| `{fault.code}` | {fault.severity} | {fault.what} | {100 * share:.1f} % |"
@@ -57,7 +57,7 @@ def _written(study: Study) -> str:
         f"Of {quiet.sets} good run sets {quiet.warned} ({100 * quiet.share:.1f} %) are warned "
         "about:",
         "",
-        "| code | good run sets that raise it |",
+        "| warning | good run sets that raise it |",
         "| --- | --- |",
         *(f"| `{code}` | {count} |" for code, count in quiet.codes.most_common()),
     ]
