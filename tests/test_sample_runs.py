@@ -17,6 +17,7 @@ RUNS = {
     "three_batches": "drops.csv",
     "varnish_warm": "drops.tsv",
     "wash_oil_invalid": "drops.csv",
+    "inclined_tube": "drops.csv",
 }
 
 
@@ -163,3 +164,26 @@ def test_chart_signals_when_the_thermometer_has_drifted_and_not_before():
     assert not any(signals[:18])  # it drifts from week 20 on
     assert all(signals[-3:])
     assert report.out_of_control
+
+
+def test_the_constant_of_the_inclined_tube_is_the_one_in_its_file():
+    found = pf.calibrate("sample_runs/inclined_tube/calibration.csv", reference=["thin", "thick"])
+    expected = json.loads((FOLDER / "inclined_tube" / "constant.json").read_text("utf-8"))
+    ours = json.loads(found.to_json())
+    for document in (ours, expected):
+        del document["content_sha256"]  # it holds the last digits, and the version
+    same(ours, expected, "constant")
+    text = (FOLDER / "inclined_tube" / "expected_calibration.txt").read_text("utf-8")
+    assert found.text() == text
+    (constant,) = found.constants
+    assert abs(constant.stored.value - 0.6e-6) < 2 * constant.stored.u  # the truth of the README
+
+
+def test_the_unknown_in_the_inclined_tube_covers_the_truth_more_surely_than_its_constant():
+    result = reduced("inclined_tube")["drum 12"].result
+    truth = 46.30e-3 * math.exp(-0.041 * (result.temperature.value - 298.15))
+    assert result.status == "valid"
+    assert result.viscosity.low < truth < result.viscosity.high
+    used = result.constants[0].constant
+    assert result.viscosity.u / result.viscosity.value < 0.75 * used.u / used.value
+    assert result.reynolds is None

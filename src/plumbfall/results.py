@@ -13,6 +13,7 @@ __all__ = [
     "BallResult",
     "BudgetLine",
     "Conformity",
+    "ConstantUsed",
     "Correction",
     "DropResult",
     "Finding",
@@ -280,6 +281,21 @@ class SecondOrderResult:
 
 
 @dataclass(frozen=True, slots=True)
+class ConstantUsed:
+    """The constant of a calibrated tube and a ball [m2/s2], and what it rests on.
+
+    ``file`` is empty where it was typed by hand; ``certificates`` are those of the reference
+    liquids, each with the liquid's name where it is known.
+    """
+
+    tube: str
+    ball: str
+    constant: Quantity
+    file: str
+    certificates: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
 class RunSetResult:
     """Everything a reduction says of one run set; temperatures in kelvin, all else SI.
 
@@ -287,7 +303,7 @@ class RunSetResult:
     without a temperature slope or a reference temperature. ``reynolds``, ``diameter_ratio``,
     ``shear_rate`` and ``shear_stress`` are the largest of the set. ``linear`` is the viscosity as
     the law of propagation gives it; ``monte_carlo`` is ``None`` where nothing was drawn, and
-    ``conformity`` without a specification.
+    ``conformity`` without a specification. ``constants`` are those of calibrated tubes.
     """
 
     name: str
@@ -319,6 +335,7 @@ class RunSetResult:
     conformity: Conformity | None = None
     improvements: tuple[Improvement, ...] = ()
     second_order: SecondOrderResult | None = None
+    constants: tuple[ConstantUsed, ...] = ()
 
     @property
     def interval(self) -> tuple[float, float]:

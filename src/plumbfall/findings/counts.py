@@ -56,9 +56,10 @@ def too_few_drops(data: RunData) -> Iterator[Found]:
 
 def reused_balls(data: RunData) -> Iterator[Found]:
     """Find repeated drops of few balls, which do not average a ball's own error away."""
-    reused = np.flatnonzero(
-        (data.weights.n_values < data.weights.n_drops) & (data.weights.n_values > 0)
-    )
+    several = (data.weights.n_values < data.weights.n_drops) & (data.weights.n_values > 0)
+    cells = data.selection.cells
+    several[cells.run_set[data.inputs.calibrated]] = False  # a tube constant is that of one ball
+    reused = np.flatnonzero(several)
     for run_set in reused:
         n_balls, n_drops = data.weights.n_values[run_set], data.weights.n_drops[run_set]
         yield (

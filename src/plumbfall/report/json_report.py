@@ -13,6 +13,7 @@ from plumbfall.results import (
     BallResult,
     BudgetLine,
     Conformity,
+    ConstantUsed,
     DropResult,
     Finding,
     Histogram,
@@ -93,6 +94,7 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
         "diameter_ratio": _number(result.diameter_ratio),
         "shear_rate_1_s": _number(result.shear_rate),
         "shear_stress_Pa": _number(result.shear_stress),
+        "constants": [_constant(constant) for constant in result.constants],
         "corrections": [
             {
                 "name": correction.name,
@@ -127,6 +129,16 @@ def measured_document(measured: Measured | None) -> dict[str, Any] | None:
         "low": _number(measured.low),
         "high": _number(measured.high),
         "method": measured.method,
+    }
+
+
+def _constant(used: ConstantUsed) -> dict[str, Any]:
+    return {
+        "tube": used.tube,
+        "ball": used.ball,
+        "constant": _quantity(used.constant),
+        "file": used.file,
+        "certificates": list(used.certificates),
     }
 
 

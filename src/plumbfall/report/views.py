@@ -8,7 +8,14 @@ from dataclasses import dataclass
 from plumbfall.report.rounding import NO_VALUE
 from plumbfall.report.scales import CELSIUS, Scale, scale_for, viscosity_scale
 from plumbfall.report.summary import basis, counted, is_apparent, percent, way
-from plumbfall.results import Conformity, Measured, MonteCarloResult, Quantity, RunSetResult
+from plumbfall.results import (
+    Conformity,
+    ConstantUsed,
+    Measured,
+    MonteCarloResult,
+    Quantity,
+    RunSetResult,
+)
 
 __all__ = [
     "BOTH_WAYS",
@@ -134,7 +141,18 @@ def facts(result: RunSetResult, scale: Scale) -> list[Fact]:
         shown.append(Fact("By Stokes' law alone", text, scale.unit, "Stokes' law"))
     counts = f"{result.n_drops} of {counted(result.n_read, 'drop')}"
     shown.append(Fact("Drops and balls", f"{counts}, {counted(result.n_balls, 'ball')}"))
+    shown += [_of_constant(used) for used in result.constants]
     return shown + _of_flow(result)
+
+
+def _of_constant(used: ConstantUsed) -> Fact:
+    """Say which tube constant was used, and on which certificates it rests."""
+    scale = scale_for(used.constant.unit, used.constant.value)
+    text = f"{scale.pair(used.constant.value, used.constant.u).concise} {scale.unit}, "
+    text += f"from {used.file}" if used.file else "typed by hand, independent of all else"
+    if used.certificates:
+        text += f", by {', '.join(used.certificates)}"
+    return Fact(f"Tube constant K, ball {used.ball}", text, scale.unit, "tube constant")
 
 
 def _of_measured(measured: Measured, scale: Scale) -> list[Fact]:

@@ -23,6 +23,7 @@ TERMS = {
     "degrees of freedom": "how much evidence is behind the uncertainty; with few of them the "
     "interval widens",
     "kinematic viscosity": "viscosity over density",
+    "tube constant": "viscosity = K x (ball density - liquid density) x time",
     "Stokes' law": "the drag on a slow ball in a liquid without walls",
     "drag factor": "drag on the ball in this tube over its drag by Stokes' law; walls, inertia "
     "and ends each have a part in it",

@@ -21,6 +21,7 @@ from plumbfall.physics.drag import TABLE, DragLaw
 from plumbfall.physics.laws import DEFAULTS, OWN, law
 from plumbfall.physics.stokes import shear_rate
 from plumbfall.results import (
+    ConstantUsed,
     Correction,
     Finding,
     Measured,
@@ -171,6 +172,7 @@ def build_result(
         findings=findings,
         linear=_measured(all_sets.outputs, "viscosity", run_set),
         monte_carlo=None if drawn is None else drawn.record(),
+        constants=_constants(all_sets, cells),
     )
 
 
@@ -225,6 +227,24 @@ def _stokes(all_sets: SetColumns, used: NDArray[np.intp]) -> Quantity | None:
         Quantity(value, "Pa.s", math.nan)
         if len(used) and math.isfinite(value) and value > 0
         else None
+    )
+
+
+def _constants(all_sets: SetColumns, cells: NDArray[np.intp]) -> tuple[ConstantUsed, ...]:
+    """Return the tube constants that the cells of a set have."""
+    chosen = [all_sets.inputs.constants[n].chosen for n in all_sets.inputs.constants_of(cells)]
+    return tuple(
+        ConstantUsed(
+            tube=one.tube,
+            ball=one.ball,
+            constant=Quantity(one.own.value, "m2/s2", one.stored.u if one.stored else one.own.u),
+            file="" if one.file is None else one.file.path,
+            certificates=tuple(
+                " ".join(filter(None, (known.reference, known.certificate)))
+                for known in one.certified
+            ),
+        )
+        for one in chosen
     )
 
 
