@@ -48,7 +48,7 @@ _DAY = re.compile(r"\d{4}-\d{2}-\d{2}")
 ROUNDING = 1e-12
 """Relative change of a constant below which it is rounding."""
 
-LEFT_OUT = ("uncertainty-implausible", "shear-dependence")
+LEFT_OUT = ("uncertainty-implausible", "unit-slip-suspected", "shear-dependence")
 """Findings that mean nothing of one ball with a constant of 1."""
 
 

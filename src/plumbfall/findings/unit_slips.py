@@ -162,10 +162,11 @@ LENGTH_FACTORS = (10.0, 0.1, 100.0, 0.01, 1000.0, 0.001, 25.4, 1 / 25.4)
 def implausible_lengths(data: RunData) -> Iterator[Found]:
     """Find bores, marks and diameters that no fall tube or ball has, with the factor that mends."""
     cells, roles = data.selection.cells, data.inputs.roles
+    measured = ~data.inputs.calibrated  # a calibrated tube has no lengths
     lengths = {
-        "bore": (roles["bore"].value, cells.tube, "tube"),
+        "bore": (roles["bore"].value * measured, cells.tube, "tube"),
         "distance between marks": (
-            roles["to_mark"].value - roles["from_mark"].value,
+            (roles["to_mark"].value - roles["from_mark"].value) * measured,
             cells.tube,
             "tube",
         ),
