@@ -19,6 +19,7 @@ _NUMBER = re.compile(r"-?\d+\.?\d*(?:e-?\d+)?")
 _REFERENCE = re.compile(r"#([\w.-]+)")
 _LEFT_OUT = ("font", "font-family", "version", "width", "height")  # the page's own font is used
 _ROUNDED = ("x", "y", "width", "height", "transform")
+_USE = ("href", "x", "y", "fill")
 _INHERITED = {"font-size": "8.5px", "fill": "#24333b"}
 """What most texts have: said once, on the drawing itself."""
 
@@ -39,7 +40,7 @@ def inline_svg(figure: Figure, prefix: str, title: str, description: str) -> str
     -------
     str
         Markup without style attributes and style elements, the same for the same figure, without
-        what matplotlib writes and nobody sees: coordinates have two decimals.
+        what matplotlib writes and nobody sees: coordinates have one decimal.
     """
     from plumbfall.report.house_style import house_style
 
@@ -90,8 +91,9 @@ def _compact(element: ElementTree.Element, names: Mapping[str, str]) -> str:
     if tag == "text":
         inner += escape(element.text or "")
         given = {name: value for name, value in given.items() if _INHERITED.get(name) != value}
-    if tag == "use":  # what it refers to has these itself
-        given = {name: given[name] for name in ("href", "x", "y", "fill") if name in given}
+    if tag == "use":  # what it refers to has the rest itself; a tick has no inside to fill
+        kept = ("href", "x", "y") if given.get("stroke") == given.get("fill") else _USE
+        given = {name: given[name] for name in kept if name in given}
     shown = "".join(f' {name}="{escape(value)}"' for name, value in given.items())
     return f"<{tag}{shown}>{inner}</{tag}>" if inner else f"<{tag}{shown}/>"
 
@@ -135,9 +137,9 @@ def _renamed(value: str, names: Mapping[str, str]) -> str:
 
 
 def _rounded(text: str) -> str:
-    return _NUMBER.sub(lambda number: f"{float(number[0]):.2f}".rstrip("0").rstrip("."), text)
+    return _NUMBER.sub(lambda number: f"{float(number[0]):.1f}".removesuffix(".0"), text)
 
 
 def _path(text: str) -> str:
-    """Return a path on one line with two decimals."""
+    """Return a path on one line with one decimal."""
     return re.sub(r"\s*([A-Za-z])\s*", r"\1", " ".join(_rounded(text).split()))
