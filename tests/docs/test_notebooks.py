@@ -81,3 +81,20 @@ def test_what_the_three_batches_are_said_to_show(
     assert ratio.s / ratio.n < alone.s / alone.n / 4
     spread = report["batch 233"].drops().query("used")["residual"].std()
     assert 2 * spread < report["batch 233"].result.viscosity.relative_expanded
+
+
+def test_what_the_check_is_said_to_show(
+    notebooks: ModuleType, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    names = run(notebooks, "calibration_check", monkeypatch)[-1].names
+    assert names["check"].decision == "passed"
+    assert abs(names["result"].e_n) < 1
+    assert names["wrong"].decision == "failed"
+    (found,) = names["wrong"].checks
+    assert found.bias.value == pytest.approx(0.01, abs=0.002)  # "the percent that it makes"
+    weeks = names["chart"].table().set_index(names["chart"].table()["when"].str[:10])
+    assert weeks.loc["2026-01-12", "decision"] == "failed"
+    assert weeks.loc["2026-01-19", "decision"] == "passed"
+    assert weeks.loc["2026-02-02", "decision"] == "passed"
+    assert weeks.loc["2026-02-02", "signals"] == "average-beyond-limits"
+    assert set(weeks.loc["2026-02-09":, "decision"]) == {"failed"}
