@@ -22,6 +22,7 @@ from plumbfall.cli.output import say, say_problems
 from plumbfall.cli.plan import add_plan
 from plumbfall.cli.reduce import add_reduce
 from plumbfall.cli.selftest import add_selftest
+from plumbfall.cli.template import add_template
 
 __all__ = ["build_parser", "main"]
 
@@ -76,6 +77,7 @@ def build_parser() -> argparse.ArgumentParser:
         add_chart,
         add_plan,
         add_methods,
+        add_template,
         add_selftest,
     ):
         add(commands)

@@ -120,7 +120,8 @@ class Plan:
         found: dict[tuple[str, str], Finding] = {}
         for place in range(len(self.evaluation.solved)):
             for finding in self.evaluation.found[place]:
-                if finding.code in SHEET:
+                sold = bool(self.grade) and finding.code == "nominal-diameter"
+                if finding.code in SHEET and not sold:
                     found.setdefault((finding.code, finding.message), finding)
         return tuple(found.values())
 

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from os import PathLike
 from typing import TYPE_CHECKING, Any
 
-from plumbfall.planning.asked import Amount, BenchSource, plan_bench
+from plumbfall.planning.asked import Amount, BenchSource, plan_bench, viscosities_of
 from plumbfall.planning.catalogue import GRADE
 from plumbfall.planning.combination import Combination
 from plumbfall.planning.plan import Plan
@@ -163,6 +163,39 @@ class PlanReport:
             "plan.json": self.to_json().encode("ascii"),
         }
         write_folder(folder, files)
+
+    def write_forms(
+        self,
+        folder: str | PathLike[str],
+        *,
+        run_set: str = "A",
+        viscosity: Amount | None = None,
+    ) -> tuple[str, ...]:
+        """Write what is filled in at the bench for the best ball and tube.
+
+        Parameters
+        ----------
+        folder : path
+            Where the bench sheet, ``drops.csv`` and ``recording_form.html`` go, all or none.
+        run_set : str
+            Name of the run set.
+        viscosity : float [Pa.s] or str, optional
+            Which of the plan's viscosities, where no one ball will do at all of them.
+
+        Returns
+        -------
+        tuple of str
+            Names of the files written.
+
+        Raises
+        ------
+        InputError
+            Where nothing will do, or a file stands there already: nothing is overwritten.
+        """
+        from plumbfall.report.plan_forms import forms_of_plan, write_forms
+
+        at = None if viscosity is None else viscosities_of(viscosity)[0]
+        return write_forms(folder, forms_of_plan(self.plan, run_set, at), self.plan.bench)
 
     def plot(self, ax: Axes | None = None) -> Figure | Axes:
         """Draw the usable viscosities of each ball; return the Axes given, else a new Figure."""

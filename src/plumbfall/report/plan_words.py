@@ -14,6 +14,7 @@ from plumbfall.report.scales import CELSIUS, Scale, scale_for, viscosity_scale
 from plumbfall.report.summary import percent
 
 __all__ = [
+    "WAIT",
     "answer_text",
     "better_text",
     "conditions_text",

@@ -17,6 +17,7 @@ __all__ = ["inline_svg"]
 
 _NUMBER = re.compile(r"-?\d+\.?\d*(?:e-?\d+)?")
 _REFERENCE = re.compile(r"#([\w.-]+)")
+_ASKED = re.compile(r"url\(#([\w.-]+)\)|^#([\w.-]+)$")  # a colour beside it is no reference
 _LEFT_OUT = ("font", "font-family", "version", "width", "height")  # the page's own font is used
 _ROUNDED = ("x", "y", "width", "height", "transform")
 _USE = ("href", "x", "y", "fill")
@@ -70,7 +71,7 @@ def _short_names(root: ElementTree.Element, prefix: str) -> dict[str, str]:
         for element in root.iter()
         for key, value in element.attrib.items()
         if key != "clip-path" and ("url(" in value or key.endswith("href"))
-        for name in _REFERENCE.findall(value)
+        for name in map("".join, _ASKED.findall(value))
     ]
     return {name: f"{prefix}-{n}" for n, name in enumerate(dict.fromkeys(asked), 1)}
 
