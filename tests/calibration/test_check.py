@@ -80,6 +80,15 @@ def test_a_measurement_that_could_never_pass_says_so():
     assert "not capable" not in checked(bias=0.013, tolerance="1.4 %").reason
 
 
+def test_a_failed_check_says_what_the_bias_looks_like():
+    # 970.2 kg/m3: 3 % off is the kinematic value typed for the dynamic one
+    failed = checked(bias=0.9702 - 1)
+    assert failed.decision == "failed"
+    assert any("kinematic" in hint for hint in failed.explanations)
+    assert any("1.5 K alone" in hint for hint in failed.explanations)
+    assert checked(bias=0.0).explanations == ()
+
+
 def test_an_expired_certificate_decides_nothing():
     table = drops_table(TIMES).assign(started="2026-06-01T09:00")
     bench = bench_with(expires="2026-05-31")

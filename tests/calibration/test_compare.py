@@ -98,6 +98,17 @@ def test_repeatability_limit_and_critical_difference():
     assert precision.critical == pytest.approx(1.959964 * math.sqrt(2 / 5) * precision.sd, rel=1e-6)
 
 
+def test_sets_that_scatter_unevenly_are_told_by_cochran():
+    # two variances of five values each: ISO 5725-2, table 4 (from memory) has 0.959 at 1 %
+    precision = compared().result.precision
+    assert precision.cochran_limit == pytest.approx(0.959, abs=1e-3)
+    assert not precision.uneven
+    wild = {"B1": [14.21, 15.23, 13.19, 14.60, 13.71]}
+    uneven = compared(table(FIRST, wild))
+    assert uneven.result.precision.uneven
+    assert "Cochran" in uneven.text()
+
+
 def test_known_repeatability_of_the_bench_prevails():
     bench = bench_dict(scatter={"relative": "0.30 %", "dof": 24})
     precision = compared(bench=bench).result.precision

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 import math
+from collections.abc import Mapping
 from dataclasses import dataclass
 
 import numpy as np
@@ -18,7 +19,8 @@ from plumbfall.calibration.decisions import (
     conformance_probability,
     is_capable,
 )
-from plumbfall.calibration.moments import day_of, last_started, operators
+from plumbfall.calibration.explanations import explanations
+from plumbfall.calibration.moments import day_of, who_and_when
 from plumbfall.calibration.scores import e_n, zeta_score
 from plumbfall.errors import InputError, Problem, nearest_name
 from plumbfall.findings.independence import reference_not_independent
@@ -38,8 +40,9 @@ class CheckResult:
     ``bias`` is measured over certified, less 1, with what both share taken into account; its
     degrees of freedom are ``bias_dof``. ``e_n`` and ``zeta`` are ``None`` where the two are not
     independent. ``law`` says how the certificate's points were joined; ``when`` is the set's last
-    ``started``, else the date given; ``invalid`` says that the data are. ``findings`` are those of
-    the data, and that measured and certified value are not independent.
+    ``started``, else the date given; ``invalid`` says that the data are. ``explanations`` say what
+    would make the bias of a failed check. ``findings`` are those of the data, and that measured and
+    certified value are not independent.
     """
 
     run_set: str
@@ -59,6 +62,7 @@ class CheckResult:
     when: str
     operator: str
     invalid: bool = False
+    explanations: tuple[str, ...] = ()
     findings: tuple[Finding, ...] = ()
 
 
@@ -115,11 +119,12 @@ def check_run_sets(
             key=key_path("reference", reference, "liquid"),
             remedy="name the reference of the liquid that was measured",
         )
+    told = who_and_when(reduction.timings)
     problems: list[Problem] = []
     found = []
     for result in mine:
         try:
-            found.append(_checked(reduction, entry, result, tolerance, date))
+            found.append(_checked(reduction, entry, result, tolerance, date, told))
         except InputError as error:
             problems += error.problems
     if problems:
@@ -149,9 +154,10 @@ def _checked(
     result: RunSetResult,
     tolerance: float | None,
     date: dt.date | None,
+    told_by: Mapping[str, tuple[str, str]],
 ) -> CheckResult:
     bench = reduction.bench
-    started = last_started(reduction.timings, result.name)
+    started, by = told_by.get(result.name, ("", ""))
     when = started or (date.isoformat() if date else "")
     invalid = result.status == "invalid"
     known = None
@@ -215,8 +221,9 @@ def _checked(
         decision=decision,
         reason=reason,
         when=when,
-        operator=operators(reduction.timings, result.name),
+        operator=by,
         invalid=invalid,
+        explanations=_explanations(result, bias, known) if decision == FAILED else (),
         findings=result.findings if shared is None else (*result.findings, shared),
     )
 
@@ -286,6 +293,16 @@ def _shared(reduction: Reduction, entry: Reference, name: str) -> Finding | None
     cells = np.flatnonzero(sets.selection.cells.run_set == reduction.names.index(name))
     used = [sets.inputs.constants[place] for place in sets.inputs.constants_of(cells)]
     return reference_not_independent(used, entry)
+
+
+def _explanations(
+    result: RunSetResult, bias: _Bias | None, known: CertifiedValue | None
+) -> tuple[str, ...]:
+    """Say what would make the bias of a failed check."""
+    if bias is None or known is None or bias.value <= -1:
+        return ()
+    slope = None if math.isnan(known.slope) else known.slope / known.value
+    return explanations(ratio=1 + bias.value, u=bias.u, density=result.liquid_density, slope=slope)
 
 
 def _by_tolerance(bias: _Bias, tolerance: float, probability: float) -> tuple[str, str]:

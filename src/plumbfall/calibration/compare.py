@@ -9,7 +9,13 @@ from dataclasses import dataclass
 import numpy as np
 from scipy.special import stdtr
 
-from plumbfall.calibration.precision import critical_difference, pooled_sd, repeatability_limit
+from plumbfall.calibration.precision import (
+    cochran_critical,
+    cochran_statistic,
+    critical_difference,
+    pooled_sd,
+    repeatability_limit,
+)
 from plumbfall.errors import InputError, nearest_name
 from plumbfall.reduction import Reduction
 from plumbfall.results import Measured, RunSetResult
@@ -22,6 +28,9 @@ __all__ = ["LEVEL", "Comparison", "Precision", "compare_run_sets"]
 LEVEL = 0.05
 """Significance of the tests of difference and equivalence."""
 
+COCHRAN_LEVEL = 0.01
+"""Significance of Cochran's test for an outlying variance (ISO 5725-2, 7.3.3)."""
+
 SAME_TEMPERATURE = 0.1
 """Kelvin within which two sets count as of one temperature (common practice, no source)."""
 
@@ -32,7 +41,8 @@ class Precision:
 
     ``sd`` is that of one drop, pooled, with ``dof``; ``limit`` is what two single drops stay within
     (95 %), ``critical`` what the two means do if nothing but that scatter parts them. ``source``
-    says where it is from.
+    says where it is from. ``cochran`` is the larger variance over the sum of both, beyond
+    ``cochran_limit`` (1 %) one set scatters too much to be pooled; ``None`` where not tested.
     """
 
     sd: float
@@ -40,6 +50,15 @@ class Precision:
     limit: float
     critical: float
     source: str
+    cochran: float | None = None
+    cochran_limit: float | None = None
+
+    @property
+    def uneven(self) -> bool:
+        """Whether one set scatters far more than the other."""
+        if self.cochran is None or self.cochran_limit is None:
+            return False
+        return self.cochran > self.cochran_limit
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -240,6 +259,10 @@ def _precision(reduction: Reduction, first: str, second: str) -> Precision | Non
         relative = drops.sd[places] / np.abs(drops.mean[places])
     sd, dof = pooled_sd(np.nan_to_num(relative), np.maximum(counts - 1, 0))
     source = "the drops of both sets"
+    cochran = cochran_limit = None
+    if reduction.bench.scatter is None and (counts >= 2).all():
+        cochran = float(cochran_statistic(relative))
+        cochran_limit = float(cochran_critical(groups=2, n=counts.mean(), level=COCHRAN_LEVEL))
     if reduction.bench.scatter is not None:
         sd, dof = reduction.bench.scatter.relative.value, reduction.bench.scatter.dof
         source = "the bench sheet's [scatter]"
@@ -251,4 +274,6 @@ def _precision(reduction: Reduction, first: str, second: str) -> Precision | Non
         limit=float(repeatability_limit(sd)),
         critical=float(critical_difference(sd, n_first=counts[0], n_second=counts[1])),
         source=source,
+        cochran=cochran,
+        cochran_limit=cochran_limit,
     )

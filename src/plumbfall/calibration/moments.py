@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 import datetime as dt
+from collections.abc import Iterable
 
 from plumbfall.timings.records import Timings
 
-__all__ = ["day_of", "last_started", "moment_of", "operators"]
+__all__ = ["day_of", "moment_of", "who_and_when"]
 
 
 def moment_of(text: str) -> dt.datetime | None:
@@ -23,25 +24,27 @@ def day_of(text: str) -> dt.date | None:
     return None if moment is None else moment.date()
 
 
-def last_started(timings: Timings, run_set: str) -> str:
-    """Return the last ``started`` of a run set's drops that has a date; empty without one."""
-    dated = [(moment, text) for text in _texts(timings, run_set, "started")
-             if (moment := moment_of(text)) is not None]  # fmt: skip
+def who_and_when(timings: Timings) -> dict[str, tuple[str, str]]:
+    """Return of every run set the last ``started`` of its used drops, and their operators.
+
+    Empty where no drop has a date; operators in order of first appearance.
+    """
+    table = timings.table[timings.table["status"].astype(str) == "used"]
+    columns = (table[name].astype(str) for name in ("set", "started", "operator"))
+    of_sets: dict[str, tuple[dict[str, None], dict[str, None]]] = {}
+    for run_set, started, operator in zip(*columns, strict=True):
+        moments, names = of_sets.setdefault(run_set, ({}, {}))
+        moments[started] = names[operator] = None
+    return {
+        run_set: (_last(moments), "; ".join(filter(None, names)))
+        for run_set, (moments, names) in of_sets.items()
+    }
+
+
+def _last(texts: Iterable[str]) -> str:
+    dated = [(moment, text) for text in texts if (moment := moment_of(text)) is not None]
     if not dated:
         return ""
-    zoned = any(moment.tzinfo is not None for moment, _ in dated)
-    plain = any(moment.tzinfo is None for moment, _ in dated)
-    if zoned and plain:  # moments with and without a zone have no order but the file's
-        return dated[-1][1]
+    if len({moment.tzinfo is None for moment, _ in dated}) > 1:
+        return dated[-1][1]  # moments with and without a zone have no order but the file's
     return max(dated)[1]
-
-
-def operators(timings: Timings, run_set: str) -> str:
-    """Return the operators of a run set's drops, in order of first appearance."""
-    return "; ".join(dict.fromkeys(_texts(timings, run_set, "operator")))
-
-
-def _texts(timings: Timings, run_set: str, column: str) -> list[str]:
-    table = timings.table
-    here = (table["set"].astype(str) == run_set) & (table["status"].astype(str) == "used")
-    return [text for text in table.loc[here, column].astype(str) if text]

@@ -152,6 +152,7 @@ def _document(check: CheckResult) -> dict[str, Any]:
         "reason": check.reason,
         "when": check.when,
         "operator": check.operator,
+        "explanations": list(check.explanations),
         "findings": [finding_document(finding) for finding in check.findings],
     }
 

@@ -26,6 +26,9 @@ __all__ = ["bias_text", "check_fragment", "check_line", "check_text"]
 
 PERCENT = Scale("%", 100.0)
 
+LAWS = {"vogel": "Vogel's law", "walther": "Walther's law"}
+"""What the laws that join a certificate's points are called."""
+
 CAUTION = (
     "A correct result on a reference liquid does not rule out errors that happen to cancel each "
     "other."
@@ -70,7 +73,7 @@ def _lines(report: CheckReport) -> Iterator[str]:
             told += f" at {CELSIUS.fixed(check.temperature, 2)} degC"
             yield from wrapped(f"  {'Measured':<14}", told)
         if check.certified is not None:
-            told = f"{_value(check.certified, unit)} by {check.law}"
+            told = f"{_value(check.certified, unit)} by {LAWS.get(check.law, check.law)}"
             yield from wrapped(f"  {'Certified':<14}", told)
         if check.bias is not None:
             yield from wrapped(f"  {'Bias':<14}", _with(bias_text(check), explain("bias")))
@@ -82,6 +85,8 @@ def _lines(report: CheckReport) -> Iterator[str]:
             told += f"{100 * check.tolerance:g} % either way"
             why = explain("conformance probability")
             yield from wrapped(f"  {'Probability':<14}", _with(told, why))
+        for hint in check.explanations:
+            yield from wrapped(f"  {'Looks like':<14}", hint)
         if codes := [one.code for one in check.findings if one.severity != "note"]:
             told = f"{', '.join(dict.fromkeys(codes))}: reduce the drops to be told in full"
             yield from wrapped(f"  {'Found':<14}", visible(told))

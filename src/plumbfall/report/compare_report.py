@@ -100,6 +100,8 @@ class ComparisonReport:
                 "limit": precision.limit,
                 "critical_difference": precision.critical,
                 "source": precision.source,
+                "cochran": finite_or_none(precision.cochran),
+                "cochran_limit": finite_or_none(precision.cochran_limit),
             },
         }
 

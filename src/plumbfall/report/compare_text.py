@@ -109,6 +109,11 @@ def _conclusions(result: Comparison) -> Iterator[str]:
     precision = result.precision
     if precision is not None and abs(result.ratio.value - 1) <= precision.critical:
         yield "The scatter of drops alone explains a difference as large."
+    if precision is not None and precision.uneven:
+        yield (
+            f"One set scatters far more than the other (Cochran's test, {precision.cochran:.3f} "
+            f"beyond {precision.cochran_limit:.3f}): find out why before the two are pooled."
+        )
     if not result.one_temperature:
         yield (
             "The two hold at different temperatures: give the liquid a viscosity_slope and the "
