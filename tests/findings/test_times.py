@@ -126,11 +126,11 @@ def test_a_declared_step_is_no_news():
 def test_the_step_is_the_largest_that_all_times_are_multiples_of(times, step):
     from plumbfall.bench.reader import read_bench
     from plumbfall.findings.limits import Limits
-    from plumbfall.reduction import _data, reduce_numbers
+    from plumbfall.reduction import reduce_numbers, run_data
 
     bench = read_bench(bench_dict())
     sets = reduce_numbers(pf.read_timings(drops_table({"B1": times}), bench), bench)
-    assert clock_steps(_data(sets, Limits())).found == pytest.approx([step])
+    assert clock_steps(run_data(sets, Limits())).found == pytest.approx([step])
 
 
 # --- copies --------------------------------------------------------------------------------------
