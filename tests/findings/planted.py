@@ -12,7 +12,7 @@ import plumbfall as pf
 from plumbfall.results import Finding
 from support.benches import bench_dict
 
-SETS = 40
+SETS = 25
 STOPWATCH = {"T1": {"kind": "stopwatch"}}
 GATE = {"T1": {"kind": "gate"}}
 

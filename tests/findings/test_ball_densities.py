@@ -84,3 +84,18 @@ def test_beyond_every_ball_it_stays_an_error():
     (one,), result = found({"name": "steel 3", "diameter": "6.0 mm", "density": "21.0(1) g/cm3"})
     assert one.severity == "error"
     assert result.status == "invalid"
+
+
+@pytest.mark.parametrize(
+    ("material", "density"), [("steel", 7.70), ("borosilicate", 2.23), ("PMMA", 1.185)]
+)
+def test_a_radius_is_told_for_light_balls_too(material, density):
+    """Weighed balls of published densities, the diameter halved: 8 times the density."""
+    mass = density * 1e-3 * 3.14159265 / 6 * 4.0002**3 * 1e3  # mg for mm
+    table = drops_table({"X": [30.01, 30.02, 30.03]})
+    ball = {"diameter": "2.0001(2) mm", "mass": f"{mass:.3f}(10) mg"}
+    result = pf.reduce(table, bench_dict(ball={"X": ball}), draws=0)["A"].result
+    (one,) = (f for f in result.findings if f.code == "radius-as-diameter-suspected")
+    assert f"with twice the diameter it would be {density:.2f}" in one.message
+    assert CODE not in {f.code for f in result.findings}
+    assert result.status == "invalid"

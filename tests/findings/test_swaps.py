@@ -117,9 +117,9 @@ def test_the_ratio_is_that_of_weight_and_drag_without_inertia():
     ("timer", "drops"), [(STOPWATCH, 8), (GATE, 8), (GATE, 20), (STOPWATCH, 4)]
 )
 def test_clean_sets_stay_quiet(timer, drops):
-    found = findings_of(timer=timer, balls=BALLS[: 1 + drops // 6], drops=drops, n_sets=100)
+    found = findings_of(timer=timer, balls=BALLS[: 1 + drops // 6], drops=drops, n_sets=50)
     for code in (CODE, "radius-as-diameter-suspected", "unit-slip-suspected"):
-        assert share_with(found, code) <= 0.01
+        assert share_with(found, code) <= 0.02
 
 
 def test_a_bubble_is_not_called_another_ball():

@@ -9,6 +9,7 @@ import numpy as np
 from plumbfall.bench.records import Ball
 from plumbfall.findings.ball_materials import MATERIALS, BallMaterial, material_named
 from plumbfall.findings.data import Found, RunData
+from plumbfall.findings.densities import radius_slip
 from plumbfall.measurement.inputs import cold_ball_density
 from plumbfall.results import Finding
 
@@ -27,6 +28,7 @@ def density_off_material(data: RunData) -> Iterator[Found]:
     cells, limits = data.selection.cells, data.limits
     density = cold_ball_density(data.inputs)
     liquid = data.inputs.roles["liquid_density"].value
+    slip = radius_slip(data, density)
     believable = (density >= limits.ball_density_low) & (density <= limits.ball_density_high)
     for code in np.unique(cells.ball[believable]):
         ball = data.balls[code]
@@ -35,6 +37,8 @@ def density_off_material(data: RunData) -> Iterator[Found]:
         named = material_named(ball.name.replace(".", " "), ball.material or "")
         if named is None and ball.mass is None:
             continue
+        if slip[at].any():
+            continue  # a radius written as the diameter is found by itself
         nearest = named or min(MATERIALS, key=lambda one: _outside(one, value))
         outside = _outside(nearest, value)
         if outside <= COVERAGE * _relative_u(data, ball) * value:

@@ -5,7 +5,10 @@ from __future__ import annotations
 import re
 from dataclasses import dataclass
 
-__all__ = ["MATERIALS", "BallMaterial", "material_named"]
+import numpy as np
+from numpy.typing import NDArray
+
+__all__ = ["MATERIALS", "BallMaterial", "material_named", "of_a_material"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,11 +70,26 @@ MATERIALS = (
     BallMaterial("titanium", ("titanium",), 4380, 4550, _MEMORY),
     BallMaterial("brass or bronze", ("brass", "bronze"), 8300, 8950, _MEMORY),
     BallMaterial("copper", ("copper",), 8850, 8980, _MEMORY),
+    BallMaterial("silver", ("silver",), 10400, 10600, _MEMORY),
     BallMaterial("lead", (r"\blead\b",), 11200, 11400, _MEMORY),
     BallMaterial("tantalum", ("tantalum",), 16400, 16700, _MEMORY),
     BallMaterial("gold", (r"\bgold\b",), 19100, 19400, _MEMORY),
 )  # fmt: skip
 """Materials of balls; ranges cover the grades in use, and are wider than any one ball's."""
+
+
+def of_a_material(density: NDArray[np.float64], margin: float = 0.03) -> NDArray[np.bool_]:
+    """Whether densities (kg/m3) are those of a material, within a relative margin.
+
+    Examples
+    --------
+    >>> of_a_material(np.array([7700.0, 17840.0, 9440.0])).tolist()
+    [True, False, False]
+    """
+    low = np.array([one.low for one in MATERIALS]) * (1 - margin)
+    high = np.array([one.high for one in MATERIALS]) * (1 + margin)
+    within = (density[:, None] >= low) & (density[:, None] <= high)
+    return np.asarray(within.any(axis=1))
 
 
 def material_named(*texts: str) -> BallMaterial | None:

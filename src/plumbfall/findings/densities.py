@@ -6,18 +6,19 @@ from collections.abc import Iterator
 
 import numpy as np
 
+from plumbfall.findings.ball_materials import of_a_material
 from plumbfall.findings.data import Found, RunData
 from plumbfall.measurement.inputs import cold_ball_density
 from plumbfall.results import Finding
 
-__all__ = ["density_implausible", "radius_as_diameter"]
+__all__ = ["density_implausible", "radius_as_diameter", "radius_slip"]
 
 
 def density_implausible(data: RunData) -> Iterator[Found]:
     """Find a ball or a liquid of a density outside what labs use."""
     limits, cells = data.limits, data.selection.cells
     ball = cold_ball_density(data.inputs)
-    slip = _radius_slip(data, ball)
+    slip = radius_slip(data, ball)
     liquid = data.inputs.roles["liquid_density"].value
     for kind, density, low, high, ok in (
         ("ball", ball, limits.ball_density_low, limits.ball_density_high, slip),
@@ -55,7 +56,7 @@ def radius_as_diameter(data: RunData) -> Iterator[Found]:
     """Find a mass that fits eight times the volume: a radius written as the diameter."""
     cells = data.selection.cells
     density = cold_ball_density(data.inputs)
-    slip = _radius_slip(data, density)
+    slip = radius_slip(data, density)
     for run_set, code in _distinct(cells.run_set, cells.ball, slip):
         at = float(density[slip & (cells.ball == code)][0])
         yield (
@@ -71,10 +72,15 @@ def radius_as_diameter(data: RunData) -> Iterator[Found]:
         )
 
 
-def _radius_slip(data: RunData, density: np.ndarray) -> np.ndarray:
+def radius_slip(data: RunData, density: np.ndarray) -> np.ndarray:
+    """Say which weighed balls are of no material as written, and of one with twice the diameter.
+
+    Beyond the plausible densities any plausible eighth will do.
+    """
     low, high = data.limits.ball_density_low, data.limits.ball_density_high
     inside = (density / 8 >= low) & (density / 8 <= high)
-    slip: np.ndarray = data.inputs.weighed & (density > high) & inside
+    of_none, eighth = ~of_a_material(density), of_a_material(density / 8, margin=0.0)
+    slip: np.ndarray = data.inputs.weighed & (((density > high) & inside) | (of_none & eighth))
     return slip
 
 

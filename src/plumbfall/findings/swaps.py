@@ -3,16 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
-from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from plumbfall.findings.data import Found, RunData
-from plumbfall.findings.other_balls import FACTORS, Candidates, candidates, shifts
+from plumbfall.findings.other_balls import Candidates, candidates, shifts
 from plumbfall.findings.significance import t_p_value
-from plumbfall.results import Finding
+from plumbfall.findings.swap_words import Swap, SwapFit, swap_finding
 
 __all__ = ["swapped_ball"]
 
@@ -27,26 +25,6 @@ FARTHEST = 8
 """So many drops, the farthest out, are tried one by one and in pairs."""
 ALIKE = 1.5
 """Explanations whose remaining squares differ by less than this factor are named together."""
-
-
-@dataclass(frozen=True, slots=True)
-class _Swap:
-    """A supposed exchange: what each drop's ln(viscosity) was shifted by, shape (drops,).
-
-    ``truly`` is the candidate each drop is then taken for, -1 where it stays.
-    """
-
-    shift: Numbers
-    truly: Codes
-
-
-@dataclass(frozen=True, slots=True)
-class _Fit:
-    """How well a supposed exchange explains a set: its probability by chance, and what is left."""
-
-    swap: _Swap
-    p_value: float
-    left: float
 
 
 def swapped_ball(data: RunData) -> Iterator[Found]:
@@ -117,20 +95,20 @@ def _look_into(data: RunData, run_set: int, drops: Codes, others: Candidates) ->
         return
     best = min(fits, key=lambda fit: fit.left)
     alike = [fit for fit in fits if fit.left <= ALIKE * best.left]
-    yield run_set, _finding(data, drops, others, best, alike)
+    yield run_set, swap_finding(data, drops, others, best, alike)
 
 
-def _suppose(y: Numbers, own: Codes, shift: Numbers, others: Candidates) -> Iterator[_Swap]:
+def _suppose(y: Numbers, own: Codes, shift: Numbers, others: Candidates) -> Iterator[Swap]:
     """Yield what may have happened: one drop, two drops, a ball or two balls taken for others."""
     n = len(y)
     bench_balls = np.flatnonzero(others.as_written)
     far = np.argsort(-np.abs(y - np.median(y)), kind="stable")[:FARTHEST]
 
-    def swap(pairs: list[tuple[Codes, int]]) -> _Swap:
+    def swap(pairs: list[tuple[Codes, int]]) -> Swap:
         shifted, truly = np.zeros(n), np.full(n, -1, dtype=np.intp)
         for places, candidate in pairs:
             shifted[places], truly[places] = shift[places, candidate], candidate
-        return _Swap(shifted, truly)
+        return Swap(shifted, truly)
 
     used = np.unique(own)
     several = {ball: np.flatnonzero(own == ball) for ball in used.tolist()}
@@ -153,7 +131,7 @@ def _suppose(y: Numbers, own: Codes, shift: Numbers, others: Candidates) -> Iter
                 yield swap([(places, other), (several[other], ball)])
 
 
-def _explain(data: RunData, drops: Codes, y: Numbers, swaps: list[_Swap]) -> list[_Fit]:
+def _explain(data: RunData, drops: Codes, y: Numbers, swaps: list[Swap]) -> list[SwapFit]:
     """Return the exchanges that explain a set's scatter beyond chance."""
     limits, n = data.limits, len(drops)
     weight = 1 / data.errors.variance[drops]
@@ -180,78 +158,4 @@ def _explain(data: RunData, drops: Codes, y: Numbers, swaps: list[_Swap]) -> lis
             np.fmin(limits.swap_match, size / 4), 3 * np.hypot(error * size, clock)
         )
     good = (p_value < data.level) & near & (size > limits.swap_effect)
-    return [_Fit(swaps[at], float(p_value[at]), float(left[at])) for at in np.flatnonzero(good)]
-
-
-# --- in words ------------------------------------------------------------------------------------
-
-
-def _finding(
-    data: RunData, drops: Codes, others: Candidates, best: _Fit, alike: list[_Fit]
-) -> Finding:
-    moved = np.flatnonzero(best.swap.truly >= 0)
-    factor = others.factor[best.swap.truly[moved[0]]]
-    said = [_said(data, drops, others, fit.swap) for fit in (best, *alike)]
-    said = list(dict.fromkeys(said))
-    ball = data.balls[data.selection.cells.ball[data.selection.cell[drops[moved[0]]]]].name
-    size = 100 * float(np.abs(best.swap.shift).max())
-    common: dict[str, Any] = {
-        "drops": data.numbers(drops[moved]),
-        "statistic": float(np.exp(best.swap.shift[moved[0]])),
-        "p_value": best.p_value,
-        "effect": _effect(data, drops, others, best.swap),
-        "detectable": data.limits.swap_effect,
-        "message": f"{', or '.join(said)}: that explains {size:.1f} % of viscosity, and the drops "
-        "then agree",
-    }
-    slip = f"check [ball.{ball}] diameter and its unit"
-    if factor == 2:
-        return Finding(code="radius-as-diameter-suspected", severity="error", remedy=slip, **common)
-    if factor != 1:
-        return Finding(code="unit-slip-suspected", severity="warning", remedy=slip, **common)
-    return Finding(
-        code="swapped-ball-suspected",
-        severity="warning",
-        remedy="look into the record which ball it was, and measure it; correct the ball column, "
-        "or mark the drops void and note the reason",
-        **common,
-    )
-
-
-def _said(data: RunData, drops: Codes, others: Candidates, swap: _Swap) -> str:
-    moved = np.flatnonzero(swap.truly >= 0)
-    own = data.selection.cells.ball[data.selection.cell[drops]]
-    first = moved[0]
-    name, truly = data.balls[own[first]].name, int(swap.truly[first])
-    factor = float(others.factor[truly])
-    if factor != 1:
-        return (
-            f"ball {name} looks as if its diameter were {factor:g} times as large (written "
-            f"{FACTORS[factor]})"
-        )
-    other = data.balls[others.ball[truly]].name
-    whole = [np.array_equal(np.flatnonzero(own == b), moved[own[moved] == b]) for b in
-             np.unique(own[moved])]  # fmt: skip
-    numbers = data.numbers(drops[moved])
-    if len(np.unique(own[moved])) == 2:
-        if all(whole):
-            return f"balls {' and '.join(sorted((name, other)))} look exchanged"
-        return (
-            f"drops {numbers[0]} and {numbers[1]} look like each other's balls, {name} and {other}"
-        )
-    if all(whole):
-        return f"ball {name} looks like ball {other}"
-    return f"drop {numbers[0]} of ball {name} looks like ball {other}"
-
-
-def _effect(data: RunData, drops: Codes, others: Candidates, swap: _Swap) -> float:
-    """Relative change of the set's viscosity if the drops are given their supposed balls."""
-    own = data.selection.cells.ball[data.selection.cell[drops]]
-    ball = np.where(swap.truly >= 0, others.ball[swap.truly], own)
-    value = data.columns.at_set[drops] * np.exp(-swap.shift)
-    if data.inputs.lot[data.selection.cell[drops]].any():
-        mean = value.mean()
-    else:
-        _, code = np.unique(ball, return_inverse=True)
-        mean = (np.bincount(code, weights=value) / np.bincount(code)).mean()
-    return float(mean / data.scatter.mean[data.selection.run_set[drops[0]]] - 1)
+    return [SwapFit(swaps[at], float(p_value[at]), float(left[at])) for at in np.flatnonzero(good)]
