@@ -6,6 +6,7 @@ import math
 from collections.abc import Iterable
 
 from plumbfall.published import (
+    chain_constants,
     chain_units,
     chain_worked,
     flow_laws,
@@ -31,6 +32,7 @@ __all__ = ["FIGURES", "selftest"]
 FIGURES: tuple[Figure, ...] = (
     *chain_units.FIGURES,
     *chain_worked.FIGURES,
+    *chain_constants.FIGURES,
     *flow_laws.FIGURES,
     *flow_spheres.FIGURES,
     *uncertainty_inputs.FIGURES,
