@@ -274,11 +274,45 @@ def test_bounds_at_the_reference_cover(law, temperatures, n_drops):
 
 def test_too_few_temperatures_are_refused_with_a_remedy():
     table = drops({"a": (25.0, around(1.0, 0.01)), "b": (25.05, around(1.0, 0.01))})
-    with pytest.raises(pf.InputError, match=r"at 2 temperatures at least.*oil has 1 that differ"):
+    with pytest.raises(pf.InputError, match=r"at 2 temperatures at least: liquid oil has 1 "):
         pf.reduce(table, bench(), draws=0)
     table = drops({"a": (25.0, around(1.0, 0.01)), "b": (35.0, around(0.6, 0.01))})
     with pytest.raises(pf.InputError, match="at 3 temperatures at least"):
         pf.reduce(table, bench("vogel"), draws=0)
+
+
+def test_at_one_temperature_a_slope_of_the_sheet_serves():
+    """A check liquid measured alone on a bench whose other liquids are fitted."""
+    table = drops({"a": (25.0, around(1.0, 0.01))})
+    sloped = {"density": "970 kg/m3", "viscosity_slope": "-2.0(2) %/K"}
+    report = pf.reduce(table, bench(liquid__oil=sloped), draws=0)
+    assert report.temperature_fits == ()
+    ratio = report["a"].viscosity_at_reference / report["a"].viscosity
+    assert ratio.n == pytest.approx(math.exp(0.02 * 3), rel=1e-9)
+    assert ratio.s / ratio.n == pytest.approx(0.002 * 3, rel=1e-9)
+
+
+def test_in_a_calibrated_tube_the_slope_is_fitted_too():
+    """By hand: viscosity is K (ball less liquid) t, so ratios of times are ratios of viscosity."""
+    sheet = {
+        "bench": {"reference_temperature": "22 degC"},
+        "thermometer": {"P": {"correction": "0.00(5) K"}},
+        "tube": {"A": {"kind": "calibrated", "constant": "K"}},
+        "ball": {"x": {"diameter": "2 mm", "density": "7700 kg/m3"}},
+        "constant": {"K": {"tube": "A", "ball": "x", "value": "0.0100(1) mPa.s.cm3/(g.s)"}},
+        "liquid": {"oil": {"density": "970 kg/m3"}},
+        "methods": {"slope": "andrade"},
+    }
+    table = drops({f"s{t}": (t, around(andrade(t), 1e-3)) for t in (15.0, 20.0, 30.0, 40.0)})
+    report = pf.reduce(table, sheet, draws=0)
+    (fit,) = report.temperature_fits
+    # around() keeps the mean; its logarithm is off by half the variance, the same for all sets
+    assert dict(fit.parameters)["B"].value == pytest.approx(ANDRADE[1], rel=1e-6)
+    at = report["s15.0"].result.viscosity_at_reference
+    slope = ANDRADE[1] / (22.0 + ZERO) ** 2
+    shared = math.hypot(0.01, 0.05 * slope)
+    # scatter of 0.1 % in twenty drops comes to it, and the law's slope is not quite constant
+    assert at.u / at.value == pytest.approx(shared, rel=0.02)
 
 
 def test_values_that_bend_the_wrong_way_are_refused():

@@ -102,7 +102,8 @@ def fit_temperatures(
     Raises
     ------
     InputError
-        Where no liquid has temperatures enough, or where the law does not fit.
+        Where no liquid has temperatures enough and one lacks a slope of its own, or where the law
+        does not fit.
     """
     law = LAWS[bench.methods.slope or ""]
     liquid = np.full(len(selection.names), -1, dtype=np.intp)
@@ -120,7 +121,8 @@ def fit_temperatures(
             continue
         members = np.flatnonzero(known & (liquid == code))
         fits.append(_fit(bench, names[code], law, sets, members, jacobian, scatter, temperature))
-    if not fits:
+    sloped = [name for name, _ in short if bench.liquids[name].viscosity_slope is not None]
+    if not fits and (not short or len(sloped) < len(short)):
         raise InputError(_too_few(law, short, bench.path))
     return tuple(fits)
 
@@ -237,9 +239,9 @@ def _distinct(temperature: Numbers) -> int:
 
 
 def _too_few(law: TemperatureLaw, short: list[tuple[str, int]], path: str) -> Problem:
-    counts = "; ".join(
-        f"liquid {name} has {count} that differ by more than {APART:g} K" for name, count in short
-    )
+    counts = "; ".join(f"liquid {name} has {count}" for name, count in short)
+    if counts:
+        counts += f" (those within {APART:g} K count as one)"
     return Problem(
         f"{law.title} needs run sets of one liquid at {law.fewest} temperatures at least: "
         f"{counts or 'no run set has a temperature'}",
