@@ -410,3 +410,33 @@ def test_monte_carlo_stands_beside_a_fit():
     result = report["s25"].result
     assert result.monte_carlo.validated_linear in (True, False)
     assert result.viscosity_at_reference.method == "linear"
+
+
+def test_the_same_balls_at_every_temperature_leave_bounds_that_cover():
+    """Three balls of 0.5 % own error, dropped twice at five temperatures; 100 liquids, 95 %.
+
+    The balls' errors are alike in all sets, which the scatter of three shows badly: as weights
+    that covariance would make bounds that cover two thirds.
+    """
+    rng = np.random.default_rng(5)
+    made = bench(bench__reference_temperature="22 degC")
+    made["ball"], made["liquid"], made["set"], rows = {}, {}, {}, []
+    for i in range(100):
+        made["liquid"][f"L{i}"] = {"density": "970 kg/m3"}
+        errors = 0.005 * rng.standard_normal(3)
+        for b in range(3):
+            made["ball"][f"{i}.{b}"] = {"diameter": "2 mm", "density": "7700 kg/m3"}
+        for t in (15.0, 20.0, 25.0, 32.0, 40.0):
+            made["set"][f"{i} at {t}"] = {"liquid": f"L{i}"}
+            for b in (0, 0, 1, 1, 2, 2):
+                value = andrade(t) * math.exp(errors[b] + 0.002 * rng.standard_normal())
+                rows.append((f"{i} at {t}", f"{i}.{b}", value / per_second(), t))
+    table = pd.DataFrame(rows, columns=["set", "ball", "time [s]", "temperature [degC]"])
+    report = pf.reduce(table, made, draws=0)
+    true = andrade(22.0)
+    curve = [fit.viscosity_at_reference for fit in report.temperature_fits]
+    assert np.mean([at.low < true < at.high for at in curve]) >= 0.90  # two and a half of 100's
+    at = report.reduced.sets.outputs.of("viscosity_at_reference")
+    assert np.isfinite(at.factor).all()
+    assert np.mean((at.low < true) & (true < at.high)) >= 0.90
+    assert np.mean([fit.p_value < 0.05 for fit in report.temperature_fits]) <= 0.10

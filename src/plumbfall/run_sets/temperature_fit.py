@@ -138,17 +138,13 @@ def _fit(
     temperature: Numbers,
 ) -> TemperatureFit:
     at, eta, basis = temperature[sets], scatter.mean[sets], scatter.basis[sets]
-    own = jacobian.own_columns("scatter")[sets]
-    observed, own_dof = (jacobian.u[own] / eta) ** 2, jacobian.dof[own]
     relative = sparse.csr_array(sparse.diags_array(1 / eta) @ jacobian.matrix[sets])
     contributions = sparse.csr_array(relative * jacobian.u)
-    covariance = np.asarray((contributions @ contributions.T).todense())
-    with np.errstate(invalid="ignore", divide="ignore"):
-        pooled = np.nan_to_num(np.sqrt(_pooled(observed, own_dof, basis) / observed), nan=1.0)
-    seen = contributions[:, jacobian.observed_scatter]
-    by_sets, by_all = (
-        np.asarray((part @ part.T).todense()) for part in (seen, sparse.diags_array(pooled) @ seen)
-    )
+    covariance = _product(contributions)
+    seen = _product(contributions[:, jacobian.observed_scatter])
+    of_balls = _product(contributions[:, jacobian.shared_scatter])
+    dof = scatter.dof[sets]
+    weighted_by = covariance - seen + np.diag(_pooled(np.diag(seen), dof, basis))
     log_viscosity = np.log(eta)
     try:
         found = fit(
@@ -156,7 +152,7 @@ def _fit(
             law.start(at, log_viscosity),
             log_viscosity,
             covariance,
-            covariance - by_sets + by_all,
+            weighted_by,
         )
         _check(law, found, at)
     except NoFitError as error:
@@ -176,15 +172,20 @@ def _fit(
         temperature=at,
         found=found,
         rows=sparse.csr_array(sparse.csr_array(found.sensitivities) @ relative),
-        goodness=found.goodness(observed, own_dof),
+        goodness=found.goodness(np.diag(seen - of_balls), dof, of_balls, float(dof.min())),
     )
+
+
+def _product(contributions: sparse.csr_array) -> Numbers:
+    return np.asarray((contributions @ contributions.T).todense())
 
 
 def _pooled(variance: Numbers, dof: Numbers, basis: Codes) -> Numbers:
     """Relative variances of the sets' means by the scatter that sets of one kind have together.
 
     Few drops show their scatter badly, and weights by each set's own would favour the sets whose
-    drops agree by chance. Pooled they are the same for all, and what they share is not touched.
+    drops agree by chance. Pooled they are the same for all. What the same balls do in several sets
+    has no weight either: seen in few balls, it seems more alike than it is.
     """
     pooled = variance.copy()
     for kind in np.unique(basis):

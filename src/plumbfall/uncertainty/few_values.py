@@ -29,6 +29,9 @@ Numbers = NDArray[np.float64]
 FEW = 2.5
 """Scatter of fewer degrees of freedom than this is taken by the rule of this module."""
 
+ROUNDING = 1e-12
+"""Rounding of a variance, relative to it."""
+
 PART = 0.5
 """Part of u_B^2 beside u_A^2 in the weight of the scatter."""
 
@@ -64,7 +67,9 @@ def dof_with_few_values(
     u, dof, part, few = (np.asarray(each, dtype=float) for each in (u, dof, scatter_u, scatter_dof))
     with np.errstate(invalid="ignore", divide="ignore"):
         few_values = (few < FEW) & (part > 0)
-        rest_variance = np.maximum(u**2 - part**2, 0.0)
+        rest_variance = u**2 - part**2
+        # what rounding leaves of it is nothing
+        rest_variance = np.where(rest_variance > ROUNDING * u**2, rest_variance, 0.0)
         rest_fourth = np.maximum(u**4 / dof - part**4 / few, 0.0)
         rest_dof = effective_dof(u=np.sqrt(rest_variance), contributions_fourth=rest_fourth)
         weight = part**2 / (part**2 + PART * rest_variance)

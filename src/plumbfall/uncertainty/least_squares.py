@@ -129,7 +129,13 @@ class LeastSquares:
         larger = n + 2 * a - 6 * a / (n + 2)
         return float(fdtrc(n, n * (n + 2) / (3 * a), self.chi_squared / larger))
 
-    def goodness(self, own_variance: ArrayLike, own_dof: ArrayLike) -> Goodness:
+    def goodness(
+        self,
+        own_variance: ArrayLike,
+        own_dof: ArrayLike,
+        shared: ArrayLike | None = None,
+        shared_dof: float = math.inf,
+    ) -> Goodness:
         """Return chi-squared by the values' own variances, and the chance of one as large.
 
         For values weighed alike, whatever their own variances: the sum of squared distances over
@@ -143,6 +149,10 @@ class LeastSquares:
             The part of each value's variance that was estimated from few observations.
         own_dof : array, shape (values,)
             Degrees of freedom of that estimate.
+        shared : array, shape (values, values), optional
+            The part of the covariance that was estimated for all values together.
+        shared_dof : float
+            Its degrees of freedom.
 
         Returns
         -------
@@ -161,8 +171,14 @@ class LeastSquares:
         parts = (self.contrasts**2).sum(axis=0) * own
         # the squares of estimated variances are too large on average
         squared = float(np.sum(self.of_contrasts**2) - np.sum(parts**2 * 2 / (few + 2)))
-        n = min(expected**2 / max(squared, expected**2 / self.dof), float(self.dof))
         doubt = float(np.sum(parts**2 / few))
+        if shared is not None and math.isfinite(shared_dof):
+            part = self.contrasts @ np.asarray(shared, dtype=float) @ self.contrasts.T
+            found, twice, k = float(np.sum(part**2)), float(np.trace(part)) ** 2, shared_dof
+            if k > 1:  # of one degree of freedom the square says nothing of the true one
+                squared -= found - (found - twice / k) * k**2 / ((k + 2) * (k - 1))
+            doubt += found / k
+        n = min(expected**2 / max(squared, expected**2 / self.dof), float(self.dof))
         ratio = self.chi_squared / expected
         within = min(expected**2 / doubt, MANY) if doubt > 0 else MANY
         return Goodness(ratio * self.dof, float(fdtrc(n, within, ratio)))
