@@ -13,7 +13,8 @@ from plumbfall.bench.notation import read_quantity
 from plumbfall.calibration.chart import control_chart
 from plumbfall.calibration.check import check_run_sets
 from plumbfall.calibration.compare import compare_run_sets
-from plumbfall.calibration.history import append_history, history_line, read_history
+from plumbfall.calibration.history import append_history, history_line
+from plumbfall.calibration.history_lines import read_history
 from plumbfall.errors import InputError
 from plumbfall.measurement.constants import constant_files
 from plumbfall.reduction import Reduction
@@ -185,7 +186,15 @@ def _reduced(
 
 def _ratio(given: str | float, name: str) -> float:
     """Read a ratio above 0: text with its unit, or a plain number from Python."""
-    found = read_quantity(given, "ratio").value if isinstance(given, str) else float(given)
+    if isinstance(given, str):
+        read = read_quantity(given, "ratio")
+        if read.u > 0:
+            raise InputError(
+                f"a {name} of {given} has an uncertainty", key=name, remedy="write such as 0.5 %"
+            )
+        found = read.value
+    else:
+        found = float(given)
     if not 0 < found < 1:
         raise InputError(
             f"a {name} of {given} is not between 0 and 1", key=name, remedy="write such as 0.5 %"

@@ -9,7 +9,7 @@ import pytest
 
 import plumbfall as pf
 from plumbfall.calibration.control_charts import individuals
-from plumbfall.calibration.history import COLUMNS
+from plumbfall.calibration.history_lines import COLUMNS
 from plumbfall.cli.program import main
 from plumbfall.published.statistics_charts import INDIVIDUALS
 
@@ -157,7 +157,7 @@ def test_drawing_and_fragment(tmp_path):
 def test_few_benches_in_control_are_called_out_of_control(tmp_path):
     # by simulation, what docs/calibration.md says: of charts of 20 checks some one in seven
     from plumbfall.calibration.chart import control_chart
-    from plumbfall.calibration.history import HistoryLine
+    from plumbfall.calibration.history_lines import HistoryLine
 
     random = np.random.default_rng(11)
     found = 0

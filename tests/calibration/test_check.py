@@ -12,7 +12,7 @@ import numpy as np
 import pytest
 
 import plumbfall as pf
-from plumbfall.calibration.history import COLUMNS, read_history
+from plumbfall.calibration.history_lines import COLUMNS, read_history
 from plumbfall.cli.program import main
 from support.benches import bench_dict, drops_table
 
@@ -138,6 +138,8 @@ def test_tolerances_that_are_none_are_refused():
             checked(tolerance=wrong)
     with pytest.raises(pf.InputError):
         checked(tolerance="5 mm")
+    with pytest.raises(pf.InputError, match="has an uncertainty"):
+        checked(tolerance="0.5(1) %")
 
 
 def test_temperature_counts_where_the_liquid_has_no_slope():
@@ -295,7 +297,8 @@ def test_two_processes_appending_at_once_lose_nothing(tmp_path):
     history = tmp_path / "history.csv"
     code = (
         "import sys\n"
-        "from plumbfall.calibration.history import HistoryLine, append_history\n"
+        "from plumbfall.calibration.history import append_history\n"
+        "from plumbfall.calibration.history_lines import HistoryLine\n"
         "for n in range(25):\n"
         "    line = HistoryLine(when='2026-03-02', run_set=f'{sys.argv[2]} {n}', reference='R',\n"
         "        bias_percent=0.1, u_percent=0.2, e_n=0.3, decision='passed',\n"

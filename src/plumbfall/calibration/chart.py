@@ -27,7 +27,7 @@ from plumbfall.calibration.control_charts import (
     moving_ranges,
     run_signals,
 )
-from plumbfall.calibration.history import HistoryLine
+from plumbfall.calibration.history_lines import HistoryLine
 from plumbfall.calibration.moments import moment_of
 from plumbfall.errors import InputError, nearest_name
 

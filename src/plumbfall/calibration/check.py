@@ -11,26 +11,19 @@ import numpy as np
 
 from plumbfall.bench.keys import key_path
 from plumbfall.bench.records import Bench, Reference
+from plumbfall.calibration.bias import Bias, bias_of, certified_at
 from plumbfall.calibration.certified import CertifiedValue, certified_value, is_expired
-from plumbfall.calibration.decisions import (
-    ACCEPT,
-    REJECT,
-    chance,
-    conformance_probability,
-    is_capable,
-)
+from plumbfall.calibration.decisions import conformance_probability
 from plumbfall.calibration.explanations import explanations
 from plumbfall.calibration.moments import day_of, who_and_when
 from plumbfall.calibration.scores import e_n, zeta_score
+from plumbfall.calibration.verdict import FAILED, UNDECIDED, by_score, by_tolerance
 from plumbfall.errors import InputError, Problem, nearest_name
 from plumbfall.findings.independence import reference_not_independent
 from plumbfall.reduction import Reduction
 from plumbfall.results import Finding, Measured, Quantity, RunSetResult
-from plumbfall.uncertainty.coverage import coverage_factor, effective_dof
 
-__all__ = ["FAILED", "PASSED", "UNDECIDED", "CheckResult", "check_run_sets"]
-
-PASSED, FAILED, UNDECIDED = "passed", "failed", "undecided"
+__all__ = ["CheckResult", "check_run_sets"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -64,13 +57,6 @@ class CheckResult:
     invalid: bool = False
     explanations: tuple[str, ...] = ()
     findings: tuple[Finding, ...] = ()
-
-
-@dataclass(frozen=True, slots=True)
-class _Bias:
-    value: float
-    u: float
-    dof: float
 
 
 def check_run_sets(
@@ -169,8 +155,8 @@ def _checked(
         )
     measured, certified, bias = result.viscosity, None, None
     if known is not None and measured is not None and result.temperature is not None:
-        certified = _with_bounds(known, _loose(reduction, result, known), reduction.coverage)
-        bias = _bias(reduction, result.name, measured, known, certified)
+        certified = certified_at(reduction, result, known)
+        bias = bias_of(reduction, result.name, measured, known, certified)
     shared = _shared(reduction, entry, result.name)
     score = zeta = probability = None
     if bias is not None and measured is not None and certified is not None:
@@ -197,9 +183,9 @@ def _checked(
         told = f"the certificate of {entry.name} expired on {entry.expires}, before {day}"
         decision, reason = UNDECIDED, told
     elif tolerance is not None and probability is not None:
-        decision, reason = _by_tolerance(bias, tolerance, probability)
+        decision, reason = by_tolerance(bias, tolerance, probability)
     else:
-        decision, reason = _by_score(math.nan if score is None else score)
+        decision, reason = by_score(math.nan if score is None else score)
     if entry.expires is not None and day is None:
         reason += (
             f"; whether the certificate had expired ({entry.expires}) is not known, as the drops "
@@ -228,65 +214,6 @@ def _checked(
     )
 
 
-def _loose(reduction: Reduction, result: RunSetResult, known: CertifiedValue) -> float:
-    """Return what the temperature adds to a certified value, in Pa.s.
-
-    Nothing where the liquid's temperature slope is given: the measured value then carries it.
-    """
-    sets = reduction.sets
-    place = reduction.names.index(result.name)
-    cell = int(sets.liquid.cell[place])
-    if result.temperature is None or bool(sets.inputs.slope_known[cell]):
-        return 0.0
-    return 0.0 if math.isnan(known.slope) else known.slope * result.temperature.u
-
-
-def _with_bounds(known: CertifiedValue, loose: float, coverage: float) -> Measured:
-    u = math.hypot(known.u, loose)
-    fourth = (known.u**4 / known.dof) if known.u > 0 else 0.0
-    dof = float(effective_dof(u=u, contributions_fourth=fourth))
-    factor = float(coverage_factor(dof=dof, probability=coverage))
-    return Measured(
-        value=known.value,
-        unit="Pa.s",
-        u=u,
-        effective_dof=dof,
-        coverage_probability=coverage,
-        coverage_factor=factor,
-        expanded=factor * u,
-        low=known.value - factor * u,
-        high=known.value + factor * u,
-    )
-
-
-def _bias(
-    reduction: Reduction, name: str, measured: Measured, known: CertifiedValue, certified: Measured
-) -> _Bias:
-    """Propagate both values to the bias; an input of the same name acts on both."""
-    sets = reduction.sets
-    ratio = measured.value / known.value
-    columns, contributions = sets.outputs.propagation.row(reduction.names.index(name))
-    inputs = {
-        (entry.name, entry.value, entry.u): float(contribution)
-        for column, contribution in zip(columns.tolist(), contributions.tolist(), strict=True)
-        if column < sets.jacobian.n_inputs
-        for entry in (sets.inputs.estimates[column],)
-    }
-    both = sum(
-        inputs.get((part.input.name, part.input.value, part.input.u), 0.0) * part.contribution
-        for part in known.parts
-    )
-    own, theirs = measured.u / known.value, ratio * certified.u / known.value
-    variance = own**2 + theirs**2 - 2 * ratio * both / known.value**2
-    u = math.sqrt(max(variance, 0.0))
-    fourth = own**4 / _dof(measured) + theirs**4 / _dof(certified)
-    return _Bias(ratio - 1.0, u, float(effective_dof(u=u, contributions_fourth=fourth)))
-
-
-def _dof(measured: Measured) -> float:
-    return math.inf if measured.effective_dof is None else measured.effective_dof
-
-
 def _shared(reduction: Reduction, entry: Reference, name: str) -> Finding | None:
     """Find what both the tube constants in use and the certified value rest on."""
     sets = reduction.sets
@@ -296,38 +223,10 @@ def _shared(reduction: Reduction, entry: Reference, name: str) -> Finding | None
 
 
 def _explanations(
-    result: RunSetResult, bias: _Bias | None, known: CertifiedValue | None
+    result: RunSetResult, bias: Bias | None, known: CertifiedValue | None
 ) -> tuple[str, ...]:
     """Say what would make the bias of a failed check."""
     if bias is None or known is None or bias.value <= -1:
         return ()
     slope = None if math.isnan(known.slope) else known.slope / known.value
     return explanations(ratio=1 + bias.value, u=bias.u, density=result.liquid_density, slope=slope)
-
-
-def _by_tolerance(bias: _Bias, tolerance: float, probability: float) -> tuple[str, str]:
-    told = (
-        f"the bias of {_percent(bias.value)} lies within {_percent(tolerance, False)} either way "
-        f"with a probability of {chance(probability)}"
-    )
-    if probability >= ACCEPT:
-        return PASSED, f"{told}, at least {100 * ACCEPT:g} %"
-    if probability <= REJECT:
-        return FAILED, f"{told}, at most {100 * REJECT:g} %"
-    told += f", between {100 * REJECT:g} and {100 * ACCEPT:g} %"
-    if not is_capable(low=-tolerance, high=tolerance, u=bias.u, dof=bias.dof):
-        told += (
-            f"; no bias could pass, as its standard uncertainty of {_percent(bias.u, False)} is "
-            "too large for the tolerance: the measurement is not capable"
-        )
-    return UNDECIDED, told
-
-
-def _by_score(score: float) -> tuple[str, str]:
-    if abs(score) <= 1:
-        return PASSED, f"E_n of {score:.2f} is within 1"
-    return FAILED, f"E_n of {score:.2f} is beyond 1"
-
-
-def _percent(ratio: float, signed: bool = True) -> str:
-    return f"{100 * ratio:{'+' if signed else ''}.3g} %"

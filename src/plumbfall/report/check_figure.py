@@ -5,7 +5,8 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
-from plumbfall.calibration.check import FAILED, PASSED, CheckResult
+from plumbfall.calibration.check import CheckResult
+from plumbfall.calibration.verdict import FAILED, PASSED
 from plumbfall.errors import InputError
 from plumbfall.report.house_style import COLOURS, house_style, legend_below, short_name
 from plumbfall.uncertainty.coverage import coverage_factor

@@ -8,7 +8,8 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
-from plumbfall.calibration.check import FAILED, PASSED, UNDECIDED, CheckResult
+from plumbfall.calibration.check import CheckResult
+from plumbfall.calibration.verdict import FAILED, PASSED, UNDECIDED
 from plumbfall.report.json_report import finding_document, json_text, measured_document
 from plumbfall.report.json_values import finite_or_none
 from plumbfall.results import Measured, Quantity
