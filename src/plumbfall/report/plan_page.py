@@ -81,7 +81,7 @@ def _picture(plan: Plan) -> str:
 
 def _pair(plan: Plan, group: list[Combination]) -> dict[str, Any]:
     first = next((one for one in group if one.fall_time is not None), group[0])
-    facts = list(facts_of(first))
+    facts = list(facts_of(plan, first))
     worst = max(group, key=lambda one: one.relative_expanded_uncertainty or 0.0)
     if parts := parts_text(worst):
         facts.append((f"largest parts at {viscosity_text(plan, worst.viscosity)}", parts))

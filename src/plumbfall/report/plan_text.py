@@ -81,11 +81,11 @@ def _pair(plan: Plan, group: list[Combination]) -> Iterator[str]:
     worst = max(group, key=lambda one: one.relative_expanded_uncertainty or 0.0)
     if parts := parts_text(worst):
         at = viscosity_text(plan, worst.viscosity)
-        yield from _wrapped(f"    {f'largest parts at {at}':<28}", visible(parts))
-    for label, text in facts_of(_slowest(group)):
-        yield from _wrapped(f"    {label:<28}", text)
+        yield from _wrapped(f"    {f'largest parts at {at}':<30}", visible(parts))
+    for label, text in facts_of(plan, _slowest(group)):
+        yield from _wrapped(f"    {label:<30}", text)
     if times := interval_text(_slowest(group)):
-        yield from _wrapped(f"    {'between successive marks':<28}", times)
+        yield from _wrapped(f"    {'between successive marks':<30}", times)
     for one in group:
         at = viscosity_text(plan, one.viscosity)
         for reason in one.reasons:

@@ -69,6 +69,9 @@ KEYS = {
     "density": "ball density", "viscosity_slope": "temperature", "expansion": "expansion",
 }  # fmt: skip
 
+LEAST_SHARE = 0.005
+"""Smaller parts of the squared uncertainty are not named among the largest."""
+
 WAIT = 5
 """Time constants to wait before the first drop (common practice, no source)."""
 
@@ -171,7 +174,9 @@ def _better(better: Needed) -> str:
 def parts_text(one: Combination) -> str:
     """Return the largest parts of the uncertainty, with their shares of its square."""
     return ", ".join(
-        f"{part.input} {Scale('%', 100.0).fixed(part.share, 0)} %" for part in one.budget[:3]
+        f"{part.input} {Scale('%', 100.0).fixed(part.share, 0)} %"
+        for part in one.budget[:3]
+        if part.share >= LEAST_SHARE
     )
 
 
@@ -230,15 +235,19 @@ def ideal_texts(plan: Plan) -> Iterator[str]:
         )
 
 
-def facts_of(one: Combination) -> Iterator[tuple[str, str]]:
+def facts_of(plan: Plan, one: Combination) -> Iterator[tuple[str, str]]:
     """Yield what holds for a ball in a tube, by name: geometry, run-in, ends, waiting."""
+    several = len(plan.wanted.viscosities) > 1
+    at = f" at {viscosity_text(plan, one.viscosity)}" if several else ""
     if one.diameter_ratio is not None:
         yield "diameter ratio", round_alone(one.diameter_ratio, 3)
     if one.shear_rate is not None:
-        yield "shear rate", f"{round_alone(one.shear_rate, 3)} 1/s"
+        yield f"shear rate{at}", f"{round_alone(one.shear_rate, 3)} 1/s"
     if one.run_in is not None:
         room = "room unknown" if one.run_in_room is None else f"{length_text(one.run_in_room)} room"
-        yield "run-in", f"{length_text(one.run_in)}, {room}"
+        yield f"run-in{at}", f"{length_text(one.run_in)}, {room}"
+    if one.scatter is not None:
+        yield f"scatter of a drop{at}", percent_text(one.scatter)
     clearances = (("surface", one.surface_clearance), ("bottom", one.bottom_clearance))
     if one.speed is not None and one.bore is not None:
         ends = [
