@@ -361,3 +361,22 @@ def test_one_drop_and_no_drop_are_tested_for_nothing():
     assert "outlier" not in found_in(one, bench_dict())[0]
     one["status"], one["note"] = "void", "bubble"
     assert "no-solution" in found_in(one, bench_dict())[0]
+
+
+def test_one_step_of_a_coarse_clock_is_no_outlier():
+    bench = bench_dict(timer={"T1": {"kind": "stopwatch", "resolution": "0.1 s"}})
+    times = [14.9, 14.9, 14.9, 14.9, 15.0, 14.9, 14.9, 14.9]
+    for with_timer in (bench, bench_dict(timer={})):
+        assert "outlier" not in found_in(drops_table({"B1": times}), with_timer)[0]
+
+
+def test_intervals_of_equal_readings_without_a_timer_are_compared():
+    bench = bench_of(balls=1, marks=True, timer__T1=None)
+    del bench["timer"]
+    table = pd.DataFrame({
+        "set": "A", "ball": "B1", "temperature [degC]": 25.0, "mark 1 [s]": 0.0,
+        "mark 2 [s]": [15.0] * 6, "mark 3 [s]": [30.0] * 6,
+    })  # fmt: skip
+    assert "intervals-disagree" not in found_in(table, bench)[0]
+    table["mark 2 [s]"] = 16.0
+    assert "intervals-disagree" in found_in(table, bench)[0]

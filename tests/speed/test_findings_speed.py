@@ -17,7 +17,7 @@ import plumbfall as pf
 from plumbfall.findings.limits import Limits
 from plumbfall.findings.registry import find
 from plumbfall.planning.simulation import simulate_sets
-from plumbfall.reduction import _data, reduce_numbers
+from plumbfall.reduction import reduce_numbers, run_data
 from support.planted import bench_of
 
 SETS, DRAWN, DROPS = 1_000, 20, 10
@@ -39,7 +39,7 @@ def test_findings_take_less_time_than_the_default_monte_carlo(marks, capsys):
     seconds = []
     for _ in range(3):
         start = time.process_time()
-        find(_data(sets, Limits()))
+        find(run_data(sets, Limits()))
         seconds.append(time.process_time() - start)
     few = rows[rows["set"].isin(rows["set"].unique()[:DRAWN])]
     start = time.process_time()

@@ -3,13 +3,18 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.findings.data import RunData
+from plumbfall.measurement.inputs import Inputs
+from plumbfall.measurement.selection import Selection
 
-__all__ = ["STEPS", "ClockSteps", "clock_steps"]
+if TYPE_CHECKING:
+    from plumbfall.findings.data import RunData
+
+__all__ = ["STEPS", "ClockSteps", "clock_steps", "steps_of"]
 
 UNIT = 1e-4
 """Seconds; finer steps are of no account beside a fall."""
@@ -36,7 +41,12 @@ class ClockSteps:
 
 def clock_steps(data: RunData) -> ClockSteps:
     """Find the step of every run set's times by their greatest common divisor."""
-    n_sets, time, run_set = len(data.names), data.selection.time, data.selection.run_set
+    return data.steps
+
+
+def steps_of(selection: Selection, inputs: Inputs) -> ClockSteps:
+    """Find the step of every run set's times, from the drops and their timers alone."""
+    n_sets, time, run_set = len(selection.names), selection.time, selection.run_set
     n = np.bincount(run_set, minlength=n_sets)
     ticks = np.rint(time / UNIT).astype(np.int64)
     off = np.abs(time - ticks * UNIT) > 1e-3 * UNIT
@@ -51,7 +61,7 @@ def clock_steps(data: RunData) -> ClockSteps:
     step = UNIT * np.where(divides, STEPS, 0).max(axis=1)
     step[uneven | (n == 0)] = 0.0
     declared = np.zeros(n_sets)
-    np.maximum.at(declared, data.selection.cells.run_set, data.inputs.resolution)
+    np.maximum.at(declared, selection.cells.run_set, inputs.resolution)
     with np.errstate(invalid="ignore", divide="ignore"):
         mean = np.bincount(run_set, weights=time, minlength=n_sets) / n
         relative = np.maximum(step, declared) / mean

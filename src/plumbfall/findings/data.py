@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from plumbfall.bench.records import Ball, Bench, Liquid, Tube
 from plumbfall.findings.ball_fits import BallFits, ball_fits
 from plumbfall.findings.ball_means import BallMeans, ball_means
+from plumbfall.findings.clock_steps import ClockSteps, steps_of
 from plumbfall.findings.drop_errors import DropErrors, drop_errors
 from plumbfall.findings.interval_drops import IntervalDrops, interval_drops
 from plumbfall.findings.interval_fits import IntervalFits, interval_fits
@@ -106,6 +107,11 @@ class RunData:
         return level_of_each(self.limits)
 
     @cached_property
+    def steps(self) -> ClockSteps:
+        """Steps in which the times of each set were written down."""
+        return steps_of(self.selection, self.inputs)
+
+    @cached_property
     def errors(self) -> DropErrors:
         """What each drop's own error is made of."""
         return drop_errors(
@@ -115,6 +121,7 @@ class RunData:
             self.sums,
             self.weights.weight,
             self.bench.scatter,
+            np.maximum(self.steps.found, self.steps.declared),
         )
 
     @cached_property
@@ -181,6 +188,7 @@ class RunData:
             self.columns,
             self.law,
             self.timings.marks_s,
+            self.steps.found,
         )
 
     @cached_property

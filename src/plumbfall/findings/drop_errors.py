@@ -28,6 +28,7 @@ Codes = NDArray[np.intp]
 
 
 DECIMALS = 9
+LEAST = 1e-9
 """Differences of viscosity below 1e-9 are rounding, and no finding is made of them."""
 
 
@@ -40,7 +41,8 @@ class DropErrors:
     tested). ``group`` is the ball within its run set, counted by ``group_set``, ``group_ball`` and
     ``group_n`` of shape (groups,). ``declared`` and ``variance`` are of shape (drops,);
     ``within_sd`` and ``within_dof``, of shape (run sets,), are what drops of equal equipment say
-    of their scatter; ``undeclared`` is how much variance they show beyond what is declared, and
+    of their scatter; ``undeclared`` is how much variance they show beyond what is declared,
+    ``rounding``, of shape (drops,), what the clock's steps may hide, and
     ``scatter_dof`` how well the variances are known, 0 where no drop is repeated and the bench has
     no known repeatability, so that a bad drop and a bad ball are one.
     """
@@ -56,6 +58,7 @@ class DropErrors:
     within_sd: Numbers
     within_dof: NDArray[np.intp]
     undeclared: Numbers
+    rounding: Numbers
     scatter_dof: Numbers
 
 
@@ -78,6 +81,7 @@ def drop_errors(
     sums: Sums,
     weight: Numbers,
     known: Scatter | None,
+    step: Numbers,
 ) -> DropErrors:
     """Return what is known of every drop's own error.
 
@@ -95,6 +99,8 @@ def drop_errors(
         Each drop's weight in its run set's mean.
     known : Scatter, optional
         The bench's known repeatability, for sets whose drops do not repeat.
+    step : array, shape (run sets,) [s]
+        The step in which the times were written down.
 
     Returns
     -------
@@ -136,7 +142,10 @@ def drop_errors(
         more = np.maximum(known.relative.value**2 - mean, 0.0)
         undeclared = np.where(within_dof > 0, undeclared, more)
     alone = 0.0 if known is None else known.dof
-    variance = declared + undeclared[run_set]
+    with np.errstate(invalid="ignore", divide="ignore"):
+        by_time = np.nan_to_num(sums.timing / squares)[cell]
+    rounding = np.maximum(by_time * step[run_set] ** 2 / 6, LEAST**2)
+    variance = np.maximum(declared + undeclared[run_set], rounding)
     return DropErrors(
         value=value,
         whole=whole,
@@ -146,7 +155,8 @@ def drop_errors(
         group_n=np.bincount(group, minlength=len(first)),
         declared=declared,
         # where nothing is declared and nothing repeats, all drops count alike
-        variance=np.where(variance > 0, variance, 1.0),
+        variance=np.where(declared + undeclared[run_set] > 0, variance, 1.0),
+        rounding=rounding,
         within_sd=np.where(within_dof > 0, repeated.within_sd, np.nan),
         within_dof=within_dof,
         undeclared=undeclared,

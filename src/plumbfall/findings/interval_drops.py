@@ -35,6 +35,9 @@ Codes = NDArray[np.intp]
 
 FEWEST_MARKS = 3
 
+LEAST_SD = 1e-6
+"""Seconds; no reading of a mark is believed better."""
+
 
 @dataclass(frozen=True, slots=True)
 class IntervalDrops:
@@ -42,8 +45,9 @@ class IntervalDrops:
 
     ``value`` is ln of the viscosity of the interval; ``drop`` the drop's place among those used,
     ``number`` that of the interval within it. ``by_time`` is d ln(viscosity)/d(time) [1/s];
-    ``mark_sd`` the standard deviation of one reading of a mark [s] and ``bias`` how far the
-    timer's may be off for one interval against another [s]. ``group`` is the interval of a tube
+    ``mark_sd`` the declared standard deviation of one reading of a mark [s], ``least_sd`` what its
+    steps make it at least, and ``bias`` how far the timer's may be off for one interval against
+    another [s]. ``group`` is the interval of a tube
     in a run set, counted by ``group_set`` (a run set and tube, ``set_run`` and ``set_tube``),
     ``group_mark`` (its upper mark from 0) and ``slopes``, of shape (groups, ...).
     """
@@ -54,6 +58,7 @@ class IntervalDrops:
     by_time: Numbers
     mark_sd: Numbers
     bias: Numbers
+    least_sd: Numbers
     group: Codes
     group_set: Codes
     group_mark: Codes
@@ -68,6 +73,7 @@ def interval_drops(
     columns: DropColumns,
     law: DragLaw,
     marks: Numbers | None,
+    step: Numbers,
 ) -> IntervalDrops | None:
     """Reduce the intervals between successive marks.
 
@@ -83,6 +89,8 @@ def interval_drops(
         The drag law.
     marks : array, shape (rows, marks) [s], optional
         Clock readings at the marks, of all rows of the timing table.
+    step : array, shape (run sets,) [s]
+        The step in which the times were written down.
 
     Returns
     -------
@@ -152,6 +160,7 @@ def interval_drops(
         number=number,
         by_time=by_time[cell],
         mark_sd=np.sqrt(own.per_drop**2 / 2 + own.resolution**2 / 12)[cell],
+        least_sd=np.maximum(step[run_set] / np.sqrt(12), LEAST_SD),
         bias=np.hypot(bias.value, bias_u)[cell],
         group=group_of_cell[cell],
         group_set=group_key // clock.shape[1],

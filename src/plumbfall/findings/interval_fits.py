@@ -54,7 +54,8 @@ def interval_fits(drops: IntervalDrops) -> IntervalFits:
     n_groups = len(drops.group_set)
     count = np.bincount(drops.group, minlength=n_groups)
     mean = group_sums(drops.value, drops.group, n_groups) / count
-    sd = drops.by_time * drops.mark_sd
+    sd = drops.by_time * np.where(drops.mark_sd > 0, np.maximum(drops.mark_sd, drops.least_sd), 0.0)
+    least = group_sums(drops.least_sd**2, drops.group, n_groups) / count
     timed = group_sums(sd, drops.group, n_groups) / count
     biased = group_sums(drops.by_time * drops.bias, drops.group, n_groups) / count
     by_time = group_sums(drops.by_time, drops.group, n_groups) / count
@@ -71,7 +72,8 @@ def interval_fits(drops: IntervalDrops) -> IntervalFits:
         inner_dof = (n_drops - 1) * (k - 1)
         with np.errstate(invalid="ignore", divide="ignore"):
             scale = np.where(inner_dof > 0, apart / inner_dof, np.inf)
-        scale = np.where(known, np.maximum(scale, 1.0), scale)
+        smallest = np.where(known, 1.0, least[groups].mean(axis=1))
+        scale = np.maximum(scale, smallest)
         able = inner_dof > 0
         scatter = shape * np.where(able, scale / n_drops, 1.0)[:, None, None]
         covariance = declared + scatter

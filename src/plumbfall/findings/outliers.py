@@ -136,7 +136,8 @@ def _detectable(data: RunData, run_set: int, drop: int) -> float:
     n = int(data.suspects.n[run_set])
     left = data.residuals
     rest = left.squares[run_set] - left.left[drop] ** 2 / left.diagonal[drop]
-    error = np.sqrt(rest / max(n - 2, 1) / left.diagonal[drop])
+    scale = max(rest / max(n - 2, 1), float(left.least[run_set]))
+    error = np.sqrt(scale / left.diagonal[drop])
     return float(detectable(standard_error=error, dof=n - 2, level=data.limits.outlier_level / n))
 
 

@@ -48,7 +48,8 @@ class Residuals:
     ``by_ball`` says which sets compare drops of the same ball only. ``left`` is P y with
     P = V^-1 - V^-1 1 (1' V^-1 1)^-1 1' V^-1, shape (drops,), ``diagonal`` that of P; ``squares``
     y' P y by run set, with ``dof`` degrees of freedom. ``ones`` is V^-1 1, ``total`` 1' V^-1 1 by
-    run set, ``factor`` what joins the drops of a ball in V^-1, shape (groups,).
+    run set, ``factor`` what joins the drops of a ball in V^-1, shape (groups,). ``least`` is the
+    smallest mean square by run set that the steps of the clock let be believed.
     Variances are relative to each other: the tests estimate their scale from the residuals.
     """
 
@@ -62,6 +63,7 @@ class Residuals:
     ones: Numbers
     total: Numbers
     factor: Numbers
+    least: Numbers
 
     def between(self, one: Codes, other: Codes) -> Numbers:
         """Elements of P off the diagonal, for pairs of drops of the same run sets."""
@@ -128,7 +130,7 @@ class Residuals:
                 xx = total(covariate * projected)
             xy = total(projected * y)
             seen = (xx > SEEN * total(covariate**2 / self.errors.variance)) & (dof > 0)
-            rest = np.maximum(squares - xy**2 / xx, 0.0)
+            rest = np.maximum(squares - xy**2 / xx, dof * self.least)
             error = np.sqrt(rest / dof / xx)
             value = xy / xx
         return Slope(
@@ -197,6 +199,7 @@ def residuals(
         ones=ones,
         total=total,
         factor=factor,
+        least=group_sums(errors.rounding / errors.variance, run_set, n) / np.maximum(count, 1),
     )
 
 

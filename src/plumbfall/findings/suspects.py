@@ -63,7 +63,7 @@ def suspects(residuals: Residuals) -> Suspects:
     own = residuals.diagonal * residuals.errors.variance > 1e-9  # not a ball's only drop
     n_own = group_sums(own, run_set, n_sets)
     with np.errstate(invalid="ignore", divide="ignore"):
-        scale = np.sqrt(squares / dof)
+        scale = np.sqrt(np.maximum(squares / dof, residuals.least))
         distance = residuals.left / np.sqrt(residuals.diagonal) / scale[run_set]
     distance = np.where(own & np.isfinite(distance), distance, 0.0)
     farthest = np.zeros(n_sets)
@@ -99,7 +99,9 @@ def pairs(residuals: Residuals, single: Suspects) -> Pairs:
         ab = residuals.between(one, other)
         with np.errstate(invalid="ignore", divide="ignore"):
             taken = (bb * a**2 - 2 * ab * a * b + aa * b**2) / (aa * bb - ab**2)
-        ratio = 1 - taken / residuals.squares[at]
+        least = (residuals.dof[at] - 2) * residuals.least[at]
+        rest = np.maximum(residuals.squares[at] - taken, least)
+        ratio = rest / np.maximum(residuals.squares[at], rest)
         better = ~(ratio >= statistic[at])
         place = at[better]
         statistic[place] = ratio[better]
