@@ -47,7 +47,7 @@ def test_times_that_a_spreadsheet_made_its_own_are_refused(tmp_path, monkeypatch
     monkeypatch.chdir(tmp_path)
     rows = [
         ["time [s]"],
-        [Styled(63.15 / 86400, 1)],
+        [Styled(63 / 1440, 2)],
         [Styled(MARCH_2 + 0.5, 3)],
         [True],
         ["12,84"],
@@ -56,8 +56,9 @@ def test_times_that_a_spreadsheet_made_its_own_are_refused(tmp_path, monkeypatch
     write_workbook(tmp_path / "a.xlsx", {"S": rows})
     typed = "format the column as text and type"
     assert [str(problem) for problem in collect("a.xlsx").problems] == [
-        "a.xlsx:2:1: '00:01:03.150000' is stored as a time of day; 1:03 may have meant 1 min 3 s or"
-        f" 1 h 3 min; {typed} the times again, or type seconds",
+        "a.xlsx:2:1: '01:03:00' is stored as a time of day; it may have been typed as minutes and"
+        f" seconds, and be sixty times too long; {typed} the times again, type seconds, or head the"
+        " column 'time [h:mm:ss]' if it is right",
         "a.xlsx:3:1: '2026-03-02T12:00:00' is a date where a time is expected; spreadsheets turn"
         f" entries into dates; {typed} the value again as it was recorded",
         "a.xlsx:4:1: 'True' is not a time; type seconds such as 12.84, or minutes and seconds such"
@@ -132,5 +133,43 @@ def test_a_cell_at_the_far_corner_does_not_fill_the_memory(tmp_path):
         for name, content in parts.items():
             archive.writestr(name, content)
     assert collect(path).problems[0].message == (
-        "a sheet spans 1,048,576 rows by 16,384 columns, mostly empty"
+        "a sheet spans 1,048,576 rows by 16,384 columns; at most 5,000,000 cells are read"
     )
+
+
+def test_times_with_seconds_are_read_as_a_spreadsheet_stores_them(tmp_path, monkeypatch):
+    monkeypatch.chdir(tmp_path)
+    rows = [["time"], [Styled(63.15 / 86400, 1)], [Styled(62 / 86400, 2)], ["1:03.15"]]
+    write_workbook(tmp_path / "a.xlsx", {"S": rows})
+    assert read_timings("a.xlsx").table["time_s"].tolist() == [63.15, 62.0, 63.15]
+    rows = [["time [h:mm:ss]"], [Styled(63 / 1440, 2)]]
+    write_workbook(tmp_path / "b.xlsx", {"S": rows})
+    assert read_timings("b.xlsx").table["time_s"].tolist() == [3780.0]
+
+
+@pytest.mark.parametrize(
+    ("saved", "seconds"), [("<v>12.84</v>", 12.84), ("", None), ("<v/>", None)]
+)
+def test_a_formula_is_read_by_its_value_and_refused_without_one(
+    saved, seconds, tmp_path, monkeypatch
+):
+    monkeypatch.chdir(tmp_path)
+    path = write_workbook(tmp_path / "a.xlsx", {"S": [["time [s]"], [1.5], [2.5]]})
+    with zipfile.ZipFile(path) as archive:
+        parts = {name: archive.read(name) for name in archive.namelist()}
+    sheet = "xl/worksheets/sheet1.xml"
+    old = b"<v>2.5</v>"
+    assert old in parts[sheet]
+    parts[sheet] = parts[sheet].replace(old, b"<f>6.42*2</f>" + saved.encode())
+    with zipfile.ZipFile(path, "w") as archive:
+        for name, content in parts.items():
+            archive.writestr(name, content)
+    timings = collect("a.xlsx")
+    if seconds:
+        assert not timings.problems
+        assert timings.table["time_s"].tolist() == [1.5, seconds]
+    else:
+        assert [str(problem) for problem in timings.problems] == [
+            "a.xlsx:3:1: cell A3 has a formula without its value; open the workbook in a"
+            " spreadsheet program and save it, or save the sheet as CSV"
+        ]

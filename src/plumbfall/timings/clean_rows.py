@@ -5,8 +5,10 @@ from __future__ import annotations
 import re
 
 import numpy as np
+from numpy.typing import NDArray
 
 from plumbfall.timings.byte_columns import BREAK, PADDING, QUOTE, STAND_IN, SliceColumn
+from plumbfall.timings.columns import Integers
 from plumbfall.timings.comments import note_comments
 from plumbfall.timings.grid import WIDEST, Grid
 from plumbfall.timings.line_breaks import note_breaks
@@ -85,11 +87,9 @@ def cut_clean(
     )
     # of every row: where the byte before it is, where it ends, and its first cut among all cuts
     cuts = np.flatnonzero((buffer[:size] == ord(delimiter)) | (buffer[:size] == 10))
-    last = np.searchsorted(cuts, ends)
+    last = _places(cuts, ends)
     first = np.concatenate(([0], last[:-1] + 1)) if ends.size else last
-    blank = (buffer == 32) | (buffer == 9) | (buffer == 10) | (buffer == ord(delimiter))
-    filled = ~blank
-    full = np.logical_or.reduceat(filled[:size], begins) if ends.size else comment
+    full = _full(buffer[:size], begins, delimiter)
     kept = ~(comment | (begins == ends))
     widths = last - first + 1
     for row in np.flatnonzero(kept & ~full & (widths > 1)):
@@ -130,3 +130,21 @@ def cut_clean(
         cells = grid.row(int(row))
         note_breaks(cells, line, line + int(within[row]), delimiter, len(headings), notices)
     return grid
+
+
+def _places(cuts: Integers, ends: Integers) -> Integers:
+    """Return the place of each row's end among all cuts."""
+    if ends.size and cuts.size % ends.size == 0:
+        width = cuts.size // ends.size
+        if (cuts[width - 1 :: width] == ends).all():
+            return np.arange(width - 1, cuts.size, width)
+    return np.searchsorted(cuts, ends)
+
+
+def _full(text: NDArray[np.uint8], begins: Integers, delimiter: str) -> NDArray[np.bool_]:
+    """Return which rows hold anything beyond spaces and delimiters."""
+    first = text[begins]
+    if not ((first == 32) | (first == 9) | (first == 10) | (first == ord(delimiter))).any():
+        return np.ones(begins.size, dtype=bool)
+    blank = (text == 32) | (text == 9) | (text == 10) | (text == ord(delimiter))
+    return np.logical_or.reduceat(~blank, begins)

@@ -85,23 +85,31 @@ class MeasuredColumns:
                 severity="warning",
             )
         stored = self.grid.stored_times.get(heading.column)
-        if stored is not None:
-            parsed = self._refuse_stored(parsed, heading, stored)
+        if stored is not None and heading.meaning != "temperature":
+            parsed = self._minutes_refused(parsed, heading, stored)
         unknown = unit is None and bool(heading.unit or declared_unit(heading, self.units))
         if parsed.plain_row >= 0 and not unknown:
             self._note_unit(heading, unit, column.text(parsed.plain_row), parsed.plain_row)
         return parsed
 
-    def _refuse_stored(self, parsed: Parsed, heading: Heading, rows: Integers) -> Parsed:
-        """Refuse what a spreadsheet stores as a time of day: 1:03 may be 1 min 3 s or 1 h 3 min."""
+    def _minutes_refused(self, parsed: Parsed, heading: Heading, stored: Integers) -> Parsed:
+        """Refuse whole minutes that a spreadsheet stores as a time of day.
+
+        Where 1:03 is typed for 1 min 3 s it stores 1 h 3 min. A time with seconds is certain, and
+        any is under a heading such as ``time [h:mm:ss]``.
+        """
+        if heading.unit.strip().casefold().startswith("h") and ":" in heading.unit:
+            return parsed
+        rows = stored[parsed.values[stored] % 60 == 0]
         for row in rows:
             cell = self.grid.columns[heading.column - 1].text(int(row))
             self.fault(
                 int(row),
                 heading.column,
-                f"{quoted(cell)} is stored as a time of day; 1:03 may have meant 1 min 3 s or"
-                " 1 h 3 min",
-                "format the column as text and type the times again, or type seconds",
+                f"{quoted(cell)} is stored as a time of day; it may have been typed as minutes and"
+                " seconds, and be sixty times too long",
+                "format the column as text and type the times again, type seconds, or head the"
+                f" column {quoted(heading.label + ' [h:mm:ss]')} if it is right",
             )
         values, bad = parsed.values.copy(), parsed.bad.copy()
         values[rows], bad[rows] = np.nan, True

@@ -129,7 +129,9 @@ def _turned_text(
     for mark in [declared] if declared else [mark for mark in DELIMITERS if mark in text]:
         tried = Notices(notices.path)
         cut = cut_rows(text, mark, tried)
-        score = vocabulary.understood(row[0] for row in cut[0]) if cut else 0
+        score = 0
+        if cut and len(cut[0]) <= WIDEST:
+            score = max(map(vocabulary.understood, turned(cut[0])[:DEEPEST]), default=0)
         if best is None or score > best[0]:
             best = (score, mark, tried, cut)
     if best is None:

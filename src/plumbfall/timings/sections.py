@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 
@@ -14,14 +13,13 @@ from plumbfall.timings.heading_rows import DEPTH, Head, read_head
 from plumbfall.timings.headings import TIMES
 from plumbfall.timings.notices import Notices, quoted
 from plumbfall.timings.statistics_rows import drop_rows
-from plumbfall.timings.titles import Title, read_title
+from plumbfall.timings.titles import Title, may_be_title, read_title
 from plumbfall.timings.values import is_missing
 from plumbfall.timings.vocabulary import Vocabulary, is_value
 from plumbfall.timings.widths import evened
 
 __all__ = ["MOST_SECTIONS", "Above", "Section", "cut_sections"]
 
-_PLAIN = re.compile(r"[+-]?[0-9:.,]+")
 _MOST_SHOWN = 3
 MOST_SECTIONS = 500
 """Blocks with headings or titles of their own that are read of one file."""
@@ -207,19 +205,18 @@ def _special_rows(grid: Grid, head: Head, start: int, vocabulary: Vocabulary) ->
     if not rest.size:
         return []
     codes, texts = column.distinct(rest)
-    wordy = np.array([not (_PLAIN.fullmatch(text) or is_value(text)) for text in texts], dtype=bool)
-    empty = np.array([is_missing(text) for text in texts], dtype=bool)
-    rows = rest[wordy[codes] & ~empty[codes]].tolist()
-    gaps = rest[empty[codes]]
-    if gaps.size:
-        filled = np.zeros(gaps.size, dtype=np.int64)
-        heading = np.zeros(gaps.size, dtype=bool)
-        for one in grid.columns:
-            codes, texts = one.distinct(gaps)
+    odd = np.array([is_missing(text) or not is_value(text) for text in texts], dtype=bool)
+    rest = rest[odd[codes]]
+    filled = np.zeros(rest.size, dtype=np.int64)
+    heading = np.zeros(rest.size, dtype=bool)
+    title = np.zeros(rest.size, dtype=bool)
+    for one in grid.columns:
+        codes, texts = one.distinct(rest)
+        if texts:
             filled += np.array([bool(text) for text in texts], dtype=np.int64)[codes]
-            heading |= np.array([vocabulary.has_times([text]) for text in texts], dtype=bool)[codes]
-        rows += gaps[heading | ((filled > 0) & (filled <= 2))].tolist()
-    return sorted(rows)
+            heading |= np.array([vocabulary.has_times([text]) for text in texts])[codes]
+            title |= np.array([may_be_title(text, vocabulary) for text in texts])[codes]
+    return [int(row) for row in rest[heading | (title & (filled <= 2))]]
 
 
 def _section(grid: Grid, part: _Part, vocabulary: Vocabulary, notices: Notices) -> Section:

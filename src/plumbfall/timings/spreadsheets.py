@@ -7,6 +7,7 @@ import io
 import re
 import zipfile
 import zlib
+from collections.abc import Iterator
 
 from plumbfall.errors import nearest_name
 from plumbfall.timings.columns import number_text
@@ -19,8 +20,13 @@ __all__ = ["LARGEST_WORKBOOK", "sheet_rows"]
 LARGEST_WORKBOOK = 200_000_000
 """Bytes of the largest workbook that is read, once unpacked."""
 
-_MOST_CELLS = 20_000_000
+_MOST_CELLS = 5_000_000
 _CELL = re.compile(rb"""<(?:\w+:)?(?:c|row)\s(?:[^>]*?\s)?r=["']([A-Z]{0,3})([0-9]{1,7})["']""")
+_SHEET = re.compile(rb"""<(?:\w+:)?sheet\s[^>]*\br:id=["']([^"']*)["']""")
+_FORMULA_ALONE = re.compile(
+    rb"""<c\s(?:[^>]*?\s)?r=["']([A-Z]{1,3})([0-9]{1,7})["'][^>]*>\s*"""
+    rb"""<f(?:\s[^>]*)?(?:/>|>[^<]*</f>)\s*(?:<v\s*/>|<v></v>)?\s*</c>"""
+)
 _AS_CSV = "save the sheet as CSV and name that file"
 
 
@@ -53,6 +59,8 @@ def sheet_rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[s
             notices.offer("sheet", f'"{names[0]}"')
         chosen = workbook.get_sheet_by_name(sheet if sheet is not None else names[0])
         values = chosen.to_python(skip_empty_area=False)
+        with zipfile.ZipFile(io.BytesIO(raw.data)) as archive:
+            _note_formulas(archive, names.index(sheet) if sheet is not None else 0, notices)
     except (
         zipfile.BadZipFile,
         zlib.error,
@@ -63,7 +71,12 @@ def sheet_rows(raw: RawFile, sheet: str | None, notices: Notices) -> list[list[s
     ) as fault:
         notices.error(f"the workbook cannot be read: {fault}", _AS_CSV)
         return None
-    rows = [[_text(value) for value in row] for row in values]
+    known: dict[str, str] = {}  # equal texts are kept once
+    rows = []
+    for row in values:
+        texts = [_text(value) for value in row]
+        rows.append([known.setdefault(one, one) if type(one) is str else one for one in texts])
+    del values
     if not any(text.strip() for row in rows for text in row):
         notices.error("the sheet is empty", "it needs headings and one row for each drop")
         return None
@@ -80,12 +93,43 @@ def _trouble(archive: zipfile.ZipFile) -> str:
     for name in archive.namelist():
         content = archive.read(name)  # checks that it is no longer than it says
         if name.startswith("xl/worksheets/"):
-            cells = [(_column_number(found[1]), int(found[2])) for found in _CELL.finditer(content)]
-            width = max((column for column, _ in cells), default=0)
-            height = max((row for _, row in cells), default=0)
+            width = height = 0
+            for found in _CELL.finditer(content):
+                width = max(width, _column_number(found[1]))
+                height = max(height, int(found[2]))
             if width * height > _MOST_CELLS:
-                return f"a sheet spans {height:,} rows by {width:,} columns, mostly empty"
+                return (
+                    f"a sheet spans {height:,} rows by {width:,} columns; at most"
+                    f" {_MOST_CELLS:,} cells are read"
+                )
     return ""
+
+
+def _note_formulas(archive: zipfile.ZipFile, number: int, notices: Notices) -> None:
+    """Note formulas of a sheet that were saved without their values, which would read as empty."""
+    sheets = _SHEET.findall(archive.read("xl/workbook.xml"))
+    related = archive.read("xl/_rels/workbook.xml.rels") if number < len(sheets) else b""
+    targets = dict(_related(related))
+    path = "xl/" + targets.get(sheets[number] if number < len(sheets) else b"", "").lstrip("/")
+    path = path.replace("xl/xl/", "xl/")
+    if path not in archive.namelist():
+        return
+    for found in _FORMULA_ALONE.finditer(archive.read(path)):
+        notices.error(
+            f"cell {found[1].decode()}{found[2].decode()} has a formula without its value",
+            "open the workbook in a spreadsheet program and save it, or save the sheet as CSV",
+            int(found[2]),
+            _column_number(found[1]),
+        )
+
+
+def _related(relations: bytes) -> Iterator[tuple[bytes, str]]:
+    """Yield the name and the target of every relation of a workbook."""
+    for tag in re.findall(rb"<(?:\w+:)?Relationship\s[^>]*>", relations):
+        name = re.search(rb"""\sId=["']([^"']*)["']""", tag)
+        target = re.search(rb"""\sTarget=["']([^"']*)["']""", tag)
+        if name and target:
+            yield name[1], target[1].decode("utf-8", "replace")
 
 
 def _column_number(letters: bytes) -> int:
@@ -99,6 +143,21 @@ def _text(value: object) -> str:
     """Return a cell's value as one would type it."""
     if isinstance(value, float):
         return number_text(value)
-    if isinstance(value, (dt.time, dt.timedelta)):
-        return StoredTime(value)
+    if isinstance(value, dt.time):
+        value = dt.timedelta(
+            hours=value.hour,
+            minutes=value.minute,
+            seconds=value.second,
+            microseconds=value.microsecond,
+        )
+    if isinstance(value, dt.timedelta):
+        return StoredTime(_clock_text(value))
     return value.isoformat() if isinstance(value, dt.datetime) else str(value)
+
+
+def _clock_text(span: dt.timedelta) -> str:
+    """Return a span of time as ``h:mm:ss.ff``, without zeros at its end."""
+    seconds, rest = divmod(span, dt.timedelta(seconds=1))
+    fraction = f".{rest.microseconds:06d}".rstrip("0").rstrip(".")
+    minutes, seconds = divmod(seconds, 60)
+    return f"{minutes // 60:02d}:{minutes % 60:02d}:{seconds:02d}{fraction}"

@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from plumbfall.timings.cell_units import part_unit
 from plumbfall.timings.vocabulary import Vocabulary
 
-__all__ = ["Title", "read_title"]
+__all__ = ["Title", "may_be_title", "read_title"]
 
 _NAMED = ("set", "ball", "tube", "liquid", "timer", "thermometer", "operator")
 _SHORT = ("set", "ball", "tube")
@@ -45,6 +45,14 @@ def read_title(cells: Sequence[str], vocabulary: Vocabulary) -> Title | None:
         return None
     known = title.field == "ball" and text in vocabulary.balls
     return title if known or _NAME_ONLY.fullmatch(text) else None
+
+
+def may_be_title(text: str, vocabulary: Vocabulary) -> bool:
+    """Say whether a cell is a title, or the first of two cells that are one."""
+    if read_title([text], vocabulary) is not None:
+        return True
+    meaning = vocabulary.read(text.rstrip(":= ")).meaning if text else ""
+    return meaning in (*_NAMED, "temperature")
 
 
 def _title(name: str, text: str, vocabulary: Vocabulary) -> Title | None:
