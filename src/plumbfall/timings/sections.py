@@ -161,6 +161,7 @@ def _note_head(head: Head, grid: Grid, row: int, notices: Notices) -> None:
 def _parts(grid: Grid, part: _Part, vocabulary: Vocabulary, notices: Notices) -> Iterator[_Part]:
     """Yield the parts from the first on, cut at every row that is headings or a title."""
     titles = dict(part.titles)
+    named = False  # whether a title has stood since the latest headings
     unclear = -1  # the latest row without a time that is neither headings nor a title
     heading_line: int | None
     for row in _special_rows(grid, part.head, part.start, vocabulary):
@@ -174,11 +175,16 @@ def _parts(grid: Grid, part: _Part, vocabulary: Vocabulary, notices: Notices) ->
             head, line = read_head(top, cells, below, vocabulary), int(grid.lines[row])
             if top and head.merged and not read_head((), cells, below, vocabulary).merged:
                 end = row - 1
-            notices.repair("headings stand again in this row and hold for the rows below it", line)
+            held = "" if named else _held(titles)
+            notices.repair(
+                "headings stand again in this row and hold for the rows below it" + held, line
+            )
+            named = False
             _note_head(head, grid, row, notices)
             start, heading_line = row + 1 + head.rows, line
         elif title := read_title(cells, vocabulary):
             _name(title, int(grid.lines[row]), titles, notices)
+            named = True
             head, start, heading_line = part.head, row + 1, part.line
         else:
             unclear = row
@@ -192,6 +198,14 @@ def _parts(grid: Grid, part: _Part, vocabulary: Vocabulary, notices: Notices) ->
             yield part
         part = _Part(head, heading_line, start, len(grid), dict(titles))
     yield part
+
+
+def _held(titles: Mapping[str, tuple[Title, int]]) -> str:
+    """Say what earlier titles name, where headings stand again without one of their own."""
+    told = ", ".join(
+        f"{name} {quoted(title.text)} of line {line}" for name, (title, line) in titles.items()
+    )
+    return f"; {told} still holds" if told else ""
 
 
 def _special_rows(grid: Grid, head: Head, start: int, vocabulary: Vocabulary) -> list[int]:
