@@ -128,3 +128,16 @@ def found_in(tables, name):
 def test_lengths_that_no_bench_has_are_told_with_the_factor_that_mends_them(changes, says):
     many = found(drops_table({"B1": [14.91, 14.93, 14.92]}), **changes)
     assert any(says in one.message for one in many), [one.message for one in many]
+
+
+@pytest.mark.parametrize(("typed", "says"), [(77.0, "read as degF it would be 25.0 degC")])
+def test_a_temperature_in_another_unit_is_told_by_that_of_the_density(typed, says):
+    """77 degF are 25 degC, by definition of the scales."""
+    (one,) = found(drops_table({"B1": [14.91, 14.93, 14.92]}, temperature=typed))
+    assert says in one.message
+    assert "temperature [degF]" in one.remedy
+
+
+@pytest.mark.parametrize("typed", [25.0, 40.0, 60.0, 100.0])
+def test_a_hot_bath_is_no_slip(typed):
+    assert found(drops_table({"B1": [14.91, 14.93, 14.92]}, temperature=typed)) == []

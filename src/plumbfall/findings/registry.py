@@ -40,6 +40,7 @@ from plumbfall.findings.solvability import (
     reynolds_uncertain,
 )
 from plumbfall.findings.swaps import swapped_ball
+from plumbfall.findings.temperature_units import temperature_unit
 from plumbfall.findings.temperatures import (
     density_temperature,
     fitted_slope,
@@ -63,6 +64,7 @@ DETECTORS: tuple[Detector, ...] = (
     density_implausible,
     density_off_material,
     implausible_lengths,
+    temperature_unit,
     unit_slip,
     swapped_ball,
     outlier,
