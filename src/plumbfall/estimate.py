@@ -27,6 +27,15 @@ class Estimate:
     unit: str = "1"
     text: str = ""
 
+    def _repr_html_(self) -> str:
+        from html import escape
+
+        written = f" (written {escape(self.text)})" if self.text else ""
+        return (
+            f"<code>{escape(self.name)}</code> {self.value:.10g} {escape(self.unit)}, standard "
+            f"uncertainty {self.u:.3g}, {escape(self.distribution)}{written}"
+        )
+
     @property
     def exact(self) -> bool:
         """Whether no uncertainty was stated."""

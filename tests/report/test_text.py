@@ -5,7 +5,8 @@ import io
 import pytest
 
 from plumbfall.report import Report
-from plumbfall.report.text import printable, show
+from plumbfall.report.terminal import show
+from plumbfall.report.text import printable
 from report.invented_report import (
     InventedReduction,
     hostile_sets,
@@ -110,10 +111,36 @@ def test_a_terminal_gets_colour_and_the_same_words(monkeypatch: pytest.MonkeyPat
     import re
 
     stream = Stream("utf-8", terminal=True)
+    report = Report(InventedReduction(three_sets().sets[1:2]))
+    show(report, stream)
+    assert "\x1b[1;33mvalid-with-warnings\x1b[0m  batch 119" in stream.getvalue()
+    assert "  \x1b[1;33mwarning\x1b[0m outlier" in stream.getvalue()
+    assert re.sub(r"\x1b\[[0-9;]*m", "", stream.getvalue()) == report.text()
+
+
+@pytest.mark.parametrize("encoding", ["utf-8", "ascii"])
+def test_several_sets_on_a_terminal_begin_with_a_table(
+    monkeypatch: pytest.MonkeyPatch, encoding: str
+) -> None:
+    monkeypatch.delenv("NO_COLOR", raising=False)
+    monkeypatch.setenv("TERM", "xterm-256color")
+    monkeypatch.setenv("COLUMNS", "80")
+    import re
+
+    stream = Stream(encoding, terminal=True)
     report = Report(three_sets())
     show(report, stream)
-    assert "\x1b[" in stream.getvalue()
-    assert re.sub(r"\x1b\[[0-9;]*m", "", stream.getvalue()) == report.text()
+    shown = re.sub(r"\x1b\[[0-9;]*m", "", stream.getvalue())
+    table, _, rest = shown.partition("\n\n")
+    assert rest == printable(report.text(), encoding)
+    lines = table.splitlines()
+    assert max(map(len, lines)) <= 80
+    assert [re.split(r"[ |]{2,}", line)[:2] for line in lines if line.startswith("batch")] == [
+        ["batch 118", "valid"], ["batch 119", "warnings"], ["batch 120", "invalid"],
+    ]  # fmt: skip
+    assert printable("851.3 ± 4.2 mPa.s", encoding) in lines[2]
+    assert "847.1 to 855.5" in lines[2]
+    assert "none" in lines[4]
 
 
 @pytest.mark.parametrize("encoding", ["ascii", "cp437", "latin-1", "cp1252"])

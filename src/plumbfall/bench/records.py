@@ -316,6 +316,11 @@ class Bench:
         """Every estimate of the sheet by key path, in the order of the sheet."""
         return dict(_walk(self))
 
+    def _repr_html_(self) -> str:
+        from plumbfall.bench.display import bench_markup
+
+        return bench_markup(self.title, self.path, self.quantities())
+
 
 def _walk(record: object) -> list[tuple[str, Estimate]]:
     if isinstance(record, Estimate):

@@ -67,7 +67,7 @@ def _run(options: argparse.Namespace) -> int:
 
     from plumbfall.errors import InputError, PlumbfallWarning
     from plumbfall.report.browser import find_browser
-    from plumbfall.report.text import show
+    from plumbfall.report.terminal import show
     from plumbfall.workflow import reduce
 
     if options.format == "pdf":
@@ -93,7 +93,8 @@ def _run(options: argparse.Namespace) -> int:
     failing = {"invalid", "valid-with-warnings"} if options.strict else {"invalid"}
     if options.out:
         printed = options.format == "pdf"
-        report.write(options.out, pdf=printed)
+        with progress_bar("pages") as progress:
+            report.write(options.out, pdf=printed, progress=progress)
         written = ["report.html", "report.json", "run_sets.csv", "drops.csv"]
         written += ["report.pdf"] if printed else []
         say(f"written to {options.out}: {', '.join(written)}")

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import base64
 import hashlib
+from collections.abc import Callable
 from functools import cache
 from importlib import resources
 from typing import TYPE_CHECKING, Any
@@ -42,8 +43,11 @@ _RUNNING_FOOT = (
 )
 
 
-def page(report: Report) -> str:
-    """Return the report as a page of HTML, the same byte for byte for the same report."""
+def page(report: Report, progress: Callable[[int, int], None] | None = None) -> str:
+    """Return the report as a page of HTML, the same byte for byte for the same report.
+
+    ``progress`` is called with the run sets laid out so far and how many there are.
+    """
     identity = report_identity(report)
     style = _read("page.css") + _RUNNING_FOOT.format(identity=identity)
     digest = base64.b64encode(hashlib.sha256(style.encode("utf-8")).digest()).decode("ascii")
@@ -51,10 +55,11 @@ def page(report: Report) -> str:
     several = len(report) > 1
     results = [view.result for view in report]
     with house_style():
-        sets = [
-            set_page(result, index, report.bench, seen.get(result.name))
-            for index, result in enumerate(results, 1)
-        ]
+        sets = []
+        for index, result in enumerate(results, 1):
+            sets.append(set_page(result, index, report.bench, seen.get(result.name)))
+            if progress is not None:
+                progress(index, len(results))
         where = map_picture(results)
         together = [sets_picture(results, report.bench.viscosity_unit)] if several else []
         together += [where] if where is not None else []

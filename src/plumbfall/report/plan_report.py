@@ -203,6 +203,10 @@ class PlanReport:
 
         return new_plan_figure(self.plan) if ax is None else draw_plan(self.plan, ax)
 
+    def __repr__(self) -> str:
+        will = sum(one.suitable for one in self.combinations)
+        return f"<plan: {will} of {len(self.combinations)} combinations will do>"
+
     def _repr_html_(self) -> str:
         from plumbfall.report.plan_page import plan_fragment
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import dataclasses
 import datetime as dt
 import os
-from collections.abc import Iterator, Mapping
+from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 from typing import TYPE_CHECKING, Any
@@ -213,19 +213,27 @@ class Report:
 
         write_folder(folder, self._csv_files())
 
-    def write(self, folder: str | os.PathLike[str], *, pdf: bool = False) -> None:
+    def write(
+        self,
+        folder: str | os.PathLike[str],
+        *,
+        pdf: bool = False,
+        progress: Callable[[int, int], None] | None = None,
+    ) -> None:
         """Write report.html, report.json, run_sets.csv and drops.csv, all of them or none.
 
-        With ``pdf`` also report.pdf, printed by an installed Chromium.
+        With ``pdf`` also report.pdf, printed by an installed Chromium. ``progress`` is called with
+        the run sets laid out so far and how many there are.
 
         Raises
         ------
         InputError
             If they cannot be written there; the folder then is as it was.
         """
+        from plumbfall.report.html import page as laid_out
         from plumbfall.report.writing import write_folder
 
-        page = self.to_html()
+        page = laid_out(self, progress)
         files = {
             "report.html": page.encode("utf-8"),
             "report.json": self.to_json().encode("ascii"),

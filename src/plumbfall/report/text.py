@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-import os
 import textwrap
 from collections.abc import Iterable, Iterator, Sequence
-from typing import TYPE_CHECKING, TextIO
+from typing import TYPE_CHECKING
 
 from plumbfall._version import __version__
 from plumbfall.report.improvement_view import HALVING, halving_lines
@@ -21,7 +20,7 @@ from plumbfall.results import Finding, RunSetResult
 if TYPE_CHECKING:
     from plumbfall.report.report import Report
 
-__all__ = ["WIDTH", "plain_text", "printable", "show", "wrapped"]
+__all__ = ["WIDTH", "plain_text", "printable", "text_lines", "wrapped"]
 
 WIDTH = 80
 MANY_SETS = 12
@@ -31,7 +30,6 @@ _PLAIN_FORMS = {
     "±": "+/-", "–": "-", "·": ".", "°": "deg", "µ": "u", "²": "2", "³": "3", "×": "x",
     "…": "...", "≤": "<=", "≥": ">=", "’": "'", "“": '"', "”": '"', "é": "e", "ü": "u",
 }  # fmt: skip
-_STYLES = {"valid": "bold cyan", "valid-with-warnings": "bold yellow", "invalid": "bold red"}
 
 
 def plain_text(report: Report) -> str:
@@ -39,30 +37,7 @@ def plain_text(report: Report) -> str:
 
     With more than twelve run sets only those that are not plainly valid are told in full.
     """
-    return "\n".join(_lines(report)) + "\n"
-
-
-def show(report: Report, stream: TextIO) -> None:
-    """Write the report to a stream: verdicts in colour on a terminal, plain when piped.
-
-    ``NO_COLOR`` in the environment, or a terminal that calls itself dumb, keeps it plain.
-    Characters that the stream's encoding lacks are spelled in ASCII.
-    """
-    lines = [printable(line, stream.encoding) for line in _lines(report)]
-    plain = not stream.isatty() or os.environ.get("NO_COLOR") or os.environ.get("TERM") == "dumb"
-    if plain:
-        stream.write("\n".join(lines) + "\n")
-        return
-    from rich.console import Console
-    from rich.text import Text
-
-    console = Console(file=stream, highlight=False, emoji=False, markup=False, soft_wrap=True)
-    for line in lines:
-        word = line.split("  ", 1)[0]
-        text = Text(line)
-        if word in _STYLES:
-            text.stylize(_STYLES[word], 0, len(word))
-        console.print(text)
+    return "\n".join(text_lines(report)) + "\n"
 
 
 def printable(text: str, encoding: str | None) -> str:
@@ -84,7 +59,8 @@ def printable(text: str, encoding: str | None) -> str:
     return text
 
 
-def _lines(report: Report) -> Iterator[str]:
+def text_lines(report: Report) -> Iterator[str]:
+    """Yield the lines of the report as text."""
     explain = Explainer()
     few = len(report) <= MANY_SETS
     for view in report:

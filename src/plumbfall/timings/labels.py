@@ -13,6 +13,7 @@ from plumbfall.timings.columns import Column, Integers, rows_of
 from plumbfall.timings.faults import Fault
 from plumbfall.timings.moments import read_moment
 from plumbfall.timings.notices import Notices, quoted
+from plumbfall.timings.records import STATUSES
 from plumbfall.timings.values import is_missing
 
 __all__ = ["LONGEST_NAME", "Labels", "read_labels", "read_status", "stacked"]
@@ -20,7 +21,6 @@ __all__ = ["LONGEST_NAME", "Labels", "read_labels", "read_status", "stacked"]
 LONGEST_NAME = 120
 """Characters in the longest name of a set, ball, tube and so on."""
 _LONGEST_NOTE = 2000
-STATUSES = ("used", "void", "excluded")
 
 
 @dataclass(frozen=True, slots=True)

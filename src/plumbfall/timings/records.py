@@ -43,6 +43,10 @@ pandas categoricals (empty where not given); ``line column drop from_mark to_mar
 an excluded row's ``note`` opens with the rule that excluded it, such as ``no-time``.
 """
 
+STATUSES = ("used", "void", "excluded")
+SHOWN = ("file", "line", "set", "drop", "ball", "time_s", "temperature_K", "status", "note")
+"""Columns that a notebook shows of a table that it is asked to show as a whole."""
+
 
 @dataclass(frozen=True, slots=True)
 class ColumnRead:
@@ -121,3 +125,22 @@ class Timings:
 
     def __len__(self) -> int:
         return len(self.table)
+
+    def __repr__(self) -> str:
+        return f"<timings: {self._told()}>"
+
+    def _repr_html_(self) -> str:
+        from html import escape
+
+        remarks = [f"repaired: {one.file}:{one.line}: {one.what}" for one in self.repairs]
+        remarks += [f"{one.severity}: {one}" for one in self.problems]
+        said = "".join(f"<p>{escape(remark)}</p>\n" for remark in remarks)
+        shown = [name for name in SHOWN if name in self.table]
+        table: str = self.table[shown].to_html(max_rows=20, index=False, border=0)
+        return f'<div class="plumbfall">\n<p>{escape(self._told())}</p>\n{table}\n{said}</div>'
+
+    def _told(self) -> str:
+        names = self.table["set"].astype(str).nunique() if len(self) else 0
+        status = self.table["status"].astype(str)
+        counts = ", ".join(f"{int((status == one).sum())} {one}" for one in STATUSES)
+        return f"{len(self)} rows in {names} run sets: {counts}"
