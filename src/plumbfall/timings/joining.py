@@ -10,11 +10,11 @@ from numpy.typing import NDArray
 
 from plumbfall.timings.columns import Integers
 from plumbfall.timings.drops import TEXTS, FileDrops
-from plumbfall.timings.labels import STATUSES, Labels, stacked
+from plumbfall.timings.labels import Labels, stacked
 from plumbfall.timings.merging import merged_marks
 from plumbfall.timings.notices import Notices, quoted
 from plumbfall.timings.numbering import numbered_in_order
-from plumbfall.timings.records import COLUMNS
+from plumbfall.timings.records import COLUMNS, STATUSES
 
 __all__ = ["join_drops"]
 
