@@ -33,8 +33,8 @@ __all__ = [
 CONSTANTS_SCHEMA = "plumbfall/constants/1"
 CONTENT_HASH = "content_sha256"
 
-ROUNDING = 1e-9
-"""Relative excess of the inputs' part over the whole that rounding of a printed file explains."""
+ROUNDING, AS_PRINTED = 1e-9, 0.02
+"""Parts of a variance that the rounding of floats explains, and that of a file by hand."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -72,8 +72,9 @@ class Certified:
 class StoredConstant:
     """One constant of a file, in m2/s2.
 
-    ``own_u`` and ``own_dof`` are what no input listed in ``inputs`` accounts for: the scatter of
-    the calibration's drops.
+    ``own_u`` and ``own_dof`` are what no input listed in ``inputs`` accounts for. ``scatter`` says
+    that this is the scatter of the calibration's drops, which the ball has to itself; otherwise
+    it may hold anything, the certificate's error too.
     """
 
     name: str
@@ -86,6 +87,7 @@ class StoredConstant:
     inputs: tuple[StoredInput, ...]
     domain: Domain
     certified: tuple[Certified, ...]
+    scatter: bool = True
 
 
 @dataclass(frozen=True, slots=True)
@@ -188,11 +190,16 @@ class _Reader:
         u = self._number(item, "standard_uncertainty", key, least=0.0)
         dof = self._optional(item, "dof", key)
         inputs = self._inputs(item.get("sensitivities") or {}, f"{key}.sensitivities")
-        scatter = item.get("scatter") or {}
-        shared = sum((one.sensitivity * one.estimate.u) ** 2 for one in inputs)
-        if shared > u**2 * (1 + ROUNDING):
-            inputs, shared = (), 0.0  # what does not fit together is a bare number
-        own_u = math.sqrt(max(u**2 - shared, 0.0)) if u**2 - shared > ROUNDING * u**2 else 0.0
+        scatter = item.get("scatter")
+        scatter = scatter if isinstance(scatter, dict) else {}
+        left = u**2 - sum((one.sensitivity * one.estimate.u) ** 2 for one in inputs)
+        if left < -AS_PRINTED * u**2:
+            self.refuse(
+                f"{key}.standard_uncertainty",
+                f"{u:.3g} is less than what its sensitivities come to",
+                "write the file anew with plumbfall calibrate, or type the constant by hand",
+            )
+        own_u = math.sqrt(left) if left > ROUNDING * u**2 else 0.0
         own_dof = self._optional(scatter, "dof", f"{key}.scatter")
         if math.isinf(own_dof) and math.isfinite(dof):
             own_dof = dof * (own_u / u) ** 4 if own_u else math.inf
@@ -207,6 +214,7 @@ class _Reader:
             inputs=inputs,
             domain=self._domain(item.get("domain") or {}, f"{key}.domain"),
             certified=self._certified(item),
+            scatter=abs(_number(scatter.get("standard_uncertainty")) - own_u) <= AS_PRINTED * u,
         )
 
     def _inputs(self, listed: Any, key: str) -> tuple[StoredInput, ...]:

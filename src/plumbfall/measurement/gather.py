@@ -269,7 +269,7 @@ def _individual(
         for constant in constants.used
         if constant.chosen.stored is not None and constant.chosen.ball not in lots
         for name in (
-            constant.chosen.own.name,
+            *((constant.chosen.own.name,) if constant.chosen.stored.scatter else ()),
             *(
                 estimates[entry].name
                 for entry in constant.entries

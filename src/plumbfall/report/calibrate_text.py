@@ -76,11 +76,16 @@ def _of_sets(constant: TubeConstant, scale: Scale) -> Iterator[str]:
 
 
 def _of_constancy(steady: Constancy) -> Iterator[str]:
-    if math.isnan(steady.chi_squared):
+    if steady.dof == 0:
         yield from _wrapped(
             "  ",
             "One set alone cannot show whether the constant changes with the fall time: calibrate "
             "with a second liquid, so that the two bracket what is to be measured.",
+        )
+        return
+    if math.isnan(steady.chi_squared):
+        yield from _wrapped(
+            "  ", "No uncertainty is given that sets could agree within: it cannot be told.", 4
         )
         return
     yield from _wrapped(
@@ -109,8 +114,8 @@ def _of_domain(constant: TubeConstant) -> Iterator[str]:
         parts.append(f"{_span(domain.temperature, CELSIUS, 2)} degC")
     if domain.viscosity is not None:
         scale = viscosity_scale(domain.viscosity[1])
-        parts.append(f"{scale.alone(domain.viscosity[0])} to {scale.alone(domain.viscosity[1])} "
-                     f"{scale.unit}")  # fmt: skip
+        low, high = (scale.alone(limit) for limit in domain.viscosity)
+        parts.append(f"{low if low == high else f'{low} to {high}'} {scale.unit}")
     if domain.time is not None:
         parts.append(f"{_span(domain.time, Scale('s'), 2)} s")
     if domain.tilt is not None:
@@ -155,7 +160,8 @@ def _span(limits: tuple[float, float], scale: Scale, decimals: int) -> str:
 
 
 def _signed(ratio: float, decimals: int) -> str:
-    return f"{100 * ratio:+.{decimals}f} %"
+    rounded = round(100 * ratio, decimals) + 0.0  # no minus sign before nothing
+    return f"{rounded:+.{decimals}f} %"
 
 
 def _p(value: float) -> str:
