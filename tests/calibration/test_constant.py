@@ -8,6 +8,7 @@ by the difference of the two liquids' temperature slopes.
 
 from __future__ import annotations
 
+import dataclasses
 import json
 import math
 
@@ -18,6 +19,7 @@ import pytest
 import plumbfall as pf
 from plumbfall.bench.constant_file import content_hash
 from support.calibrated_bench import GLASS, STEEL, bench, calibrated, drops, with_scatter
+from support.perturbed import perturbed
 
 CAL = drops(with_scatter(60.0, 0.001, 5), "oil", "cal")
 
@@ -303,3 +305,70 @@ def test_the_objects_can_be_looked_at():
     assert max(map(len, text.splitlines())) <= 80
     assert "Does it change with the fall time?" in text
     assert json.loads(found.to_json()) == found.to_dict()
+
+
+CHAIN = {
+    "timer": {"T": {"per_drop": "0.05 s", "bias": "0.05(3) s", "rate": "40(20) ppm"}},
+    "thermometer": {"P": {"correction": "0.04(5) K"}},
+    "gauge": {"G": {"correction": "0.5(5) um"}},
+    "balance": {"B": {"correction": "0.10(5) mg"}},
+    "ball": {
+        "s": {
+            "diameter": "15.600(1) mm",
+            "mass": "4.4320(5) g",
+            "gauge": "G",
+            "balance": "B",
+            "expansion": "3.3(2)e-6 /K",
+        }
+    },
+    "liquid": {
+        "oil": {
+            "density": "870.0(2) kg/m3",
+            "density_temperature": "25 degC",
+            "expansion": "7.0(3)e-4 /K",
+        },
+        "thin oil": {"density": "840.0(2) kg/m3"},
+        "glycerol": {"density": "1261.0(2) kg/m3", "viscosity_slope": "-8.9(3) %/K"},
+    },
+}
+
+
+def test_every_net_sensitivity_agrees_with_differences_of_the_whole_chain(tmp_path):
+    """Calibrate and use on a bench with one input moved: both feel it, as the file says."""
+    sheet = pf.read_bench(bench(**CHAIN))
+    table = pd.concat(
+        [
+            drops([300.0, 300.3, 299.8], "oil", "cal"),
+            drops([73.116, 73.215, 73.164], "thin oil", "cal 2"),
+        ]
+    )
+    use = drops([250.0, 250.2, 250.1], "glycerol", "use")
+    path = tmp_path / "constant.json"
+
+    def chain(by_name: str = "", step: float = 0.0) -> pf.Report:
+        moved = perturbed(sheet, by_name, step)
+        pf.calibrate(table, moved, reference=["R", "R2"]).to_json(path)
+        constant = dataclasses.replace(moved.constants["K"], file=str(path))
+        return pf.reduce(use, dataclasses.replace(moved, constants={"K": constant}), draws=0)
+
+    sets = chain().reduced.sets
+    eta, warm = sets.scatter.mean[0], sets.columns.set_temperature[0]
+    checked = set()
+    for column, estimate in enumerate(sets.inputs.estimates):
+        name = estimate.name
+        if name not in sheet.quantities() or name.startswith("constant"):
+            continue
+        step = max(abs(estimate.value) * 1e-5, estimate.u * 1e-2)
+        found = []
+        for sign in (1, -1):
+            again = chain(name, sign * step).reduced.sets
+            shift = again.columns.set_temperature[0] - warm
+            slope = again.inputs.roles["slope"].value[0]
+            found.append(again.scatter.mean[0] * math.exp(-slope * shift))
+        difference = (found[0] - found[1]) / (2 * step)
+        analytic = sets.jacobian.matrix[0, column]
+        size = eta / max(abs(estimate.value), estimate.u)
+        # weights hang on the inputs too, times the misfit of the liquids, which is next to nothing
+        assert analytic == pytest.approx(difference, rel=2e-3, abs=2e-5 * size), name
+        checked.add(name.split(".")[0])
+    assert checked == {"ball", "balance", "gauge", "liquid", "thermometer", "timer"}

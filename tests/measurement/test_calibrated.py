@@ -7,7 +7,6 @@ ball density over the difference of the densities.
 
 from __future__ import annotations
 
-import dataclasses
 import math
 
 import numpy as np
@@ -15,8 +14,8 @@ import pandas as pd
 import pytest
 
 import plumbfall as pf
-from plumbfall.estimate import Estimate
 from plumbfall.reduction import reduce_drops
+from support.perturbed import perturbed
 
 INCLINED = {
     "timer": {"T1": {"per_drop": "0.05 s", "bias": "0.10(3) s", "rate": "40(20) ppm"}},
@@ -84,25 +83,6 @@ def test_the_viscosity_is_the_constant_times_the_densities_apart_times_the_time(
     assert not codes & {"geometry-unknown", "default-gravity", "end-near", "reynolds-high"}
 
 
-def moved_by(record, name: str, step: float):
-    if isinstance(record, Estimate):
-        if record.name != name:
-            return record
-        return dataclasses.replace(record, value=record.value + step)
-    if isinstance(record, tuple):
-        return tuple(moved_by(one, name, step) for one in record)
-    if hasattr(record, "items"):
-        return {key: moved_by(value, name, step) for key, value in record.items()}
-    if dataclasses.is_dataclass(record) and not isinstance(record, type):
-        changed = {
-            field.name: moved_by(getattr(record, field.name), name, step)
-            for field in dataclasses.fields(record)
-            if field.name != "source"
-        }
-        return dataclasses.replace(record, **changed)
-    return record
-
-
 def test_every_sensitivity_agrees_with_differences():
     read = pf.read_bench(INCLINED)
     timings = pf.read_timings(DROPS, read)
@@ -110,7 +90,7 @@ def test_every_sensitivity_agrees_with_differences():
     at = sets.columns.set_temperature
 
     def viscosities(step: float, name: str) -> np.ndarray:
-        again = reduce_drops(timings, moved_by(read, name, step)).sets
+        again = reduce_drops(timings, perturbed(read, name, step)).sets
         slope = again.inputs.roles["slope"].value[0]
         return again.scatter.mean * np.exp(-slope * (again.columns.set_temperature - at))
 

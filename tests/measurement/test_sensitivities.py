@@ -2,17 +2,15 @@
 
 from __future__ import annotations
 
-import dataclasses
-
 import numpy as np
 import pandas as pd
 import pytest
 
 import plumbfall as pf
 from plumbfall.bench.records import Bench
-from plumbfall.estimate import Estimate
 from plumbfall.reduction import reduce_drops
 from support.benches import bench_dict
+from support.perturbed import perturbed
 
 DROPS = pd.DataFrame(
     {
@@ -22,26 +20,6 @@ DROPS = pd.DataFrame(
         "temperature [degC]": [25.0, 25.4, 24.9, 25.1, 26.0, 25.2, 25.0, 24.8, 40.0, 40.2, 41, 40],
     }
 )
-
-
-def perturbed(record: object, name: str, step: float) -> object:
-    """Return records with the value of every estimate of a name moved."""
-    if isinstance(record, Estimate):
-        if record.name != name:
-            return record
-        return dataclasses.replace(record, value=record.value + step)
-    if isinstance(record, tuple):
-        return tuple(perturbed(one, name, step) for one in record)
-    if hasattr(record, "items"):
-        return {key: perturbed(value, name, step) for key, value in record.items()}
-    if dataclasses.is_dataclass(record) and not isinstance(record, type):
-        moved = {
-            field.name: perturbed(getattr(record, field.name), name, step)
-            for field in dataclasses.fields(record)
-            if field.name != "source"
-        }
-        return dataclasses.replace(record, **moved)
-    return record
 
 
 SITE = {"latitude": "52.1(1) deg", "elevation": "400(20) m"}
