@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import dataclasses
 import json
 import math
 
@@ -9,6 +10,9 @@ import pytest
 from scipy import stats
 
 import plumbfall as pf
+from plumbfall.bench.records import Specification
+from plumbfall.calibration.conformity import conformity
+from plumbfall.estimate import Estimate
 from support.benches import bench_dict, drops_table
 
 TIMES = {"B1": [14.09, 14.11, 14.08, 14.10, 14.09]}
@@ -84,3 +88,20 @@ def test_invalid_data_support_no_decision():
     report = reduced(limits(high="900 mPa.s"), material__steel__density="0.9 g/cm3")
     assert report["A"].status == "invalid"
     assert report["A"].result.conformity is None
+
+
+def test_where_monte_carlo_is_quoted_the_tails_are_those_of_its_bounds():
+    result = reduced(limits(low="900 mPa.s"), {"B1": TIMES["B1"][:3]})["A"].result
+    quoted = dataclasses.replace(
+        result.viscosity, method="monte-carlo", effective_dof=None, coverage_factor=None,
+        u=1.7 * result.linear.u, expanded=1.1 * result.linear.expanded,
+    )  # fmt: skip
+    at = result.temperature.value
+    low = Estimate(quoted.value - quoted.expanded, unit="Pa.s", text="low")
+    liquid = dataclasses.replace(
+        pf.read_bench(bench_dict()).liquids["oil"],
+        specification=Specification(low=low, high=None, temperature=at),
+    )
+    found = conformity(dataclasses.replace(result, viscosity=quoted), liquid)
+    # below a two-sided 95 % interval lie 2.5 %, whatever the standard deviation of the draws
+    assert found.probability == pytest.approx(0.975, abs=1e-6)

@@ -9,6 +9,7 @@ from plumbfall.bench.keys import key_path
 from plumbfall.bench.records import Liquid, Specification
 from plumbfall.calibration.decisions import ACCEPT, REJECT, conformance_probability
 from plumbfall.results import BudgetLine, Conformity, Measured, RunSetResult
+from plumbfall.uncertainty.coverage import coverage_factor
 
 __all__ = ["CONFORMS", "DOES_NOT_CONFORM", "UNDECIDED", "conformity"]
 
@@ -98,15 +99,28 @@ def _brought(
     away = limits.temperature - result.temperature.value
     at_reference = result.viscosity_at_reference
     if at_reference is not None and result.reference_temperature == limits.temperature:
-        return at_reference.value, at_reference.u, at_reference.effective_dof
-    slope, dof = liquid.viscosity_slope, measured.effective_dof
+        return at_reference.value, *_spread(at_reference, result.linear)
+    slope, (u, dof) = liquid.viscosity_slope, _spread(measured, result.linear)
     if slope is None:
-        return (measured.value, measured.u, dof) if abs(away) <= SAME_TEMPERATURE else None
+        return (measured.value, u, dof) if abs(away) <= SAME_TEMPERATURE else None
     factor = math.exp(slope.value * away)
     before = _sensitivity(result.budget, key_path("liquid", liquid.name, "viscosity_slope"))
     further = measured.value * away
-    variance = measured.u**2 + (2 * before * further + further**2) * slope.u**2
+    variance = u**2 + (2 * before * further + further**2) * slope.u**2
     return measured.value * factor, factor * math.sqrt(max(variance, 0.0)), dof
+
+
+def _spread(measured: Measured, linear: Measured | None) -> tuple[float, float | None]:
+    """Return standard uncertainty and degrees of freedom of the Student's t that is judged by.
+
+    Where Monte Carlo is quoted, it is the one with the linear degrees of freedom whose coverage
+    interval is as wide as the quoted one: few values have far tails, which no normal has.
+    """
+    if measured.effective_dof is not None or linear is None or linear.effective_dof is None:
+        return measured.u, measured.effective_dof
+    dof = linear.effective_dof
+    factor = float(coverage_factor(dof=dof, probability=measured.coverage_probability))
+    return measured.expanded / factor, dof
 
 
 def _sensitivity(budget: Sequence[BudgetLine], name: str) -> float:
