@@ -128,7 +128,7 @@ def check(covered: np.ndarray, ratios: np.ndarray) -> None:
 
 
 def test_a_few_random_benches():
-    check(*loop(20, seed=20))
+    check(*loop(60, seed=20))
 
 
 @pytest.mark.slow  # a minute

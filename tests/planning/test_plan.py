@@ -388,3 +388,26 @@ def test_uncertainty_falls_with_drops_towards_its_floor():
     assert found == sorted(found, reverse=True)
     assert all(math.isclose(one.floor, bounds[0].floor) for one in bounds)
     assert found[-1] > bounds[0].floor
+
+
+@pytest.mark.parametrize("viscosity", [1e-6, 1.0, 1e6, [1e-5, 1e5]])
+@pytest.mark.parametrize("target", [None, 1e-6, 0.5])
+def test_a_bench_without_any_uncertainty_is_planned_at_any_viscosity(viscosity, target):
+    bench = {
+        "tube": {"A": {"bore": "50 mm", "distance": "200 mm"}},
+        "ball": {
+            "B": {"diameter": "2 mm", "density": "7.7 g/cm3"},
+            "W": {"diameter": "48 mm", "density": "7.7 g/cm3"},
+            "F": {"diameter": "2 mm", "density": "0.9 g/cm3"},
+        },
+        "liquid": {"oil": {"density": "970 kg/m3"}},
+        "methods": {"model_uncertainty": "0 %"},
+    }
+    planned = pf.plan(bench, viscosity=viscosity, target=target)
+    for one in planned.combinations:
+        assert one.relative_expanded_uncertainty in (None, 0.0)
+        assert one.dominant_input is None
+        assert one.ball == "B" or not one.suitable
+    json.loads(planned.to_json())
+    assert max(map(len, planned.text().splitlines())) <= 80
+    assert "<svg" in planned.to_html()

@@ -161,7 +161,7 @@ def build_combinations(
             relative_expanded_uncertainty=float(expanded[rank]),
             floor=float(floor[rank]),
             drops_needed=int(needed[rank]) or None,
-            dominant_input=dominant[drops][rank],
+            dominant_input=dominant[drops][rank] if expanded[rank] > 0 else None,
             prediction=prediction,
             rank=rank,
             improvements=tuple(better),

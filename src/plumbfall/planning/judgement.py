@@ -19,13 +19,13 @@ __all__ = ["CHOICE", "Needed", "Reason", "improvements", "reasons_against", "spo
 CHOICE = frozenset(
     {
         "ball-not-denser", "no-solution", "reynolds-high", "diameter-ratio-high", "run-in-short",
-        "end-near", "off-axis-suspected", "fall-time-short", "resolution-coarse",
+        "end-near", "off-axis-suspected", "fall-time-short",
         "density-implausible", "radius-as-diameter-suspected", "constant-outside-domain",
     }
 )  # fmt: skip
 """Findings that speak against a ball or a tube, not against data or against the whole sheet."""
 
-BOUNDED = frozenset({"fall-time-short", "resolution-coarse", "reynolds-high"})
+BOUNDED = frozenset({"fall-time-short", "reynolds-high"})
 """Warnings of what the bounds include: a target that is reached all the same outweighs them."""
 
 EASY, WORTH = 1 / 3, 1 / 2

@@ -35,8 +35,7 @@ Pair = tuple[str, str]
 SHEET = frozenset(
     {
         "geometry-unknown", "slope-unknown", "density-temperature", "nominal-diameter",
-        "missing-uncertainty", "default-gravity", "unit-slip-suspected", "calibration-overdue",
-        "uncertainty-implausible",
+        "missing-uncertainty", "default-gravity", "unit-slip-suspected",
     }
 )  # fmt: skip
 """Findings of the bench sheet that hold for the whole plan."""

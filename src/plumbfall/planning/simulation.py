@@ -8,23 +8,26 @@ measurement equation of the reduction, so that without errors the reduction retu
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from numbers import Integral
 from os import PathLike
 from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from numpy.typing import ArrayLike
 
-from plumbfall.bench.notation import read_quantity
 from plumbfall.bench.reader import read_bench
 from plumbfall.bench.records import Bench
-from plumbfall.errors import InputError, PhysicsRangeError
+from plumbfall.errors import PhysicsRangeError
 from plumbfall.measurement.balance import Numbers
 from plumbfall.planning.arrangement import Arrangement, arrange
 from plumbfall.planning.conditions import kelvin, nominal_temperature
 from plumbfall.planning.forward import Fall
 from plumbfall.planning.invented_drops import extra_scatter, fall_all, read_clock, with_lots
 from plumbfall.planning.simulated import Simulated
+from plumbfall.planning.simulation_arguments import (
+    check_simulation,
+    per_drop,
+    true_viscosities,
+)
 from plumbfall.planning.truth import draw_entries, drops_generator, with_entries
 
 if TYPE_CHECKING:
@@ -145,7 +148,7 @@ def simulate_sets(
     """
     if not isinstance(bench, Bench):
         bench = read_bench(bench)
-    _check(seed, bench_seed, sets, scatter)
+    check_simulation(seed, bench_seed, sets, scatter)
     plan = arrange(bench, run_set, balls, drops, successive=marks, tube=tube, liquid=liquid)
     inputs = plan.inputs
     if exact:
@@ -163,14 +166,14 @@ def simulate_sets(
     at = nominal_temperature(bench, run_set, *codes) if temperature is None else kelvin(temperature)
     read = True
     if temperatures is not None:
-        of_drops = _per_drop(temperatures, drops, "temperatures")
+        of_drops = per_drop(temperatures, drops, "temperatures")
         warmth = np.broadcast_to(of_drops[:, None], (drops, sets))
     elif temperature is None and inputs.temperature_known.any():
         warmth = np.broadcast_to(of_sets("temperature") + of_sets("thermometer"), (drops, sets))
         read = False
     else:
         warmth = np.full((drops, sets), at)
-    nominal = _viscosities(viscosity, drops, len(plan.cell))
+    nominal = true_viscosities(viscosity, drops, len(plan.cell))
     slope = of_sets("slope")
     viscous = nominal[:, :, None] * np.exp(slope * (warmth - at))
 
@@ -200,50 +203,6 @@ def simulate_sets(
         at=at,
         seed=seed,
     )
-
-
-def _viscosities(viscosity: ArrayLike | str, drops: int, intervals: int) -> Numbers:
-    """Return the true viscosity by interval and drop, shape (intervals or 1, drops)."""
-    if isinstance(viscosity, str):
-        viscosity = read_quantity(viscosity, "viscosity").value
-    values = np.asarray(viscosity, dtype=float)
-    if not (np.isfinite(values) & (values > 0)).all():
-        raise InputError("a viscosity is not above zero", remedy="give it in Pa.s, such as 0.85")
-    if values.ndim < 2:
-        return _per_drop(values, drops, "viscosity")[None]
-    if values.shape != (drops, intervals):
-        raise InputError(
-            f"viscosity has the shape {values.shape}",
-            remedy=f"give one number, {drops} of them, or {drops} rows of {intervals}",
-        )
-    return np.ascontiguousarray(values.T)
-
-
-def _per_drop(values: ArrayLike, drops: int, name: str) -> Numbers:
-    array = np.asarray(values, dtype=float)
-    if array.shape not in ((), (1,), (drops,)):
-        raise InputError(
-            f"{name} has the shape {array.shape}, with {drops} drops",
-            remedy=f"give one number, or {drops} of them",
-        )
-    return np.array(np.broadcast_to(array, (drops,)))
-
-
-def _check(seed: int, bench_seed: int | None, sets: int, scatter: float | None) -> None:
-    for name, value in (("seed", seed), ("bench_seed", bench_seed)):
-        if value is not None and (
-            isinstance(value, bool) or not isinstance(value, Integral) or value < 0
-        ):
-            raise InputError(
-                f"{name} = {value!r} is not a whole number from 0 up", remedy="write 0, or 12345"
-            )
-    if sets < 1:
-        raise InputError(f"{sets} run sets are none", remedy="ask for at least one")
-    if scatter is not None and not 0 <= scatter < 1:
-        raise InputError(
-            f"a scatter of {scatter:g} is not from 0 to below 1",
-            remedy="write 0.003 for 0.3 % of the viscosity",
-        )
 
 
 def _check_falls(plan: Arrangement, made: Fall, viscosity: Numbers) -> None:

@@ -90,8 +90,10 @@ def usable_windows(
 
     none = np.flatnonzero(first < 0)
     middle = np.full(len(none), np.mean(np.log(wanted.viscosities)))
-    outside = judged(np.concatenate([pairs, none]), np.concatenate([outer, middle]))
-    limits = [outside.limit(place) for place in range(len(pairs) + len(none))]
+    limits = []
+    if len(pairs) + len(none):
+        outside = judged(np.concatenate([pairs, none]), np.concatenate([outer, middle]))
+        limits = [outside.limit(place) for place in range(len(pairs) + len(none))]
     below = dict(zip(some[opens].tolist(), limits, strict=False))
     above = dict(zip(some[closes].tolist(), limits[opens.sum() :], strict=False))
     below |= dict(zip(none.tolist(), limits[len(pairs) :], strict=True))
@@ -138,7 +140,7 @@ class _Judged:
         if wanted.target is not None:
             self.needed = self.prediction.drops_needed(wanted.target, fewest, wanted.most_drops)
             fine &= self.needed > 0
-        fine &= [self._clean(rank) for rank in range(len(solved))]
+        fine &= np.array([self._clean(rank) for rank in range(len(solved))], dtype=bool)
         self.good: NDArray[np.bool_] = np.zeros(len(viscosity), dtype=bool)
         self.good[solved] = fine
         self._rank = {place: rank for rank, place in enumerate(solved.tolist())}
@@ -156,7 +158,8 @@ class _Judged:
             return None, None
         part = None
         if rank is not None:
-            part = self.prediction.budget(rank, self.wanted.most_drops)[0].input
+            parts = self.prediction.budget(rank, self.wanted.most_drops)
+            part = parts[0].input if parts else None
         return reasons[0], part
 
 

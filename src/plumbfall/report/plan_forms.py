@@ -18,13 +18,8 @@ from plumbfall.errors import InputError
 from plumbfall.planning.combination import Combination
 from plumbfall.planning.plan import Plan
 from plumbfall.report.html import template
-from plumbfall.report.plan_words import (
-    WAIT,
-    conditions_text,
-    percent_text,
-    time_text,
-    viscosity_text,
-)
+from plumbfall.report.plan_sentences import WAIT, conditions_text
+from plumbfall.report.plan_words import percent_text, time_text, viscosity_text
 from plumbfall.report.words import CAUTIONS
 from plumbfall.report.writing import write_folder
 

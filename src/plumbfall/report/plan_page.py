@@ -14,14 +14,16 @@ from plumbfall.planning.combination import Combination
 from plumbfall.planning.plan import Plan
 from plumbfall.report.html import template
 from plumbfall.report.plan_figure import new_plan_figure
-from plumbfall.report.plan_words import (
+from plumbfall.report.plan_sentences import (
     answer_text,
-    better_text,
     conditions_text,
     facts_of,
     ideal_texts,
-    interval_text,
     parts_text,
+)
+from plumbfall.report.plan_words import (
+    better_text,
+    interval_text,
     percent_text,
     time_text,
     viscosity_text,

@@ -9,15 +9,17 @@ from itertools import groupby
 from plumbfall._version import __version__
 from plumbfall.planning.combination import Combination
 from plumbfall.planning.plan import Plan
-from plumbfall.report.plan_words import (
+from plumbfall.report.plan_sentences import (
     answer_text,
-    better_text,
     conditions_text,
     facts_of,
     ideal_texts,
+    parts_text,
+)
+from plumbfall.report.plan_words import (
+    better_text,
     interval_text,
     limit_word,
-    parts_text,
     percent_text,
     source_word,
     time_text,
