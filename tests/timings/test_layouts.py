@@ -18,6 +18,8 @@ def read(case, folder):
     path = folder / "t.csv"
     path.write_bytes(case["file"].encode(case.get("bytes", "utf-8")))
     hints = TimingHints(**case.get("timings", {}))
+    if not case.get("bench", True):
+        return collect("t.csv")
     return collect("t.csv", bench(balls="ABCD", marks=case.get("marks", 3), timings=hints))
 
 
@@ -45,4 +47,4 @@ def test_a_layout_is_read_to_the_right_drops(name, tmp_path, monkeypatch):
 
 
 def test_there_are_enough_layouts():
-    assert len(CASES) >= 22
+    assert len(CASES) >= 50

@@ -46,11 +46,11 @@ FIELDS = {
     "temperature": ("temp", "liquid temperature", "bath temperature", "bath temp"),
     "time": (
         *("fall time", "falltime", "drop time", "time of fall", "elapsed", "elapsed time"),
-        *("lap time", "laptime"),
+        *("lap time", "laptime", "lap times", "fall times", "times"),
     ),
     "total": (
         *("total time", "running total", "stopwatch total", "cumulative", "cumulative time"),
-        *("split time", "overall time", "time total"),
+        *("split time", "overall time", "time total", "total times", "running totals"),
     ),
 }
 """Every column of its own with its synonyms; ``t`` and ``T`` are told apart by their case."""
@@ -177,5 +177,6 @@ def read_heading(text: str, column: int) -> Heading:
 
 def _position(name: str) -> Fraction | None:
     """Return where a mark stands, in metres, that is named by its position."""
-    found = _POSITION.fullmatch(" ".join(name.casefold().split()))
+    bare = name.casefold().replace("(", " ").replace(")", " ")
+    found = _POSITION.fullmatch(" ".join(bare.split()))
     return Fraction(found[1].replace(",", ".")) * _METRES[found[2]] if found else None

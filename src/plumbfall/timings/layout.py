@@ -10,7 +10,7 @@ from plumbfall.errors import nearest_name
 from plumbfall.timings.headings import Heading, known_headings, normalised, read_heading
 from plumbfall.timings.notices import Notices, quoted
 from plumbfall.timings.records import ColumnRead
-from plumbfall.timings.vocabulary import part_heading
+from plumbfall.timings.vocabulary import is_value, part_heading
 
 __all__ = ["Layout", "columns_read", "declared_unit", "find_layout"]
 
@@ -213,6 +213,8 @@ def _note_unused(heading: Heading, line: int | None, notices: Notices) -> None:
     if near and unit and not read_heading(f"{near} [{unit}]", 1).unit_fits:
         near = None  # a heading in millimetres is not a misspelt name
     hint = f"; did you mean {quoted(near)}?" if near else ""
+    if near:
+        notices.offer(f'columns."{name.strip()}"', f'"{read_heading(near, 1).label}"')
     notices.repair(f"column {quoted(heading.text)} is not used{hint}", line, heading.column)
 
 
@@ -235,6 +237,13 @@ def _note_no_times(headings: Sequence[Heading], line: int | None, notices: Notic
                 near.column,
             )
             return
+    if any(is_value(heading.text) for heading in headings):
+        notices.error(
+            f"there is no row of headings; the first row has {shown}",
+            'write a row of headings above it, such as "ball", "time [s]", "temperature [degC]"',
+            line,
+        )
+        return
     notices.error(
         f"no column holds times; the headings are {shown or 'empty'}",
         'head the fall times "time [s]", or name them under [timings] in the bench sheet:'

@@ -150,7 +150,10 @@ def _note_head(head: Head, grid: Grid, row: int, notices: Notices) -> None:
                 heading.column,
             )
         if head.units:
-            told = ", ".join(f"{one.label or one.text} in {unit}" for one, unit in head.units)
+            told = ", ".join(
+                f"{one.text if one.position is not None else one.label} in {unit}"
+                for one, unit in head.units
+            )
             notices.repair(f"units are taken from this row: {told}", line)
         rows -= 1
     if head.merged:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Collection, Iterable, Mapping, Sequence
+from dataclasses import replace
 
 from plumbfall.errors import nearest_name
 from plumbfall.timings.cell_units import part_unit
@@ -70,7 +71,14 @@ class Vocabulary:
 
     def read_all(self, texts: Sequence[str]) -> list[Heading]:
         """Return what every heading of a row means."""
-        return [self.read(text, column) for column, text in enumerate(texts, 1)]
+        headings = [self.read(text, column) for column, text in enumerate(texts, 1)]
+        numbers = [one for one in headings if one.meaning == "drop"]
+        if len(numbers) == 2 and not any(one.meaning == "time" for one in headings):
+            # beside a number of the lap, a column headed lap has its time
+            for one in numbers:
+                if normalised(part_heading(one.text)[0]) == "lap":
+                    headings[one.column - 1] = replace(one, meaning="time")
+        return headings
 
     def understood(self, texts: Iterable[str]) -> int:
         """Return how many cells are headings that are known."""
