@@ -120,6 +120,17 @@ def test_balls_dropped_one_after_another_are_no_drift():
     assert "time-trend" not in found
 
 
+def test_a_drift_over_balls_dropped_one_after_another_is_told_with_its_doubt():
+    bench = bench_of(balls=4)
+    # two drops of a ball differ by as much from scatter as from the drift
+    rising = 2.0 * (1 + np.linspace(0, 0.03, 8) + 4 * NOISE[:8])
+    order = ["B2", "B2", "B4", "B4", "B1", "B1", "B3", "B3"]
+    found, _ = found_in(table_of(rising, bench, balls=order), bench)
+    assert "balls that differ would look the same" in found["time-trend"].message
+    assert "drop the balls in turn" in found["time-trend"].remedy
+    assert found["time-trend"].effect == pytest.approx(0.03, abs=0.003)
+
+
 def test_a_drift_that_the_temperature_makes_is_called_that():
     bench = bench_of(balls=1, slope="-8.0(2) %/K")
     warm = 298.15 + np.linspace(0, 0.6, 12)

@@ -93,6 +93,13 @@ def drift_by_stopwatch(sets: int, seed: int) -> Made:
     return invented(bench, sets, seed, drops=12, viscosity=rising), bench
 
 
+def drift_over_balls(sets: int, seed: int) -> Made:
+    bench = bench_of(balls=4)
+    rising = 2.0 * (1 + np.linspace(0, 0.03, 8))
+    balls = ["B2", "B2", "B4", "B4", "B1", "B1", "B3", "B3"]
+    return invented(bench, sets, seed, drops=8, viscosity=rising, balls=balls), bench
+
+
 WARM = 298.15 + np.array([0.0, 0.3, 0.5, 0.2, 0.6, 0.1, 0.4, 0.0, 0.5, 0.3])
 
 
@@ -207,6 +214,8 @@ FAULTS: tuple[Fault, ...] = (
     ),
     Fault("time-trend", "warning", "1.5 % over twelve drops that scatter by 0.2 %", drift),
     Fault("time-trend", "warning", "3 % over twelve drops, by stopwatch", drift_by_stopwatch),
+    Fault("time-trend", "warning", "3 % over eight drops, two of each ball after one another",
+          drift_over_balls),
     Fault(
         "temperature-trend", "warning", "-5 %/K given where -8 %/K is true, over 0.6 K", wrong_slope
     ),

@@ -138,6 +138,12 @@ FAULTS_OF_RECORDS: tuple[Fault, ...] = (
           sheet(liquid__oil__density_temperature="5 degC", liquid__oil__expansion=None)),
     Fault("unit-slip-suspected", "warning", "a slope without its minus",
           sheet(liquid__oil__viscosity_slope="2.0(1) %/K")),
+    Fault("unit-slip-suspected", "warning", "centimetres written as millimetres, liquid certified",
+          sheet(reference={"R": {"liquid": "oil", "viscosity": [
+              {"temperature": "25 degC", "value": "2.00 ± 0.01 Pa.s, k=2"}]}},
+              tube__A__marks=["0.000(3) mm", "20.000(5) mm"])),
+    Fault("density-implausible", "warning", "a weighed steel ball of 7.47 g/cm3",
+          sheet(ball__B1__mass="31.35(1) mg")),
     Fault("swapped-ball-suspected", "warning",
           "one drop of ten of a 3 mm ball written down as of a 2 mm one",
           record(taken_for_another, balls=2)),

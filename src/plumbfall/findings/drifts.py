@@ -7,12 +7,16 @@ from collections.abc import Iterator
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.findings.data import Found, RunData
-from plumbfall.findings.significance import detectable
+from plumbfall.findings.data import APART, Found, RunData
+from plumbfall.findings.residuals import residuals
+from plumbfall.findings.significance import detectable, f_p_value, t_p_value
 from plumbfall.results import Finding
 from plumbfall.uncertainty.coverage import coverage_factor
 
 __all__ = ["drifting", "lagging", "temperature_lag", "temperature_trend", "time_trend", "warming"]
+
+CONTRADICTS = 3.0
+"""Standard errors by which the drops of the balls must be off a drift to speak against it."""
 
 TELLS = 0.05
 """Significance by which one of two trends is preferred to the other; no warning comes of it."""
@@ -22,31 +26,82 @@ def time_trend(data: RunData) -> Iterator[Found]:
     """Find run sets whose viscosity rises or falls from drop to drop."""
     trends = data.trends
     for run_set in np.flatnonzero(drifting(data)):
-        steps = float(data.order[data.selection.run_set == run_set].max())
-        drift = float(trends.drift.value[run_set]) * steps
-        error = float(trends.drift_error[run_set]) * steps
-        dof = float(trends.drift.dof[run_set])
-        seen = float(detectable(standard_error=error, dof=dof, level=data.level))
-        half = float(coverage_factor(dof=dof, probability=0.95)) * error
-        bounds = data.outputs.of("viscosity")
-        part = abs(drift) * bounds.value[run_set] / bounds.expanded[run_set]
-        yield (
+        yield _drift(
+            data,
             int(run_set),
-            Finding(
-                code="time-trend",
-                severity="warning",
-                statistic=drift / error,
-                p_value=float(trends.drift_p_value[run_set]),
-                effect=drift,
-                detectable=seen,
-                message=f"the viscosity {'rises' if drift > 0 else 'falls'} by "
-                f"{100 * abs(drift):.2f} % from the first drop to the last (95 % interval "
-                f"{100 * (drift - half):+.2f} to {100 * (drift + half):+.2f} %), {part:.1f} times "
-                "the expanded uncertainty",
-                remedy="look for evaporation, water taken up, settling or a bath that drifts; "
-                "repeat the run set with fresh liquid at a steady temperature",
-            ),
+            trends.drift.value[run_set],
+            trends.drift_error[run_set],
+            int(trends.drift.dof[run_set]),
+            trends.drift_p_value[run_set],
         )
+    yield from _from_ball_to_ball(data)
+
+
+def _from_ball_to_ball(data: RunData) -> Iterator[Found]:
+    """Find drifts that balls dropped one after the other hide: their differences look the same.
+
+    The drift must account for all of these, and the drops of each ball must not contradict it.
+    """
+    by_ball = data.residuals.by_ball
+    if not by_ball.any():
+        return
+    errors, within = data.errors, data.trends.drift
+    joint = residuals(
+        data.selection.run_set, errors, data.ball_fits.group_variance, np.zeros_like(by_ball)
+    ).slope(data.order)
+    with np.errstate(invalid="ignore", divide="ignore"):
+        p_value = t_p_value(t=joint.value / joint.error, dof=joint.dof)
+        f = joint.rest / joint.dof
+        contradicts = np.abs(within.value - joint.value) > CONTRADICTS * within.error
+    rest = f_p_value(f=f, dof=joint.dof, dof_within=errors.scatter_dof)
+    found = by_ball & (p_value < data.level) & (rest >= APART) & ~contradicts & ~drifting(data)
+    for run_set in np.flatnonzero(found):
+        yield _drift(
+            data,
+            int(run_set),
+            joint.value[run_set],
+            joint.error[run_set],
+            int(joint.dof[run_set]),
+            p_value[run_set],
+            "; the balls were dropped one after the other, and balls that differ would look the "
+            "same",
+            "; drop the balls in turn, which tells a drift from a ball",
+        )
+
+
+def _drift(
+    data: RunData,
+    run_set: int,
+    slope: float,
+    error: float,
+    dof: int,
+    p_value: float,
+    but: str = "",
+    also: str = "",
+) -> Found:
+    """Return the finding of a drift; ``slope`` and its standard error are per drop."""
+    steps = float(data.order[data.selection.run_set == run_set].max())
+    drift, error = float(slope) * steps, float(error) * steps
+    half = float(coverage_factor(dof=dof, probability=0.95)) * error
+    bounds = data.outputs.of("viscosity")
+    part = abs(drift) * bounds.value[run_set] / bounds.expanded[run_set]
+    return (
+        run_set,
+        Finding(
+            code="time-trend",
+            severity="warning",
+            statistic=drift / error,
+            p_value=float(p_value),
+            effect=drift,
+            detectable=float(detectable(standard_error=error, dof=dof, level=data.level)),
+            message=f"the viscosity {'rises' if drift > 0 else 'falls'} by "
+            f"{100 * abs(drift):.2f} % from the first drop to the last (95 % interval "
+            f"{100 * (drift - half):+.2f} to {100 * (drift + half):+.2f} %), {part:.1f} times "
+            f"the expanded uncertainty{but}",
+            remedy="look for evaporation, water taken up, settling or a bath that drifts; "
+            f"repeat the run set with fresh liquid at a steady temperature{also}",
+        ),
+    )
 
 
 def temperature_trend(data: RunData) -> Iterator[Found]:
