@@ -6,7 +6,6 @@ from functools import cache
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.optimize import brentq
 from scipy.special import ndtr
 
 __all__ = ["range_mean", "range_probability", "range_quantile", "range_sd"]
@@ -37,6 +36,8 @@ def range_quantile(probability: float, n: int) -> float:
     >>> f"{range_quantile(0.95, 2):.3f}"
     '2.772'
     """
+    from scipy.optimize import brentq  # a third of a second that most checks need not spend
+
     width = brentq(
         lambda w: range_probability(w, n) - probability, 1e-9, WIDEST, xtol=1e-13, rtol=1e-13
     )
