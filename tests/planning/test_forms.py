@@ -136,6 +136,21 @@ def test_forms_of_a_plan_without_a_suitable_ball_are_refused(sheet, tmp_path, ca
     assert "needs both" in capsys.readouterr().err
 
 
+def test_forms_choose_among_several_liquids(sheet, tmp_path, capsys):
+    sheet.write_text(
+        SHEET + 'syrup = { density = "1300.0(3) kg/m3" }\n[set]\nS = { liquid = "syrup" }\n',
+        encoding="utf-8",
+    )
+    wanted = ["template", str(tmp_path / "forms"), "--bench", str(sheet), "--viscosity", "1 Pa.s"]
+    assert main([*wanted, "--liquid", "syrup", "--set", "T"]) == 0
+    assert set(pd.read_csv(tmp_path / "forms" / "drops.csv")["liquid"]) == {"syrup"}
+    wanted[1] = str(tmp_path / "more")
+    assert main([*wanted, "--set", "S"]) == 0
+    wanted[1] = str(tmp_path / "none")
+    assert main([*wanted, "--balls", "catalogue", "--set", "S"]) == 2
+    assert "not on the bench sheet" in capsys.readouterr().err
+
+
 def test_files_of_constants_are_copied_with_the_sheet(tmp_path):
     folder = tmp_path / "far" / "away"
     bench = pf.read_bench(bench_dict(constant={"k": {"file": "sub/constant.json"}}))

@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 import argparse
+from typing import Any
 
 from plumbfall.cli.arguments import add_json, probability
 from plumbfall.cli.commands import Commands
 from plumbfall.cli.exit_codes import DONE, INVALID
 from plumbfall.cli.output import print_json, print_text, say
 
-__all__ = ["add_plan"]
+__all__ = ["add_choices", "add_plan", "choices"]
 
 
 def add_plan(commands: Commands) -> None:
@@ -46,20 +47,7 @@ def add_plan(commands: Commands) -> None:
         "--coverage", type=probability, metavar="P", help="coverage probability (default 0.95)"
     )
     plan.add_argument("--set", metavar="NAME", help="run set whose entry says what is used")
-    for kind in ("liquid", "timer", "thermometer"):
-        plan.add_argument(f"--{kind}", metavar="NAME", help=f"which {kind}, of several")
-    plan.add_argument(
-        "--temperature",
-        metavar="T",
-        help='of the liquid, such as "25 degC"',
-    )
-    plan.add_argument("--tubes", nargs="+", metavar="NAME", help="only these tubes")
-    plan.add_argument(
-        "--balls",
-        nargs="+",
-        metavar="NAME",
-        help="only these balls; the word catalogue looks for the best ball instead",
-    )
+    add_choices(plan)
     plan.add_argument(
         "--grade", metavar="G", help="grade of catalogue balls by ISO 3290-1 (default G10)"
     )
@@ -68,26 +56,39 @@ def add_plan(commands: Commands) -> None:
     plan.set_defaults(run=_run)
 
 
+def add_choices(parser: argparse.ArgumentParser) -> None:
+    """Add what of the bench is used, and at which temperature."""
+    for kind in ("liquid", "timer", "thermometer"):
+        parser.add_argument(f"--{kind}", metavar="NAME", help=f"which {kind}, of several")
+    parser.add_argument("--temperature", metavar="T", help='of the liquid, such as "25 degC"')
+    parser.add_argument("--tubes", nargs="+", metavar="NAME", help="only these tubes")
+    parser.add_argument(
+        "--balls",
+        nargs="+",
+        metavar="NAME",
+        help="only these balls; the word catalogue looks for the best ball instead",
+    )
+
+
+def choices(options: argparse.Namespace) -> dict[str, Any]:
+    """Return what was chosen of them, and the target."""
+    names = ("target", "liquid", "timer", "thermometer", "temperature", "tubes", "balls")
+    return {name: value for name in names if (value := getattr(options, name)) is not None}
+
+
 def _run(options: argparse.Namespace) -> int:
     from plumbfall.report.plan_report import plan
 
     asked = {
-        "target": options.target,
         "drops": options.drops,
         "most_drops": options.most_drops,
         "longest": options.longest,
         "coverage": options.coverage,
         "run_set": options.set,
-        "liquid": options.liquid,
-        "timer": options.timer,
-        "thermometer": options.thermometer,
-        "temperature": options.temperature,
-        "tubes": options.tubes,
-        "balls": options.balls,
         "grade": options.grade,
     }
     given = {name: value for name, value in asked.items() if value is not None}
-    planned = plan(options.bench, viscosity=options.viscosity, **given)
+    planned = plan(options.bench, viscosity=options.viscosity, **given, **choices(options))
     if options.out:
         planned.write(options.out)
         say(f"written to {options.out}: plan.html, plan.json")

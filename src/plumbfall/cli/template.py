@@ -7,6 +7,7 @@ import argparse
 from plumbfall.cli.commands import Commands
 from plumbfall.cli.exit_codes import DONE
 from plumbfall.cli.output import say
+from plumbfall.cli.plan import add_choices, choices
 
 __all__ = ["add_template"]
 
@@ -30,12 +31,13 @@ def add_template(commands: Commands) -> None:
         "--target", metavar="U", help='wanted expanded uncertainty, such as "0.5 %%"'
     )
     template.add_argument("--set", metavar="NAME", help="name of the run set (default A)")
+    add_choices(template)
     template.set_defaults(run=_run)
 
 
 def _run(options: argparse.Namespace) -> int:
     from plumbfall.errors import InputError
-    from plumbfall.planning.asked import plan_bench
+    from plumbfall.planning.asked import bench_from, plan_bench
     from plumbfall.report.plan_forms import blank_forms, forms_of_plan, write_forms
 
     if (options.bench is None) != (options.viscosity is None):
@@ -46,7 +48,9 @@ def _run(options: argparse.Namespace) -> int:
     if options.bench is None:
         names = write_forms(options.folder, blank_forms())
     else:
-        plan = plan_bench(options.bench, viscosity=options.viscosity, target=options.target)
+        bench = bench_from(options.bench)
+        entry = options.set if options.set in bench.sets else None
+        plan = plan_bench(bench, viscosity=options.viscosity, run_set=entry, **choices(options))
         forms = forms_of_plan(plan, options.set or "A")
         names = write_forms(options.folder, forms, plan.bench)
     say(f"written to {options.folder}: {', '.join(names)}")

@@ -151,7 +151,9 @@ def choose(bench: Bench, kind: str, run_set: str, given: str | None = None) -> i
     raise InputError(
         f"the bench has several: {', '.join(known)}; nothing says which {kind} is used",
         path=bench.path,
-        remedy=f'add {kind} = "{known[0]}" to [set."{run_set}"] of the bench sheet',
+        remedy=f'add {kind} = "{known[0]}" to [set."{run_set}"] of the bench sheet'
+        if run_set
+        else f"name one of them ({kind}=, --{kind} NAME)",
     )
 
 

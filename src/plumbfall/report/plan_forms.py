@@ -86,6 +86,12 @@ def forms_of_plan(plan: Plan, run_set: str, viscosity: float | None = None) -> d
     InputError
         Where nothing is suitable.
     """
+    if plan.grade:
+        raise InputError(
+            "a ball of the catalogue is not on the bench sheet",
+            path=plan.bench.path,
+            remedy="add the ball that was bought to it, measured and weighed, and plan with that",
+        )
     chosen = _chosen(plan, viscosity)
     bench, first = plan.bench, chosen[0]
     tube = bench.tubes[first.tube]
