@@ -178,13 +178,17 @@ def test_two_liquids_are_joined_with_their_joint_covariance():
     assert constant.constancy.chi_squared == pytest.approx(chi, rel=0.01)
 
 
-def test_a_constant_that_changes_with_time_is_found():
+def test_a_constant_that_changes_with_time_is_found_and_passed_on(tmp_path):
     table = pd.concat(
         [CAL, drops(with_scatter(15.0 * 0.97, 0.001, 5), "thin oil", "cal 2")], ignore_index=True
     )
     (constant,) = pf.calibrate(table, bench(), reference=["R", "R2"]).constants
     (finding,) = [one for one in constant.findings if one.code == "constant-varies"]
     assert finding.severity == "warning"
+    using = calibrated(tmp_path, bench(), table, "R", "R2")
+    result = pf.reduce(drops([60.0, 60.1, 59.9], "oil", "use"), using, draws=0)["use"].result
+    (told,) = [one for one in result.findings if one.code == "constant-varies"]
+    assert finding.message in told.message
     assert finding.p_value < 0.01
     trends = {trend.along: trend for trend in constant.constancy.trends}
     assert set(trends) == {"time", "reynolds"}

@@ -32,6 +32,8 @@ __all__ = [
 
 CONSTANTS_SCHEMA = "plumbfall/constants/1"
 CONTENT_HASH = "content_sha256"
+VARIES = "constant-varies"
+"""Code of the finding that a constant is none."""
 
 ROUNDING, AS_PRINTED = 1e-9, 0.02
 """Parts of a variance that the rounding of floats explains, and that of a file by hand."""
@@ -74,7 +76,8 @@ class StoredConstant:
 
     ``own_u`` and ``own_dof`` are what no input listed in ``inputs`` accounts for. ``scatter`` says
     that this is the scatter of the calibration's drops, which the ball has to itself; otherwise
-    it may hold anything, the certificate's error too.
+    it may hold anything, the certificate's error too. ``varies`` is what the calibration said of a
+    constant that is none, empty where it found nothing.
     """
 
     name: str
@@ -88,6 +91,7 @@ class StoredConstant:
     domain: Domain
     certified: tuple[Certified, ...]
     scatter: bool = True
+    varies: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -214,6 +218,7 @@ class _Reader:
             inputs=inputs,
             domain=self._domain(item.get("domain") or {}, f"{key}.domain"),
             certified=self._certified(item),
+            varies=self._varies(item.get("findings")),
             scatter=abs(_number(scatter.get("standard_uncertainty")) - own_u) <= AS_PRINTED * u,
         )
 
@@ -287,6 +292,15 @@ class _Reader:
             )
             for name in item.get("references") or ()
         )
+
+    @staticmethod
+    def _varies(findings: Any) -> str:
+        told = [
+            str(one.get("message", ""))
+            for one in (findings if isinstance(findings, list) else ())
+            if isinstance(one, dict) and one.get("code") == VARIES
+        ]
+        return "; ".join(told)
 
     def _text(self, item: Mapping[str, Any], name: str, key: str) -> str:
         given = item.get(name)

@@ -12,7 +12,7 @@ from plumbfall.findings.data import Found, RunData
 from plumbfall.measurement.constants import ChosenConstant
 from plumbfall.results import Finding
 
-__all__ = ["constant_outside_domain", "input_changed"]
+__all__ = ["constant_outside_domain", "constant_varies", "input_changed"]
 
 MOST_KEYS = 8
 CELSIUS_ZERO = 273.15
@@ -85,6 +85,22 @@ def _setting(data: RunData, chosen: ChosenConstant) -> Iterator[str]:
     ):
         if now_identity and then_identity and now_identity != then_identity:
             yield f"the {what} is {now_identity}, found with {then_identity}"
+
+
+def constant_varies(data: RunData) -> Iterator[Found]:
+    """Pass on what the calibration said of a constant that is none."""
+    for run_set, chosen, _ in _in_use(data):
+        if chosen.stored is not None and chosen.stored.varies:
+            yield (
+                run_set,
+                Finding(
+                    code="constant-varies",
+                    severity="warning",
+                    message=f"of the constant of tube {chosen.tube} with ball {chosen.ball} its "
+                    f"calibration said: {chosen.stored.varies}",
+                    remedy="mend the calibration first: the bounds here do not allow for it",
+                ),
+            )
 
 
 def input_changed(data: RunData) -> Iterator[Found]:

@@ -5,7 +5,11 @@ from __future__ import annotations
 from plumbfall.findings.ball_densities import density_off_material
 from plumbfall.findings.balls import balls_disagree, diameter_ratio_trend, shear_dependence
 from plumbfall.findings.claims import uncertainty_implausible
-from plumbfall.findings.constants import constant_outside_domain, input_changed
+from plumbfall.findings.constants import (
+    constant_outside_domain,
+    constant_varies,
+    input_changed,
+)
 from plumbfall.findings.counts import (
     nothing_left,
     reused_balls,
@@ -96,6 +100,7 @@ DETECTORS: tuple[Detector, ...] = (
     many_excluded,
     void_without_reason,
     constant_outside_domain,
+    constant_varies,
     calibration_overdue,
     reference_expired,
     uncertainty_implausible,
@@ -126,6 +131,7 @@ OF_EQUIPMENT: tuple[Detector, ...] = (
     slope_unknown,
     fall_time_short,
     constant_outside_domain,
+    constant_varies,
     nominal_diameter,
     geometry_unknown,
     missing_uncertainty,
