@@ -7,8 +7,6 @@ at half the target, so that a noisy machine does not fail it; run with ``-s`` to
 
 from __future__ import annotations
 
-import sys
-import time
 from collections.abc import Callable, Iterator
 
 import numpy as np
@@ -19,33 +17,13 @@ from scipy.optimize import elementwise
 from plumbfall.measurement.balance import Balance
 from plumbfall.measurement.inverse import invert
 from plumbfall.physics.drag import Bound, DragLaw
+from support.costs import cost
 
 Array = NDArray[np.float64]
 
 DROPS, BLOCK = 1_000_000, 16_384
 BORE, DENSITY, SPEED = 0.05, 970.0, 0.01
 LAW = DragLaw()
-
-
-def cost(function: Callable[[], object], repeats: int = 2) -> float:
-    """Return the least processor time of several calls."""
-    best = np.inf
-    for _ in range(repeats):
-        start = time.process_time()
-        function()
-        best = min(best, time.process_time() - start)
-    return best
-
-
-@pytest.fixture
-def say(capsys) -> Callable[[str], None]:
-    """Write a figure to the terminal whatever pytest captures."""
-
-    def write(line: str) -> None:
-        with capsys.disabled():
-            sys.stdout.write(f"\n  {line}\n")
-
-    return write
 
 
 def forces(ratio: Array, log_demand: Array) -> Balance:

@@ -7,16 +7,12 @@ noisy machine more than twice the usual ratio; the figures are shown.
 
 from __future__ import annotations
 
-import math
-import sys
-import time
-from collections.abc import Callable
-
 import numpy as np
 import pytest
 
 from plumbfall.estimate import Estimate
 from plumbfall.uncertainty.monte_carlo import run_monte_carlo
+from support.costs import cost
 
 DROPS, BALLS, DRAWS = 10, 4, 500_000
 VALUES = np.array([9.8123, 0.2, 970.0, *[7700.0] * BALLS, *[2.5e-3] * BALLS, *[9.71] * DROPS, 0.01])
@@ -46,27 +42,6 @@ def bare_loop(draws: int, block: int = 16_384) -> tuple[float, float]:
         found[start : start + n] = stokes(drawn)
     low, high = np.quantile(found, [0.025, 0.975])
     return float(low), float(high)
-
-
-def cost(function: Callable[[], object], repeats: int = 3) -> float:
-    """Return the least processor time of several calls."""
-    best = math.inf
-    for _ in range(repeats):
-        start = time.process_time()
-        function()
-        best = min(best, time.process_time() - start)
-    return best
-
-
-@pytest.fixture
-def say(capsys) -> Callable[[str], None]:
-    """Write a figure to the terminal whatever pytest captures."""
-
-    def write(line: str) -> None:
-        with capsys.disabled():
-            sys.stdout.write(f"\n  {line}\n")
-
-    return write
 
 
 @pytest.fixture(scope="module")

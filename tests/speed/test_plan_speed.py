@@ -7,12 +7,7 @@ stands at twice that, so that a noisy machine does not fail it; run with ``-s`` 
 
 from __future__ import annotations
 
-import sys
-import time
-from collections.abc import Callable
-
 import numpy as np
-import pytest
 
 import plumbfall as pf
 from plumbfall.measurement.balance import balance
@@ -21,29 +16,9 @@ from plumbfall.physics.drag import DragLaw
 from plumbfall.planning.arrangement import arrange
 from plumbfall.planning.simulation import simulate_sets
 from support.benches import bench_dict
+from support.costs import cost
 
 COMBINATIONS = 1000
-
-
-def cost(function: Callable[[], object], repeats: int) -> float:
-    """Return the least processor time of several calls."""
-    best = np.inf
-    for _ in range(repeats):
-        start = time.process_time()
-        function()
-        best = min(best, time.process_time() - start)
-    return best
-
-
-@pytest.fixture
-def say(capsys) -> Callable[[str], None]:
-    """Write a figure to the terminal whatever pytest captures."""
-
-    def write(line: str) -> None:
-        with capsys.disabled():
-            sys.stdout.write(f"\n  {line}\n")
-
-    return write
 
 
 def test_a_thousand_combinations_cost_a_hundred_thousand_inversions(say):

@@ -8,10 +8,7 @@ of each target, so that a noisy machine does not fail them; run with ``-s`` to s
 from __future__ import annotations
 
 import io
-import sys
-import time
 import tracemalloc
-from collections.abc import Callable
 
 import numpy as np
 import pandas as pd
@@ -23,6 +20,7 @@ from plumbfall.run_sets.table import summary_table
 from plumbfall.timings.records import Timings
 from speed.plain_script import run_script
 from support.benches import bench_dict
+from support.costs import cost
 
 BALLS = {"B1": 2.0003e-3, "B2": 2.5001e-3, "B3": 3.0002e-3, "B4": 4.0001e-3}
 TIMES = {"B1": 15.05, "B2": 9.80, "B3": 6.91, "B4": 4.00}
@@ -44,31 +42,10 @@ def invented_drops(n: int, sets: int) -> pd.DataFrame:
     )
 
 
-def cost(function: Callable[[], object], repeats: int) -> float:
-    """Return the least processor time of several calls."""
-    best = np.inf
-    for _ in range(repeats):
-        start = time.process_time()
-        function()
-        best = min(best, time.process_time() - start)
-    return best
-
-
 def numbers_alone(timings: Timings, bench: pf.Bench) -> pd.DataFrame:
     """Return the run-set table without findings."""
     sets = reduce_numbers(timings, bench)
     return summary_table(sets, ((),) * len(sets.selection.names))
-
-
-@pytest.fixture
-def say(capsys) -> Callable[[str], None]:
-    """Write a figure to the terminal whatever pytest captures."""
-
-    def write(line: str) -> None:
-        with capsys.disabled():
-            sys.stdout.write(f"\n  {line}\n")
-
-    return write
 
 
 @pytest.fixture(scope="module")

@@ -10,8 +10,6 @@ from __future__ import annotations
 
 import subprocess
 import sys
-import time
-from collections.abc import Callable
 
 import numpy as np
 import pandas as pd
@@ -21,6 +19,7 @@ import plumbfall as pf
 from plumbfall.reduction import reduce_drops
 from plumbfall.run_sets.set_model import SetModel
 from support.benches import bench_dict, drops_table
+from support.costs import cost
 
 DROPS = {
     "B1": [14.93, 14.88, 14.91],
@@ -29,27 +28,6 @@ DROPS = {
     "B4": [4.13, 4.14],
 }
 DRAWS = 1_000_000
-
-
-@pytest.fixture
-def say(capsys) -> Callable[[str], None]:
-    """Write a figure to the terminal whatever pytest captures."""
-
-    def write(line: str) -> None:
-        with capsys.disabled():
-            sys.stdout.write(f"\n  {line}\n")
-
-    return write
-
-
-def cost(function: Callable[[], object], repeats: int = 3) -> float:
-    """Return the least processor time of several calls."""
-    best = np.inf
-    for _ in range(repeats):
-        start = time.process_time()
-        function()
-        best = min(best, time.process_time() - start)
-    return float(best)
 
 
 def bare_loop(n_inputs: int, draws: int, block: int = 16_384) -> np.ndarray:
