@@ -133,7 +133,7 @@ def test_a_cell_at_the_far_corner_does_not_fill_the_memory(tmp_path):
         for name, content in parts.items():
             archive.writestr(name, content)
     assert collect(path).problems[0].message == (
-        "a sheet spans 1,048,576 rows by 16,384 columns; at most 5,000,000 cells are read"
+        "a sheet spans 1,048,576 rows by 16,384 columns; at most 3,000,000 cells are read"
     )
 
 

@@ -94,6 +94,9 @@ def unread(column: Column) -> Integers:
 
 def number_text(value: float) -> str:
     """Return a number as one would type it, empty for NaN."""
+    text = repr(value)
+    if "e" not in text and "n" not in text:
+        return text.removesuffix(".0")
     if np.isnan(value):
         return ""
     return np.format_float_positional(value, trim="-") if np.isfinite(value) else str(value)

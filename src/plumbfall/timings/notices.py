@@ -77,6 +77,11 @@ class Notices:
         for repair in other.repairs:
             self.repair(repair.what, repair.line, repair.column)
 
+    def where(self, line: int | None) -> str:
+        """Return a line of the table as that of the file, or as its column if transposed."""
+        at, column = self.place(line, None)
+        return f"line {at}" if at is not None or column is None else f"column {column}"
+
     def offer(self, key: str, value: str) -> None:
         """Offer a line for ``[timings]`` that would settle what is ambiguous.
 

@@ -78,7 +78,8 @@ def _unique(
         for row in rows[twice[rows]]:
             first = rows[drops[rows] == drops[row]][0]
             notices.error(
-                f"drop {drops[row]} of set {quoted(name)} is also in line {lines[first]}",
+                f"drop {drops[row]} of set {quoted(name)} is also in"
+                f" {notices.where(int(lines[first]))}",
                 "give each drop of a set its own number, or leave the column out",
                 int(lines[row]),
                 number,

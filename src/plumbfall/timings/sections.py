@@ -102,7 +102,7 @@ def _titles_above(
     if unread:
         shown = ", ".join(quoted(one.text, 40) for one in unread[:_MOST_SHOWN])
         notices.repair(
-            f"lines above the headings in line {grid.heading_line} are not read: {shown}"
+            f"lines above the headings in {notices.where(grid.heading_line)} are not read: {shown}"
             + (", …" if len(unread) > _MOST_SHOWN else ""),
             unread[0].line,
         )

@@ -20,7 +20,7 @@ __all__ = ["LARGEST_WORKBOOK", "sheet_rows"]
 LARGEST_WORKBOOK = 200_000_000
 """Bytes of the largest workbook that is read, once unpacked."""
 
-_MOST_CELLS = 5_000_000
+_MOST_CELLS = 3_000_000
 _CELL = re.compile(rb"""<(?:\w+:)?(?:c|row)\s(?:[^>]*?\s)?r=["']([A-Z]{0,3})([0-9]{1,7})["']""")
 _SHEET = re.compile(rb"""<(?:\w+:)?sheet\s[^>]*\br:id=["']([^"']*)["']""")
 _FORMULA_ALONE = re.compile(
@@ -93,10 +93,14 @@ def _trouble(archive: zipfile.ZipFile) -> str:
     for name in archive.namelist():
         content = archive.read(name)  # checks that it is no longer than it says
         if name.startswith("xl/worksheets/"):
-            width = height = 0
+            letters: set[bytes] = set()
+            height = 0
             for found in _CELL.finditer(content):
-                width = max(width, _column_number(found[1]))
-                height = max(height, int(found[2]))
+                letters.add(found[1])
+                row = int(found[2])
+                if row > height:
+                    height = row
+            width = max(map(_column_number, letters), default=0)
             if width * height > _MOST_CELLS:
                 return (
                     f"a sheet spans {height:,} rows by {width:,} columns; at most"
