@@ -35,7 +35,11 @@ __all__ = ["plan_text"]
 WIDTH = 80
 MOST_PAIRS = 12
 EXPLAINED = ("Reynolds number", "expanded uncertainty", "shear rate", "diameter ratio")
-RUN_IN = "distance from rest to 99.9 % of the ball's speed"
+COLUMNS = {
+    "uncertainty": "expanded uncertainty of {drops} drops, or of as many as the target needs",
+    "drops": "the fewest that reach the target",
+    "run-in": "distance from rest to 99.9 % of the ball's speed",
+}
 
 
 def plan_text(plan: Plan) -> str:
@@ -64,7 +68,8 @@ def _lines(plan: Plan) -> Iterator[str]:
             yield from _wrapped("  remedy: ", visible(finding.remedy), 4)
     for term in EXPLAINED:
         yield from _wrapped(f"{term}: ", TERMS[term], 2)
-    yield from _wrapped("run-in: ", RUN_IN, 2)
+    for column, text in COLUMNS.items():
+        yield from _wrapped(f"{column}: ", text.format(drops=plan.wanted.drops), 2)
     yield f"plumbfall {__version__}"
 
 
