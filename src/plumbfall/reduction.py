@@ -16,6 +16,7 @@ from plumbfall.errors import InputError
 from plumbfall.findings.data import RunData
 from plumbfall.findings.limits import Limits, limits_from
 from plumbfall.findings.linearity import linear_not_validated
+from plumbfall.findings.reach import reach_of
 from plumbfall.findings.registry import find
 from plumbfall.measurement.balance import corrected_temperature
 from plumbfall.measurement.drops import compute_drops
@@ -109,7 +110,9 @@ class Reduction:
                 self.drawn.get(place),
             )
             terms = second_order_of(self.sets, place, used, built.budget)
-            self._built[name] = dataclasses.replace(built, second_order=terms)
+            self._built[name] = dataclasses.replace(
+                built, second_order=terms, reach=reach_of(self._data, place)
+            )
         return self._built[name]
 
     def summary_table(self) -> pd.DataFrame:
@@ -155,6 +158,10 @@ class Reduction:
     @cached_property
     def _place(self) -> dict[str, int]:
         return {name: place for place, name in enumerate(self.names)}
+
+    @cached_property
+    def _data(self) -> RunData:
+        return run_data(self.sets, limits_from(self.bench.limits, self.bench.path))
 
     @cached_property
     def _built(self) -> dict[str, RunSetResult]:

@@ -22,6 +22,7 @@ __all__ = [
     "Measured",
     "MonteCarloResult",
     "Quantity",
+    "Reach",
     "RunSetResult",
     "SecondOrderResult",
     "TemperatureFitResult",
@@ -296,6 +297,19 @@ class ConstantUsed:
 
 
 @dataclass(frozen=True, slots=True)
+class Reach:
+    """The smallest change that a test of the set would have found four times of five.
+
+    ``code`` is that of the finding it would have made, ``what`` says it in words, and
+    ``detectable`` is a relative change of the viscosity.
+    """
+
+    code: str
+    what: str
+    detectable: float
+
+
+@dataclass(frozen=True, slots=True)
 class RunSetResult:
     """Everything a reduction says of one run set; temperatures in kelvin, all else SI.
 
@@ -303,7 +317,8 @@ class RunSetResult:
     without a temperature slope or a reference temperature. ``reynolds``, ``diameter_ratio``,
     ``shear_rate`` and ``shear_stress`` are the largest of the set. ``linear`` is the viscosity as
     the law of propagation gives it; ``monte_carlo`` is ``None`` where nothing was drawn, and
-    ``conformity`` without a specification. ``constants`` are those of calibrated tubes.
+    ``conformity`` without a specification. ``constants`` are those of calibrated tubes,
+    and ``reach`` says what the tests of the set would have found.
     """
 
     name: str
@@ -336,6 +351,7 @@ class RunSetResult:
     improvements: tuple[Improvement, ...] = ()
     second_order: SecondOrderResult | None = None
     constants: tuple[ConstantUsed, ...] = ()
+    reach: tuple[Reach, ...] = ()
 
     @property
     def interval(self) -> tuple[float, float]:

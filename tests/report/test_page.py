@@ -14,7 +14,7 @@ from plumbfall.bench.records import Specification
 from plumbfall.report import Report
 from plumbfall.report.views import product
 from plumbfall.report.words import CAUTIONS, STATEMENTS, TERMS
-from plumbfall.results import Conformity
+from plumbfall.results import Conformity, Reach
 from report.invented_report import (
     HOSTILE_NAMES,
     HOSTILE_NOTE,
@@ -206,6 +206,13 @@ class TestContent:
         made = product(Conformity(probability, "a rule", "conforms", "limits"))
         assert made is not None
         assert made.told == f"with limits, probability {shown}"
+
+    def test_what_would_have_been_found_is_told_unless_it_was(self) -> None:
+        reach = (Reach("time-trend", "a drift", 0.0042), Reach("outlier", "another", 0.1))
+        found = replace(warned_set("A"), reach=reach)
+        text = Page(Report(InventedReduction((found,))).to_html()).shown
+        told = "These would have been found four times of five, had they been there: a drift, from "
+        assert told + "0.42 %." in text
 
     def test_rows_in_no_result_are_listed_with_their_reason(self, page: Page) -> None:
         text = page.shown

@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 from plumbfall.report.improvement_view import halving_view
 from plumbfall.report.observed import Observed
 from plumbfall.report.page_pictures import Picture, pictures, residual_pictures
-from plumbfall.report.scales import CELSIUS
+from plumbfall.report.scales import CELSIUS, Scale
 from plumbfall.report.set_tables import (
     ball_view,
     budget_view,
@@ -44,6 +44,8 @@ __all__ = [
     "set_page",
 ]
 
+_PERCENT = Scale("%", 100.0)
+
 
 @dataclass(frozen=True, slots=True)
 class SetPage:
@@ -62,6 +64,7 @@ class SetPage:
     tables: list[TableView]
     conditions: list[Fact]
     product: Product | None
+    reach: list[tuple[str, str]]
 
 
 @dataclass(frozen=True, slots=True)
@@ -133,6 +136,11 @@ def set_page(result: RunSetResult, index: int, bench: Bench, seen: Observed | No
         tables=tables,
         conditions=_conditions(result, bench, seen or Observed()),
         product=product(result.conformity),
+        reach=[
+            (one.what, _PERCENT.alone(one.detectable, 2))
+            for one in result.reach
+            if one.code not in {finding.code for finding in result.findings}
+        ],
     )
 
 
