@@ -376,3 +376,36 @@ def test_every_net_sensitivity_agrees_with_differences_of_the_whole_chain(tmp_pa
         assert analytic == pytest.approx(difference, rel=2e-3, abs=2e-5 * size), name
         checked.add(name.split(".")[0])
     assert checked == {"ball", "balance", "gauge", "liquid", "thermometer", "timer"}
+
+
+def test_constants_of_two_files_share_what_they_were_both_found_with(tmp_path):
+    """Two balls, calibrated apart with one certificate: its error does not average down."""
+    balls = {
+        "s": {"diameter": "15.600(1) mm", "density": "7700(1) kg/m3"},
+        "g": {"diameter": "15.700(1) mm", "density": "7700(1) kg/m3"},
+    }
+    for ball, time in (("s", 60.0), ("g", 80.0)):
+        table = drops(with_scatter(time, 0.001, 5), "oil", f"cal {ball}", ball=ball)
+        found = pf.calibrate(table, bench(ball=balls), reference="R")
+        found.to_json(tmp_path / f"{ball}.json")
+    using = bench(
+        ball=balls,
+        tube={"incl": {"kind": "calibrated", "constant": ["Ks", "Kg"], "tilt": "10.0 deg"}},
+        constant={f"K{ball}": {"file": str(tmp_path / f"{ball}.json")} for ball in balls},
+    )
+    use = drops([60.0, 60.1, 80.0, 80.1], "oil", "use", ball=["s", "s", "g", "g"])
+    result = pf.reduce(use, using, draws=0)["use"].result
+    parts = [one for one in result.budget if one.input.startswith("reference.R.viscosity")]
+    assert [one.input for one in parts] == ["reference.R.viscosity"]
+    assert parts[0].contribution / result.viscosity.value == pytest.approx(0.0015, rel=1e-3)
+    assert {one.ball for one in result.constants} == {"s", "g"}
+
+
+def test_two_unknowns_measured_with_one_constant_are_correlated(tmp_path):
+    using = calibrated(tmp_path, bench(), CAL)
+    both = pd.concat([drops([60.0, 60.1, 59.9], "oil", one) for one in ("monday", "tuesday")])
+    report = pf.reduce(both, using, draws=0)
+    ratio = report["monday"].viscosity / report["tuesday"].viscosity
+    alone = report["monday"].result.viscosity
+    assert report.correlation()[0, 1] > 0.9
+    assert ratio.std_dev < 0.4 * alone.u / alone.value

@@ -11,21 +11,22 @@ import json
 import math
 import os
 from collections.abc import Mapping
-from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
+from plumbfall.bench.stored_constants import (
+    Certified,
+    ConstantFile,
+    Domain,
+    StoredConstant,
+    StoredInput,
+)
 from plumbfall.errors import InputError, Problem
 from plumbfall.estimate import DISTRIBUTIONS, Estimate
 
 __all__ = [
     "CONSTANTS_SCHEMA",
     "CONTENT_HASH",
-    "Certified",
-    "ConstantFile",
-    "Domain",
-    "StoredConstant",
-    "StoredInput",
     "content_hash",
     "read_constants",
 ]
@@ -37,71 +38,6 @@ VARIES = "constant-varies"
 
 ROUNDING, AS_PRINTED = 1e-9, 0.02
 """Parts of a variance that the rounding of floats explains, and that of a file by hand."""
-
-
-@dataclass(frozen=True, slots=True)
-class StoredInput:
-    """An input that a constant was found with: the estimate, whose it was, and dK/d(input)."""
-
-    estimate: Estimate
-    identity: str
-    sensitivity: float
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Domain:
-    """Between what a constant was found; ``None`` where the file does not say."""
-
-    temperature: tuple[float, float] | None = None
-    viscosity: tuple[float, float] | None = None
-    time: tuple[float, float] | None = None
-    tilt: float | None = None
-    gravity: float | None = None
-    ball_identity: str = ""
-    tube_identity: str = ""
-
-
-@dataclass(frozen=True, slots=True)
-class Certified:
-    """A certified liquid that a constant rests on."""
-
-    reference: str
-    certificate: str = ""
-    identity: str = ""
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class StoredConstant:
-    """One constant of a file, in m2/s2.
-
-    ``own_u`` and ``own_dof`` are what no input listed in ``inputs`` accounts for. ``scatter`` says
-    that this is the scatter of the calibration's drops, which the ball has to itself; otherwise
-    it may hold anything, the certificate's error too. ``varies`` is what the calibration said of a
-    constant that is none, empty where it found nothing.
-    """
-
-    name: str
-    tube: str
-    ball: str
-    value: float
-    u: float
-    own_u: float
-    own_dof: float
-    inputs: tuple[StoredInput, ...]
-    domain: Domain
-    certified: tuple[Certified, ...]
-    scatter: bool = True
-    varies: str = ""
-
-
-@dataclass(frozen=True, slots=True)
-class ConstantFile:
-    """A file of constants; ``edited`` says that it is not as ``calibrate`` wrote it."""
-
-    path: str
-    sha256: str
-    constants: tuple[StoredConstant, ...]
-    edited: bool
 
 
 def content_hash(document: Mapping[str, Any]) -> str:

@@ -17,20 +17,14 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.bench.constant_file import Certified, Domain, StoredConstant, StoredInput
 from plumbfall.bench.identities import identity_of
 from plumbfall.bench.records import Bench
-from plumbfall.calibration.calibration_sets import (
-    UNIT_NAME,
-    CalibrationSets,
-    SetOf,
-    calibration_sets,
-    slope_name,
-)
-from plumbfall.calibration.certified import is_expired
+from plumbfall.bench.stored_constants import Certified, Domain, StoredConstant, StoredInput
+from plumbfall.calibration.calibration_sets import CalibrationSets, SetOf, calibration_sets
 from plumbfall.calibration.constancy import Constancy, constancy
+from plumbfall.calibration.constant_findings import expired, varying
+from plumbfall.calibration.set_constants import Observed, observe
 from plumbfall.estimate import Estimate
-from plumbfall.measurement.inputs import MODEL_INPUT
 from plumbfall.results import Finding
 from plumbfall.timings.records import Timings
 from plumbfall.uncertainty.coverage import effective_dof
@@ -39,9 +33,6 @@ from plumbfall.uncertainty.least_squares import Evaluated, fit
 __all__ = ["Calibration", "CalibrationSet", "TubeConstant", "calibrate_tubes"]
 
 Numbers = NDArray[np.float64]
-
-VARIES = 0.01
-"""Significance below which a constant is said to vary (common practice, no source)."""
 
 _DAY = re.compile(r"\d{4}-\d{2}-\d{2}")
 
@@ -98,40 +89,6 @@ class Calibration:
     inputs: tuple[tuple[str, str], ...]
 
 
-@dataclass(frozen=True, slots=True)
-class _Observed:
-    """ln K of every set: values, and derivatives by named inputs, shape (sets, inputs)."""
-
-    log_value: Numbers
-    slopes: Numbers
-    estimates: tuple[Estimate, ...]
-    own_u: Numbers
-    own_dof: Numbers
-    n_drops: Numbers
-    time: Numbers
-    reynolds: Numbers
-
-    def covariance(self, rows: NDArray[np.intp]) -> Numbers:
-        """Covariance of the logarithms of some sets, shape (rows, rows)."""
-        return self._shared(rows) + np.diag(self.own_u[rows] ** 2)
-
-    def weighing(self, rows: NDArray[np.intp]) -> Numbers:
-        """Return the covariance that weighs sets: each drop's scatter is taken as the same in all.
-
-        A set of few drops whose scatter happens to be small must not have all the weight.
-        """
-        if np.isinf(self.own_dof[rows]).any():  # declared, or known from long use
-            return self.covariance(rows)
-        dof = self.own_dof[rows]
-        of_drop = float((dof * self.n_drops[rows] * self.own_u[rows] ** 2).sum() / dof.sum())
-        return self._shared(rows) + np.diag(of_drop / self.n_drops[rows])
-
-    def _shared(self, rows: NDArray[np.intp]) -> Numbers:
-        parts = self.slopes[rows] * np.array([estimate.u for estimate in self.estimates])
-        shared: Numbers = parts @ parts.T
-        return shared
-
-
 def calibrate_tubes(
     timings: Timings,
     bench: Bench,
@@ -177,7 +134,7 @@ def calibrate_tubes(
         if any(finding.severity == "error" for finding in found[one.name])
     )
     spoiled = {name for name, _ in invalid}
-    observed = _observe(made)
+    observed = observe(made)
     constants = []
     for pair in dict.fromkeys((one.tube, one.ball) for one in made.sets):
         rows = [n for n, one in enumerate(made.sets) if (one.tube, one.ball) == pair]
@@ -201,66 +158,9 @@ def _last_day(timings: Timings, bench: Bench) -> dt.date | None:
     return max(days, default=dt.date.fromisoformat(issued) if issued else None)
 
 
-def _observe(made: CalibrationSets) -> _Observed:
-    """Take the reduction with a constant of 1 to logarithms of the constant."""
-    sets = made.reduction.sets
-    jacobian, place = sets.jacobian, {name: n for n, name in enumerate(made.reduction.names)}
-    rows = np.array([place[one.name] for one in made.sets])
-    unit_value = sets.scatter.mean[rows]
-    matrix = jacobian.matrix.toarray()[rows]
-    n_inputs = jacobian.n_inputs
-
-    with np.errstate(invalid="ignore", divide="ignore"):
-        slopes = -matrix[:, :n_inputs] / unit_value[:, None]
-        own = (matrix[:, n_inputs:] * jacobian.u[n_inputs:]) / unit_value[:, None]
-        certified = np.array([one.certified.value for one in made.sets])
-        log_value = np.log(certified) - np.log(unit_value)
-    own_u = np.sqrt((own**2).sum(axis=1))
-    own_dof = effective_dof(
-        u=own_u, contributions_fourth=(own**4 / jacobian.dof[n_inputs:]).sum(axis=1)
-    )
-    stand_ins = {UNIT_NAME, MODEL_INPUT, *(slope_name(one.name) for one in made.sets)}
-    by_name = {
-        estimate.name: (estimate, slopes[:, column])
-        for column, estimate in enumerate(sets.inputs.estimates)
-        if estimate.name not in stand_ins
-    }
-    for row, one in enumerate(made.sets):
-        for part in one.certified.parts:
-            _, column = by_name.setdefault(part.input.name, (part.input, np.zeros(len(rows))))
-            column[row] += part.sensitivity / one.certified.value
-    times, reynolds = _conditions(made, rows)
-    return _Observed(
-        log_value=log_value,
-        slopes=np.column_stack([column for _, column in by_name.values()]),
-        estimates=tuple(estimate for estimate, _ in by_name.values()),
-        own_u=own_u,
-        own_dof=own_dof,
-        n_drops=sets.weights.n_drops[rows].astype(float),
-        time=times,
-        reynolds=reynolds,
-    )
-
-
-def _conditions(made: CalibrationSets, rows: NDArray[np.intp]) -> tuple[Numbers, Numbers]:
-    """Mean time of each set, and its Reynolds number for a fall of 1 m, shape (sets,).
-
-    The distance between the marks may not be known; the number is proportional to it.
-    """
-    sets = made.reduction.sets
-    n = len(made.reduction.names)
-    mean = np.bincount(sets.selection.run_set, weights=sets.selection.time, minlength=n)
-    time = (mean / np.bincount(sets.selection.run_set, minlength=n))[rows]
-    diameter = sets.columns.diameter[
-        [int(np.flatnonzero(sets.selection.run_set == row)[0]) for row in rows]
-    ]
-    viscosity = np.array([one.certified.value for one in made.sets])
-    return time, sets.liquid.density[rows] * diameter / (time * viscosity)
-
-
 def _join(
     made: CalibrationSets,
-    observed: _Observed,
+    observed: Observed,
     rows: NDArray[np.intp],
     found: dict[str, tuple[Finding, ...]],
     date: dt.date | None,
@@ -304,8 +204,8 @@ def _join(
         {"time": observed.time[rows], "reynolds": observed.reynolds[rows]},
     )
     findings = [finding for one in sets for finding in found[one.name]]
-    findings += _expired(made, sets, date)
-    findings += _varying(steady)
+    findings += expired(made.bench, sets, date)
+    findings += varying(steady)
     return TubeConstant(
         stored=StoredConstant(
             name=f"{sets[0].tube} {sets[0].ball}",
@@ -337,7 +237,7 @@ def _felt(estimate: Estimate, slope: float) -> bool:
 
 def _of_set(
     made: CalibrationSets,
-    observed: _Observed,
+    observed: Observed,
     row: int,
     variance: float,
     weight: float,
@@ -391,55 +291,3 @@ def _certified(made: CalibrationSets, sets: Sequence[SetOf]) -> tuple[Certified,
         Certified(name, identity.certificate, identity.identity)
         for name, identity in identities.items()
     )
-
-
-def _expired(made: CalibrationSets, sets: Sequence[SetOf], date: dt.date | None) -> list[Finding]:
-    names = dict.fromkeys(one.certified.reference for one in sets)
-    return [
-        Finding(
-            code="reference-expired",
-            severity="warning",
-            message=f"the certificate of reference {name} held until "
-            f"{made.bench.references[name].expires}, and the drops were made on {date}",
-            remedy="calibrate with a liquid whose certificate holds",
-        )
-        for name in names
-        if date is not None and is_expired(made.bench.references[name], date)
-    ]
-
-
-def _varying(steady: Constancy) -> list[Finding]:
-    """Say that the sets do not have one constant."""
-    if steady.least_p_value >= VARIES:
-        return []
-    trends = [trend for trend in steady.trends if trend.p_value < VARIES]
-    if trends:
-        worst = min(trends, key=lambda trend: trend.p_value)
-        what = "the fall time" if worst.along == "time" else "the Reynolds number"
-        message = (
-            f"the constant changes by {100 * worst.change:.2g} % as {what} goes from its least to "
-            "its most, more than its uncertainties explain"
-        )
-        remedy = (
-            "use the constant near each time it was found at alone, or a slower ball: inertia, a "
-            "timing bias or a wrong certificate row makes it change"
-        )
-        effect, statistic, p = abs(worst.change), worst.slope / worst.u, worst.p_value
-    else:
-        message = "the sets have different constants, more than their uncertainties explain"
-        remedy = (
-            "look for the set that stands out, and its temperature, ball, cleanness and "
-            "certificate row; repeat it"
-        )
-        effect, statistic, p = None, steady.chi_squared, steady.p_value
-    return [
-        Finding(
-            code="constant-varies",
-            severity="warning",
-            message=message,
-            remedy=remedy,
-            statistic=statistic,
-            p_value=p,
-            effect=effect,
-        )
-    ]

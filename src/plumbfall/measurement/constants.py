@@ -16,17 +16,17 @@ from pathlib import Path
 import numpy as np
 from numpy.typing import NDArray
 
-from plumbfall.bench.constant_file import (
+from plumbfall.bench.constant_file import read_constants
+from plumbfall.bench.identities import identity_of
+from plumbfall.bench.keys import key_path
+from plumbfall.bench.records import Bench, Constant, Tube
+from plumbfall.bench.stored_constants import (
     Certified,
     ConstantFile,
     Domain,
     StoredConstant,
     StoredInput,
-    read_constants,
 )
-from plumbfall.bench.identities import identity_of
-from plumbfall.bench.keys import key_path
-from plumbfall.bench.records import Bench, Constant, Tube
 from plumbfall.errors import InputError, Problem
 from plumbfall.estimate import Estimate
 

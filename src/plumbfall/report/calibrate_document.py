@@ -6,13 +6,8 @@ import math
 from typing import Any
 
 from plumbfall._version import __version__
-from plumbfall.bench.constant_file import (
-    CONSTANTS_SCHEMA,
-    CONTENT_HASH,
-    Domain,
-    StoredInput,
-    content_hash,
-)
+from plumbfall.bench.constant_file import CONSTANTS_SCHEMA, CONTENT_HASH, content_hash
+from plumbfall.bench.stored_constants import Domain, StoredInput
 from plumbfall.calibration.constancy import Constancy
 from plumbfall.calibration.constant import Calibration, CalibrationSet, TubeConstant
 from plumbfall.report.json_report import finding_document
