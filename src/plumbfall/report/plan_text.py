@@ -88,11 +88,11 @@ def _pair(plan: Plan, group: list[Combination]) -> Iterator[str]:
     worst = max(group, key=lambda one: one.relative_expanded_uncertainty or 0.0)
     if parts := parts_text(worst):
         at = viscosity_text(plan, worst.viscosity)
-        yield from _wrapped(f"    {f'largest parts at {at}':<30}", visible(parts))
+        yield from _wrapped(f"    {f'largest parts at {at}':<32}", visible(parts))
     for label, text in facts_of(plan, _slowest(group)):
-        yield from _wrapped(f"    {label:<30}", text)
+        yield from _wrapped(f"    {label:<32}", text)
     if times := interval_text(_slowest(group)):
-        yield from _wrapped(f"    {'between successive marks':<30}", times)
+        yield from _wrapped(f"    {'between successive marks':<32}", times)
     for one in group:
         at = viscosity_text(plan, one.viscosity)
         for reason in one.reasons:
