@@ -159,7 +159,9 @@ def page_figure(
     bottom = 34.0 + (8.0 + 11.5 * legend_rows if legend_rows else 0.0)
     height = bottom + panel_height + 8.0
     figure.set_size_inches(width, height / _POINTS)
-    ax.set_position(
-        (left / across, bottom / height, 1.0 - (left + 8.0) / across, panel_height / height)
-    )
+    panel_width = across - left - 8.0
+    ax.set_position((left / across, bottom / height, panel_width / across, panel_height / height))
+    # placed here, the labels of the axes need not be placed by measuring every tick once more
+    ax.xaxis.set_label_coords(ax.xaxis.label.get_position()[0], -19.5 / panel_height)
+    ax.yaxis.set_label_coords(-(left - 12.0) / panel_width, ax.yaxis.label.get_position()[1])
     return figure
