@@ -17,7 +17,7 @@ import pandas as pd
 
 import plumbfall as pf
 from plumbfall.planning.simulation import simulate_sets
-from plumbfall.reduction import reduce_numbers
+from plumbfall.reduction.numbers import reduce_numbers
 from plumbfall.run_sets.monte_carlo import draw_run_set
 from plumbfall.run_sets.result import SetColumns
 from plumbfall.timings.records import Timings

@@ -17,7 +17,7 @@ from plumbfall.calibration.history import append_history, history_line
 from plumbfall.calibration.history_lines import read_history
 from plumbfall.errors import InputError
 from plumbfall.measurement.constants import constant_files
-from plumbfall.reduction import Reduction
+from plumbfall.reduction.reduced import Reduction
 from plumbfall.report.chart_report import ChartReport
 from plumbfall.report.check_report import CheckReport
 from plumbfall.report.compare_report import ComparisonReport

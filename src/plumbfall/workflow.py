@@ -14,7 +14,7 @@ import pandas as pd
 from plumbfall.bench.reader import read_bench
 from plumbfall.bench.records import Bench
 from plumbfall.errors import InputError
-from plumbfall.reduction import Progress, reduce_drops
+from plumbfall.reduction.drops import Progress, reduce_drops
 from plumbfall.report.report import Report
 from plumbfall.timings.reader import collect, read_timings
 from plumbfall.timings.records import Timings

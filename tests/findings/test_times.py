@@ -126,7 +126,7 @@ def test_a_declared_step_is_no_news():
 def test_the_step_is_the_largest_that_all_times_are_multiples_of(times, step):
     from plumbfall.bench.reader import read_bench
     from plumbfall.findings.limits import Limits
-    from plumbfall.reduction import reduce_numbers, run_data
+    from plumbfall.reduction.numbers import reduce_numbers, run_data
 
     bench = read_bench(bench_dict())
     sets = reduce_numbers(pf.read_timings(drops_table({"B1": times}), bench), bench)

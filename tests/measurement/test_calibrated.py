@@ -14,7 +14,7 @@ import pandas as pd
 import pytest
 
 import plumbfall as pf
-from plumbfall.reduction import reduce_drops
+from plumbfall.reduction.drops import reduce_drops
 from support.perturbed import perturbed
 
 INCLINED = {

@@ -8,7 +8,7 @@ import pytest
 
 import plumbfall as pf
 from plumbfall.bench.records import Bench
-from plumbfall.reduction import reduce_drops
+from plumbfall.reduction.drops import reduce_drops
 from support.benches import bench_dict
 from support.perturbed import perturbed
 

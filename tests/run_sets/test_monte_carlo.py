@@ -14,7 +14,8 @@ import pytest
 from jsonschema import Draft202012Validator
 
 import plumbfall as pf
-from plumbfall.reduction import Reduction, reduce_drops
+from plumbfall.reduction.drops import reduce_drops
+from plumbfall.reduction.reduced import Reduction
 from plumbfall.run_sets.monte_carlo import draw_run_set
 from plumbfall.run_sets.set_model import SetModel
 from support.benches import bench_dict, drops_table

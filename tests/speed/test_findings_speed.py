@@ -17,7 +17,7 @@ import plumbfall as pf
 from plumbfall.findings.limits import Limits
 from plumbfall.findings.registry import find
 from plumbfall.planning.simulation import simulate_sets
-from plumbfall.reduction import reduce_numbers, run_data
+from plumbfall.reduction.numbers import reduce_numbers, run_data
 from support.planted import bench_of
 
 SETS, DRAWN, DROPS = 1_000, 20, 10

@@ -15,7 +15,8 @@ import pandas as pd
 import pytest
 
 import plumbfall as pf
-from plumbfall.reduction import reduce_drops, reduce_numbers
+from plumbfall.reduction.drops import reduce_drops
+from plumbfall.reduction.numbers import reduce_numbers
 from plumbfall.run_sets.table import summary_table
 from plumbfall.timings.records import Timings
 from speed.plain_script import run_script

@@ -16,7 +16,7 @@ import pandas as pd
 import pytest
 
 import plumbfall as pf
-from plumbfall.reduction import reduce_drops
+from plumbfall.reduction.drops import reduce_drops
 from plumbfall.run_sets.set_model import SetModel
 from support.benches import bench_dict, drops_table
 from support.costs import cost
@@ -86,7 +86,7 @@ MEMORY = """
 import resource, sys
 sys.path.insert(0, "tests")
 import plumbfall as pf
-from plumbfall.reduction import reduce_drops
+from plumbfall.reduction.drops import reduce_drops
 from support.benches import bench_dict, drops_table
 bench = pf.read_bench(bench_dict())
 timings = pf.read_timings(drops_table({times}), bench)

@@ -6,7 +6,7 @@ import math
 from dataclasses import dataclass
 
 from plumbfall.calibration.certified import CertifiedValue
-from plumbfall.reduction import Reduction
+from plumbfall.reduction.reduced import Reduction
 from plumbfall.results import Measured, RunSetResult
 from plumbfall.uncertainty.coverage import coverage_factor, effective_dof
 

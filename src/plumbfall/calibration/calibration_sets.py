@@ -18,7 +18,9 @@ from plumbfall.calibration.certified import CertifiedValue, certified_value
 from plumbfall.errors import InputError, Problem, nearest_name
 from plumbfall.estimate import Estimate
 from plumbfall.measurement.selection import Selection, select
-from plumbfall.reduction import Reduction, reduce_drops, reduce_numbers
+from plumbfall.reduction.drops import reduce_drops
+from plumbfall.reduction.numbers import reduce_numbers
+from plumbfall.reduction.reduced import Reduction
 from plumbfall.timings.records import Timings
 
 __all__ = ["UNIT_NAME", "CalibrationSets", "SetOf", "calibration_sets", "slope_name"]

@@ -20,7 +20,7 @@ from plumbfall.calibration.scores import e_n, zeta_score
 from plumbfall.calibration.verdict import FAILED, UNDECIDED, by_score, by_tolerance
 from plumbfall.errors import InputError, Problem, nearest_name
 from plumbfall.findings.independence import reference_not_independent
-from plumbfall.reduction import Reduction
+from plumbfall.reduction.reduced import Reduction
 from plumbfall.results import Finding, Measured, Quantity, RunSetResult
 
 __all__ = ["CheckResult", "check_run_sets"]

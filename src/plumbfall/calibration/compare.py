@@ -17,7 +17,7 @@ from plumbfall.calibration.precision import (
     repeatability_limit,
 )
 from plumbfall.errors import InputError, nearest_name
-from plumbfall.reduction import Reduction
+from plumbfall.reduction.reduced import Reduction
 from plumbfall.results import Measured, RunSetResult
 from plumbfall.run_sets.outputs import Outputs
 from plumbfall.uncertainty.coverage import coverage_factor

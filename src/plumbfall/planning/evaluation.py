@@ -27,7 +27,7 @@ from plumbfall.physics.drag import DragLaw
 from plumbfall.physics.laws import DEFAULTS
 from plumbfall.planning.conditions import Conditions
 from plumbfall.planning.forward import Fall, fall
-from plumbfall.reduction import reduce_numbers, run_data
+from plumbfall.reduction.numbers import reduce_numbers, run_data
 from plumbfall.results import Finding
 from plumbfall.run_sets.own_errors import OwnErrors, own_errors
 from plumbfall.timings.records import COLUMNS, Timings

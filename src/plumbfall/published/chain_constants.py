@@ -20,7 +20,7 @@ import pandas as pd
 from plumbfall.bench.reader import read_bench
 from plumbfall.calibration.constant import calibrate_tubes
 from plumbfall.published.figure import DEFINITION, figures
-from plumbfall.reduction import reduce_drops
+from plumbfall.reduction.drops import reduce_drops
 from plumbfall.report.calibrate_result import CalibrationReport
 from plumbfall.results import RunSetResult
 from plumbfall.timings.reader import read_timings

@@ -14,7 +14,7 @@ import pandas as pd
 
 from plumbfall.bench.reader import read_bench
 from plumbfall.published.figure import DEFINITION, figures
-from plumbfall.reduction import reduce_drops
+from plumbfall.reduction.drops import reduce_drops
 from plumbfall.report.report import Report
 from plumbfall.results import RunSetResult
 from plumbfall.timings.reader import read_timings
