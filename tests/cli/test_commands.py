@@ -239,7 +239,12 @@ def test_console_without_unicode_gets_ascii():
 
 
 def test_output_is_the_same_byte_for_byte(tmp_path):
-    for name in ("one", "two"):
-        main(["reduce", str(BAD), "--out", str(tmp_path / name)])
-    for path in (tmp_path / "one").iterdir():
+    # at another time, in another time zone, with other hashes: nothing of that shows
+    for name, zone, seed in (("one", "UTC", "1"), ("two", "Pacific/Auckland", "2")):
+        command = [sys.executable, "-m", "plumbfall", "reduce", str(BAD), "--out", name]
+        environment = {**os.environ, "TZ": zone, "PYTHONHASHSEED": seed}
+        subprocess.run(command, check=True, capture_output=True, cwd=tmp_path, env=environment)
+    written = sorted((tmp_path / "one").iterdir())
+    assert len(written) == 4
+    for path in written:
         assert path.read_bytes() == (tmp_path / "two" / path.name).read_bytes()

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import pandas as pd
 import pytest
+from matplotlib.figure import Figure
 
 import plumbfall as pf
 from plumbfall.report import Report
@@ -58,6 +59,19 @@ def test_timings_show_their_rows_and_what_was_repaired(objects: dict[str, object
     shown = Page(objects["timings"]._repr_html_()).shown
     assert "mark 2 is empty" in shown
     assert "gate 2 did not trigger" in shown
+
+
+def test_every_figure_shows_itself_without_a_setting(objects: dict[str, object]) -> None:
+    drawings = {
+        "run set": lambda: objects["run set"].plot(),
+        "all sets": lambda: objects["report"].plot("sets"),
+        "map": lambda: objects["report"].plot("map"),
+        **{name: objects[name].plot for name in ("check", "comparison", "chart", "plan")},
+    }
+    for name, draw in drawings.items():
+        figure = draw()
+        assert isinstance(figure, Figure), name
+        assert figure._repr_png_().startswith(b"\x89PNG"), name
 
 
 def test_names_are_shown_as_text() -> None:

@@ -21,9 +21,9 @@ MOST_LABELS = 12
 
 def chart_figure(chart: ControlChart) -> Figure:
     """Return a figure with the checks above and their moving ranges below."""
-    from matplotlib.figure import Figure
+    from plumbfall.report.drawn_figure import DrawnFigure
 
-    figure = Figure(figsize=SIZE, layout="constrained")
+    figure = DrawnFigure(figsize=SIZE, layout="constrained")
     with house_style():
         above, below = figure.subplots(2, 1, height_ratios=(2.2, 1.0), sharex=True)
     draw_chart(chart, above)

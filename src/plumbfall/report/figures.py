@@ -130,9 +130,9 @@ def _refuse_unknown(what: str, name: str, known: Sequence[str] | Mapping[str, ob
 
 def new_figure(panels: int = 1, columns: int = 1) -> Figure:
     """Return an empty figure in the house's size, outside pyplot."""
-    from matplotlib.figure import Figure
+    from plumbfall.report.drawn_figure import DrawnFigure
 
-    return Figure(figsize=(SIZE[0] * columns, SIZE[1] * panels), layout="constrained")
+    return DrawnFigure(figsize=(SIZE[0] * columns, SIZE[1] * panels), layout="constrained")
 
 
 def page_figure(

@@ -24,9 +24,9 @@ def in_its_place(draw: Callable[[Axes], Axes], ax: Axes | None, rows: int = 1) -
 
 def own_figure(draw: Callable[[Axes], Axes], rows: int = 1) -> Figure:
     """Draw into a new figure, outside pyplot, as high as so many ``rows`` of marks need."""
-    from matplotlib.figure import Figure
+    from plumbfall.report.drawn_figure import DrawnFigure
 
-    figure = Figure(figsize=(WIDTH, BASE + ROW * rows), layout="constrained")
+    figure = DrawnFigure(figsize=(WIDTH, BASE + ROW * rows), layout="constrained")
     with house_style():
         place = figure.add_subplot()
     draw(place)

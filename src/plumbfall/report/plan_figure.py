@@ -27,10 +27,10 @@ NARROW = 40.0
 
 def new_plan_figure(plan: Plan) -> Figure:
     """Return the chart in a figure of its own, as high as its bars need."""
-    from matplotlib.figure import Figure
+    from plumbfall.report.drawn_figure import DrawnFigure
 
     bars = min(len(plan.windows), MOST_BARS)
-    figure = Figure(figsize=(WIDTH, REST + HEIGHT_OF_BAR * bars), layout="constrained")
+    figure = DrawnFigure(figsize=(WIDTH, REST + HEIGHT_OF_BAR * bars), layout="constrained")
     with house_style():
         draw_plan(plan, figure.add_subplot())
     return figure
