@@ -6,9 +6,11 @@ from pathlib import Path
 
 import pytest
 
+import plumbfall as pf
 from browser.chromium import Tab
 from report.invented_report import HOSTILE_NAMES, HOSTILE_NOTE
 
+SAMPLES = Path(__file__).parents[2] / "sample_runs"
 NAMES = ("sample", "several", "hostile")
 WIDTHS = (1280, 390)
 
@@ -100,6 +102,24 @@ def test_names_and_notes_are_text(tab: Tab, pages: dict[str, Path]) -> None:
     assert HOSTILE_NOTE.replace("\x1b", "\\x1b") in shown
     assert tab.value("document.querySelectorAll('script, img, iframe, object').length") == 0
     assert tab.complaints() == []
+
+
+def test_from_the_file_to_the_page_nothing_is_taken_for_code(tab: Tab, tmp_path: Path) -> None:
+    lines = (SAMPLES / "damping_fluid_clean" / "drops.csv").read_text("utf-8").splitlines()
+    lines = [line.replace("tank 3", "<script>alert(1)</script>") for line in lines]
+    lines[-1] = lines[-1].removesuffix(",,") + ",void,=cmd()"
+    (tmp_path / "drops.csv").write_text("\n".join(lines) + "\n", "utf-8")
+    report = pf.reduce(
+        tmp_path / "drops.csv", SAMPLES / "damping_fluid_clean" / "bench.toml", draws=0
+    )
+    report.write(tmp_path / "out")
+    tab.open(tmp_path / "out" / "report.html", width=390)
+    shown = tab.value("document.body.innerText")
+    assert "Run set <script>alert(1)</script>" in shown
+    assert "=cmd()" in shown
+    assert tab.value("document.scripts.length") == 0
+    assert tab.complaints() == []
+    assert "'=cmd()" in (tmp_path / "out" / "drops.csv").read_text("utf-8")
 
 
 def test_a_screen_reader_finds_its_way(tab: Tab, pages: dict[str, Path]) -> None:
