@@ -13,7 +13,7 @@ CLEAN = {"B1": [14.91, 14.93], "B2": [9.78, 9.80], "B3": [6.95, 6.96]}
 
 def findings(times=CLEAN, table=None, temperature=25.0, **changes):
     table = drops_table(times, temperature=temperature) if table is None else table
-    result = pf.reduce(table, bench_dict(**changes))["A"].result
+    result = pf.reduce(table, bench_dict(**changes), draws=0)["A"].result
     return {finding.code: finding for finding in result.findings}, result
 
 
@@ -302,5 +302,7 @@ def test_a_drop_without_temperature_among_others_is_refused_with_its_line():
         findings(table=table)
     assert error.value.line == 2
     bench = bench_dict(set={"A": {"temperature": "25.00(5) degC"}})
-    line = {x.input: x for x in pf.reduce(table, bench)["A"].result.budget}["set.A.temperature"]
+    line = {x.input: x for x in pf.reduce(table, bench, draws=0)["A"].result.budget}[
+        "set.A.temperature"
+    ]
     assert line.u == pytest.approx((0.05**2 + 0.01**2) ** 0.5)  # the reading's own scatter joins
