@@ -111,6 +111,10 @@ def _run_set(result: RunSetResult) -> dict[str, Any]:
         "balls": [_ball(ball) for ball in result.balls],
         "drops": [_drop(drop) for drop in result.drops],
         "findings": [finding_document(finding) for finding in result.findings],
+        "reach": [
+            {"code": one.code, "what": one.what, "detectable": _number(one.detectable)}
+            for one in result.reach
+        ],
     }
 
 
