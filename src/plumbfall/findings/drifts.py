@@ -33,6 +33,7 @@ def time_trend(data: RunData) -> Iterator[Found]:
             trends.drift_error[run_set],
             int(trends.drift.dof[run_set]),
             trends.drift_p_value[run_set],
+            data.level / 2,  # its p-value is twice the lesser of the t-test's and the ranks'
         )
     yield from _from_ball_to_ball(data)
 
@@ -63,6 +64,7 @@ def _from_ball_to_ball(data: RunData) -> Iterator[Found]:
             joint.error[run_set],
             int(joint.dof[run_set]),
             p_value[run_set],
+            data.level,
             "; the balls were dropped one after the other, and balls that differ would look the "
             "same",
             "; drop the balls in turn, which tells a drift from a ball",
@@ -76,10 +78,14 @@ def _drift(
     error: float,
     dof: int,
     p_value: float,
+    level: float,
     but: str = "",
     also: str = "",
 ) -> Found:
-    """Return the finding of a drift; ``slope`` and its standard error are per drop."""
+    """Return the finding of a drift; ``slope`` and its standard error are per drop.
+
+    ``level`` is that at which the t-test alone finds it.
+    """
     steps = float(data.order[data.selection.run_set == run_set].max())
     drift, error = float(slope) * steps, float(error) * steps
     half = float(coverage_factor(dof=dof, probability=0.95)) * error
@@ -93,7 +99,7 @@ def _drift(
             statistic=drift / error,
             p_value=float(p_value),
             effect=drift,
-            detectable=float(detectable(standard_error=error, dof=dof, level=data.level)),
+            detectable=float(detectable(standard_error=error, dof=dof, level=level)),
             message=f"the viscosity {'rises' if drift > 0 else 'falls'} by "
             f"{100 * abs(drift):.2f} % from the first drop to the last (95 % interval "
             f"{100 * (drift - half):+.2f} to {100 * (drift + half):+.2f} %), {part:.1f} times "
