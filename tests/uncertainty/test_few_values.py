@@ -1,4 +1,4 @@
-"""The rule for scatter of few values, against its coverage worked out by integration."""
+"""The rule for scatter of two values, against its coverage worked out by integration."""
 
 from __future__ import annotations
 
@@ -39,8 +39,9 @@ def coverage(true: float, scatter_dof: int, probability: float) -> tuple[float, 
 
 
 @pytest.mark.parametrize("ratio", RATIOS)
-@pytest.mark.parametrize(("dof", "low", "high"), [(1, 0.93, 0.97), (2, 0.94, 0.96)])
+@pytest.mark.parametrize(("dof", "low", "high"), [(1, 0.93, 0.97), (2, 0.92, 0.951)])
 def test_intervals_cover_what_they_promise_whatever_the_proportion(dof, low, high, ratio):
+    """Two values by the rule; three by Welch and Satterthwaite, who are not far off there."""
     covered, width = coverage(ratio, dof, 0.95)
     assert low < covered < high
     # never wider than Student's t on the scatter alone, in quadrature with the rest
@@ -65,11 +66,10 @@ def test_welch_and_satterthwaite_alone_hold_too_little():
 
 @pytest.mark.parametrize("probability", [0.68, 0.9, 0.99])
 def test_other_probabilities(probability):
-    for dof in (1, 2):
-        for ratio in RATIOS:
-            covered, _ = coverage(ratio, dof, probability)
-            assert (1 - covered) / (1 - probability) == pytest.approx(1, abs=1.4)
-            assert covered > probability - 0.02
+    for ratio in RATIOS:
+        covered, _ = coverage(ratio, 1, probability)
+        assert (1 - covered) / (1 - probability) == pytest.approx(1, abs=1.4)
+        assert covered > probability - 0.02
 
 
 def test_limits():
@@ -85,7 +85,7 @@ def test_limits():
 
 def test_enough_values_are_left_to_welch_and_satterthwaite():
     dof = dof_with_few_values(
-        u=[2.0, np.nan], dof=[7.5, np.nan], scatter_u=[1.5, 0.1], scatter_dof=[3.0, 9.0],
+        u=[2.0, np.nan], dof=[7.5, np.nan], scatter_u=[1.5, 0.1], scatter_dof=[2.0, 9.0],
         probability=0.95,
     )  # fmt: skip
     assert dof[0] == 7.5

@@ -152,10 +152,7 @@ _THREE = _BY_HAND(
     "the same in 9.9, 10.0 and 10.1 s, u: bore 0.5 %, distance 0.25 %, diameter 0.1 %, ball "
     "density 0.5 %, liquid density 0.5 %; by hand, in percent: scatter 1/sqrt 3; ball density "
     "8/7 x 0.5; distance 0.25; diameter (2 - 0.12/1.12) x 0.1; liquid density 1/7 x 0.5; bore "
-    "0.12/1.12 x 0.5; together the root of 0.766165, all but the scatter 0.432832; "
-    "coverage factor by the rule of two or three values, Student's t being 1.959964 and 4.302653: "
-    "the root of (1.959964^2 x 0.432832 + 4.302653^2 x 0.333333 w)/0.766165, "
-    "w = 0.333333/(0.333333 + 0.432832/2)",
+    "0.12/1.12 x 0.5; together the root of 0.766165; degrees of freedom 2 x 0.766165^2/0.333333^2",
     [
         ("three-drops.viscosity", "0.6805556", _of("three", _part("viscosity", "value"))),
         ("three-drops.scatter", "0.577350", _contribution("three", "set.a.scatter")),
@@ -165,7 +162,7 @@ _THREE = _BY_HAND(
         ("three-drops.liquid-density", "0.071429", _contribution("three", "liquid.o.density")),
         ("three-drops.bore", "0.053571", _contribution("three", "tube.A.bore")),
         ("three-drops.u", "0.00595696", _of("three", _part("viscosity", "u"))),
-        ("three-drops.factor", "2.655899", _of("three", _part("viscosity", "coverage_factor"))),
+        ("three-drops.dof", "10.566", _of("three", _part("viscosity", "effective_dof"))),
     ],
 )
 
