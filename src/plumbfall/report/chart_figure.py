@@ -7,7 +7,7 @@ from collections.abc import Iterable
 from typing import TYPE_CHECKING
 
 from plumbfall.calibration.chart import ControlChart
-from plumbfall.report.house_style import COLOURS, house_style
+from plumbfall.report.house_style import COLOURS, house_style, legend_above
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -69,11 +69,7 @@ def draw_chart(chart: ControlChart, ax: Axes) -> Axes:
             )  # fmt: skip
         ax.set_ylabel("Bias / %")
         _dates(ax, chart)
-        legend = ax.legend(
-            loc="lower left", bbox_to_anchor=(-0.01, 1.0), ncols=3, borderaxespad=0.3
-        )
-        for text in legend.get_texts():
-            text.set_parse_math(False)
+        legend_above(ax)
     return ax
 
 

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 from plumbfall.calibration.check import CheckResult
 from plumbfall.calibration.verdict import FAILED, PASSED
 from plumbfall.errors import InputError
-from plumbfall.report.house_style import COLOURS, house_style, legend_below, short_name
+from plumbfall.report.house_style import COLOURS, house_style, legend_above, short_name
 from plumbfall.uncertainty.coverage import coverage_factor
 
 if TYPE_CHECKING:
@@ -60,5 +60,5 @@ def draw_checks(checks: Sequence[CheckResult], ax: Axes) -> Axes:
         ax.set_yticks(range(len(shown)), names, parse_math=False)
         ax.set_ylim(len(shown) - 0.5, -0.5)
         ax.set_xlabel("Bias with its expanded uncertainty / %")
-        legend_below(ax)
+        legend_above(ax)
     return ax

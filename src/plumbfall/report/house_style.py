@@ -12,7 +12,7 @@ from plumbfall.report.summary import visible
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
-__all__ = ["COLOURS", "house_style", "legend_below", "short_name"]
+__all__ = ["COLOURS", "house_style", "legend_above", "legend_below", "short_name"]
 
 COLOURS = {
     "ink": "#24333b",
@@ -84,6 +84,16 @@ def legend_below(ax: Axes, *, at_right: bool = False) -> None:
             handlelength=1.6,
             columnspacing=1.2,
             borderaxespad=0.4,
+        )
+        for text in legend.get_texts():
+            text.set_parse_math(False)
+
+
+def legend_above(ax: Axes) -> None:
+    """Put the legend over the axes, clear of what stands under them whatever their height."""
+    if ax.get_legend_handles_labels()[0]:
+        legend = ax.legend(
+            loc="lower left", bbox_to_anchor=(-0.01, 1.0), ncols=3, borderaxespad=0.3
         )
         for text in legend.get_texts():
             text.set_parse_math(False)
