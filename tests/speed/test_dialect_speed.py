@@ -69,7 +69,6 @@ DIALECTS: dict[str, Callable[[Lines], str]] = {
     ),
     "blocks": _blocks,
     "many missing": _with_times(lambda text: text if text[-1] in "02468" else "n/a"),
-    "nothing but faults": _with_times(lambda text: "x" + text),
     "Windows-1252": lambda lines: "".join(",".join(row) + "\n" for row in lines).replace(
         "degC", "°C"
     ),
@@ -99,6 +98,21 @@ def test_any_dialect_is_read_in_at_most_twenty_times_what_pandas_takes(name, cle
     sys.stderr.write(f"\n{name}: {found:.1f}\n")
     assert found < 2 * TARGET
     assert len(collect(other)) == 50_000
+
+
+def test_a_file_of_nothing_but_faults_is_refused_in_bounded_time(clean):
+    """Fifty thousand faults: the first are told, the others counted; no dialect, so no target."""
+    path, plain = clean
+    lines = [line.split(",") for line in path.read_text("utf-8").splitlines()]
+    wrong = path.with_name("faults.csv")
+    made_of = _with_times(lambda text: "x" + text)
+    wrong.write_text(made_of(lines), "utf-8")
+    found = cpu_seconds(lambda: collect(wrong), repeats=1) / plain
+    sys.stderr.write(f"\nnothing but faults: {found:.1f}\n")
+    assert found < 5 * TARGET
+    *told, rest = collect(wrong).problems
+    assert len(told) == 500
+    assert "49500" in rest.message.replace(",", "")
 
 
 def test_a_sheet_of_a_hundred_thousand_columns_is_refused_at_once(tmp_path):

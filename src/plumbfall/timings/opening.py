@@ -25,6 +25,7 @@ from plumbfall.timings.spreadsheets import sheet_rows
 from plumbfall.timings.turning import grid_of_rows, turned
 from plumbfall.timings.uneven_rows import cut_rows
 from plumbfall.timings.vocabulary import Vocabulary
+from plumbfall.timings.widths import short_row
 
 __all__ = ["Opened", "open_file"]
 
@@ -105,6 +106,7 @@ def _from_rows(
     turned_lines = None
     if hints.transposed:
         turned_lines = lines
+        _note_short(rows, lines, vocabulary, notices)
         rows = turned(rows)
         lines = range(1, len(rows) + 1)
     ways = [[row] if any(cell.strip() for cell in row) else [] for row in rows[:DEEPEST]]
@@ -113,6 +115,16 @@ def _from_rows(
         return Opened(file)
     grid, above = grid_of_rows(rows, lines, heading, file.delimiter)
     return Opened(file, grid, above, turned_lines)
+
+
+def _note_short(
+    rows: Sequence[Sequence[str]], lines: Sequence[int], vocabulary: Vocabulary, notices: Notices
+) -> None:
+    """List the rows of a transposed sheet that end before others do, titles apart."""
+    width = max(map(len, rows), default=0)
+    for row, line in zip(rows, lines, strict=True):
+        if 0 < len(row) < width and (len(row) > 1 or vocabulary.understood(row)):
+            notices.repair(short_row(len(row), width), line)
 
 
 def _turned_text(

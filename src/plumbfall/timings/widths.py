@@ -9,7 +9,12 @@ import numpy as np
 from plumbfall.timings.grid import Grid
 from plumbfall.timings.notices import Notices, quoted
 
-__all__ = ["evened"]
+__all__ = ["evened", "short_row"]
+
+
+def short_row(count: int, width: int) -> str:
+    """Say that a row ends before others do."""
+    return f"the row has {count} of {width} cells; the others are taken as empty"
 
 
 def evened(grid: Grid, notices: Notices) -> Grid:
@@ -23,9 +28,7 @@ def evened(grid: Grid, notices: Notices) -> Grid:
     for row in np.flatnonzero(grid.widths != width):
         count, line = int(grid.widths[row]), int(grid.lines[row])
         if count < width:
-            notices.repair(
-                f"the row has {count} of {width} cells; the others are taken as empty", line
-            )
+            notices.repair(short_row(count, width), line)
             continue
         cells = grid.row(int(row))
         extra = next((n for n, cell in enumerate(cells[width:], width) if cell), None)
