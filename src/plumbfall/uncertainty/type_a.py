@@ -25,8 +25,16 @@ class GroupScatter:
 def group_sums(
     values: NDArray[np.float64] | NDArray[np.bool_], group: NDArray[np.intp], n_groups: int
 ) -> NDArray[np.float64]:
-    """Sum of every group's values, shape (groups,)."""
-    return np.asarray(np.bincount(group, weights=values, minlength=n_groups), dtype=float)
+    """Sum of every group's values, shape (groups,).
+
+    Values that stand group by group, as drops do by run set, are summed several times as fast.
+    """
+    if len(group) < 2 or (group[1:] < group[:-1]).any():
+        return np.asarray(np.bincount(group, weights=values, minlength=n_groups), dtype=float)
+    starts = np.concatenate([[0], np.flatnonzero(group[1:] != group[:-1]) + 1])
+    sums = np.zeros(n_groups)
+    sums[group[starts]] = np.add.reduceat(np.asarray(values, dtype=float), starts)
+    return sums
 
 
 def group_scatter(
@@ -54,9 +62,9 @@ def group_scatter(
     """
     n = np.bincount(group, minlength=n_groups)
     with np.errstate(invalid="ignore", divide="ignore"):
-        mean = np.bincount(group, weights=values, minlength=n_groups) / n
-        mean += np.bincount(group, weights=values - mean[group], minlength=n_groups) / n
-        squares = np.bincount(group, weights=(values - mean[group]) ** 2, minlength=n_groups)
+        mean = group_sums(values, group, n_groups) / n
+        mean += group_sums(values - mean[group], group, n_groups) / n
+        squares = group_sums((values - mean[group]) ** 2, group, n_groups)
         sd = np.where(n > 1, np.sqrt(squares / (n - 1)), np.nan)
     return GroupScatter(n=n, mean=mean, sd=sd)
 
