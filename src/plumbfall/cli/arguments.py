@@ -5,7 +5,7 @@ from __future__ import annotations
 import argparse
 import datetime as dt
 
-__all__ = ["add_inputs", "add_json", "day", "draws", "probability", "seed"]
+__all__ = ["add_coverage", "add_inputs", "add_json", "day", "draws", "probability", "seed"]
 
 
 def add_inputs(parser: argparse.ArgumentParser, timings: str) -> None:
@@ -18,6 +18,13 @@ def add_inputs(parser: argparse.ArgumentParser, timings: str) -> None:
     )
     parser.add_argument("--encoding", metavar="NAME", help="encoding of the timing files")
     add_json(parser)
+
+
+def add_coverage(parser: argparse.ArgumentParser) -> None:
+    """Add ``--coverage``, the probability of the bounds."""
+    parser.add_argument(
+        "--coverage", type=probability, metavar="P", help="coverage probability (default 0.95)"
+    )
 
 
 def add_json(parser: argparse.ArgumentParser) -> None:

@@ -7,7 +7,7 @@ import argparse
 from plumbfall.cli.arguments import add_inputs, day
 from plumbfall.cli.commands import Commands
 from plumbfall.cli.exit_codes import DONE, INVALID
-from plumbfall.cli.output import print_json, print_text, say
+from plumbfall.cli.output import print_result, say
 
 __all__ = ["add_calibrate"]
 
@@ -60,8 +60,5 @@ def _run(options: argparse.Namespace) -> int:
         say(f"written to {options.out}")
     elif options.out:
         say("nothing is written, as a run set is invalid")
-    if options.json:
-        print_json(found.to_dict())
-    else:
-        print_text(found.text())
+    print_result(found, options.json)
     return DONE if found.complete else INVALID

@@ -7,7 +7,7 @@ import argparse
 from plumbfall.cli.arguments import add_json
 from plumbfall.cli.commands import Commands
 from plumbfall.cli.exit_codes import DONE, INVALID
-from plumbfall.cli.output import print_json, print_text, say
+from plumbfall.cli.output import print_result, say
 
 __all__ = ["add_chart"]
 
@@ -54,8 +54,5 @@ def _run(options: argparse.Namespace) -> int:
     if options.out:
         report.write(options.out)
         say(f"written to {options.out}")
-    if options.json:
-        print_json(report.to_dict())
-    else:
-        print_text(report.text())
+    print_result(report, options.json)
     return INVALID if report.out_of_control else DONE

@@ -4,10 +4,10 @@ from __future__ import annotations
 
 import argparse
 
-from plumbfall.cli.arguments import add_inputs, probability
+from plumbfall.cli.arguments import add_coverage, add_inputs
 from plumbfall.cli.commands import Commands
 from plumbfall.cli.exit_codes import DONE, INVALID, UNDECIDED
-from plumbfall.cli.output import print_json, print_text, say
+from plumbfall.cli.output import print_result, say
 
 __all__ = ["add_check"]
 
@@ -37,9 +37,7 @@ def add_check(commands: Commands) -> None:
     check.add_argument(
         "--date", metavar="DATE", help="when the drops were made, where they do not say: 2026-03-02"
     )
-    check.add_argument(
-        "--coverage", type=probability, metavar="P", help="coverage probability (default 0.95)"
-    )
+    add_coverage(check)
     check.set_defaults(run=_run)
 
 
@@ -60,10 +58,7 @@ def _run(options: argparse.Namespace) -> int:
         known = len(report) - report.appended
         told = f"{report.appended} appended to {options.history}"
         say(told + (f", {known} there already" if known else ""))
-    if options.json:
-        print_json(report.to_dict())
-    else:
-        print_text(report.text())
+    print_result(report, options.json)
     if report.invalid or report.decision == "failed":
         return INVALID
     return UNDECIDED if report.decision == "undecided" else DONE

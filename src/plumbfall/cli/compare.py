@@ -4,10 +4,10 @@ from __future__ import annotations
 
 import argparse
 
-from plumbfall.cli.arguments import add_inputs, probability
+from plumbfall.cli.arguments import add_coverage, add_inputs
 from plumbfall.cli.commands import Commands
 from plumbfall.cli.exit_codes import DONE
-from plumbfall.cli.output import print_json, print_text
+from plumbfall.cli.output import print_result
 
 __all__ = ["add_compare"]
 
@@ -28,9 +28,7 @@ def add_compare(commands: Commands) -> None:
     compare.add_argument(
         "--margin", metavar="RATIO", help='within which the two count as equal, such as "1 %%"'
     )
-    compare.add_argument(
-        "--coverage", type=probability, metavar="P", help="coverage probability (default 0.95)"
-    )
+    add_coverage(compare)
     compare.set_defaults(run=_run)
 
 
@@ -45,8 +43,5 @@ def _run(options: argparse.Namespace) -> int:
         coverage=options.coverage,
         encoding=options.encoding,
     )
-    if options.json:
-        print_json(report.to_dict())
-    else:
-        print_text(report.text())
+    print_result(report, options.json)
     return DONE

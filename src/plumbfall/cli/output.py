@@ -6,12 +6,12 @@ import os
 import sys
 from collections.abc import Iterator
 from contextlib import contextmanager
-from typing import TYPE_CHECKING, Any, TextIO
+from typing import TYPE_CHECKING, Any, Protocol, TextIO
 
 if TYPE_CHECKING:
     from plumbfall.errors import InputError
 
-__all__ = ["print_json", "print_text", "say", "say_problems", "standard_output"]
+__all__ = ["print_json", "print_result", "print_text", "say", "say_problems", "standard_output"]
 
 
 @contextmanager
@@ -45,6 +45,24 @@ def print_text(text: str) -> None:
 
     with standard_output() as output:
         output.write(printable(text, output.encoding))
+
+
+class Printable(Protocol):
+    """A result that a command prints."""
+
+    def to_dict(self) -> dict[str, Any]:
+        """Return the document of ``--json``."""
+
+    def text(self) -> str:
+        """Return what is printed without it."""
+
+
+def print_result(result: Printable, as_json: bool) -> None:
+    """Print a result as JSON or as text."""
+    if as_json:
+        print_json(result.to_dict())
+    else:
+        print_text(result.text())
 
 
 def say_problems(error: InputError) -> None:

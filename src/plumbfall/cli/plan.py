@@ -5,10 +5,10 @@ from __future__ import annotations
 import argparse
 from typing import Any
 
-from plumbfall.cli.arguments import add_json, probability
+from plumbfall.cli.arguments import add_coverage, add_json
 from plumbfall.cli.commands import Commands
 from plumbfall.cli.exit_codes import DONE, INVALID
-from plumbfall.cli.output import print_json, print_text, say
+from plumbfall.cli.output import print_result, say
 
 __all__ = ["add_choices", "add_plan", "choices"]
 
@@ -43,9 +43,7 @@ def add_plan(commands: Commands) -> None:
     plan.add_argument(
         "--longest", metavar="T", help='longest fall time, such as "30 min" (default 1 h)'
     )
-    plan.add_argument(
-        "--coverage", type=probability, metavar="P", help="coverage probability (default 0.95)"
-    )
+    add_coverage(plan)
     plan.add_argument("--set", metavar="NAME", help="run set whose entry says what is used")
     add_choices(plan)
     plan.add_argument(
@@ -92,10 +90,7 @@ def _run(options: argparse.Namespace) -> int:
     if options.out:
         planned.write(options.out)
         say(f"written to {options.out}: plan.html, plan.json")
-    if options.json:
-        print_json(planned.to_dict())
-    else:
-        print_text(planned.text())
+    print_result(planned, options.json)
     return DONE if planned.suitable else INVALID
 
 

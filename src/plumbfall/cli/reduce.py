@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import argparse
 
-from plumbfall.cli.arguments import add_inputs, day, draws, probability, seed
+from plumbfall.cli.arguments import add_coverage, add_inputs, day, draws, seed
 from plumbfall.cli.commands import Commands
 from plumbfall.cli.exit_codes import DONE, INVALID
 from plumbfall.cli.output import say, standard_output
@@ -33,9 +33,7 @@ def add_reduce(commands: Commands) -> None:
         default="html",
         help="pdf: write report.pdf into DIR too, printed by an installed Chromium (default html)",
     )
-    reduce.add_argument(
-        "--coverage", type=probability, metavar="P", help="coverage probability (default 0.95)"
-    )
+    add_coverage(reduce)
     reduce.add_argument(
         "--draws",
         type=draws,

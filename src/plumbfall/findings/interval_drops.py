@@ -49,7 +49,7 @@ class IntervalDrops:
     steps make it at least, and ``bias`` how far the timer's may be off for one interval against
     another [s]. ``group`` is the interval of a tube
     in a run set, counted by ``group_set`` (a run set and tube, ``set_run`` and ``set_tube``),
-    ``group_mark`` (its upper mark from 0) and ``slopes``, of shape (groups, ...).
+    and ``slopes``, of shape (groups, ...).
     """
 
     value: Numbers
@@ -61,7 +61,6 @@ class IntervalDrops:
     least_sd: Numbers
     group: Codes
     group_set: Codes
-    group_mark: Codes
     slopes: sparse.csr_array
     set_run: Codes
     set_tube: Codes
@@ -164,7 +163,6 @@ def interval_drops(
         bias=np.hypot(bias.value, bias_u)[cell],
         group=group_of_cell[cell],
         group_set=group_key // clock.shape[1],
-        group_mark=group_key % clock.shape[1],
         slopes=relative_slopes(own, sums, pull, group_of_cell, len(group_key)),
         set_run=tube_set // len(tubes),
         set_tube=tube_set % len(tubes),

@@ -41,15 +41,13 @@ def budget_lines(
         return ()
     cells = np.flatnonzero(selection.cells.run_set == run_set)
     lines: dict[str, BudgetLine] = {}
-    own_scatter = int(jacobian.own_columns("scatter")[run_set])
-    shared_scatter = jacobian.shared_scatter
     for column, sensitivity in zip(columns.tolist(), sensitivities.tolist(), strict=True):
-        contribution = abs(sensitivity) * float(jacobian.u[column])
-        if column == own_scatter:  # whole, also where other sets have a part in it
-            contribution = float(jacobian.u[column])
-        if contribution == 0 or shared_scatter[column]:
+        u, entry = float(jacobian.u[column]), jacobian.input_of(column)
+        # the scatter stands in its own column whole, also where other sets have a part in it
+        contribution = abs(sensitivity) * u if entry >= 0 else u
+        if contribution == 0 or (entry < 0 and not jacobian.own_kind(column)):
             continue
-        if (entry := jacobian.input_of(column)) >= 0:
+        if entry >= 0:
             line = _input_line(inputs, sums, cells, entry, sensitivity, contribution)
         else:
             line = _own_line(jacobian, scatter, selection, bench, cells, run_set, column)

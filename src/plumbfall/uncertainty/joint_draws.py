@@ -61,15 +61,15 @@ class JointDraws:
         if problems:
             raise InputError(problems)
         self._correlated, self._factor = _correlated(self.inputs, correlation)
-        self._streams: list[Stream | Replay] = []
+        self._streams: dict[int, Stream | Replay] = {}
         self._deviates: dict[int, Stream] = {}
         for place, estimate in enumerate(self.inputs):
-            if pool is not None and place not in self._correlated:
-                self._streams.append(pool.stream(estimate, place))
-                continue
-            stream = open_stream(estimate, seed=int(seed), place=place)
-            self._streams.append(stream)
-            self._deviates[place] = stream
+            if place in self._correlated:
+                self._deviates[place] = open_stream(estimate, seed=int(seed), place=place)
+            elif pool is not None:
+                self._streams[place] = pool.stream(estimate, place)
+            else:
+                self._streams[place] = open_stream(estimate, seed=int(seed), place=place)
 
     def heavy(self, dof: float) -> list[int]:
         """Places of the inputs drawn from a t distribution of no more than so many dof."""
@@ -77,11 +77,10 @@ class JointDraws:
 
     def fill(self, out: Numbers) -> None:
         """Fill with the next draws, shape (inputs, draws); its rows must be contiguous."""
-        alone = set(range(len(self.inputs))).difference(self._correlated)
-        for i in alone:
-            self._streams[i].fill(out[i])
-        for i in self._correlated:
-            self._deviates[i].standardised(out[i])
+        for i, stream in self._streams.items():
+            stream.fill(out[i])
+        for i, deviates in self._deviates.items():
+            deviates.standardised(out[i])
         # from the last row up, in place: a row is made of itself and of those above it. Summed
         # row by row, not as a matrix product, whose rounding depends on the number of draws.
         for row in reversed(range(len(self._correlated))):
